@@ -1,0 +1,15 @@
+import type { BlockDefinition } from "../definition.ts";
+
+export const buffer: BlockDefinition = {
+  kind: "buffer",
+  label: "Buffer",
+  place: "chain",
+  ports: ["in", "out"],
+  roles: [],
+  hasSlider: false,
+  hasOpAmp: true,
+  expand(x) {
+    x.opAmp(x.port("in"), x.port("out"), x.port("out"));
+  },
+  laws: [],
+};

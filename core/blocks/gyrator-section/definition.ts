@@ -1,0 +1,35 @@
+import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { gyratorLeg } from "./equations.ts";
+
+export const gyratorSection: BlockDefinition = {
+  kind: "gyrator-section",
+  label: "Gyrator section",
+  place: "band",
+  ports: ["bus"],
+  roles: [
+    capacitorRole("seriesC", "series C", 220e-9),
+    resistorRole("seriesR", "series R", 470),
+    capacitorRole("gyratorC", "gyrator C", 3.9e-9),
+    resistorRole("gyratorR", "gyrator R", 68e3),
+  ],
+  hasSlider: true,
+  hasOpAmp: true,
+  expand(x) {
+    const a = x.node("a");
+    const n = x.node("n");
+    const o = x.node("o");
+    x.place("seriesC", x.wiper, a);
+    x.place("seriesR", a, o);
+    x.place("gyratorC", a, n);
+    x.place("gyratorR", n, x.reference);
+    x.opAmp(n, o, o);
+  },
+  leg: (values, opAmp) => gyratorLeg(values.seriesC, values, opAmp),
+  shape: "resonance",
+  laws: [
+    { symbol: "L", label: "inductance", quantity: "inductance", expression: "seriesR * gyratorR * gyratorC" },
+    { symbol: "f0", label: "leg resonance", quantity: "frequency", expression: "1 / (2 * pi * sqrt(L * seriesC))" },
+    { symbol: "Q", label: "leg Q", quantity: "plain", expression: "sqrt(L / seriesC) / seriesR" },
+    { symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" },
+  ],
+};

@@ -1,0 +1,33 @@
+import { gyratorLeg } from "../gyrator-section/equations.ts";
+import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+
+export const lowShelfSection: BlockDefinition = {
+  kind: "low-shelf-section",
+  label: "Low shelf section",
+  place: "band",
+  ports: ["bus"],
+  roles: [
+    resistorRole("seriesR", "series R", 1000),
+    capacitorRole("gyratorC", "gyrator C", 47e-9),
+    resistorRole("gyratorR", "gyrator R", 100e3),
+    capacitorRole("blockingC", "blocking C", 47e-6, { isOptional: true, tolerance: 0.2 }),
+  ],
+  hasSlider: true,
+  hasOpAmp: true,
+  expand(x) {
+    const a = x.node("a");
+    const n = x.node("n");
+    const o = x.node("o");
+    x.placeOrWire("blockingC", x.wiper, a);
+    x.place("seriesR", a, o);
+    x.place("gyratorC", a, n);
+    x.place("gyratorR", n, x.reference);
+    x.opAmp(n, o, o);
+  },
+  leg: (values, opAmp) => gyratorLeg(values.blockingC, values, opAmp),
+  shape: "low-shelf",
+  laws: [
+    { symbol: "L", label: "inductance", quantity: "inductance", expression: "seriesR * gyratorR * gyratorC" },
+    { symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" },
+  ],
+};

@@ -1,0 +1,20 @@
+import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { seriesLeg } from "../series-leg.ts";
+
+export const shelfSection: BlockDefinition = {
+  kind: "shelf-section",
+  label: "High shelf section",
+  place: "band",
+  ports: ["bus"],
+  roles: [capacitorRole("seriesC", "series C", 10e-9), resistorRole("seriesR", "series R", 470)],
+  hasSlider: true,
+  hasOpAmp: false,
+  expand(x) {
+    const c = x.node("c");
+    x.place("seriesC", x.wiper, c);
+    x.place("seriesR", c, x.ground);
+  },
+  leg: (values) => seriesLeg({ c: values.seriesC, r: values.seriesR }),
+  shape: "high-shelf",
+  laws: [{ symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" }],
+};
