@@ -1,0 +1,65 @@
+import { homedir } from "node:os";
+import { basename, dirname, join } from "node:path";
+import { HostFailure } from "../core/contract/failures.ts";
+import type { ArgsOf, ResultOf } from "../core/contract/methods.ts";
+import type { Handlers } from "./host.ts";
+import { createFiles } from "./services/files.ts";
+import { createPathGuard, type PathGuard, type Root } from "./services/path-guard.ts";
+import { createProjects } from "./services/projects.ts";
+
+/** The system's own open and save dialogs, where a shell has them. */
+export interface NativeDialogs {
+  chooseOpen(): Promise<ResultOf<"project.chooseOpen">>;
+  chooseSave(args: ArgsOf<"project.chooseSave">): Promise<ResultOf<"project.chooseSave">>;
+}
+
+/** What differs between the shells. */
+export interface ShellOpts {
+  readonly version: string;
+  readonly demoFolder: string;
+  /** The file the user named at start; absolute. */
+  readonly launchPath: string | null;
+  /** Null in a browser: the page shows a chooser of its own. */
+  readonly dialogs: NativeDialogs | null;
+}
+
+/** All handlers of a session, and the guard that the shell lets picked files through. */
+export function createHandlers(opts: ShellOpts): { readonly handlers: Handlers; readonly guard: PathGuard } {
+  const projectsFolder = join(homedir(), "Bandwright");
+  const roots: Root[] = [{ name: "My projects", path: projectsFolder }, { name: "Demos", path: opts.demoFolder }];
+  const launchFolder = opts.launchPath === null ? null : dirname(opts.launchPath);
+  if (launchFolder !== null && !roots.some((root) => root.path === launchFolder)) {
+    roots.splice(1, 0, { name: basename(launchFolder) || launchFolder, path: launchFolder });
+  }
+
+  const guard = createPathGuard(roots);
+  const { demoFolder, launchPath, dialogs } = opts;
+  const projects = createProjects({ guard, projectsFolder, demoFolder, launchPath });
+  const files = createFiles({ guard, projectsFolder, demoFolder });
+
+  const handlers: Handlers = {
+    "host.capabilities": async () => ({
+      fileDialogs: dialogs === null ? "inPage" : "native",
+      version: opts.version,
+      platform: process.platform,
+    }),
+    "project.launch": projects.launch,
+    "project.demos": projects.demos,
+    "project.open": projects.open,
+    "project.save": projects.save,
+    "project.chooseOpen": async () => {
+      if (dialogs === null) throw new HostFailure("not-available", { method: "project.chooseOpen" });
+      const answer = await dialogs.chooseOpen();
+      if (answer.path !== null) await guard.grant(answer.path);
+      return answer;
+    },
+    "project.chooseSave": async (args) => {
+      if (dialogs === null) throw new HostFailure("not-available", { method: "project.chooseSave" });
+      const answer = await dialogs.chooseSave(args);
+      if (answer.path !== null) await guard.grant(answer.path);
+      return answer;
+    },
+    "files.list": files.list,
+  };
+  return { handlers, guard };
+}

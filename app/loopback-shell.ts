@@ -1,0 +1,91 @@
+import { readFileSync } from "node:fs";
+import { mkdir, mkdtemp, readdir, rm, stat, writeFile } from "node:fs/promises";
+import { join } from "node:path";
+import { pathToFileURL } from "node:url";
+import open from "open";
+import { createHandlers } from "./handlers.ts";
+import { createHost } from "./host.ts";
+import { serveLoopback } from "./serve.ts";
+import { loadUiFiles } from "./ui-files.ts";
+
+const START_PAGE = "bandwright.html";
+const START_FOLDER_PREFIX = "start-";
+
+/** How the loopback shell is started. */
+export interface LoopbackShellOpts {
+  /** The checkout: holds `dist/ui`, `assets/demo` and package.json. */
+  readonly root: string;
+  /** The file to show; absolute, and there. */
+  readonly file: string | null;
+  /** Open the user's browser, where there is a display to open it on. */
+  readonly opensBrowser: boolean;
+}
+
+/** Serves Bandwright to the user's browser until the process is told to stop. */
+export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
+  const dist = join(opts.root, "dist");
+  const { version } = JSON.parse(readFileSync(join(opts.root, "package.json"), "utf8")) as { version: string };
+  const { handlers } = createHandlers({ version, demoFolder: join(opts.root, "assets", "demo"), launchPath: opts.file, dialogs: null });
+  const host = createHost(handlers, (error) => console.error(error));
+  const server = await serveLoopback(host, await loadUiFiles(join(dist, "ui")));
+  const stopped = new Promise<void>((resolve) => {
+    process.once("SIGINT", () => resolve());
+    process.once("SIGTERM", () => resolve());
+  });
+
+  console.log(`Bandwright is at ${server.address}`);
+  console.log("The address works once. Ctrl+C stops Bandwright.");
+  if (opts.opensBrowser && hasDisplay()) {
+    const folder = await writeStartPage(dist, server.address);
+    await openInBrowser(join(folder, START_PAGE));
+    await Promise.race([server.opened, stopped]);
+    await rm(folder, { recursive: true, force: true });
+  } else if (opts.opensBrowser) {
+    console.log("No browser can be started from here: open the address in a browser on this machine.");
+  }
+
+  await stopped;
+  await server.close();
+}
+
+/**
+ * The address reaches the browser in a file that only the user can read. On a command line, every user of the machine
+ * could see it in the list of processes. The folder is not a hidden one: packaged browsers may not read those.
+ * Returns the folder, to be removed once the page has done its work.
+ */
+async function writeStartPage(dist: string, address: string): Promise<string> {
+  await mkdir(dist, { recursive: true });
+  await removeOldStartPages(dist);
+  // mkdtemp makes the folder for the user alone.
+  const folder = await mkdtemp(join(dist, START_FOLDER_PREFIX));
+  const page = `<!doctype html><meta charset="utf-8"><title>Bandwright</title><meta http-equiv="refresh" content="0; url=${address}"><p><a href="${address}">Open Bandwright</a></p>\n`;
+  await writeFile(join(folder, START_PAGE), page, { mode: 0o600, flag: "wx" });
+  return folder;
+}
+
+/** Pages left behind by a session that could not tidy up; their codes are dead. */
+async function removeOldStartPages(dist: string): Promise<void> {
+  const anHourAgo = Date.now() - 3_600_000;
+  for (const name of await readdir(dist)) {
+    if (!name.startsWith(START_FOLDER_PREFIX)) continue;
+    const folder = join(dist, name);
+    const info = await stat(folder).catch(() => null);
+    if (info !== null && info.mtimeMs < anHourAgo) await rm(folder, { recursive: true, force: true });
+  }
+}
+
+async function openInBrowser(path: string): Promise<void> {
+  try {
+    const child = await open(pathToFileURL(path).href);
+    child.on("error", () => console.log("No browser could be started: open the address yourself."));
+  } catch {
+    console.log("No browser could be started: open the address yourself.");
+  }
+}
+
+function hasDisplay(): boolean {
+  if (process.platform !== "linux") return true;
+  const { DISPLAY, WAYLAND_DISPLAY, WSL_DISTRO_NAME } = process.env;
+  // Under WSL the browser is a Windows one, which cannot read the start page.
+  return !WSL_DISTRO_NAME && Boolean(DISPLAY || WAYLAND_DISPLAY);
+}

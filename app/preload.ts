@@ -1,0 +1,4 @@
+import { contextBridge, ipcRenderer } from "electron";
+import { createBridge } from "./ipc-carrier.ts";
+
+contextBridge.exposeInMainWorld("bandwrightHost", createBridge(ipcRenderer));

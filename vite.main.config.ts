@@ -1,0 +1,15 @@
+import { defineConfig } from "vite";
+
+/** The desktop window's main process: one module, with everything in it but Electron and Node. */
+export default defineConfig({
+  publicDir: false,
+  ssr: { noExternal: true },
+  build: {
+    ssr: "app/main.ts",
+    outDir: "dist/app",
+    emptyOutDir: true,
+    sourcemap: false,
+    target: "node24",
+    rolldownOptions: { external: ["electron"], output: { format: "es", entryFileNames: "[name].mjs", codeSplitting: false } },
+  },
+});
