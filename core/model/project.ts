@@ -41,8 +41,13 @@ export interface Block {
   /** Name in the project's `opAmps`, then in the built-in table, or `"ideal"`. */
   readonly opAmp?: string;
   readonly slider?: Slider;
-  /** Keyed by the roles of the block's definition; other keys are kept and ignored. */
-  readonly parts: Readonly<Record<string, Part>>;
+  /** Keyed by the roles of the block's definition; other keys are kept and ignored. May be absent where a kind has no roles. */
+  readonly parts?: Readonly<Record<string, Part>>;
+}
+
+/** A block's parts by role; read them through this, since a buffer may come without. */
+export function partsOf(block: Pick<Block, "parts">): Readonly<Record<string, Part>> {
+  return block.parts ?? {};
 }
 
 export interface Wire {

@@ -1,6 +1,6 @@
 import { BLOCKS } from "../blocks/index.ts";
 import type { Expander } from "../blocks/definition.ts";
-import type { Block } from "../model/project.ts";
+import { partsOf, type Block } from "../model/project.ts";
 import type { Board } from "./board.ts";
 import { GROUND, NetlistBuilder, type Netlist, type NodeId } from "./netlist.ts";
 import { opAmpModel, partValue, sliderPosition, sliderResistances, type ValueOpts } from "./values.ts";
@@ -50,7 +50,7 @@ function expandBlock(
       return id;
     },
     place(role, a, b) {
-      const part = block.parts[role];
+      const part = partsOf(block)[role];
       if (!part) return;
       const value = partValue(part, opts);
       const source = `${block.id}.${role}`;
@@ -66,7 +66,7 @@ function expandBlock(
       }
     },
     placeOrWire(role, a, b) {
-      if (block.parts[role]) this.place(role, a, b);
+      if (partsOf(block)[role]) this.place(role, a, b);
       else net.merge(a, b);
     },
     opAmp(plus, minus, outNode) {

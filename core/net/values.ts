@@ -2,7 +2,7 @@ import { BLOCKS } from "../blocks/index.ts";
 import type { PartValues } from "../blocks/definition.ts";
 import { FaultError } from "../errors.ts";
 import { findOpAmp } from "../model/op-amps.ts";
-import type { Block, OpAmpModel, Part, Project, Slider } from "../model/project.ts";
+import { partsOf, type Block, type OpAmpModel, type Part, type Project, type Slider } from "../model/project.ts";
 
 export interface ValueOpts {
   /** Slider positions for this run by band id; the file's where absent. */
@@ -19,11 +19,12 @@ export function partValue(part: Part, opts: ValueOpts): number {
 /** Values of a block's parts by role; an inductor's winding and self-capacitance come along as `windingR` and `selfC`. */
 export function blockValues(block: Block, opts: ValueOpts = {}): PartValues {
   const values: Record<string, number> = {};
+  const parts = partsOf(block);
   for (const { role } of BLOCKS[block.kind].roles) {
-    const part = block.parts[role];
+    const part = parts[role];
     if (part) values[role] = partValue(part, opts);
   }
-  const coil = block.parts.inductor;
+  const coil = parts.inductor;
   if (coil && "inductor" in values) {
     values.windingR = coil.windingR ?? 0;
     values.selfC = coil.selfC ?? 0;

@@ -1,0 +1,116 @@
+import * as v from "valibot";
+import { BLOCKS } from "../blocks/index.ts";
+import { BLOCK_KINDS, type BlockKind } from "../blocks/kinds.ts";
+
+/** How a wrong value is shown in a message: as JSON, cut short. */
+export function showValue(value: unknown): string {
+  if (value === undefined) return "nothing";
+  if (typeof value === "number") return String(value);
+  const text = JSON.stringify(value) ?? String(value);
+  return text.length > 48 ? `${text.slice(0, 45)}…` : text;
+}
+
+type Message = (issue: { readonly input: unknown; readonly received: string }) => string;
+const expected = (what: string): Message => (issue) => (issue.received === "undefined" ? `is missing: must be ${what}` : `must be ${what}, got ${showValue(issue.input)}`);
+
+function number(what: string, isFine: (value: number) => boolean): v.GenericSchema<number> {
+  return v.custom<number>((value) => typeof value === "number" && Number.isFinite(value) && isFine(value), expected(what));
+}
+
+const above0 = number("a number above 0", (value) => value > 0);
+const atLeast0 = number("a number of 0 or more", (value) => value >= 0);
+const finite = number("a number", () => true);
+const fraction = number("a fraction from 0 up to, but not including, 1 (0.05 for 5 %)", (value) => value >= 0 && value < 1);
+const position = number("a number from 0 (full cut) to 1 (full boost)", (value) => value >= 0 && value <= 1);
+const text = v.string(expected("text"));
+const name = v.pipe(text, v.nonEmpty(() => "must not be empty"));
+
+/** Unknown keys are let through: they are kept on save. */
+function object<Entries extends v.ObjectEntries>(entries: Entries) {
+  // A plain object first: an array would pass as an object without keys.
+  return v.pipe(
+    v.custom<Record<string, unknown>>((value) => typeof value === "object" && value !== null && !Array.isArray(value), expected("an object")),
+    v.looseObject(entries, (issue) => (issue.received === "undefined" ? "is missing" : `must be an object, got ${showValue(issue.input)}`)),
+  );
+}
+
+function oneOf<const Names extends readonly string[]>(names: Names) {
+  return v.picklist(names, expected(`one of ${names.join(", ")}`));
+}
+
+const partEntries = { value: above0, tolerance: v.optional(fraction), stock: v.optional(text), measured: v.optional(above0) };
+const partSchema = object(partEntries);
+const coilSchema = object({ ...partEntries, windingR: v.optional(atLeast0), selfC: v.optional(atLeast0) });
+
+const lawSchema = v.custom<unknown>(
+  (value) => value === "linear" || (typeof value === "object" && value !== null && "power" in value && typeof value.power === "number" && Number.isFinite(value.power) && value.power > 0),
+  expected('"linear" or { "power": a number above 0 }'),
+);
+
+const sliderSchema = object({ track: partSchema, law: v.optional(lawSchema), position, endR: v.optional(atLeast0) });
+
+function blockSchema(kind: BlockKind): v.GenericSchema {
+  const { roles, hasSlider, hasOpAmp } = BLOCKS[kind];
+  const parts = object(
+    Object.fromEntries(
+      roles.map((r) => {
+        const schema: v.GenericSchema = r.quantity === "inductance" ? coilSchema : partSchema;
+        return [r.role, r.isOptional ? v.optional(schema) : schema];
+      }),
+    ),
+  );
+  return object({
+    id: name,
+    kind: v.literal(kind),
+    label: v.optional(text),
+    at: v.optional(object({ x: finite, y: finite })),
+    opAmp: hasOpAmp ? name : v.optional(v.unknown()),
+    slider: hasSlider ? sliderSchema : v.optional(v.unknown()),
+    parts: roles.every((r) => r.isOptional) ? v.optional(parts) : parts,
+  });
+}
+
+const byKind = Object.fromEntries(BLOCK_KINDS.map((kind) => [kind, blockSchema(kind)])) as Record<BlockKind, v.GenericSchema>;
+const kindSchema = object({ kind: oneOf(BLOCK_KINDS) });
+const isKnownKind = (kind: unknown): kind is BlockKind => typeof kind === "string" && Object.hasOwn(byKind, kind);
+
+/** One schema a kind, so that a fault speaks of the roles of that kind alone. */
+const anyBlock = v.lazy((input: unknown) => {
+  const kind = typeof input === "object" && input !== null && "kind" in input ? input.kind : undefined;
+  return isKnownKind(kind) ? byKind[kind] : kindSchema;
+});
+
+const supplySchema = v.lazy((input: unknown): v.GenericSchema => {
+  const kind = typeof input === "object" && input !== null && "kind" in input ? input.kind : undefined;
+  if (kind === "split") return object({ kind: v.literal("split"), positive: above0, negative: above0 });
+  if (kind === "single") {
+    return object({ kind: v.literal("single"), voltage: above0, reference: object({ upperR: partSchema, lowerR: partSchema, bypassC: partSchema, opAmp: v.optional(name) }) });
+  }
+  return object({ kind: oneOf(["split", "single"]) });
+});
+
+const opAmpSchema = object({
+  openLoopGain: above0,
+  gainBandwidth: above0,
+  inputR: above0,
+  outputR: atLeast0,
+  ...Object.fromEntries(
+    ["slewRate", "noiseVoltage", "noiseVoltageCorner", "noiseCurrent", "noiseCurrentCorner", "swingLoss", "outputCurrent", "offsetVoltage", "biasCurrent", "supplyCurrent"].map((key) => [
+      key,
+      v.optional(key === "offsetVoltage" || key === "biasCurrent" ? finite : atLeast0),
+    ]),
+  ),
+});
+
+const list = (item: v.GenericSchema) => v.array(item, expected("a list"));
+
+/** The shape of a version 1 project; what ties its places together (ids, op-amp names, wiring) is checked beside it. */
+export const projectSchema = object({
+  name: text,
+  notes: v.optional(text),
+  supply: supplySchema,
+  temperature: v.optional(number("a temperature in °C above −273.15", (value) => value > -273.15)),
+  blocks: list(anyBlock),
+  wires: list(object({ from: text, to: text })),
+  opAmps: v.optional(v.record(v.string(), opAmpSchema, expected("an object"))),
+});
