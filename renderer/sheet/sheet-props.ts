@@ -1,0 +1,58 @@
+import type { BandFigures } from "../../core/analysis/bands.ts";
+import type { Project } from "../../core/model/project.ts";
+import type { Board } from "../../core/net/board.ts";
+
+/** A response in columns: Hz, dB, degrees. */
+export interface Curve {
+  readonly frequency: Float64Array;
+  readonly gain: Float64Array;
+  readonly phase: Float64Array;
+}
+
+/** What the sheet shows of a board's computation. */
+export interface SheetResults {
+  /** The response with the sliders as they stand. */
+  readonly total: Curve;
+  /** The selected band only, at full boost or cut (towards its present side; boost when centred), others centred. */
+  readonly alone: Curve | null;
+  /** By band id. */
+  readonly figures: ReadonlyMap<string, BandFigures>;
+  /** dB of the total response at each band's in-circuit centre now, by band id. */
+  readonly liveGain: ReadonlyMap<string, number>;
+}
+
+/** The sheet draws what it is given and reports what the hands do; it decides nothing. */
+export interface SheetProps {
+  readonly project: Project;
+  /** Null where the wiring has faults: the blocks are drawn all the same. */
+  readonly board: Board | null;
+  readonly results: SheetResults | null;
+  readonly selection: readonly string[];
+  readonly theme: "paper" | "night";
+  /** Hz. */
+  readonly range: { readonly from: number; readonly to: number };
+  onSelect(ids: readonly string[], mode: "replace" | "toggle" | "add"): void;
+  onKnobStart(id: string): void;
+  onKnobMove(id: string, position: number): void;
+  onKnobEnd(): void;
+  onKnobCancel(): void;
+  /** One undo step a drag. */
+  onMove(moves: readonly { readonly id: string; readonly at: { readonly x: number; readonly y: number } }[]): void;
+  /** Returns what is wrong with the text, or null when it was taken. */
+  onEditValue(id: string, role: string, text: string): string | null;
+  onContextMenu(at: { readonly clientX: number; readonly clientY: number; readonly target: string | null }): void;
+  onCursor(reading: { readonly frequency: number; readonly gain: number; readonly phase: number } | null): void;
+}
+
+/** What the shell may ask of the sheet. */
+export interface SheetHandle {
+  fit(): void;
+  zoomBy(factor: number): void;
+  panBy(dx: number, dy: number): void;
+  /** Places that put every band back under its own frequency. */
+  arrange(): { id: string; at: { x: number; y: number } }[];
+  focusBlock(id: string): void;
+  editValue(id: string): void;
+  /** Page coordinates, or null where it is not on the sheet. */
+  screenPlaceOf(id: string, part: "knob" | "block"): { x: number; y: number } | null;
+}
