@@ -32,7 +32,12 @@ export async function buildStale(root, names, say) {
   }
 }
 
-/** Builds into a folder of its own and swaps it in, so that there is never half a build to start from. */
+/**
+ * Builds into a folder of its own and swaps it in, so that there is never half a build to start from.
+ * @param {string} root
+ * @param {readonly string[]} configs
+ * @param {string} output
+ */
 async function build(root, configs, output) {
   mkdirSync(join(root, "dist"), { recursive: true });
   const fresh = `${output}.${randomBytes(4).toString("hex")}`;
@@ -52,6 +57,11 @@ async function build(root, configs, output) {
   }
 }
 
+/**
+ * @param {string} root
+ * @param {readonly string[]} args
+ * @returns {Promise<void>}
+ */
 function runVite(root, args) {
   const child = spawn(process.execPath, [join(root, "node_modules", "vite", "bin", "vite.js"), ...args], { cwd: root, stdio: ["ignore", "pipe", "pipe"] });
   let output = "";
@@ -63,9 +73,14 @@ function runVite(root, args) {
   });
 }
 
-/** Names, sizes and times of all source files: quick to take, and different after any change. */
+/**
+ * Names, sizes and times of all source files: quick to take, and different after any change.
+ * @param {string} root
+ * @param {readonly string[]} paths
+ */
 function fingerprint(root, paths) {
   const hash = createHash("sha256");
+  /** @param {string} path */
   const add = (path) => {
     const info = statSync(join(root, path), { throwIfNoEntry: false });
     if (info === undefined) return;

@@ -53,6 +53,7 @@ export async function fetchElectron(root, { timeoutMs, force, say }) {
   writeFileSync(record, "");
 }
 
+/** @param {string} root */
 function packageFolder(root) {
   try {
     return dirname(createRequire(join(root, "package.json")).resolve("electron/package.json"));
@@ -66,6 +67,7 @@ function executableName() {
   return process.platform === "win32" ? "electron.exe" : "electron";
 }
 
+/** @param {string} path */
 function ifExecutable(path) {
   try {
     accessSync(path, constants.X_OK);
@@ -75,6 +77,7 @@ function ifExecutable(path) {
   }
 }
 
+/** @param {string} path */
 function modified(path) {
   return statSync(path, { throwIfNoEntry: false })?.mtimeMs ?? 0;
 }

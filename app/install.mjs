@@ -41,6 +41,11 @@ export async function install(root, say) {
   writeStamp(root);
 }
 
+/**
+ * @param {string} root
+ * @param {readonly string[]} args
+ * @returns {Promise<void>}
+ */
 function runNpm(root, args) {
   // npm says where it is when it starts us; a plain `npm` otherwise, which on Windows is a script for the shell.
   const own = process.env.npm_execpath;
@@ -58,20 +63,24 @@ function runNpm(root, args) {
   });
 }
 
+/** @param {string} root */
 function stampPath(root) {
   return join(root, "node_modules", ".bandwright-install");
 }
 
+/** @param {string} root */
 function writeStamp(root) {
   writeFileSync(stampPath(root), lockHash(root));
 }
 
+/** @param {string} root */
 function lockHash(root) {
   return createHash("sha256")
     .update(read(join(root, "package-lock.json")) ?? "")
     .digest("hex");
 }
 
+/** @param {string} path */
 function read(path) {
   try {
     return readFileSync(path, "utf8");
@@ -80,6 +89,7 @@ function read(path) {
   }
 }
 
+/** @param {string} path */
 function parse(path) {
   try {
     return JSON.parse(readFileSync(path, "utf8"));
@@ -93,7 +103,7 @@ if (process.argv[1] !== undefined && realpathSync(process.argv[1]) === self) {
   try {
     await install(join(self, "..", ".."), (line) => console.error(line));
   } catch (error) {
-    console.error(error.message);
+    console.error(error instanceof Error ? error.message : error);
     process.exitCode = 1;
   }
 }

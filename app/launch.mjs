@@ -22,6 +22,7 @@ Example: npm start -- "Voice channel.bandwright"`;
 const READY_WITHIN_MS = 10_000;
 const ROOT = join(fileURLToPath(import.meta.url), "..", "..");
 
+/** @param {string} line */
 function say(line) {
   console.error(line);
 }
@@ -35,12 +36,15 @@ function readArgs() {
     if (positionals.length > 1) throw new Error("Give one file at most; a name with spaces goes in quotes.");
     return { file: positionals[0], noOpen: values["no-open"] === true, getElectron: values["get-electron"] === true, help: values.help === true };
   } catch (error) {
-    say(`${error.message}\n\n${HELP}`);
+    say(`${error instanceof Error ? error.message : String(error)}\n\n${HELP}`);
     return null;
   }
 }
 
-/** The named file, absolute, or null where there is none to show; a wrong name ends the start. */
+/**
+ * The named file, absolute, or null where there is none to show; a wrong name ends the start.
+ * @param {string} name
+ */
 function findFile(name) {
   // npm runs us in the checkout; the user typed the name in this folder.
   const path = resolve(process.env.INIT_CWD ?? process.cwd(), name);
@@ -88,7 +92,11 @@ async function runWithNewerNode() {
   return await passThrough(spawn(node, process.argv.slice(1), { stdio: "inherit" }));
 }
 
-/** The window's exit code; null where there is no window to be had. */
+/**
+ * The window's exit code; null where there is no window to be had.
+ * @param {string | null} file
+ * @param {boolean} getElectron
+ */
 async function tryDesktopWindow(file, getElectron) {
   let electron = findElectron(ROOT, process.env);
   if (electron === null && !process.env.ELECTRON_OVERRIDE_DIST_PATH) {
@@ -105,7 +113,11 @@ async function tryDesktopWindow(file, getElectron) {
   return code;
 }
 
-/** Resolves with the exit code, or null where Electron died before its window was up. */
+/**
+ * Resolves with the exit code, or null where Electron died before its window was up.
+ * @param {string} electron
+ * @param {string | null} file
+ */
 async function runDesktopWindow(electron, file) {
   const env = { ...process.env };
   // It would make Electron a plain Node.
@@ -115,7 +127,7 @@ async function runDesktopWindow(electron, file) {
   // What Electron complains of is shown once the window is up; if it never is, one line of ours says enough.
   let isUp = false;
   let complaints = "";
-  child.stderr.on("data", (chunk) => {
+  child.stderr?.on("data", (chunk) => {
     if (isUp) process.stderr.write(chunk);
     else complaints += chunk;
   });
@@ -126,7 +138,7 @@ async function runDesktopWindow(electron, file) {
   };
   const timer = setTimeout(up, READY_WITHIN_MS);
   child.on("message", (message) => {
-    if (message?.ready === true) up();
+    if (typeof message === "object" && message !== null && "ready" in message) up();
   });
   const code = await passThrough(child);
   clearTimeout(timer);
@@ -134,13 +146,18 @@ async function runDesktopWindow(electron, file) {
   return isUp || code === 0 ? code : null;
 }
 
-/** Waits for a child; Ctrl+C reaches it by itself, other signals are handed on. */
+/**
+ * Waits for a child; Ctrl+C reaches it by itself, other signals are handed on.
+ * @param {import("node:child_process").ChildProcess} child
+ * @returns {Promise<number>}
+ */
 function passThrough(child) {
   const ignore = () => undefined;
   const handOn = () => child.kill("SIGTERM");
   process.on("SIGINT", ignore);
   process.on("SIGTERM", handOn);
   return new Promise((resolve) => {
+    /** @param {number | null} code */
     const end = (code) => {
       process.off("SIGINT", ignore);
       process.off("SIGTERM", handOn);
@@ -154,6 +171,6 @@ function passThrough(child) {
 try {
   process.exitCode = await main();
 } catch (error) {
-  say(error.message);
+  say(error instanceof Error ? error.message : String(error));
   process.exitCode = 1;
 }
