@@ -55,9 +55,9 @@ class SeriesLeg implements Leg {
     const coil = this.#coil.affine(this.rw, this.l, omega);
     const across = this.#t.affine(0, this.cp, omega);
     const z = this.#z.mul(across, coil);
-    z.re += 1;
+    z[0] += 1;
     z.div(coil, z);
-    z.re += this.r;
+    z[0] += this.r;
     const one = this.#t.real(1);
     if (this.c > 0) {
       const block = this.#coil.affine(0, this.c, omega);

@@ -9,6 +9,9 @@ import { projectSchema, showValue } from "./schema.ts";
 /** Faults past this number are counted, not listed: nobody mends a thousand by hand. */
 const LISTED_FAULTS = 100;
 
+/** Far past any board that can be built; checking more would only keep the user waiting. */
+const MOST_ENTRIES = 10_000;
+
 export interface RestoredProject {
   readonly project: Project;
   /** Oddities that stop nothing, such as a part under a role that its block does not have. */
@@ -28,13 +31,19 @@ export function restoreProject(text: string): RestoredProject {
   if (typeof document !== "object" || document === null || Array.isArray(document)) {
     return fail([{ path: "", message: `a project file holds one object, this one holds ${showValue(document)}` }]);
   }
-  const { format, version } = document as Record<string, unknown>;
+  const record = document as Readonly<Record<string, unknown>>;
+  const { format, version } = record;
   if (format !== PROJECT_FORMAT) return fail([{ path: "format", message: `must be "${PROJECT_FORMAT}", got ${showValue(format)}: this is not a project file` }]);
   if (typeof version === "number" && version > PROJECT_VERSION) {
     return fail([{ path: "version", message: `this file is of version ${version}, and this Bandwright reads version ${PROJECT_VERSION}: open it with a newer one` }]);
   }
   if (version !== PROJECT_VERSION) return fail([{ path: "version", message: `must be ${PROJECT_VERSION}, got ${showValue(version)}` }]);
 
+  const tooLong = ["blocks", "wires"].filter((key) => {
+    const entries = record[key];
+    return Array.isArray(entries) && entries.length > MOST_ENTRIES;
+  });
+  if (tooLong.length > 0) return fail(tooLong.map((key) => ({ path: key, message: `must be a list of at most ${MOST_ENTRIES} entries` })));
   const parsed = v.safeParse(projectSchema, document);
   if (!parsed.success) return fail(parsed.issues.map(faultOf));
   // The document itself, not the parser's copy of it: nothing in the file may get lost.

@@ -25,12 +25,39 @@ const position = number("a number from 0 (full cut) to 1 (full boost)", (value) 
 const text = v.string(expected("text"));
 const name = v.pipe(text, v.nonEmpty(() => "must not be empty"));
 
+const isPlain = (value: unknown): boolean => typeof value === "object" && value !== null && !Array.isArray(value);
+const plainObject = v.custom<Record<string, unknown>>(isPlain, expected("an object"));
+
+/** What a required key should have held, for the fault that says it is missing; every other key is the role of a part. */
+const WANTED: Readonly<Record<string, string>> = {
+  id: "text",
+  kind: `one of ${BLOCK_KINDS.join(", ")}`,
+  name: "text",
+  supply: '{ "kind": "split", "positive", "negative" } or { "kind": "single", "voltage", "reference" }',
+  blocks: "a list of blocks",
+  wires: "a list of { from, to }",
+  from: "block.port",
+  to: "block.port",
+  opAmp: "the name of an op amp",
+  slider: "{ track, law, position, endR }",
+  parts: "an object of parts by role",
+  reference: "{ upperR, lowerR, bypassC, opAmp? }",
+  position: "a number from 0 (full cut) to 1 (full boost)",
+  ...Object.fromEntries(["value", "positive", "negative", "voltage", "openLoopGain", "gainBandwidth", "inputR"].map((key) => [key, "a number above 0"])),
+  outputR: "a number of 0 or more",
+  x: "a number",
+  y: "a number",
+};
+
 /** Unknown keys are let through: they are kept on save. */
 function object<Entries extends v.ObjectEntries>(entries: Entries) {
   // A plain object first: an array would pass as an object without keys.
   return v.pipe(
-    v.custom<Record<string, unknown>>((value) => typeof value === "object" && value !== null && !Array.isArray(value), expected("an object")),
-    v.looseObject(entries, (issue) => (issue.received === "undefined" ? "is missing" : `must be an object, got ${showValue(issue.input)}`)),
+    plainObject,
+    v.looseObject(entries, (issue) => {
+      const key = String(issue.path?.at(-1)?.key ?? "");
+      return `is missing: must be ${Object.hasOwn(WANTED, key) ? WANTED[key] : 'a part such as { "value": 470 }'}`;
+    }),
   );
 }
 
@@ -112,5 +139,5 @@ export const projectSchema = object({
   temperature: v.optional(number("a temperature in °C above −273.15", (value) => value > -273.15)),
   blocks: list(anyBlock),
   wires: list(object({ from: text, to: text })),
-  opAmps: v.optional(v.record(v.string(), opAmpSchema, expected("an object"))),
+  opAmps: v.optional(v.pipe(plainObject, v.record(v.string(), opAmpSchema))),
 });

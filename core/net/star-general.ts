@@ -29,29 +29,43 @@ export class GeneralStar {
   /** Kept leg ports, one for every band and frequency. */
   readonly #legs: readonly (readonly LegPort[])[];
   readonly #below: readonly Below[];
+  readonly #h = new Dual();
+  /** The tracks' two parts in this run, ohms. */
+  readonly #ra: Float64Array;
+  readonly #rb: Float64Array;
+  /** Working registers. */
   readonly #d: readonly Dual[] = Array.from({ length: 28 }, () => new Dual());
 
   constructor(board: CompiledBoard, omega: Float64Array) {
     this.board = board;
     this.omega = omega;
+    this.#ra = new Float64Array(board.bands.length);
+    this.#rb = new Float64Array(board.bands.length);
     this.#below = board.items.map(() => new Below());
-    this.#legs = board.bands.map((band) =>
-      Array.from(omega, (w) => {
-        const port = { ww: new Dual(), wr: new Dual(), rw: new Dual(), rr: new Dual() };
-        band.leg.port(w, port);
-        return port;
-      }),
-    );
+    this.#legs = board.bands.map(() => Array.from(omega, () => ({ ww: new Dual(), wr: new Dual(), rw: new Dual(), rr: new Dual() })));
+    this.retune();
+  }
+
+  /** Works out the legs anew after `omega` has changed. */
+  retune(): void {
+    this.board.bands.forEach((band, index) => {
+      for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k]);
+    });
   }
 
   run(positions: Float64Array, out: TransferColumns): void {
     const { items } = this.board;
-    const h = new Dual();
+    const h = this.#h;
+    for (const band of this.board.bands) {
+      const { boost, cut } = band.resistances(positions[band.index]);
+      this.#ra[band.index] = boost;
+      this.#rb[band.index] = cut;
+    }
     for (let k = 0; k < this.omega.length; k++) {
       for (const below of this.#below) below.clear();
       for (let i = items.length - 1; i >= 0; i--) {
         const item = items[i];
-        if (item.type === "stage") this.#stage(i, item, positions, k);
+        if (item.type === "stage") this.#stage(i, item, k);
         else if (item.type === "buffer") this.#buffer(i, item, k);
         else if (item.type === "output") this.#output(item, k);
         else this.#input(i, item, k, h);
@@ -63,13 +77,14 @@ export class GeneralStar {
     }
   }
 
-  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, positions: Float64Array, k: number): void {
+  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, k: number): void {
     const omega = this.omega[k];
     const [sm, sp, mp, mr, pr, rm, rp, rr, y, t, e, yf, alpha, beta, gamma, mx, px, a11, a12, a21, a22, det, vm, vo, vp, q, load, b1] = this.#d;
     for (const sum of [sm, sp, mp, mr, pr, rm, rp, rr]) sum.real(0);
     const hasReference = this.board.reference !== undefined;
     for (const band of item.bands) {
-      const { boost: ra, cut: rb } = band.resistances(positions[band.index]);
+      const ra = this.#ra[band.index];
+      const rb = this.#rb[band.index];
       const track = ra + rb;
       const leg = this.#legs[band.index][k];
       // q = 1/(T + Ra·Rb·ww), y = q·ww
@@ -79,7 +94,7 @@ export class GeneralStar {
       sm.add(sm, t.scale(y, rb));
       sp.add(sp, t.scale(y, ra));
       mp.add(mp, t.scale(y, (ra * rb) / track));
-      mp.re -= 1 / track;
+      mp[0] -= 1 / track;
       if (!hasReference) continue;
       y.mul(q, leg.wr);
       mr.add(mr, t.scale(y, rb));

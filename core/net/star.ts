@@ -113,14 +113,15 @@ export class Sweep {
   readonly omega: Float64Array;
   readonly #legRe: Float64Array[] = [];
   readonly #legIm: Float64Array[] = [];
-  readonly #general: GeneralStar | undefined;
+  /** The full reduction: at once where the board needs it, else made when a slope is first asked for. */
+  #general: GeneralStar | undefined;
   /** Columns of the stage at work: Σ Rb·y, Σ Ra·y, Σ Ra·Rb·y/T. */
   readonly #sums: readonly Float64Array[];
   /** Load admittance at each item's out, and its gain. */
   readonly #load: readonly (readonly [Float64Array, Float64Array])[];
   readonly #gain: readonly (readonly [Float64Array, Float64Array])[];
 
-  /** @param omega rad/s, all above 0; kept, not copied */
+  /** @param omega rad/s, all above 0; kept, not copied: change it through `retune` alone */
   constructor(board: CompiledBoard, omega: Float64Array) {
     this.board = board;
     this.omega = omega;
@@ -134,12 +135,17 @@ export class Sweep {
     this.#gain = isFast ? board.items.map(pair) : [];
     if (!isFast) return;
     for (const band of board.bands) {
-      const re = column();
-      const im = column();
-      band.leg.admittance(omega, re, im);
-      this.#legRe.push(re);
-      this.#legIm.push(im);
+      this.#legRe.push(column());
+      this.#legIm.push(column());
+      band.leg.admittance(omega, this.#legRe[band.index], this.#legIm[band.index]);
     }
+  }
+
+  /** Moves a sweep of one point to another frequency, rad/s: what root-finding uses, without allocating. */
+  retune(omega: number): void {
+    this.omega[0] = omega;
+    this.#general?.retune();
+    for (const [index, re] of this.#legRe.entries()) this.board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
   }
 
   /**
@@ -148,7 +154,8 @@ export class Sweep {
    */
   run(positions: Float64Array, out: TransferColumns): void {
     if (out.slopeRe || this.#general) {
-      (this.#general ?? new GeneralStar(this.board, this.omega)).run(positions, out);
+      this.#general ??= new GeneralStar(this.board, this.omega);
+      this.#general.run(positions, out);
       return;
     }
     const { items, path } = this.board;

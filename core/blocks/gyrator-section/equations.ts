@@ -98,7 +98,7 @@ class GyratorLeg implements Leg {
     const e = this.#e.affine(this.e0, this.e1, omega);
     const p = this.#p.scale(e, 1 + ro * gs);
     const q = this.#q.scale(e, ro * gin);
-    q.re += 1;
+    q[0] += 1;
     const k = this.#k.affine(gg, cg, omega);
     const m = this.#m.affine(gg + gin, cg, omega);
     const det = this.#det.mul(p, m).addMul(q, k);

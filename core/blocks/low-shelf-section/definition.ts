@@ -28,6 +28,7 @@ export const lowShelfSection: BlockDefinition = {
   shape: "low-shelf",
   laws: [
     { symbol: "L", label: "inductance", quantity: "inductance", expression: "seriesR * gyratorR * gyratorC" },
+    { symbol: "fc", label: "leg corner", quantity: "frequency", expression: "seriesR / (2 * pi * L)" },
     { symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" },
   ],
 };

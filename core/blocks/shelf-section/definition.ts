@@ -16,5 +16,8 @@ export const shelfSection: BlockDefinition = {
   },
   leg: (values) => seriesLeg({ c: values.seriesC, r: values.seriesR }),
   shape: "high-shelf",
-  laws: [{ symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" }],
+  laws: [
+    { symbol: "fc", label: "leg corner", quantity: "frequency", expression: "1 / (2 * pi * seriesC * seriesR)" },
+    { symbol: "G", label: "isolated boost", quantity: "plain", expression: "1 + feedbackR / seriesR" },
+  ],
 };
