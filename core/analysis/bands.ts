@@ -53,9 +53,9 @@ export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = 
   const scan = new Scan(compileBoard(board, opts), Math.min(1, ...characteristic.map((f) => f / 32)), Math.max(1e6, ...characteristic.map((f) => f * 32)));
   return bands.map(({ band, laws }, index): BandFigures => {
     const { shape } = BLOCKS[band.kind];
-    const figure = (position: 0 | 1): BandPeak => (shape === "resonance" ? scan.resonance(index, position, laws.f0) : scan.shelf(index, position, band));
-    const boost = figure(1);
     const isolatedBoost = 20 * Math.log10(laws.G);
+    const figure = (position: 0 | 1): BandPeak => (shape === "resonance" ? scan.resonance(index, position, laws.f0) : scan.shelf(index, position, band, isolatedBoost));
+    const boost = figure(1);
     return {
       id: band.id,
       label: band.label ?? band.id,
@@ -140,25 +140,37 @@ class Scan {
   }
 
   /**
-   * Shelves and levels: the effect of the slider is the response less the response with all sliders centred, which takes
-   * the ends of the audio band (coupling capacitors, op amps) out of the search. The plateau lies where the effect is
-   * largest, the corner where it is half of that in dB.
+   * Shelves and levels. The effect of the slider is the response less the response with all sliders centred, which takes
+   * coupling capacitors and op amps out of the question where the band works. The plateau is where the response changes
+   * least over two octaves among the frequencies where the effect is strong; the corner is where the effect is half of
+   * that on the plateau, in dB.
    */
-  shelf(band: number, position: 0 | 1, block: Block): BandPeak {
+  shelf(band: number, position: 0 | 1, block: Block, isolatedBoost: number): BandPeak {
     return this.#with(band, position, () => {
-      const f = this.#frequency;
       const sign = position === 1 ? 1 : -1;
       const effect = this.#gain.map((gain, i) => gain - this.#centred[i]);
-      let best = 0;
-      for (let i = 1; i < f.length; i++) if (sign * effect[i] > sign * effect[best]) best = i;
+      const plateau = this.#flattest((i) => sign * effect[i] > isolatedBoost / 4);
+      if (plateau < 0) return { peak: this.#gain[argMax(effect, sign)], frequency: null, q: null, lower: null, upper: null };
       const centred = new Float64Array(this.#positions.length).fill(0.5);
       const effectAt = (lnF: number): number => this.#gainAt(lnF) - this.#gainAt(lnF, centred);
-      const lnPlateau = best === 0 || best === f.length - 1 ? Math.log(f[best]) : this.#refineLargest(effectAt, sign, best);
-      const half = effectAt(lnPlateau) / 2;
       const direction = BLOCKS[block.kind].shape === "low-shelf" ? 1 : -1;
-      const frequency = this.#crossing(effect, half, sign, best, direction, effectAt);
-      return { peak: this.#gainAt(lnPlateau), frequency, q: null, lower: null, upper: null };
+      const frequency = this.#crossing(effect, effect[plateau] / 2, sign, plateau, direction, effectAt);
+      return { peak: this.#gain[plateau], frequency, q: null, lower: null, upper: null };
     });
+  }
+
+  /** The scan point, among those that qualify, about which the gain varies least within an octave either way; −1 where none qualifies. */
+  #flattest(isFit: (index: number) => boolean): number {
+    const g = this.#gain;
+    let best = -1;
+    let least = Infinity;
+    for (let i = PER_OCTAVE; i < g.length - PER_OCTAVE; i++) {
+      if (!isFit(i)) continue;
+      const around = g.subarray(i - PER_OCTAVE, i + PER_OCTAVE + 1);
+      const variation = Math.max(...around) - Math.min(...around);
+      if (variation < least) [best, least] = [i, variation];
+    }
+    return best;
   }
 
   /** Runs a search with one slider at an end, then centres it again. */
@@ -184,26 +196,10 @@ class Scan {
     }
     return null;
   }
+}
 
-  /** The largest |effect| between the neighbours of a scan point: its numerical slope's root (the plateau is flat there). */
-  #refineLargest(effect: (lnF: number) => number, sign: number, best: number): number {
-    let [a, b] = [Math.log(this.#frequency[best - 1]), Math.log(this.#frequency[best + 1])];
-    // Golden-section search (Kiefer, Proc. Amer. Math. Soc. 4, 1953): the value matters here, the place hardly does.
-    const ratio = (Math.sqrt(5) - 1) / 2;
-    let x1 = b - ratio * (b - a);
-    let x2 = a + ratio * (b - a);
-    let [f1, f2] = [sign * effect(x1), sign * effect(x2)];
-    while (b - a > 1e-4) {
-      if (f1 > f2) {
-        [b, x2, f2] = [x2, x1, f1];
-        x1 = b - ratio * (b - a);
-        f1 = sign * effect(x1);
-      } else {
-        [a, x1, f1] = [x1, x2, f2];
-        x2 = a + ratio * (b - a);
-        f2 = sign * effect(x2);
-      }
-    }
-    return (a + b) / 2;
-  }
+function argMax(column: Float64Array, sign: number): number {
+  let best = 0;
+  for (let i = 1; i < column.length; i++) if (sign * column[i] > sign * column[best]) best = i;
+  return best;
 }

@@ -1,0 +1,110 @@
+import { readFile } from "node:fs/promises";
+import { Command } from "commander";
+import { FaultError, faultText } from "../../core/errors.ts";
+import { restoreProject } from "../../core/model/restore.ts";
+import { resolveBoard, type Board } from "../../core/net/board.ts";
+import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
+import { parseValue } from "../../core/units.ts";
+import { CommandFailure } from "./failure.ts";
+
+export interface SliderOpts {
+  readonly set?: readonly string[];
+  readonly all?: string;
+}
+
+export interface LoadedBoard {
+  readonly board: Board;
+  readonly compiled: CompiledBoard;
+  /** Positions of this run by band id. */
+  readonly positions: Readonly<Record<string, number>>;
+}
+
+/** A command on a project file, with the slider options that every analysis takes. */
+export function boardCommand(name: string, about: string, example: string): Command {
+  return new Command(name)
+    .description(about)
+    .argument("<FILE>", "project file (.bandwright)")
+    .option("--set <ID=POS...>", "slider positions for this run: 0 is full cut, 0.5 centre, 1 full boost (repeatable)")
+    .option("--all <POS>", "the position of every other slider for this run")
+    .addHelpText("after", `\nExample:\n  bandwright ${example}`);
+}
+
+/**
+ * Reads, checks and compiles a project file. Warnings go to stderr.
+ * @throws CommandFailure with every fault, one a line
+ */
+export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedBoard> {
+  let text: string;
+  try {
+    text = new TextDecoder("utf-8", { fatal: true, ignoreBOM: true }).decode(await readFile(file));
+  } catch (error) {
+    throw new CommandFailure(`${file}: ${readProblem(error)}`);
+  }
+  try {
+    const { project, warnings } = restoreProject(text);
+    const board = resolveBoard(project);
+    for (const warning of [...warnings, ...board.warnings]) process.stderr.write(`${file}: warning: ${faultText(warning)}\n`);
+    const positions = sliderPositions(board, opts);
+    return { board, positions, compiled: compileBoard(board, { positions }) };
+  } catch (error) {
+    if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));
+    throw error;
+  }
+}
+
+function readProblem(error: unknown): string {
+  const code = error instanceof Error && "code" in error ? String(error.code) : "";
+  const known: Record<string, string> = {
+    ENOENT: "there is no such file",
+    EISDIR: "this is a folder, not a project file",
+    EACCES: "this file may not be read (no permission)",
+    ERR_ENCODING_INVALID_ENCODED_DATA: "this is not UTF-8 text, so it is not a project file",
+  };
+  return known[code] ?? (error instanceof Error ? error.message : String(error));
+}
+
+function sliderPositions(board: Board, opts: SliderOpts): Record<string, number> {
+  const bands = board.chain.flatMap((item) => item.bands);
+  const read = (text: string, option: string): number => {
+    const parsed = parseValue(text, "ratio");
+    if (!parsed.ok || parsed.value < 0 || parsed.value > 1) throw new CommandFailure(`${option}: the position must be from 0 (full cut) to 1 (full boost), got “${text}”`);
+    return parsed.value;
+  };
+  const all = opts.all === undefined ? undefined : read(opts.all, "--all");
+  const positions = Object.fromEntries(bands.map((band) => [band.id, all ?? band.slider!.position]));
+  for (const entry of opts.set ?? []) {
+    const at = entry.lastIndexOf("=");
+    if (at <= 0) throw new CommandFailure(`--set: must be ID=POS, such as b1k=0.75, got “${entry}”. Put the file before --set`);
+    const id = entry.slice(0, at);
+    if (!Object.hasOwn(positions, id)) throw new CommandFailure(`--set: there is no band “${id}” on a bus of this board: its bands are ${bands.map((b) => b.id).join(", ") || "none"}`);
+    positions[id] = read(entry.slice(at + 1), `--set ${id}`);
+  }
+  return positions;
+}
+
+/** A frequency option in trade notation, Hz. @throws CommandFailure */
+export function readFrequency(text: string, option: string): number {
+  const parsed = parseValue(text, "frequency");
+  if (!parsed.ok || parsed.value <= 0) throw new CommandFailure(`${option}: must be a frequency above 0 in Hz, such as 20 or 1k, got “${text}”`);
+  return parsed.value;
+}
+
+/** JSON for other programs: stable, indented, and without NaN or Infinity. @throws CommandFailure (exit 1) where a number is not finite */
+export function printJson(value: unknown): void {
+  const text = JSON.stringify(
+    value,
+    (key, inner: unknown) => {
+      if (typeof inner === "number" && !Number.isFinite(inner)) throw new CommandFailure(`no finite result for “${key}”: some value of the board is out of any practical range`, 1);
+      return inner;
+    },
+    2,
+  );
+  process.stdout.write(`${text}\n`);
+}
+
+/** Columns of text, numbers to the right; the first column to the left. */
+export function printTable(head: readonly string[], rows: readonly (readonly string[])[]): void {
+  const widths = head.map((title, column) => Math.max(title.length, ...rows.map((row) => row[column].length)));
+  const line = (cells: readonly string[]): string => cells.map((cell, column) => (column === 0 ? cell.padEnd(widths[0]) : cell.padStart(widths[column]))).join("  ").trimEnd();
+  process.stdout.write(`${[head, ...rows].map(line).join("\n")}\n`);
+}
