@@ -2,7 +2,7 @@ import { defineConfig } from "vitest/config";
 import { ClosingLineReporter } from "./test/helpers/reporter.ts";
 
 /** Folders whose tests start the whole program or a browser. */
-const WHOLE_PROGRAM = ["test/app/**/*.test.{ts,tsx}", "test/e2e/**/*.test.{ts,tsx}"];
+const WHOLE_PROGRAM = ["test/app/program/**/*.test.{ts,tsx}", "test/e2e/**/*.test.{ts,tsx}"];
 
 export default defineConfig({
   test: {

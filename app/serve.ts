@@ -41,6 +41,7 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
   const token = secret();
   const code = secret();
   let isCodeUsed = false;
+  const eventStreams = new Set<ServerResponse>();
   const { promise: opened, resolve: markOpened } = Promise.withResolvers<void>();
 
   const server = createServer((request, response) => {
@@ -88,6 +89,8 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
       sendJson(response, answer);
     } else if (path === "/api/events") {
       streamEvents(response, host);
+      eventStreams.add(response);
+      response.on("close", () => eventStreams.delete(response));
     } else if (path === "/api/resume") {
       sendJson(response, { token });
     } else {
@@ -100,11 +103,12 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
     address: `${origin}/#${code}`,
     opened,
     async close() {
-      // The answers of running calls go out first; event streams would stay open for ever.
       await host.close();
       await new Promise<void>((resolve) => {
+        // Answers on their way go out; event streams would stay open for ever, and so might a browser's connection.
         server.close(() => resolve());
-        setTimeout(() => server.closeAllConnections(), 200);
+        for (const stream of eventStreams) stream.end();
+        setTimeout(() => server.closeAllConnections(), 500).unref();
       });
     },
   };
@@ -137,7 +141,7 @@ function sendUi(request: IncomingMessage, response: ServerResponse, ui: UiFiles)
 }
 
 function streamEvents(response: ServerResponse, host: Host): void {
-  response.writeHead(200, { ...SECURITY_HEADERS, "Content-Type": "application/x-ndjson" });
+  response.writeHead(200, { ...SECURITY_HEADERS, "Content-Type": "application/x-ndjson", Connection: "close" });
   // An empty line sends the headers off, so that the page knows it is listening.
   response.write("\n");
   const stop = host.onEvent((message) => response.write(`${JSON.stringify(message)}\n`));

@@ -1,9 +1,9 @@
-import { access, constants, readdir, stat } from "node:fs/promises";
+import { readdir, stat } from "node:fs/promises";
 import { dirname, join } from "node:path";
 import { HostFailure } from "../../core/contract/failures.ts";
 import type { ArgsOf, ResultOf } from "../../core/contract/methods.ts";
 import { isInside, type PathGuard } from "./path-guard.ts";
-import { isProjectName } from "./projects.ts";
+import { isProjectName, isUnlocked } from "./projects.ts";
 import { readFailure, systemCode } from "./system-error.ts";
 
 type Listing = ResultOf<"files.list">;
@@ -31,25 +31,26 @@ export function createFiles(opts: FilesOpts): Files {
       if (!roots.some((root) => isInside(root.path, folder))) throw new HostFailure("not-allowed", { path: folder });
       const projectsFolder = await opts.guard.resolve(opts.projectsFolder);
       const names = await readNames(folder, folder === projectsFolder);
-      const entries = (await Promise.all(names.map((name) => readEntry(opts.guard, folder, name)))).filter((entry) => entry !== null);
+      const entries = (await Promise.all((names ?? []).map((name) => readEntry(opts.guard, folder, name)))).filter((entry) => entry !== null);
       entries.sort((a, b) => (a.kind === b.kind ? a.name.localeCompare(b.name, "en", { numeric: true }) : a.kind === "folder" ? -1 : 1));
       return {
         folder,
         parent: roots.some((root) => root.path !== folder && isInside(root.path, folder)) ? dirname(folder) : null,
         roots,
         entries,
-        writable: !isInside(await opts.guard.resolve(opts.demoFolder), folder) && (await isFolderWritable(folder)),
+        writable: !isInside(await opts.guard.resolve(opts.demoFolder), folder) && (names === null || (await isUnlocked(folder))),
       };
     },
   };
 }
 
-async function readNames(folder: string, mayBeMissing: boolean): Promise<readonly string[]> {
+/** Null for the projects folder before its first save, which will make it. */
+async function readNames(folder: string, mayBeMissing: boolean): Promise<readonly string[] | null> {
   try {
     return await readdir(folder);
   } catch (error) {
     const code = systemCode(error);
-    if (mayBeMissing && code === "ENOENT") return [];
+    if (mayBeMissing && code === "ENOENT") return null;
     throw readFailure(folder, error);
   }
 }
@@ -69,12 +70,3 @@ async function readEntry(guard: PathGuard, folder: string, name: string): Promis
   }
 }
 
-async function isFolderWritable(folder: string): Promise<boolean> {
-  try {
-    await access(folder, constants.W_OK);
-    return true;
-  } catch (error) {
-    // The projects folder before its first save: it will be made.
-    return systemCode(error) === "ENOENT";
-  }
-}

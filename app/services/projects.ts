@@ -178,14 +178,15 @@ async function requireReplaceable(path: string, fingerprint: string | null, repl
   if (info.size > MAX_PROJECT_BYTES || fingerprintOf(await readBytes(path)) !== fingerprint) throw new HostFailure("changed-on-disk", { path });
 }
 
-/**
- * Whether a save may replace the file. A rename would get past the file's own protection, and an administrator past
- * any, so that the mode is looked at too: whoever locked a file meant it.
- */
+/** Whether a save may replace the file: a rename would get past the file's own protection, so that both are asked. */
 async function isWritable(path: string): Promise<boolean> {
+  return (await isUnlocked(path)) && (await isUnlocked(dirname(path)));
+}
+
+/** Whether a file or folder may be written to. Nothing stops an administrator but the mode: whoever locked it meant it. */
+export async function isUnlocked(path: string): Promise<boolean> {
   try {
     await access(path, constants.W_OK);
-    await access(dirname(path), constants.W_OK);
     return ((await stat(path)).mode & 0o222) !== 0;
   } catch {
     return false;
