@@ -44,7 +44,8 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
   const eventStreams = new Set<ServerResponse>();
   const { promise: opened, resolve: markOpened } = Promise.withResolvers<void>();
 
-  const server = createServer((request, response) => {
+  // A missing Host header is refused with the wrong ones, and with our headers.
+  const server = createServer({ requireHostHeader: false }, (request, response) => {
     void respond(request, response);
   });
   server.on("checkExpectation", (_request: IncomingMessage, response: ServerResponse) => send(response, 417, "Bandwright expects nothing but plain requests."));

@@ -152,6 +152,18 @@ export function formatValue(value: number, quantity: Quantity, opts: FormatOpts 
 }
 
 /**
+ * A computed figure: like `formatValue`, but with every significant digit shown, trailing zeros too (`1.00 kHz`, `59.0 Hz`),
+ * so that a reader sees how far it is meant.
+ */
+export function formatFigure(value: number, quantity: Quantity, significant = 3): string {
+  const [mantissa, prefix] = scaled(value, significant, PREFIXES_OF[quantity]);
+  const unit = `${prefix}${UNIT_SYMBOL[quantity]}`;
+  const whole = mantissa.replace("-", "").split(".")[0].length;
+  const text = Number(mantissa).toFixed(Math.max(0, significant - (whole === 1 && mantissa.startsWith("0") ? 0 : whole)));
+  return unit === "" ? text : `${text} ${unit}`;
+}
+
+/**
  * The letter code of IEC 60062:2016 for a resistance, capacitance or inductance: 4700 → `4k7`, 0.47 Ω → `R47`,
  * 2.2e-9 F → `2n2`, 1.8 H → `1H8`. Exact for values of up to `significant` digits.
  */

@@ -1,6 +1,6 @@
 import type { Command } from "commander";
 import { bandFigures, type BandPeak } from "../../core/analysis/bands.ts";
-import { formatValue, type Quantity } from "../../core/units.ts";
+import { formatFigure, type Quantity } from "../../core/units.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 
 /** `bands FILE`: band figures, one row a band. */
@@ -14,7 +14,7 @@ export function bandsCommand(): Command {
         printJson({ bands });
         return;
       }
-      const value = (x: number | null, quantity: Quantity): string => (x === null ? "–" : formatValue(x, quantity));
+      const value = (x: number | null, quantity: Quantity): string => (x === null ? "–" : formatFigure(x, quantity));
       const peak = ({ peak: db, frequency, q }: BandPeak): string[] => [db.toFixed(2), value(frequency, "frequency"), value(q, "plain")];
       printTable(
         ["band", "L", "f0", "leg Q", "isolated dB", "boost dB", "at", "Q", "cut dB", "at", "Q", "lost dB"],

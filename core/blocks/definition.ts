@@ -2,6 +2,7 @@ import type { Dual } from "../num/dual.ts";
 import type { NodeId } from "../net/netlist.ts";
 import type { OpAmpModel } from "../model/project.ts";
 import type { Quantity } from "../units.ts";
+import type { Drawing } from "./drawing.ts";
 import type { BlockKind } from "./kinds.ts";
 
 /** One role of a block: the single source for validation, defaults, inspector fields, bills of materials and part names. */
@@ -95,6 +96,8 @@ export interface BlockDefinition {
   readonly roles: readonly RoleDefinition[];
   readonly hasSlider: boolean;
   readonly hasOpAmp: boolean;
+  /** A band's leg from the wiper at (0, 0); any other block about its own pins. */
+  readonly drawing: Drawing;
   expand(x: Expander): void;
   /** Bands only. */
   readonly leg?: (values: PartValues, opAmp: OpAmpModel | "ideal") => Leg;

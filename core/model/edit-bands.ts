@@ -24,16 +24,16 @@ export function nextCentre(centres: readonly number[]): number {
   const nearest = (frequency: number): number => {
     let best = 0;
     OCTAVE_CENTRES.forEach((centre, index) => {
-      if (Math.abs(Math.log(frequency / centre)) < Math.abs(Math.log(frequency / OCTAVE_CENTRES[best]!))) best = index;
+      if (Math.abs(Math.log(frequency / centre)) < Math.abs(Math.log(frequency / OCTAVE_CENTRES[best]))) best = index;
     });
     return best;
   };
   const above = nearest(Math.max(...centres)) + 1;
-  if (above < OCTAVE_CENTRES.length) return OCTAVE_CENTRES[above]!;
+  if (above < OCTAVE_CENTRES.length) return OCTAVE_CENTRES[above];
   const below = nearest(Math.min(...centres)) - 1;
-  if (below >= 0) return OCTAVE_CENTRES[below]!;
+  if (below >= 0) return OCTAVE_CENTRES[below];
   const distance = (centre: number): number => Math.min(...centres.map((f) => Math.abs(Math.log2(f / centre))));
-  return [...OCTAVE_CENTRES].sort((a, b) => distance(b) - distance(a))[0]!;
+  return [...OCTAVE_CENTRES].sort((a, b) => distance(b) - distance(a))[0];
 }
 
 /** The leg resonance that a kind's laws give for these parts, Hz; undefined for a kind without one. */

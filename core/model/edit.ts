@@ -35,7 +35,7 @@ export function without<T extends object, K extends keyof T>(object: T, key: K):
 export function setPositions(project: Project, positions: Readonly<Record<string, number>>): Patch {
   return changeBlocks(project, Object.keys(positions), (block) => {
     if (!block.slider) return block;
-    const position = Math.min(1, Math.max(0, positions[block.id]!));
+    const position = Math.min(1, Math.max(0, positions[block.id]));
     return position === block.slider.position ? block : { ...block, slider: { ...block.slider, position } };
   });
 }

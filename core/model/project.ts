@@ -31,6 +31,8 @@ export interface Slider {
 export interface SheetPoint {
   readonly x: number;
   readonly y: number;
+  /** Put there by hand: the sheet keeps it there. Any other place gives way to the one that the frequency ruling gives. */
+  readonly byHand?: boolean;
 }
 
 export interface Block {

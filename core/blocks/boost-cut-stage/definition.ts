@@ -1,4 +1,5 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { stageDrawing } from "./drawing.ts";
 
 export const boostCutStage: BlockDefinition = {
   kind: "boost-cut-stage",
@@ -12,6 +13,7 @@ export const boostCutStage: BlockDefinition = {
   ],
   hasSlider: false,
   hasOpAmp: true,
+  drawing: stageDrawing,
   expand(x) {
     x.place("inputR", x.port("in"), x.bus.cut);
     x.place("feedbackR", x.port("out"), x.bus.boost);

@@ -1,4 +1,5 @@
 import type { BlockDefinition } from "../definition.ts";
+import { bufferDrawing } from "./drawing.ts";
 
 export const buffer: BlockDefinition = {
   kind: "buffer",
@@ -8,6 +9,7 @@ export const buffer: BlockDefinition = {
   roles: [],
   hasSlider: false,
   hasOpAmp: true,
+  drawing: bufferDrawing,
   expand(x) {
     x.opAmp(x.port("in"), x.port("out"), x.port("out"));
   },

@@ -1,5 +1,6 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
 import { gyratorLeg } from "./equations.ts";
+import { gyratorDrawing } from "./drawing.ts";
 
 export const gyratorSection: BlockDefinition = {
   kind: "gyrator-section",
@@ -14,6 +15,7 @@ export const gyratorSection: BlockDefinition = {
   ],
   hasSlider: true,
   hasOpAmp: true,
+  drawing: gyratorDrawing,
   expand(x) {
     const a = x.node("a");
     const n = x.node("n");

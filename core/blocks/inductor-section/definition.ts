@@ -1,5 +1,6 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
 import { seriesLeg } from "../series-leg.ts";
+import { inductorDrawing } from "./drawing.ts";
 
 export const inductorSection: BlockDefinition = {
   kind: "inductor-section",
@@ -13,6 +14,7 @@ export const inductorSection: BlockDefinition = {
   ],
   hasSlider: true,
   hasOpAmp: false,
+  drawing: inductorDrawing,
   expand(x) {
     const c = x.node("c");
     const l = x.node("l");

@@ -1,4 +1,5 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { inputDrawing } from "./drawing.ts";
 
 export const input: BlockDefinition = {
   kind: "input",
@@ -12,6 +13,7 @@ export const input: BlockDefinition = {
   ],
   hasSlider: false,
   hasOpAmp: false,
+  drawing: inputDrawing,
   expand(x) {
     const emf = x.node("emf");
     const source = x.node("source");

@@ -1,5 +1,6 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
 import { seriesLeg } from "../series-leg.ts";
+import { levelDrawing } from "./drawing.ts";
 
 export const levelSection: BlockDefinition = {
   kind: "level-section",
@@ -9,6 +10,7 @@ export const levelSection: BlockDefinition = {
   roles: [resistorRole("seriesR", "series R", 680), capacitorRole("blockingC", "blocking C", 47e-6, { isOptional: true, tolerance: 0.2 })],
   hasSlider: true,
   hasOpAmp: false,
+  drawing: levelDrawing,
   expand(x) {
     const c = x.node("c");
     x.placeOrWire("blockingC", x.wiper, c);

@@ -1,5 +1,6 @@
 import { gyratorLeg } from "../gyrator-section/equations.ts";
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { lowShelfDrawing } from "./drawing.ts";
 
 export const lowShelfSection: BlockDefinition = {
   kind: "low-shelf-section",
@@ -14,6 +15,7 @@ export const lowShelfSection: BlockDefinition = {
   ],
   hasSlider: true,
   hasOpAmp: true,
+  drawing: lowShelfDrawing,
   expand(x) {
     const a = x.node("a");
     const n = x.node("n");

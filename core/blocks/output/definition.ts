@@ -1,4 +1,5 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { outputDrawing } from "./drawing.ts";
 
 export const output: BlockDefinition = {
   kind: "output",
@@ -12,6 +13,7 @@ export const output: BlockDefinition = {
   ],
   hasSlider: false,
   hasOpAmp: false,
+  drawing: outputDrawing,
   expand(x) {
     const inner = x.node("series");
     const load = x.node("load");

@@ -1,5 +1,6 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
 import { seriesLeg } from "../series-leg.ts";
+import { shelfDrawing } from "./drawing.ts";
 
 export const shelfSection: BlockDefinition = {
   kind: "shelf-section",
@@ -9,6 +10,7 @@ export const shelfSection: BlockDefinition = {
   roles: [capacitorRole("seriesC", "series C", 10e-9), resistorRole("seriesR", "series R", 470)],
   hasSlider: true,
   hasOpAmp: false,
+  drawing: shelfDrawing,
   expand(x) {
     const c = x.node("c");
     x.place("seriesC", x.wiper, c);
