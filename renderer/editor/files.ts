@@ -1,0 +1,161 @@
+import { HostFailure, isHostFailure } from "../../core/contract/failures.ts";
+import { newProject } from "../../core/model/new-project.ts";
+import type { Project } from "../../core/model/project.ts";
+import type { HostClient } from "../host/client.ts";
+import type { Editor } from "./store.ts";
+import type { Ui } from "./ui.ts";
+
+/** New, Open and Save: everything between the document and the machine, with the questions that belong to it. */
+export interface Files {
+  /** Opens what this session was started with; an empty board where there is nothing. */
+  launch(): Promise<void>;
+  createNew(): Promise<void>;
+  open(start: "projects" | "demos"): Promise<void>;
+  openPath(path: string): Promise<void>;
+  save(): Promise<boolean>;
+  saveAs(): Promise<boolean>;
+}
+
+/** Builds the file commands. */
+export function createFiles(host: HostClient, editor: Editor, ui: Ui): Files {
+  const capabilities = host.call("host.capabilities");
+  // Asked for at once, needed later: whoever awaits it sees the failure.
+  capabilities.catch(() => undefined);
+
+  /** Whether the document may be left: saved, or given up on purpose. */
+  async function mayLeave(): Promise<boolean> {
+    editor.commit();
+    const { isDirty, project } = editor.store.getState();
+    if (!isDirty) return true;
+    const answer = await ui.ask("unsaved", { name: project.name });
+    if (answer === "save") return files.save();
+    return answer === "discard";
+  }
+
+  async function read(path: string): Promise<void> {
+    ui.patch({ isBusy: true });
+    try {
+      const opened = await host.call("project.open", { path });
+      editor.load(opened.project, { path: opened.path, isWritable: opened.writable, fingerprint: opened.fingerprint }, opened.warnings);
+      ui.notify(`Opened ${fileName(opened.path)}.`);
+    } catch (error) {
+      if (isHostFailure(error, "project-faults")) {
+        void ui.ask("faults", error.data).then((answer) => (answer === "open" ? files.open("projects") : undefined));
+      } else await tell("The project was not opened", error);
+    } finally {
+      ui.patch({ isBusy: false });
+    }
+  }
+
+  /** Writes the document; every refusal that the user can answer is asked about. */
+  async function write(project: Project, target: { readonly path: string; readonly fingerprint: string | null; readonly replace: boolean }): Promise<boolean> {
+    ui.patch({ isBusy: true });
+    try {
+      const { path, fingerprint } = await host.call("project.save", { ...target, project });
+      editor.markSaved(project, { path, fingerprint, isWritable: true });
+      ui.notify(`Saved to ${path}.`);
+      return true;
+    } catch (error) {
+      ui.patch({ isBusy: false });
+      if (isHostFailure(error, "file-exists")) {
+        return (await ui.ask("replace", error.data)) ? write(project, { ...target, replace: true }) : false;
+      }
+      if (isHostFailure(error, "read-only")) {
+        ui.notify(error.message, true);
+        return files.saveAs();
+      }
+      if (isHostFailure(error, "changed-on-disk")) {
+        const answer = await ui.ask("changed", error.data);
+        if (answer === "replace") return write(project, { ...target, replace: true });
+        if (answer === "saveAs") return files.saveAs();
+        if (answer === "reload") await read(error.data.path);
+        return false;
+      }
+      await tell("The project was not saved", error);
+      return false;
+    } finally {
+      ui.patch({ isBusy: false });
+    }
+  }
+
+  async function tell(title: string, error: unknown): Promise<void> {
+    const message = error instanceof Error ? error.message : String(error);
+    await ui.ask("failure", { title, message, advice: adviceFor(error) });
+  }
+
+  const files: Files = {
+    async launch() {
+      const { path } = await host.call("project.launch");
+      if (path !== null) await read(path);
+    },
+    async createNew() {
+      if (!(await mayLeave())) return;
+      editor.load(newProject(), null, []);
+      ui.notify("A new board.");
+    },
+    async open(start) {
+      if (!(await mayLeave())) return;
+      try {
+        const isNative = start === "projects" && (await capabilities).fileDialogs === "native";
+        const path = isNative ? (await host.call("project.chooseOpen")).path : await ui.ask("open", { start });
+        if (path !== null) await read(path);
+      } catch (error) {
+        await tell("The project was not opened", error);
+      }
+    },
+    async openPath(path) {
+      if (await mayLeave()) await read(path);
+    },
+    async save() {
+      editor.commit();
+      const { project, file } = editor.store.getState();
+      if (file === null || !file.isWritable) return files.saveAs();
+      return write(project, { path: file.path, fingerprint: file.fingerprint, replace: false });
+    },
+    async saveAs() {
+      editor.commit();
+      const { project } = editor.store.getState();
+      try {
+        const suggestedName = suggestName(project.name);
+        const isNative = (await capabilities).fileDialogs === "native";
+        const chosen = isNative ? await host.call("project.chooseSave", { suggestedName }) : await ui.ask("saveAs", { suggestedName });
+        if (chosen === null || chosen.path === null) return false;
+        return await write(project, { path: chosen.path, fingerprint: null, replace: chosen.replace });
+      } catch (error) {
+        await tell("The project was not saved", error);
+        return false;
+      }
+    },
+  };
+  return files;
+}
+
+/** The last part of a path of either kind. */
+export function fileName(path: string): string {
+  return path.slice(Math.max(path.lastIndexOf("/"), path.lastIndexOf("\\")) + 1);
+}
+
+/** A file name made of a project's name, without what some file system would refuse. */
+export function suggestName(name: string): string {
+  const plain = [...name].map((c) => ('<>:"/\\|?*'.includes(c) || c < " " ? " " : c)).join("").replace(/\s+/g, " ").replace(/^[. ]+|[. ]+$/g, "");
+  return plain.slice(0, 80) || "Untitled board";
+}
+
+/** What the user can do about a failure. */
+function adviceFor(error: unknown): string {
+  if (!(error instanceof HostFailure)) return "Nothing was changed. If it happens again, save your work under another name.";
+  switch ((error as HostFailure).code) {
+    case "closed":
+      return "This window still holds your work. Start Bandwright again, open the address it prints in this browser, and use Copy project as text from the command list here to carry the work over.";
+    case "file-not-found":
+      return "It may have been moved or renamed. Look for it with Open.";
+    case "file-unreadable":
+    case "not-allowed":
+      return "Choose another file, or move this one into your projects folder.";
+    case "file-unwritable":
+      return "Your work is still here. Save it under another name or in another folder.";
+    default:
+      return "Your work is still here. Save it under another name.";
+  }
+}
+
