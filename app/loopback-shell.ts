@@ -3,8 +3,9 @@ import { mkdir, mkdtemp, readdir, rm, stat, writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import { pathToFileURL } from "node:url";
 import open from "open";
+import { HostFailure } from "../core/contract/failures.ts";
 import { createHandlers } from "./handlers.ts";
-import { createHost } from "./host.ts";
+import { createHost, type Handlers } from "./host.ts";
 import { serveLoopback } from "./serve.ts";
 import { loadUiFiles } from "./ui-files.ts";
 
@@ -27,6 +28,7 @@ export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
   const { version } = JSON.parse(readFileSync(join(opts.root, "package.json"), "utf8")) as { version: string };
   const { handlers } = createHandlers({ version, demoFolder: join(opts.root, "assets", "demo"), launchPath: opts.file, dialogs: null });
   const host = createHost(handlers, (error) => console.error(error));
+  if (opts.file !== null) await sayWhatIsWrong(handlers, opts.file);
   const server = await serveLoopback(host, await loadUiFiles(join(dist, "ui")));
   const stopped = new Promise<void>((resolve) => {
     process.once("SIGINT", () => resolve());
@@ -36,8 +38,8 @@ export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
   console.log(`Bandwright is at ${server.address}`);
   console.log("The address works once. Ctrl+C stops Bandwright.");
   if (opts.opensBrowser && hasDisplay()) {
-    const folder = await writeStartPage(dist, server.address);
-    await openInBrowser(join(folder, START_PAGE));
+    const { folder, path } = await writeStartPage(dist, server.address);
+    await openInBrowser(path);
     await Promise.race([server.opened, stopped]);
     await rm(folder, { recursive: true, force: true });
   } else if (opts.opensBrowser) {
@@ -48,19 +50,29 @@ export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
   await server.close();
 }
 
+/** A file that will not open is told of in the page too, but that may be far from where its name was typed. */
+async function sayWhatIsWrong(handlers: Handlers, path: string): Promise<void> {
+  try {
+    await handlers["project.launch"]({});
+    await handlers["project.open"]({ path });
+  } catch (error) {
+    console.error(error instanceof HostFailure ? error.message : error);
+  }
+}
+
 /**
  * The address reaches the browser in a file that only the user can read. On a command line, every user of the machine
  * could see it in the list of processes. The folder is not a hidden one: packaged browsers may not read those.
- * Returns the folder, to be removed once the page has done its work.
+ * The folder is to be removed once the page has done its work.
  */
-async function writeStartPage(dist: string, address: string): Promise<string> {
+export async function writeStartPage(dist: string, address: string): Promise<{ readonly folder: string; readonly path: string }> {
   await mkdir(dist, { recursive: true });
   await removeOldStartPages(dist);
   // mkdtemp makes the folder for the user alone.
   const folder = await mkdtemp(join(dist, START_FOLDER_PREFIX));
   const page = `<!doctype html><meta charset="utf-8"><title>Bandwright</title><meta http-equiv="refresh" content="0; url=${address}"><p><a href="${address}">Open Bandwright</a></p>\n`;
   await writeFile(join(folder, START_PAGE), page, { mode: 0o600, flag: "wx" });
-  return folder;
+  return { folder, path: join(folder, START_PAGE) };
 }
 
 /** Pages left behind by a session that could not tidy up; their codes are dead. */
