@@ -78,3 +78,23 @@ export function railsOf(project: Project): Rails {
   if (loose.length > 0) rails.push({ stage: null, feed: { from: null, buffers: [] }, bands: loose, isLoose: true });
   return { rails, input: project.blocks.find((b) => BLOCKS[b.kind].place === "source") ?? null, output, outputFeed };
 }
+
+/** The rail whose stage drives the output, else the last one with a stage. */
+export function lastRail(rails: Rails): number {
+  const driving = rails.rails.findIndex((rail) => rail.stage !== null && rail.stage.id === rails.outputFeed.from);
+  if (driving >= 0) return driving;
+  return Math.max(0, rails.rails.findLastIndex((rail) => !rail.isLoose));
+}
+
+/** Where a rail is, in pixels. */
+export interface RailPlace {
+  readonly rail: Rail;
+  readonly index: number;
+  readonly top: number;
+  /** The boost side (m); the cut side (p) is `gap` lower. */
+  readonly y: number;
+  readonly gap: number;
+  readonly bottom: number;
+  readonly slot: number;
+  readonly figuresTop: number | null;
+}

@@ -1,0 +1,14 @@
+import { partDown, type Drawing } from "../drawing.ts";
+
+/** From the wiper at (0, 0) straight down: seriesC, seriesR, the winding, ground. */
+export const inductorDrawing: Drawing = {
+  symbols: [
+    partDown("capacitor", "seriesC", 0, 3),
+    partDown("resistor", "seriesR", 0, 10),
+    partDown("inductor", "inductor", 0, 18.5),
+    { symbol: "ground", x: 0, y: 23 },
+  ],
+  wires: [],
+  joints: [],
+  left: -2, right: 9, top: 0, bottom: 26,
+};

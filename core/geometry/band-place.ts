@@ -1,0 +1,128 @@
+import { BLOCKS } from "../blocks/index.ts";
+import { RAIL_GAP } from "../blocks/boost-cut-stage/drawing.ts";
+import type { Block } from "../model/project.ts";
+import { FULL_SLOT, GRID, LINE } from "./frame.ts";
+import { clamp, type Box } from "./units.ts";
+
+/** How much is written: by how wide a band's slot is. */
+export type Detail = "full" | "short" | "slim";
+
+/** Where everything of one band is, in pixels. */
+export interface BandPlace {
+  readonly id: string;
+  readonly rail: number;
+  /** Middle of the slider. */
+  readonly x: number;
+  /** Where the band's frequency is on the ruling; null for a level. */
+  readonly trueX: number | null;
+  /** Hz. */
+  readonly frequency: number | null;
+  readonly isByHand: boolean;
+  /** The band hangs on no bus: nothing to join it to. */
+  readonly isLoose: boolean;
+  readonly slot: number;
+  readonly detail: Detail;
+  readonly hasValues: boolean;
+  /** Every other label one line lower, where labels are wider than slots. */
+  readonly isStaggered: boolean;
+  readonly leaderTop: number;
+  readonly boostRailY: number;
+  readonly cutRailY: number;
+  readonly trackTop: number;
+  readonly trackBottom: number;
+  readonly knobHalf: number;
+  /** The way back from the cut end to its rail, and the wiper's lead. */
+  readonly returnX: number;
+  readonly leadX: number;
+  readonly legX: number;
+  readonly legY: number;
+  /** Pixels a grid unit of the leg. */
+  readonly legGrid: number;
+  readonly figuresTop: number;
+  readonly box: Box;
+}
+
+/** Lines of figures by detail: label, peak, centre, Q, now. */
+export const FIGURE_LINES: Record<Detail, number> = { full: 5, short: 3, slim: 3 };
+
+export function detailOf(slot: number, scale: number): Detail {
+  if (slot >= 68 && scale >= 0.78) return "full";
+  return slot >= 44 ? "short" : "slim";
+}
+
+/** Heights of what a band is made of, from its rail down. */
+export interface BandHeights {
+  readonly rail: number;
+  readonly drop: number;
+  readonly track: number;
+  readonly lead: number;
+  readonly legGrid: number;
+}
+
+export function bandHeights(scale: number, slot: number, marginScale: number): BandHeights {
+  return {
+    rail: RAIL_GAP * GRID * marginScale * clamp(scale, 0.8, 1),
+    drop: Math.round(14 * Math.max(0.8, scale)),
+    track: Math.round(100 * scale),
+    lead: Math.round(12 * Math.max(0.8, scale)),
+    legGrid: GRID * Math.min(scale, slot / FULL_SLOT),
+  };
+}
+
+/** From the boost rail to the end of the figures. */
+export function bandHeight(heights: BandHeights, legUnits: number, detail: Detail): number {
+  return heights.rail + heights.drop + heights.track + heights.lead + legUnits * heights.legGrid + 10 + FIGURE_LINES[detail] * LINE;
+}
+
+export interface BandAt {
+  readonly block: Block;
+  readonly rail: number;
+  readonly railY: number;
+  readonly legUnits: number;
+  readonly heights: BandHeights;
+  readonly x: number;
+  readonly trueX: number | null;
+  readonly frequency: number | null;
+  readonly isByHand: boolean;
+  readonly isLoose: boolean;
+  readonly isStaggered: boolean;
+  /** Pixels that a band moved by hand hangs lower. */
+  readonly lower: number;
+  readonly slot: number;
+  readonly scale: number;
+  readonly leaderTop: number;
+}
+
+export function placeBand(at: BandAt): BandPlace {
+  const { block, heights, slot, scale } = at;
+  const x = Math.round(at.x);
+  const detail = detailOf(slot, scale);
+  const boostRailY = Math.round(at.railY);
+  const cutRailY = Math.round(at.railY + heights.rail);
+  const trackTop = cutRailY + heights.drop + Math.round(at.lower);
+  const trackBottom = trackTop + heights.track;
+  const knobHalf = Math.round(11 * clamp(Math.min(scale, slot / 42), 0.7, 1.5));
+  const leadX = x + knobHalf + 3;
+  const hasValues = heights.legGrid >= 3.4;
+  const { drawing } = BLOCKS[block.kind];
+  const legX = hasValues ? leadX : Math.round(x - ((drawing.left + 2.7) / 2) * heights.legGrid);
+  const legY = trackBottom + heights.lead;
+  const figuresTop = Math.round(legY + at.legUnits * heights.legGrid + 10);
+  return {
+    id: block.id, rail: at.rail, x, trueX: at.trueX, frequency: at.frequency, isByHand: at.isByHand, isLoose: at.isLoose, slot, detail, hasValues,
+    isStaggered: at.isStaggered, leaderTop: at.leaderTop,
+    boostRailY, cutRailY, trackTop, trackBottom, knobHalf, returnX: x - knobHalf - 4, leadX, legX, legY,
+    legGrid: heights.legGrid, figuresTop,
+    box: { left: x - slot / 2, right: x + slot / 2, top: cutRailY + 5 + Math.round(at.lower), bottom: figuresTop + FIGURE_LINES[detail] * LINE + 2 },
+  };
+}
+
+/** Middle of the knob: boost up. */
+export function knobY(place: Pick<BandPlace, "trackTop" | "trackBottom">, position: number): number {
+  return place.trackBottom - position * (place.trackBottom - place.trackTop);
+}
+
+/** The slider position that puts the middle of the knob at a height, 0 to 1. */
+export function positionAt(place: Pick<BandPlace, "trackTop" | "trackBottom">, y: number): number {
+  return clamp((place.trackBottom - y) / (place.trackBottom - place.trackTop), 0, 1);
+}

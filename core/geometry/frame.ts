@@ -1,0 +1,85 @@
+/** The fixed frame of the sheet: the margins, the response above, the board below, and the scale of the drawings in it. */
+import { clamp, type Box } from "./units.ts";
+import { paddedSpan, type Ruling, type Span } from "./ruling.ts";
+
+/** Pixels a grid unit at scale 1. */
+export const GRID = 4;
+/** Height of the frequency labels between response and board. */
+const AXIS = 24;
+const TOP = 14;
+/** Room that a band at an end of the range keeps to the margin. */
+const END_PAD = 30;
+/** Height of a line of figures, whatever the scale: text does not shrink. */
+export const LINE = 15;
+/** Scales of the board: smaller and its symbols run together, larger and one band fills the sheet. */
+export const LEAST_SCALE = 0.6;
+const MOST_SCALE = 2.4;
+/** A band with all its values takes this much at scale 1. */
+export const FULL_SLOT = 88;
+
+export interface Frame {
+  readonly width: number;
+  readonly height: number;
+  /** Scale of what stands in the margins. */
+  readonly marginScale: number;
+  /** What can be scrolled and zoomed to, Hz. */
+  readonly limits: Span;
+  readonly ruling: Ruling;
+  readonly response: Box;
+  readonly board: Box;
+  /** 1 where the whole range is on show. */
+  readonly zoom: number;
+  /** Scale of the board at the present zoom, before a crowded bus asks for less. */
+  readonly scale: number;
+}
+
+/** How far the frequency axis is zoomed in, 1 for all of it. */
+export function zoomOf(limits: Span, span: Span): number {
+  return Math.log(limits.to / limits.from) / Math.log(span.to / span.from);
+}
+
+/** Left and right ends of the ruling and the scale of the drawings in the margins, for a sheet of some width. */
+function margins(width: number): { left: number; right: number; scale: number } {
+  const scale = clamp(width / 1060, 0.75, 1);
+  return { left: Math.round(202 * scale), right: Math.round(width - 98 * scale), scale };
+}
+
+/** The range widened so that a band at either end stands clear of the margins. */
+export function sheetLimits(range: Span, width: number): Span {
+  const { left, right } = margins(width);
+  return paddedSpan(range, END_PAD, Math.max(100, right - left));
+}
+
+export interface FrameOpts {
+  readonly width: number;
+  readonly height: number;
+  readonly range: Span;
+  /** What is on show; null for all. */
+  readonly span: Span | null;
+  /** Height that the rails need at a scale. */
+  heightAt(scale: number): number;
+}
+
+/**
+ * Zoom works on the frequency axis and on the board together: the ruling widens, and the board grows with it as long as
+ * its bands have the room. The response keeps its height and never scrolls; the board below it does.
+ */
+export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Frame {
+  const { left, right, scale: marginScale } = margins(width);
+  const limits = sheetLimits(range, width);
+  const shown = span ?? limits;
+  const room = Math.max(260, height - TOP - AXIS);
+  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.27), room * 0.46));
+  const boardHeight = room - responseHeight;
+  let fitting = LEAST_SCALE;
+  while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;
+  const zoom = zoomOf(limits, shown);
+  const responseBottom = TOP + responseHeight;
+  return {
+    width, height, marginScale, limits, zoom,
+    ruling: { left, right, from: shown.from, to: shown.to },
+    response: { left, right, top: TOP, bottom: responseBottom },
+    board: { left: 0, right: width, top: responseBottom + AXIS, bottom: height },
+    scale: clamp(fitting * zoom, LEAST_SCALE, MOST_SCALE),
+  };
+}

@@ -1,0 +1,75 @@
+/** The part values written on the sheet: what they say and where they stand. */
+import type { Align, Drawing } from "../blocks/drawing.ts";
+import { BLOCKS } from "../blocks/index.ts";
+import { partsOf, type Block, type Part } from "../model/project.ts";
+import { formatCode } from "../units.ts";
+import type { BandPlace } from "./band-place.ts";
+import type { ChainPlace } from "./chain.ts";
+import { clamp, type Box } from "./units.ts";
+
+export interface ValueTarget {
+  readonly id: string;
+  readonly role: string;
+  readonly text: string;
+  readonly x: number;
+  readonly y: number;
+  readonly align: Align;
+  readonly fontSize: number;
+  readonly box: Box;
+}
+
+/** Where a drawing stands and how large it is. */
+export interface DrawingPlace {
+  readonly x: number;
+  readonly y: number;
+  readonly grid: number;
+}
+
+/** Text size for drawings at a scale: it follows the grid, but never below what can be read. */
+export function valueFontSize(grid: number): number {
+  return Math.round(clamp(grid * 2.7, 10, 16) * 2) / 2;
+}
+
+/** A value as the sheet writes it: the letter code of the trade, such as 4k7, 470R or 3n9, of at most three digits. */
+export function partCode(block: Block, role: string): string | null {
+  if (role === "track") return block.slider ? formatCode(block.slider.track.value, "resistance", 3) : null;
+  const part = partsOf(block)[role];
+  const quantity = BLOCKS[block.kind].roles.find((r) => r.role === role)?.quantity;
+  return part && quantity ? formatCode(part.value, quantity, 3) : null;
+}
+
+function target(id: string, role: string, text: string, at: { x: number; y: number; align: Align }, fontSize: number): ValueTarget {
+  const width = Math.max(14, text.length * fontSize * 0.6);
+  const left = at.align === "left" ? at.x : at.align === "right" ? at.x - width : at.x - width / 2;
+  return { id, role, text, ...at, fontSize, box: { left: left - 2, right: left + width + 2, top: at.y - fontSize * 0.7, bottom: at.y + fontSize * 0.7 } };
+}
+
+/** Values of a drawing's parts that are present. `codeOf` gives the text of a role, null where the part is absent. */
+export function drawingValues(id: string, drawing: Drawing, place: DrawingPlace, codeOf: (role: string) => string | null): ValueTarget[] {
+  const fontSize = valueFontSize(place.grid);
+  return drawing.symbols.flatMap((symbol) => {
+    if (!("role" in symbol)) return [];
+    const text = codeOf(symbol.role);
+    if (text === null) return [];
+    return [target(id, symbol.role, text, { x: place.x + symbol.value.x * place.grid, y: place.y + symbol.value.y * place.grid, align: symbol.value.align }, fontSize)];
+  });
+}
+
+/** A band's values, its track's too; none where its slot is too narrow for them. */
+export function bandValues(place: BandPlace, block: Block): ValueTarget[] {
+  if (!place.hasValues) return [];
+  const values = drawingValues(block.id, BLOCKS[block.kind].drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, (role) => partCode(block, role));
+  const track = partCode(block, "track");
+  const fontSize = valueFontSize(place.legGrid);
+  return track === null ? values : [...values, target(block.id, "track", track, { x: place.leadX + 4, y: place.trackTop + fontSize * 0.4, align: "left" }, fontSize)];
+}
+
+export function chainValues(place: ChainPlace): ValueTarget[] {
+  return drawingValues(place.id, place.drawing, place, (role) => partCode(place.block, role));
+}
+
+/** Codes of the divider of a single supply, by role. */
+export function referenceCode(reference: { readonly upperR: Part; readonly lowerR: Part; readonly bypassC: Part }, role: string): string | null {
+  if (role === "upperR" || role === "lowerR") return formatCode(reference[role].value, "resistance", 3);
+  return role === "bypassC" ? formatCode(reference.bypassC.value, "capacitance", 3) : null;
+}
