@@ -20,7 +20,7 @@ export interface RunningApp {
   /** `http://127.0.0.1:PORT` */
   readonly origin: string;
   readonly home: string;
-  /** Ends it as Ctrl+C does; resolves with the exit code. */
+  /** Ends it as Ctrl+C does; resolves with the exit code. May be called again. */
   stop(): Promise<number | null>;
 }
 
@@ -32,15 +32,15 @@ export async function startApp(opts: StartOpts = {}): Promise<RunningApp> {
     env: { ...process.env, HOME: home, USERPROFILE: home, INIT_CWD: CHECKOUT },
     stdio: ["ignore", "pipe", "pipe"],
   });
+  const ended = new Promise<number | null>((resolve) => {
+    child.once("close", resolve);
+  });
   const url = await readAddress(child);
   return {
     url,
     origin: new URL(url).origin,
     home,
     async stop() {
-      const ended = new Promise<number | null>((resolve) => {
-        child.once("close", resolve);
-      });
       child.kill("SIGINT");
       const code = await ended;
       if (opts.home === undefined) await rm(home, { recursive: true, force: true });

@@ -1,5 +1,6 @@
 import { access, constants, mkdir, mkdtemp, rename, rm, writeFile } from "node:fs/promises";
-import { delimiter, join } from "node:path";
+import { createRequire } from "node:module";
+import { delimiter, dirname, join } from "node:path";
 import { fileURLToPath } from "node:url";
 import { chromium, type Browser } from "playwright-core";
 
@@ -37,7 +38,7 @@ export async function prepareBrowser(): Promise<void> {
     throw new Error("The browser tests need Chromium or Chrome: install one, or name it in BANDWRIGHT_BROWSER.");
   }
   const { inflate } = await import("@sparticuz/chromium");
-  const archives = fileURLToPath(new URL("../bin/", import.meta.resolve("@sparticuz/chromium")));
+  const archives = join(dirname(createRequire(import.meta.url).resolve("@sparticuz/chromium")), "..", "bin");
   await mkdir(CACHE, { recursive: true });
   const folder = await mkdtemp(join(CACHE, "browser-new-"));
   const before = process.env.TMPDIR;
