@@ -11,6 +11,8 @@ import type { TransferColumns } from "./transfer.ts";
  * 1/A = 1/openLoopGain + s/(2π·gainBandwidth), which is linear in s and turns into the nullor v+ = v− when ideal.
  */
 export interface Descriptor {
+  /** C as a sum of one term a reactive element: value·u·vᵀ, with u and v given as [index, factor] pairs. */
+  readonly storageTerms: readonly StorageTerm[];
   readonly size: number;
   readonly conductance: Float64Array;
   readonly storage: Float64Array;
@@ -19,6 +21,16 @@ export interface Descriptor {
   readonly outputIndex: number;
   /** What each unknown is: a node's name, or `I(part)`. */
   readonly unknowns: readonly string[];
+}
+
+export type SparseVector = readonly (readonly [index: number, factor: number])[];
+
+/** A capacitor, an inductor or an op amp's pole. */
+export interface StorageTerm {
+  readonly source: string;
+  readonly value: number;
+  readonly u: SparseVector;
+  readonly v: SparseVector;
 }
 
 /** Stamps a netlist into its descriptor matrices. */
@@ -38,18 +50,27 @@ export function describeNetlist(netlist: Netlist): Descriptor {
     add(matrix, a, b, -value);
     add(matrix, b, a, -value);
   };
+  const storageTerms: StorageTerm[] = [];
+  const store = (source: string, value: number, u: SparseVector, v: SparseVector): void => {
+    const kept = [u, v].map((vector) => vector.filter(([index, factor]) => index >= 0 && factor !== 0));
+    storageTerms.push({ source, value, u: kept[0], v: kept[1] });
+    for (const [row, a] of kept[0]) for (const [column, b] of kept[1]) storage[row * size + column] += value * a * b;
+  };
   const unknowns = [...netlist.nodeNames.slice(1), ...branches.map((e) => `I(${e.source})`)];
   let branch = nodes;
   for (const element of netlist.elements) {
     if (element.type === "resistor") admittance(conductance, element.a - 1, element.b - 1, 1 / element.value);
-    else if (element.type === "capacitor") admittance(storage, element.a - 1, element.b - 1, element.value);
+    else if (element.type === "capacitor") {
+      const across: SparseVector = [[element.a - 1, 1], [element.b - 1, -1]];
+      store(element.source, element.value, across, across);
+    }
     else if (element.type === "inductor") {
       const [a, b] = [element.a - 1, element.b - 1];
       add(conductance, a, branch, 1);
       add(conductance, b, branch, -1);
       add(conductance, branch, a, 1);
       add(conductance, branch, b, -1);
-      add(storage, branch, branch, -element.value);
+      store(element.source, -element.value, [[branch, 1]], [[branch, 1]]);
       branch++;
     } else if (element.type === "emf") {
       add(conductance, element.plus - 1, branch, -1);
@@ -66,14 +87,12 @@ export function describeNetlist(netlist: Netlist): Descriptor {
         admittance(conductance, plus, minus, 1 / inputR);
         add(conductance, branch, out, 1 / openLoopGain);
         add(conductance, branch, branch, outputR / openLoopGain);
-        const perS = 1 / (2 * Math.PI * gainBandwidth);
-        add(storage, branch, out, perS);
-        add(storage, branch, branch, outputR * perS);
+        store(element.source, 1 / (2 * Math.PI * gainBandwidth), [[branch, 1]], [[out, 1], [branch, outputR]]);
       }
       branch++;
     }
   }
-  return { size, conductance, storage, excitation, outputIndex: netlist.output === GROUND ? -1 : netlist.output - 1, unknowns };
+  return { size, conductance, storage, storageTerms, excitation, outputIndex: netlist.output === GROUND ? -1 : netlist.output - 1, unknowns };
 }
 
 /**

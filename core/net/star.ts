@@ -153,7 +153,7 @@ export class Sweep {
    * With `out.slopeRe` it also fills dH/ds, by forward differentiation, at a few times the cost.
    */
   run(positions: Float64Array, out: TransferColumns): void {
-    if (out.slopeRe || this.#general) {
+    if (out.slopeRe || this.board.reference) {
       this.#general ??= new GeneralStar(this.board, this.omega);
       this.#general.run(positions, out);
       return;

@@ -120,4 +120,47 @@ export class ComplexLu {
       bIm[i] = (si * dr - sr * di) * norm;
     }
   }
+
+  /** Solves Aᵀ·x = b (transposed, not conjugated); b is overwritten with x. */
+  solveTransposed(bRe: Float64Array, bIm: Float64Array): void {
+    const { size: n, re, im } = this;
+    // Aᵀ = (D⁻¹·Pᵀ·L·U)ᵀ: forward with Uᵀ, back with Lᵀ, then undo the exchanges and the scaling.
+    for (let i = 0; i < n; i++) {
+      let sr = bRe[i];
+      let si = bIm[i];
+      for (let j = 0; j < i; j++) {
+        const ur = re[j * n + i];
+        const ui = im[j * n + i];
+        sr -= ur * bRe[j] - ui * bIm[j];
+        si -= ur * bIm[j] + ui * bRe[j];
+      }
+      const dr = re[i * n + i];
+      const di = im[i * n + i];
+      const norm = 1 / (dr * dr + di * di);
+      bRe[i] = (sr * dr + si * di) * norm;
+      bIm[i] = (si * dr - sr * di) * norm;
+    }
+    for (let i = n - 1; i >= 0; i--) {
+      let sr = bRe[i];
+      let si = bIm[i];
+      for (let j = i + 1; j < n; j++) {
+        const lr = re[j * n + i];
+        const li = im[j * n + i];
+        sr -= lr * bRe[j] - li * bIm[j];
+        si -= lr * bIm[j] + li * bRe[j];
+      }
+      bRe[i] = sr;
+      bIm[i] = si;
+    }
+    for (let k = n - 1; k >= 0; k--) {
+      const p = this.#pivot[k];
+      if (p === k) continue;
+      const tr = bRe[k]; bRe[k] = bRe[p]; bRe[p] = tr;
+      const ti = bIm[k]; bIm[k] = bIm[p]; bIm[p] = ti;
+    }
+    for (let i = 0; i < n; i++) {
+      bRe[i] *= this.#scale[i];
+      bIm[i] *= this.#scale[i];
+    }
+  }
 }
