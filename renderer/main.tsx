@@ -1,21 +1,37 @@
+import "@fontsource/ibm-plex-sans/400.css";
+import "@fontsource/ibm-plex-sans/600.css";
+import "./styles/theme.css";
+import "./styles/base.css";
+import "./styles/shell.css";
+import "./styles/panel.css";
+import "./styles/dialogs.css";
+import { CSPProvider } from "@base-ui/react/csp-provider";
 import { StrictMode } from "react";
 import { createRoot } from "react-dom/client";
-import { connectHost } from "./host/connect.ts";
+import { newProject } from "../core/model/new-project.ts";
+import { ErrorBoundary } from "./ErrorBoundary.tsx";
+import { createEditor } from "./editor/store.ts";
+import { createUi } from "./editor/ui.ts";
+import { Start } from "./Start.tsx";
+import { applyTheme } from "./theme.ts";
 
-/** Connects, opens the project to start with, and shows what it is called. */
-async function show(): Promise<string> {
-  const host = await connectHost();
-  const { path } = await host.call("project.launch");
-  if (path === null) return "Bandwright";
-  return (await host.call("project.open", { path })).project.name;
-}
+/** The document and the screen's state live outside React: whatever happens to a component, they stay. */
+const editor = createEditor(newProject());
+const ui = createUi();
 
-const place = document.getElementById("root");
-if (place === null) throw new Error("the page has no place for the screens");
-const root = createRoot(place);
-try {
-  const title = await show();
-  root.render(<StrictMode><h1>{title}</h1></StrictMode>);
-} catch (error) {
-  root.render(<StrictMode><p role="alert">{error instanceof Error ? error.message : String(error)}</p></StrictMode>);
-}
+applyTheme(ui.store.getState().theme);
+ui.store.subscribe((state) => applyTheme(state.theme));
+
+window.addEventListener("beforeunload", (event) => {
+  if (editor.store.getState().isDirty) event.preventDefault();
+});
+
+createRoot(document.getElementById("root")!).render(
+  <StrictMode>
+    <CSPProvider disableStyleElements>
+      <ErrorBoundary editor={editor}>
+        <Start editor={editor} ui={ui} />
+      </ErrorBoundary>
+    </CSPProvider>
+  </StrictMode>,
+);

@@ -16,12 +16,8 @@ export interface Files {
   saveAs(): Promise<boolean>;
 }
 
-/** Builds the file commands. */
-export function createFiles(host: HostClient, editor: Editor, ui: Ui): Files {
-  const capabilities = host.call("host.capabilities");
-  // Asked for at once, needed later: whoever awaits it sees the failure.
-  capabilities.catch(() => undefined);
-
+/** Builds the file commands; `isNative` where the shell has file dialogs of its own. */
+export function createFiles(host: HostClient, editor: Editor, ui: Ui, isNative: boolean): Files {
   /** Whether the document may be left: saved, or given up on purpose. */
   async function mayLeave(): Promise<boolean> {
     editor.commit();
@@ -41,7 +37,7 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui): Files {
     } catch (error) {
       if (isHostFailure(error, "project-faults")) {
         void ui.ask("faults", error.data).then((answer) => (answer === "open" ? files.open("projects") : undefined));
-      } else await tell("The project was not opened", error);
+      } else void tell("The project was not opened", error);
     } finally {
       ui.patch({ isBusy: false });
     }
@@ -96,8 +92,7 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui): Files {
     async open(start) {
       if (!(await mayLeave())) return;
       try {
-        const isNative = start === "projects" && (await capabilities).fileDialogs === "native";
-        const path = isNative ? (await host.call("project.chooseOpen")).path : await ui.ask("open", { start });
+        const path = isNative && start === "projects" ? (await host.call("project.chooseOpen")).path : await ui.ask("open", { start });
         if (path !== null) await read(path);
       } catch (error) {
         await tell("The project was not opened", error);
@@ -117,7 +112,6 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui): Files {
       const { project } = editor.store.getState();
       try {
         const suggestedName = suggestName(project.name);
-        const isNative = (await capabilities).fileDialogs === "native";
         const chosen = isNative ? await host.call("project.chooseSave", { suggestedName }) : await ui.ask("saveAs", { suggestedName });
         if (chosen === null || chosen.path === null) return false;
         return await write(project, { path: chosen.path, fingerprint: null, replace: chosen.replace });
@@ -146,7 +140,7 @@ function adviceFor(error: unknown): string {
   if (!(error instanceof HostFailure)) return "Nothing was changed. If it happens again, save your work under another name.";
   switch ((error as HostFailure).code) {
     case "closed":
-      return "This window still holds your work. Start Bandwright again, open the address it prints in this browser, and use Copy project as text from the command list here to carry the work over.";
+      return "This window still holds your work. Use Download a copy in the File menu to keep it, then start Bandwright again.";
     case "file-not-found":
       return "It may have been moved or renamed. Look for it with Open.";
     case "file-unreadable":

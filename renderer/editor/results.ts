@@ -1,5 +1,6 @@
 import { bandFigures, type BandFigures } from "../../core/analysis/bands.ts";
 import { logFrequencies, ResponseSweep } from "../../core/analysis/response.ts";
+import { flatness } from "../../core/analysis/summary.ts";
 import { FaultError, type Fault } from "../../core/errors.ts";
 import type { Block, Project } from "../../core/model/project.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
@@ -9,7 +10,6 @@ import type { Curve, SheetResults } from "../sheet/sheet-props.ts";
 const POINTS = 481;
 /** Where the live gain of a band without a centre of its own is read, Hz. */
 const LEVEL_FREQUENCY = 1000;
-const AUDIO = { from: 20, to: 20e3 };
 
 /** Hz. */
 export interface Range {
@@ -74,17 +74,11 @@ export class ResultsEngine {
       centres: order.length > 0 ? new ResponseSweep(compiled, centres) : null,
       order,
       figures,
-      flatness: flatnessOf(new ResponseSweep(compiled, logFrequencies(AUDIO.from, AUDIO.to, POINTS)), order.length),
+      flatness: flatness(board).within,
     };
     this.#last = { project, range, model };
     return model;
   }
-}
-
-function flatnessOf(sweep: ResponseSweep, bands: number): number {
-  const { gain } = sweep.run(new Float64Array(bands).fill(0.5));
-  const middle = gain[nearestIndex(sweep.frequency, LEVEL_FREQUENCY)];
-  return gain.reduce((worst, value) => Math.max(worst, Math.abs(value - middle)), 0);
 }
 
 function resultsOf(project: Project, model: Model, selection: readonly string[]): SheetResults {

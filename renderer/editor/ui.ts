@@ -2,7 +2,6 @@ import { createStore, type StoreApi } from "zustand/vanilla";
 import type { Fault } from "../../core/errors.ts";
 
 export type Theme = "paper" | "night";
-export type ThemeWish = Theme | "system";
 
 /** Every dialog, with what it shows and what it answers. A dialog closed without an answer gives the `never mind` one. */
 export interface Dialogs {
@@ -47,6 +46,8 @@ export interface UiState {
   readonly contextMenu: ContextMenuPlace | null;
   /** A file is being read or written. */
   readonly isBusy: boolean;
+  /** False once the machine's side has gone: nothing can be saved any more. */
+  readonly isConnected: boolean;
 }
 
 /** The state of the screen itself: nothing of it belongs to the document. */
@@ -55,8 +56,8 @@ export interface Ui {
   /** Shows a dialog and resolves with its answer. */
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
-  setTheme(wish: Theme): void;
-  patch(change: Partial<Pick<UiState, "isPanelOpen" | "cursor" | "contextMenu" | "isBusy">>): void;
+  setTheme(theme: Theme): void;
+  patch(change: Partial<Pick<UiState, "isPanelOpen" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -74,6 +75,7 @@ export function createUi(): Ui {
     dialogs: [],
     contextMenu: null,
     isBusy: false,
+    isConnected: true,
   }));
   system.addEventListener("change", () => {
     if (keptTheme() === null) store.setState({ theme: systemTheme() });

@@ -27,7 +27,8 @@ export interface Action {
   readonly label: string | ((c: ActionContext) => string);
   /** Further words by which the command list finds it. */
   readonly keywords: string;
-  readonly menu: MenuName;
+  /** Null: only in the command list and the help. */
+  readonly menu: MenuName | null;
   /** Entries of one menu with the same number stand together. */
   readonly group: number;
   /**

@@ -8,10 +8,10 @@ export const VIEW_ACTIONS: readonly Action[] = [
   { id: "fit", label: "Fit the sheet", keywords: "zoom whole overview reset view", menu: "View", group: 1, chords: ["F"], perform: (c) => c.sheet()?.fit() },
   { id: "zoom-in", label: "Zoom in", keywords: "larger closer magnify", menu: "View", group: 1, chords: ["+", "="], perform: (c) => c.sheet()?.zoomBy(ZOOM_STEP) },
   { id: "zoom-out", label: "Zoom out", keywords: "smaller further", menu: "View", group: 1, chords: ["-"], perform: (c) => c.sheet()?.zoomBy(1 / ZOOM_STEP) },
-  { id: "pan-left", label: "Show what is further left", keywords: "pan scroll move view", menu: "View", group: 2, perform: (c) => c.sheet()?.panBy(PAN_STEP, 0) },
-  { id: "pan-right", label: "Show what is further right", keywords: "pan scroll move view", menu: "View", group: 2, perform: (c) => c.sheet()?.panBy(-PAN_STEP, 0) },
-  { id: "pan-up", label: "Show what is further up", keywords: "pan scroll move view", menu: "View", group: 2, perform: (c) => c.sheet()?.panBy(0, PAN_STEP) },
-  { id: "pan-down", label: "Show what is further down", keywords: "pan scroll move view", menu: "View", group: 2, perform: (c) => c.sheet()?.panBy(0, -PAN_STEP) },
+  { id: "pan-left", label: "Show what is further left", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(PAN_STEP, 0) },
+  { id: "pan-right", label: "Show what is further right", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(-PAN_STEP, 0) },
+  { id: "pan-up", label: "Show what is further up", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(0, PAN_STEP) },
+  { id: "pan-down", label: "Show what is further down", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(0, -PAN_STEP) },
   {
     id: "arrange", label: "Arrange bands under their frequencies", keywords: "tidy place layout order align", menu: "View", group: 3, chords: ["Shift+A"],
     perform: (c) => {

@@ -1,0 +1,42 @@
+import { blockName } from "../../core/model/edit.ts";
+import { isPossible } from "../editor/actions/action.ts";
+import { actionById, run } from "../editor/actions/actions.ts";
+import { useEditorState, useShell } from "../editor/hooks.ts";
+import { BlockPanel } from "./BlockPanel.tsx";
+import { ProjectPanel } from "./ProjectPanel.tsx";
+
+/** What is selected, in full: one block, several, or the project where nothing is. */
+export function Panel() {
+  const project = useEditorState((s) => s.project);
+  const selection = useEditorState((s) => s.selection);
+  const blocks = project.blocks.filter((block) => selection.includes(block.id));
+  return (
+    <aside className="panel" aria-label="Panel">
+      {/* The key gives every block fresh fields: a draft typed for one never lands in another. */}
+      {blocks.length === 1 ? <BlockPanel key={blocks[0]!.id} block={blocks[0]!} /> : blocks.length > 1 ? <SeveralPanel names={blocks.map(blockName)} /> : <ProjectPanel />}
+    </aside>
+  );
+}
+
+const SEVERAL = ["centre-slider", "slider-boost", "slider-cut", "slider-up", "slider-down", "duplicate", "delete"];
+
+function SeveralPanel({ names }: { readonly names: readonly string[] }) {
+  const { context } = useShell();
+  return (
+    <>
+      <header className="panel-head">
+        <h2>{names.length} blocks</h2>
+        <p className="quiet">{names.join(", ")}</p>
+      </header>
+      <div className="button-row">
+        {SEVERAL.map(actionById)
+          .filter((action) => isPossible(action, context))
+          .map((action) => (
+            <button key={action.id} type="button" className="button is-small" onClick={() => run(action, context)}>
+              {typeof action.label === "string" ? action.label : action.label(context)}
+            </button>
+          ))}
+      </div>
+    </>
+  );
+}

@@ -1,0 +1,99 @@
+import { useState } from "react";
+import { formatDb, formatValue, parseValue } from "../../core/units.ts";
+import { setField } from "../../core/model/edit.ts";
+import type { Project } from "../../core/model/project.ts";
+import { useEditorState, useShell } from "../editor/hooks.ts";
+import { sizeText } from "../panels/TopLine.tsx";
+import { SupplySection } from "./SupplySection.tsx";
+import { ValueField } from "./ValueField.tsx";
+
+/** The project as a whole: what it is, what feeds it, what it comes to. */
+export function ProjectPanel() {
+  const { editor } = useShell().context;
+  const project = useEditorState((s) => s.project);
+  const now = (): Project => editor.store.getState().project;
+  return (
+    <>
+      <header className="panel-head">
+        <h2>Board</h2>
+        <p className="quiet">Select a block to see its values.</p>
+      </header>
+      <Summary />
+      <Notes notes={project.notes ?? ""} />
+      <SupplySection supply={project.supply} />
+      <section className="panel-section" aria-label="Surroundings">
+        <div className="row">
+          <span className="row-label">temperature</span>
+          <ValueField
+            label="Temperature"
+            value={project.temperature ?? 25}
+            format={(value) => formatValue(value, "temperature", { significant: "exact" })}
+            edit={String}
+            read={(text) => {
+              // Trade notation has no negative values, and an outdoor box has.
+              const isBelow = /^\s*[-−]/.test(text);
+              const read = parseValue(isBelow ? text.replace(/^\s*[-−]/, "") : text, "temperature");
+              if (!read.ok) return read;
+              const value = isBelow ? -read.value : read.value;
+              return value > -273.15 ? { ok: true, value } : { ok: false, message: "must be above −273.15 °C" };
+            }}
+            step={(value, direction) => value + direction}
+            onTake={(value) => editor.apply("set the temperature", setField(now(), "temperature", value))}
+          />
+        </div>
+      </section>
+    </>
+  );
+}
+
+function Summary() {
+  const project = useEditorState((s) => s.project);
+  const figures = useEditorState((s) => s.analysis.results?.figures);
+  const peaks = [...(figures?.values() ?? [])];
+  const range = (values: readonly number[], text: (value: number) => string): string => {
+    const [low, high] = [text(Math.min(...values)), text(Math.max(...values))];
+    return low === high ? low : `${low} to ${high}`;
+  };
+  return (
+    <section className="panel-section" aria-label="Summary">
+      <h3>Summary</h3>
+      <div className="row">
+        <span className="row-label">size</span>
+        <span>{sizeText(project)}</span>
+      </div>
+      {peaks.length > 0 && (
+        <>
+          <div className="row">
+            <span className="row-label">boost in circuit</span>
+            <span>{range(peaks.map((f) => f.boost.peak), (v) => formatDb(v))}</span>
+          </div>
+          <div className="row">
+            <span className="row-label">taken by neighbours</span>
+            <span>{range(peaks.map((f) => f.interactionLoss), (v) => `${v.toFixed(1)} dB`)}</span>
+          </div>
+        </>
+      )}
+    </section>
+  );
+}
+
+function Notes({ notes }: { readonly notes: string }) {
+  const { editor } = useShell().context;
+  const [draft, setDraft] = useState<string | null>(null);
+  return (
+    <label className="panel-section">
+      <h3>Notes</h3>
+      <textarea
+        className="notes"
+        value={draft ?? notes}
+        data-untouched={draft === null}
+        placeholder="What this board is for, what it must do."
+        onChange={(event) => setDraft(event.target.value)}
+        onBlur={() => {
+          if (draft !== null && draft !== notes) editor.apply("change the notes", setField(editor.store.getState().project, "notes", draft));
+          setDraft(null);
+        }}
+      />
+    </label>
+  );
+}

@@ -1,0 +1,98 @@
+import { useId, useState } from "react";
+import type { Taken } from "../editor/part-text.ts";
+
+interface ValueFieldProps {
+  /** What a screen reader calls it. */
+  readonly label: string;
+  /** Undefined shows the placeholder. */
+  readonly value: number | undefined;
+  readonly placeholder?: string;
+  /** How the value looks at rest. */
+  readonly format: (value: number) => string;
+  /** How it looks while it is edited; as at rest where not given. */
+  readonly edit?: (value: number) => string;
+  readonly read: (text: string) => Taken;
+  /** An emptied field clears the value where this is given, else goes back to what it was. */
+  readonly onClear?: () => void;
+  readonly onTake: (value: number) => void;
+  /** The next value up or down, for the arrow keys. */
+  readonly step?: (value: number, direction: 1 | -1) => number;
+}
+
+/** A field for one value: trade notation and arithmetic in, an explanation under it where that is not understood. */
+export function ValueField({ label, value, placeholder = "", format, edit = format, read, onTake, onClear, step }: ValueFieldProps) {
+  const id = useId();
+  const [draft, setDraft] = useState<string | null>(null);
+  const [isFocused, setFocused] = useState(false);
+  const [error, setError] = useState<string | null>(null);
+  const rest = value === undefined ? "" : isFocused ? edit(value) : format(value);
+
+  function take(text: string): void {
+    if (text.trim() === "") {
+      onClear?.();
+      forget();
+      return;
+    }
+    const taken = read(text);
+    if (!taken.ok) {
+      setError(taken.message);
+      return;
+    }
+    forget();
+    if (taken.value !== value) onTake(taken.value);
+  }
+
+  function forget(): void {
+    setDraft(null);
+    setError(null);
+  }
+
+  return (
+    <div className="value-field">
+      <input
+        className="value-input"
+        aria-label={label}
+        aria-invalid={error !== null}
+        aria-describedby={error === null ? undefined : id}
+        value={draft ?? rest}
+        placeholder={placeholder}
+        data-untouched={draft === null || draft === rest}
+        autoComplete="off"
+        spellCheck={false}
+        onFocus={(event) => {
+          setFocused(true);
+          const input = event.currentTarget;
+          // After React has shown the text to be edited.
+          requestAnimationFrame(() => document.activeElement === input && input.select());
+        }}
+        onChange={(event) => {
+          setDraft(event.target.value);
+          setError(null);
+        }}
+        onBlur={() => {
+          setFocused(false);
+          if (draft !== null) take(draft);
+        }}
+        onKeyDown={(event) => {
+          if (event.key === "Enter" && draft !== null) take(draft);
+          else if (event.key === "Escape" && (draft !== null || error !== null)) {
+            forget();
+            event.preventDefault();
+          } else if ((event.key === "ArrowUp" || event.key === "ArrowDown") && step && !event.altKey && !event.ctrlKey && !event.metaKey) {
+            event.preventDefault();
+            const from = draft === null ? value : read(draft);
+            const start = typeof from === "number" ? from : from?.ok ? from.value : undefined;
+            if (start === undefined) return;
+            forget();
+            onTake(step(start, event.key === "ArrowUp" ? 1 : -1));
+          }
+        }}
+      />
+      {error !== null && (
+        <p className="field-error" id={id} role="alert">
+          {error}
+        </p>
+      )}
+    </div>
+  );
+}

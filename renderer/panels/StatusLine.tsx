@@ -1,0 +1,61 @@
+import { Popover } from "@base-ui/react/popover";
+import { formatDb, formatValue } from "../../core/units.ts";
+import { useEditorState, useUiState } from "../editor/hooks.ts";
+import { FaultList } from "./WiringFaults.tsx";
+
+/** One line: what the pointer is on, what just happened, how flat the board is, what to look at. */
+export function StatusLine() {
+  const flatness = useEditorState((s) => s.analysis.flatness);
+  const notice = useUiState((s) => s.notice);
+  return (
+    <footer className="status-line">
+      <CursorReading />
+      <p key={notice?.key} className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
+        {notice?.text}
+      </p>
+      {flatness !== null && (
+        <span data-testid="flatness" title="20 Hz to 20 kHz, against 1 kHz">
+          flat within {formatFlatness(flatness)} with sliders centred
+        </span>
+      )}
+      <Warnings />
+    </footer>
+  );
+}
+
+function formatFlatness(flatness: number): string {
+  return flatness < 0.005 ? "0.01 dB" : `${Number(flatness.toPrecision(2))} dB`;
+}
+
+function CursorReading() {
+  const cursor = useUiState((s) => s.cursor);
+  return (
+    <span className="status-reading">
+      {cursor ? `${formatValue(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
+    </span>
+  );
+}
+
+function formatDegrees(degrees: number): string {
+  return `${degrees.toFixed(1).replace("-", "−")}°`;
+}
+
+function Warnings() {
+  const wiring = useEditorState((s) => s.analysis.warnings);
+  const file = useEditorState((s) => s.fileWarnings);
+  const warnings = [...wiring, ...file];
+  if (warnings.length === 0) return null;
+  return (
+    <Popover.Root>
+      <Popover.Trigger className="status-button is-warning">{warnings.length === 1 ? "⚠ 1 warning" : `⚠ ${warnings.length} warnings`}</Popover.Trigger>
+      <Popover.Portal>
+        <Popover.Positioner className="positioner" side="top" align="end" sideOffset={6}>
+          <Popover.Popup className="popup popover-body">
+            <Popover.Title render={<h3 />}>Warnings</Popover.Title>
+            <FaultList faults={warnings} />
+          </Popover.Popup>
+        </Popover.Positioner>
+      </Popover.Portal>
+    </Popover.Root>
+  );
+}
