@@ -156,12 +156,12 @@ function passThrough(child) {
   const handOn = () => child.kill("SIGTERM");
   process.on("SIGINT", ignore);
   process.on("SIGTERM", handOn);
-  return new Promise((resolve) => {
+  return new Promise((settle) => {
     /** @param {number | null} code */
     const end = (code) => {
       process.off("SIGINT", ignore);
       process.off("SIGTERM", handOn);
-      resolve(code ?? 1);
+      settle(code ?? 1);
     };
     child.on("error", () => end(1));
     child.on("close", end);

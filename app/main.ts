@@ -64,9 +64,9 @@ async function start(): Promise<void> {
   window = createWindow();
   await window.loadURL(APP_PAGE);
   openPath = (path) => {
-    void request(path);
+    void requestOpening(path);
   };
-  async function request(path: string): Promise<void> {
+  async function requestOpening(path: string): Promise<void> {
     await guard.grant(path);
     host.emit("project.openRequested", { path });
   }

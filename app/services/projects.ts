@@ -38,7 +38,9 @@ export interface Projects {
 export function createProjects(opts: ProjectsOpts): Projects {
   async function demos(): Promise<ResultOf<"project.demos">> {
     const found: { path: string; name: string; about: string }[] = [];
-    for (const path of await demoPaths(opts.demoFolder)) {
+    for (const listed of await demoPaths(opts.demoFolder)) {
+      // As `open` gives it back, so that the two can be compared.
+      const path = await opts.guard.resolve(listed);
       const { project } = restore(path, (await readProjectFile(path)).text);
       found.push({ path, name: project.name, about: project.notes ?? "" });
     }
