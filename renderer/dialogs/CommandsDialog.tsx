@@ -1,11 +1,12 @@
-import { useEffect, useId, useRef, useState } from "react";
+import { useId, useRef, useState } from "react";
 import { chordsOf, isPossible, labelOf, type Action, type ActionContext } from "../editor/actions/action.ts";
 import { ACTIONS, run } from "../editor/actions/actions.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useShell } from "../editor/hooks.ts";
 import { DialogFrame } from "./DialogFrame.tsx";
+import { showRow } from "./FolderList.tsx";
 import type { DialogProps } from "./QuestionDialogs.tsx";
-import { useListKeys } from "./use-list-keys.ts";
+import { useListPlace, walkList } from "./use-list-keys.ts";
 
 /** Actions that fit a search, best first: every word must be found; what can be done now comes before what cannot. */
 export function findActions(text: string, c: ActionContext): Action[] {
@@ -14,7 +15,7 @@ export function findActions(text: string, c: ActionContext): Action[] {
     const label = labelOf(action, c).toLowerCase();
     const all = `${label} ${action.keywords} ${action.menu ?? ""}`.toLowerCase();
     if (!words.every((word) => all.includes(word))) return -1;
-    const isStart = words.length > 0 && label.startsWith(words[0]!);
+    const isStart = words.length > 0 && label.startsWith(words[0]);
     const isInLabel = words.every((word) => label.includes(word));
     return (isPossible(action, c) ? 0 : 4) + (isStart ? 0 : isInLabel ? 1 : 2);
   };
@@ -29,8 +30,8 @@ export function findActions(text: string, c: ActionContext): Action[] {
 export function CommandsDialog({ close }: DialogProps<"commands">) {
   const { context } = useShell();
   const [text, setText] = useState("");
+  const keys = useListPlace();
   const input = useRef<HTMLInputElement>(null);
-  const row = useRef<HTMLDivElement>(null);
   const id = useId();
   const found = findActions(text, context);
   const choose = (action: Action | undefined): void => {
@@ -39,11 +40,6 @@ export function CommandsDialog({ close }: DialogProps<"commands">) {
     // After the focus has gone back to where it was, so that what opens next can return it there.
     setTimeout(() => run(action, context), 0);
   };
-  const keys = useListKeys(found.length, (index) => choose(found[index]));
-
-  useEffect(() => {
-    row.current?.scrollIntoView({ block: "nearest" });
-  }, [keys.index]);
 
   return (
     <DialogFrame title="All commands" isTitleHidden size="is-top" onDismiss={() => close(null)} focusRef={input}>
@@ -63,7 +59,7 @@ export function CommandsDialog({ close }: DialogProps<"commands">) {
           setText(event.target.value);
           keys.setIndex(0);
         }}
-        onKeyDown={keys.onKeyDown}
+        onKeyDown={(event) => walkList(event, keys, found.length, (index) => choose(found[index]))}
       />
       {found.length === 0 && <p className="quiet">No command is called that. Try another word.</p>}
       <div className="command-list" role="listbox" id={`${id}-list`} aria-label="Commands">
@@ -75,7 +71,7 @@ export function CommandsDialog({ close }: DialogProps<"commands">) {
             <div
               key={action.id}
               id={`${id}-${index}`}
-              ref={index === keys.index ? row : undefined}
+              ref={index === keys.index ? showRow : undefined}
               className="command-row"
               role="option"
               aria-selected={index === keys.index}

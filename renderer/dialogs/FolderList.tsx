@@ -1,4 +1,4 @@
-import { useEffect, useId, useRef, type KeyboardEvent } from "react";
+import { useId, type KeyboardEvent, type RefObject } from "react";
 import type { ResultOf } from "../../core/contract/methods.ts";
 
 export type Entry = ResultOf<"files.list">["entries"][number];
@@ -14,29 +14,28 @@ export interface FileRow {
 
 interface FolderListProps {
   readonly label: string;
+  /** What stands there instead of rows. */
+  readonly empty: string;
   readonly rows: readonly FileRow[];
   readonly index: number;
   readonly onIndex: (index: number) => void;
   readonly onChoose: (index: number) => void;
   readonly onKeyDown: (event: KeyboardEvent) => void;
-  readonly focusRef?: React.RefObject<HTMLDivElement | null>;
+  readonly focusRef?: RefObject<HTMLDivElement | null>;
 }
 
 const SIGNS = { up: "M9 15V4M4 9l5-5 5 5", folder: "M2 5h5l2 2h7v8H2z", project: "M2 9h3c2 0 2-5 4-5s2 10 4 10 1-5 3-5" };
 
 /** A list that keys walk: one tab stop, the row in hand marked. */
-export function FolderList({ label, rows, index, onIndex, onChoose, onKeyDown, focusRef }: FolderListProps) {
+export function FolderList({ label, empty, rows, index, onIndex, onChoose, onKeyDown, focusRef }: FolderListProps) {
   const id = useId();
-  const row = useRef<HTMLDivElement>(null);
-  useEffect(() => {
-    row.current?.scrollIntoView({ block: "nearest" });
-  }, [index]);
   return (
     <div className="file-list" role="listbox" tabIndex={0} aria-label={label} aria-activedescendant={rows.length > 0 ? `${id}-${index}` : undefined} onKeyDown={onKeyDown} ref={focusRef}>
+      {rows.length === 0 && <p className="file-list-empty">{empty}</p>}
       {rows.map((entry, at) => (
         // The list has the keys; the rows are only pointed at.
         // oxlint-disable-next-line jsx-a11y/click-events-have-key-events
-        <div key={entry.key} id={`${id}-${at}`} ref={at === index ? row : undefined} className="file-row" role="option" aria-selected={at === index} onClick={() => onIndex(at)} onDoubleClick={() => onChoose(at)}>
+        <div key={entry.key} id={`${id}-${at}`} ref={at === index ? showRow : undefined} className="file-row" role="option" aria-selected={at === index} onClick={() => onIndex(at)} onDoubleClick={() => onChoose(at)}>
           <svg viewBox="0 0 18 18" aria-hidden="true">
             <path d={SIGNS[entry.kind]} />
           </svg>
@@ -47,6 +46,11 @@ export function FolderList({ label, rows, index, onIndex, onChoose, onKeyDown, f
       ))}
     </div>
   );
+}
+
+/** Scrolls the row in hand into view. */
+export function showRow(row: HTMLElement | null): void {
+  row?.scrollIntoView({ block: "nearest" });
 }
 
 /** The rows of a folder as the host lists it. */

@@ -5,7 +5,7 @@ import { DialogFrame } from "./DialogFrame.tsx";
 import { FolderList, folderRows, type FileRow } from "./FolderList.tsx";
 import type { DialogProps } from "./QuestionDialogs.tsx";
 import { useFolder } from "./use-folder.ts";
-import { useListKeys } from "./use-list-keys.ts";
+import { useListPlace, walkList } from "./use-list-keys.ts";
 
 type Demos = ResultOf<"project.demos">["demos"];
 
@@ -18,6 +18,7 @@ export function OpenDialog({ ask, close }: DialogProps<"open">) {
   const [demoProblem, setDemoProblem] = useState<string | null>(null);
   const { listing, problem } = useFolder(folder);
   const list = useRef<HTMLDivElement>(null);
+  const keys = useListPlace();
 
   useEffect(() => {
     host.call("project.demos").then(
@@ -39,7 +40,6 @@ export function OpenDialog({ ask, close }: DialogProps<"open">) {
     if (row.kind === "project") close(row.key);
     else go(row.key);
   };
-  const keys = useListKeys(rows.length, choose);
   const trouble = isDemos ? demoProblem : problem;
   // The demos have their own place in the list of places.
   const roots = (listing?.roots ?? []).filter((root) => root.name !== "Demos");
@@ -85,18 +85,18 @@ export function OpenDialog({ ask, close }: DialogProps<"open">) {
         <div>
           <FolderList
             label={isDemos ? "Demos" : "Projects and folders"}
+            empty={!isDemos && listing === null ? "" : "No projects in this place yet."}
             rows={rows}
             index={keys.index}
             onIndex={keys.setIndex}
             onChoose={choose}
             onKeyDown={(event) => {
               if (event.key === "Backspace" && !isDemos && listing?.parent != null) go(listing.parent);
-              else keys.onKeyDown(event);
+              else walkList(event, keys, rows.length, choose);
             }}
             focusRef={list}
           />
           {trouble !== null && <p className="field-error">{trouble}</p>}
-          {trouble === null && rows.length === 0 && (isDemos || listing !== null) && <p className="hint">No projects in this place yet.</p>}
         </div>
       </div>
     </DialogFrame>

@@ -5,15 +5,19 @@ import { FolderList, folderRows } from "./FolderList.tsx";
 import { isWithin } from "./OpenDialog.tsx";
 import type { DialogProps } from "./QuestionDialogs.tsx";
 import { useFolder } from "./use-folder.ts";
-import { useListKeys } from "./use-list-keys.ts";
+import { useListPlace, walkList } from "./use-list-keys.ts";
 
 const FORBIDDEN = /[<>:"/\\|?*]/;
+
+function hasControlCharacter(text: string): boolean {
+  return Array.from(text).some((c) => c < " ");
+}
 
 /** What is wrong with a file name on some system, or null. */
 export function nameProblem(name: string): string | null {
   const text = name.trim();
   if (text === "") return "Give the file a name.";
-  if (FORBIDDEN.test(text) || [...text].some((c) => c < " ")) return 'A file name has none of < > : " / \\ | ? * in it.';
+  if (FORBIDDEN.test(text) || hasControlCharacter(text)) return 'A file name has none of < > : " / \\ | ? * in it.';
   if (text.startsWith(".")) return "A name that begins with a dot is hidden from lists.";
   if (text.length > 120) return "This name is too long for some systems.";
   return null;
@@ -26,6 +30,7 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
   const [name, setName] = useState(ask.suggestedName);
   const [error, setError] = useState<string | null>(null);
   const { listing, problem } = useFolder(folder);
+  const keys = useListPlace();
   const field = useRef<HTMLInputElement>(null);
   const rows = listing ? folderRows(listing) : [];
   const choose = (index: number): void => {
@@ -39,7 +44,6 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
       keys.setIndex(0);
     }
   };
-  const keys = useListKeys(rows.length, choose);
   const isReadOnly = listing !== null && !listing.writable;
 
   const save = (): void => {
@@ -108,7 +112,7 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
           ))}
         </nav>
         <div>
-          <FolderList label="Projects and folders" rows={rows} index={keys.index} onIndex={keys.setIndex} onChoose={choose} onKeyDown={keys.onKeyDown} />
+          <FolderList label="Projects and folders" empty={listing === null ? "" : "Nothing in this place yet."} rows={rows} index={keys.index} onIndex={keys.setIndex} onChoose={choose} onKeyDown={(event) => walkList(event, keys, rows.length, choose)} />
           {problem !== null && <p className="field-error">{problem}</p>}
         </div>
       </div>

@@ -28,11 +28,20 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui, isNative: 
     return answer === "discard";
   }
 
+  async function isDemo(path: string): Promise<boolean> {
+    try {
+      return (await host.call("project.demos")).demos.some((demo) => demo.path === path);
+    } catch {
+      // It only decides a word in the top line.
+      return false;
+    }
+  }
+
   async function read(path: string): Promise<void> {
     ui.patch({ isBusy: true });
     try {
       const opened = await host.call("project.open", { path });
-      editor.load(opened.project, { path: opened.path, isWritable: opened.writable, fingerprint: opened.fingerprint }, opened.warnings);
+      editor.load(opened.project, { path: opened.path, isWritable: opened.writable, isDemo: !opened.writable && (await isDemo(opened.path)), fingerprint: opened.fingerprint }, opened.warnings);
       ui.notify(`Opened ${fileName(opened.path)}.`);
     } catch (error) {
       if (isHostFailure(error, "project-faults")) {
@@ -48,7 +57,7 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui, isNative: 
     ui.patch({ isBusy: true });
     try {
       const { path, fingerprint } = await host.call("project.save", { ...target, project });
-      editor.markSaved(project, { path, fingerprint, isWritable: true });
+      editor.markSaved(project, { path, fingerprint, isWritable: true, isDemo: false });
       ui.notify(`Saved to ${path}.`);
       return true;
     } catch (error) {
@@ -131,14 +140,15 @@ export function fileName(path: string): string {
 
 /** A file name made of a project's name, without what some file system would refuse. */
 export function suggestName(name: string): string {
-  const plain = [...name].map((c) => ('<>:"/\\|?*'.includes(c) || c < " " ? " " : c)).join("").replace(/\s+/g, " ").replace(/^[. ]+|[. ]+$/g, "");
+  const plain = Array.from(name, (c) => ('<>:"/\\|?*'.includes(c) || c < " " ? " " : c)).join("").replace(/\s+/g, " ").replace(/^[. ]+|[. ]+$/g, "");
   return plain.slice(0, 80) || "Untitled board";
 }
 
 /** What the user can do about a failure. */
 function adviceFor(error: unknown): string {
   if (!(error instanceof HostFailure)) return "Nothing was changed. If it happens again, save your work under another name.";
-  switch ((error as HostFailure).code) {
+  const failure: HostFailure = error;
+  switch (failure.code) {
     case "closed":
       return "This window still holds your work. Use Download a copy in the File menu to keep it, then start Bandwright again.";
     case "file-not-found":

@@ -10,6 +10,8 @@ export interface OpenFile {
   readonly path: string;
   /** False for demos and write-protected files: saving needs a new name. */
   readonly isWritable: boolean;
+  /** One of the projects that come with the program. */
+  readonly isDemo: boolean;
   readonly fingerprint: string;
 }
 

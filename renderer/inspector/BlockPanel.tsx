@@ -46,6 +46,7 @@ export function BlockPanel({ block }: { readonly block: Block }) {
   return (
     <>
       <header className="panel-head">
+        <h2 className="visually-hidden">{name}</h2>
         <LabelField block={block} />
         {definition.place === "band" ? (
           <div className="row">
@@ -56,23 +57,20 @@ export function BlockPanel({ block }: { readonly block: Block }) {
           <p className="quiet">{definition.label}</p>
         )}
       </header>
-      {roles.length > 0 && (
-        <section className="panel-section" aria-label="Parts">
-          <h3>Parts</h3>
-          <PartRows roles={roles} edits={edits} />
-        </section>
-      )}
-      {definition.hasOpAmp && (
-        <section className="panel-section" aria-label="Op amp">
-          <div className="row">
-            <span className="row-label">op amp</span>
-            <Choice label="Op amp" value={block.opAmp ?? ""} options={opAmpOptions(project)} onChoose={(opAmp) => editor.apply(`set op amp of “${name}”`, setOpAmp(now(), block.id, opAmp))} />
-          </div>
-          {isFromTable(project, block.opAmp) && <p className="hint">{BUILT_IN_OP_AMPS[block.opAmp!]?.about}. Typical values from memory: check the maker's current sheet.</p>}
-        </section>
-      )}
-      {block.slider && <SliderSection block={block} slider={block.slider} />}
+      <section className="panel-section" aria-label="Parts">
+        {roles.length > 0 && <PartRows roles={roles} edits={edits} />}
+        {definition.hasOpAmp && (
+          <>
+            <div className="row">
+              <span className="row-label">op amp</span>
+              <Choice label="Op amp" value={block.opAmp ?? ""} options={opAmpOptions(project)} onChoose={(opAmp) => editor.apply(`set op amp of “${name}”`, setOpAmp(now(), block.id, opAmp))} />
+            </div>
+            {isFromTable(project, block.opAmp) && <p className="hint">{BUILT_IN_OP_AMPS[block.opAmp!]?.about}. Typical values from memory: check the maker's current sheet.</p>}
+          </>
+        )}
+      </section>
       {figures && <FiguresSection figures={figures} />}
+      {block.slider && <SliderSection block={block} slider={block.slider} />}
     </>
   );
 }

@@ -10,10 +10,11 @@ export function Panel() {
   const project = useEditorState((s) => s.project);
   const selection = useEditorState((s) => s.selection);
   const blocks = project.blocks.filter((block) => selection.includes(block.id));
+  const [only] = blocks;
   return (
     <aside className="panel" aria-label="Panel">
       {/* The key gives every block fresh fields: a draft typed for one never lands in another. */}
-      {blocks.length === 1 ? <BlockPanel key={blocks[0]!.id} block={blocks[0]!} /> : blocks.length > 1 ? <SeveralPanel names={blocks.map(blockName)} /> : <ProjectPanel />}
+      {only === undefined ? <ProjectPanel /> : blocks.length === 1 ? <BlockPanel key={only.id} block={only} /> : <SeveralPanel names={blocks.map(blockName)} />}
     </aside>
   );
 }

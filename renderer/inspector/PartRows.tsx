@@ -38,7 +38,7 @@ function stepTolerance(value: number, direction: 1 | -1): number {
 export function PartRows({ roles, edits }: PartRowsProps) {
   return (
     <div className="part-grid">
-      <span />
+      <h3>Parts</h3>
       <span className="part-head">value</span>
       <span className="part-head">tol.</span>
       <span className="part-head">measured</span>

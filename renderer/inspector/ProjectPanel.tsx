@@ -46,14 +46,15 @@ export function ProjectPanel() {
   );
 }
 
+function range(values: readonly number[], text: (value: number) => string): string {
+  const [low, high] = [text(Math.min(...values)), text(Math.max(...values))];
+  return low === high ? low : `${low} to ${high}`;
+}
+
 function Summary() {
   const project = useEditorState((s) => s.project);
   const figures = useEditorState((s) => s.analysis.results?.figures);
   const peaks = [...(figures?.values() ?? [])];
-  const range = (values: readonly number[], text: (value: number) => string): string => {
-    const [low, high] = [text(Math.min(...values)), text(Math.max(...values))];
-    return low === high ? low : `${low} to ${high}`;
-  };
   return (
     <section className="panel-section" aria-label="Summary">
       <h3>Summary</h3>

@@ -10,6 +10,7 @@ import { ValueField } from "./ValueField.tsx";
 
 /** A divider for a new single supply: stiff enough for a few bands, quiet by its bypass. */
 const NEW_REFERENCE: SupplyReference = { upperR: { value: 10e3, tolerance: 0.01 }, lowerR: { value: 10e3, tolerance: 0.01 }, bypassC: { value: 100e-6, tolerance: 0.2 } };
+const REFERENCE_KEYS = ["upperR", "lowerR", "bypassC"] as const;
 const DIRECT = "none: the divider itself";
 
 /** What feeds the board, and what to look out for. */
@@ -61,8 +62,8 @@ function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly s
     { role: "bypassC", label: "bypass C", quantity: "capacitance", isOptional: false, part: reference.bypassC },
   ];
   const setPart = (role: string, change: (part: Part) => Part): void => {
-    const key = role as "upperR" | "lowerR" | "bypassC";
-    set(`set ${roles.find((r) => r.role === role)!.label} of the reference`, { ...supply, reference: { ...reference, [key]: change(reference[key]) } });
+    const key = REFERENCE_KEYS.find((k) => k === role);
+    if (key) set(`set ${roles.find((r) => r.role === role)!.label} of the reference`, { ...supply, reference: { ...reference, [key]: change(reference[key]) } });
   };
   const middle = (supply.voltage * reference.lowerR.value) / (reference.upperR.value + reference.lowerR.value);
   return (

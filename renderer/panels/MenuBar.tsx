@@ -31,7 +31,7 @@ export function MenuItems({ actions }: { readonly actions: readonly Action[] }) 
   const { context } = useShell();
   return actions.map((action, index) => {
     const chord = chordsOf(action, context)[0];
-    const isNewGroup = index > 0 && actions[index - 1]!.group !== action.group;
+    const isNewGroup = index > 0 && actions[index - 1].group !== action.group;
     return (
       <Fragment key={action.id}>
         {isNewGroup && <Menu.Separator className="menu-rule" />}

@@ -5,6 +5,7 @@ import { FaultList } from "./WiringFaults.tsx";
 
 /** One line: what the pointer is on, what just happened, how flat the board is, what to look at. */
 export function StatusLine() {
+  const isSingle = useEditorState((s) => s.project.supply.kind === "single");
   const flatness = useEditorState((s) => s.analysis.flatness);
   const notice = useUiState((s) => s.notice);
   return (
@@ -13,6 +14,7 @@ export function StatusLine() {
       <p key={notice?.key} className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
         {notice?.text}
       </p>
+      {isSingle && <span className="status-caution">single supply: mind the polarity of coupling capacitors</span>}
       {flatness !== null && (
         <span data-testid="flatness" title="20 Hz to 20 kHz, against 1 kHz">
           flat within {formatFlatness(flatness)} with sliders centred

@@ -12,14 +12,13 @@ import { MenuBar } from "./MenuBar.tsx";
 /** Name, size and state of the board; menus; the few things that hands reach for most. */
 export function TopLine() {
   const project = useEditorState((s) => s.project);
-  const state = useEditorState((s) => (s.isDirty ? "edited" : s.file === null ? "not saved yet" : s.file.isWritable ? "saved" : "read-only"));
-  const isLocked = useEditorState((s) => s.file !== null && !s.file.isWritable);
+  const state = useEditorState((s) => (s.isDirty ? "edited" : s.file === null ? "not saved yet" : s.file.isWritable ? "saved" : s.file.isDemo ? "read-only demo" : "write-protected"));
   return (
     <header className="top-line">
       <div className="top-title">
         <NameField name={project.name} />
         <p className="subtitle" data-testid="subtitle">
-          {sizeText(project)} · {supplyText(project)} · {state === "edited" && isLocked ? "edited, from a read-only file" : state}
+          {sizeText(project)} · {supplyText(project)} · {state}
         </p>
       </div>
       <MenuBar />

@@ -144,10 +144,11 @@ function step(c: ActionContext, by: 1 | -1): void {
   c.sheet()?.focusBlock(id);
 }
 
+const hertz = (f: number | null): string => (f === null ? "–" : formatValue(f, "frequency"));
+const plain = (q: number | null): string => (q === null ? "–" : formatValue(q, "plain"));
+
 /** The figures as tab-separated text, one row a band, with the units in the head. */
 export function figuresText(figures: readonly BandFigures[]): string {
-  const hertz = (f: number | null): string => (f === null ? "–" : formatValue(f, "frequency"));
-  const plain = (q: number | null): string => (q === null ? "–" : formatValue(q, "plain"));
   const rows = figures.map((f) => [
     f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q),
     formatDb(f.cut.peak), hertz(f.cut.frequency), plain(f.cut.q),
