@@ -53,7 +53,7 @@ export class GeneralStar {
     });
   }
 
-  run(positions: Float64Array, out: TransferColumns): void {
+  run(positions: Float64Array, out: TransferColumns, weights: Float64Array): void {
     const { items } = this.board;
     const h = this.#h;
     for (const band of this.board.bands) {
@@ -65,7 +65,7 @@ export class GeneralStar {
       for (const below of this.#below) below.clear();
       for (let i = items.length - 1; i >= 0; i--) {
         const item = items[i];
-        if (item.type === "stage") this.#stage(i, item, k);
+        if (item.type === "stage") this.#stage(i, item, k, weights);
         else if (item.type === "buffer") this.#buffer(i, item, k);
         else if (item.type === "output") this.#output(item, k);
         else this.#input(i, item, k, h);
@@ -77,7 +77,7 @@ export class GeneralStar {
     }
   }
 
-  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, k: number): void {
+  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, k: number, weights: Float64Array): void {
     const omega = this.omega[k];
     const [sm, sp, mp, mr, pr, rm, rp, rr, y, t, e, yf, alpha, beta, gamma, mx, px, a11, a12, a21, a22, det, vm, vo, vp, q, load, b1] = this.#d;
     for (const sum of [sm, sp, mp, mr, pr, rm, rp, rr]) sum.real(0);
@@ -91,19 +91,22 @@ export class GeneralStar {
       q.shift(t.scale(leg.ww, ra * rb), track);
       q.div(t.real(1), q);
       y.mul(q, leg.ww);
-      sm.add(sm, t.scale(y, rb));
-      sp.add(sp, t.scale(y, ra));
-      mp.add(mp, t.scale(y, (ra * rb) / track));
-      mp[0] -= 1 / track;
+      const weight = weights[band.index];
+      const toBoost = weight * rb;
+      const toCut = weight * ra;
+      sm.add(sm, t.scale(y, toBoost));
+      sp.add(sp, t.scale(y, toCut));
+      mp.add(mp, t.scale(y, (toCut * rb) / track));
+      mp[0] -= weight / track;
       if (!hasReference) continue;
       y.mul(q, leg.wr);
-      mr.add(mr, t.scale(y, rb));
-      pr.add(pr, t.scale(y, ra));
+      mr.add(mr, t.scale(y, toBoost));
+      pr.add(pr, t.scale(y, toCut));
       y.mul(y, leg.rw);
-      rr.add(rr, leg.rr).sub(rr, t.scale(y, ra * rb));
+      rr.add(rr, t.scale(leg.rr, weight)).sub(rr, t.scale(y, toCut * rb));
       y.mul(q, leg.rw);
-      rm.add(rm, t.scale(y, rb));
-      rp.add(rp, t.scale(y, ra));
+      rm.add(rm, t.scale(y, toBoost));
+      rp.add(rp, t.scale(y, toCut));
     }
     const { amp, inputG, feedbackG, feedbackC } = item;
     const below = this.#below[index];

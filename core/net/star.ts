@@ -111,6 +111,7 @@ function referenceForm(board: Board, opts: ValueOpts): ReferenceForm | undefined
 export class Sweep {
   readonly board: CompiledBoard;
   readonly omega: Float64Array;
+  readonly #ones: Float64Array;
   readonly #legRe: Float64Array[] = [];
   readonly #legIm: Float64Array[] = [];
   /** The full reduction: at once where the board needs it, else made when a slope is first asked for. */
@@ -125,6 +126,7 @@ export class Sweep {
   constructor(board: CompiledBoard, omega: Float64Array) {
     this.board = board;
     this.omega = omega;
+    this.#ones = new Float64Array(board.bands.length).fill(1);
     const points = omega.length;
     const column = (): Float64Array => new Float64Array(points);
     const pair = (): readonly [Float64Array, Float64Array] => [column(), column()];
@@ -151,11 +153,12 @@ export class Sweep {
   /**
    * Fills H at every frequency for the given positions (in the order of `board.bands`).
    * With `out.slopeRe` it also fills dH/ds, by forward differentiation, at a few times the cost.
+   * @param weights factor on each band's admittance, track included: 1 as it stands (the default), 0 as if it were not there
    */
-  run(positions: Float64Array, out: TransferColumns): void {
+  run(positions: Float64Array, out: TransferColumns, weights: Float64Array = this.#ones): void {
     if (out.slopeRe || this.board.reference) {
       this.#general ??= new GeneralStar(this.board, this.omega);
-      this.#general.run(positions, out);
+      this.#general.run(positions, out, weights);
       return;
     }
     const { items, path } = this.board;
@@ -165,7 +168,7 @@ export class Sweep {
     }
     for (let i = items.length - 1; i >= 0; i--) {
       const item = items[i];
-      if (item.type === "stage") this.#stage(i, item, positions);
+      if (item.type === "stage") this.#stage(i, item, positions, weights);
       else if (item.type === "buffer") this.#buffer(i, item);
       else if (item.type === "output") this.#output(i, item);
       else this.#input(i, item);
@@ -182,7 +185,7 @@ export class Sweep {
     }
   }
 
-  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, positions: Float64Array): void {
+  #stage(index: number, item: Extract<ItemForm, { type: "stage" }>, positions: Float64Array, weights: Float64Array): void {
     const { omega } = this;
     const points = omega.length;
     const [smR, smI, spR, spI, xR, xI] = this.#sums;
@@ -191,9 +194,12 @@ export class Sweep {
     for (const band of item.bands) {
       const { boost: ra, cut: rb } = band.resistances(positions[band.index]);
       const t = ra + rb;
+      const weight = weights[band.index];
       const product = ra * rb;
-      const cross = product / t;
-      tracks += 1 / t;
+      const cross = (weight * product) / t;
+      const toBoost = weight * rb;
+      const toCut = weight * ra;
+      tracks += weight / t;
       const yr = this.#legRe[band.index];
       const yi = this.#legIm[band.index];
       for (let k = 0; k < points; k++) {
@@ -205,10 +211,10 @@ export class Sweep {
         const norm = 1 / (dr * dr + di * di);
         const vr = (br * dr + bi * di) * norm;
         const vi = (bi * dr - br * di) * norm;
-        smR[k] += rb * vr;
-        smI[k] += rb * vi;
-        spR[k] += ra * vr;
-        spI[k] += ra * vi;
+        smR[k] += toBoost * vr;
+        smI[k] += toBoost * vi;
+        spR[k] += toCut * vr;
+        spI[k] += toCut * vi;
         xR[k] += cross * vr;
         xI[k] += cross * vi;
       }

@@ -1,0 +1,177 @@
+import type { Board } from "../net/board.ts";
+import { compileBoard, Sweep, type CompiledBoard } from "../net/star.ts";
+import { transferColumns, type TransferColumns } from "../net/transfer.ts";
+import type { ValueOpts } from "../net/values.ts";
+import { findRoot } from "../num/roots.ts";
+import { angular, decibels, logFrequencies } from "./response.ts";
+
+/** What one end of a slider's travel does in circuit, the other sliders centred. */
+export interface BandPeak {
+  /** The response there, dB: at the peak (dip), or on the plateau of a shelf or level. */
+  readonly peak: number;
+  /** Hz: of the peak; for a shelf or level its half-gain corner, null where it has none. */
+  readonly frequency: number | null;
+  /** frequency / (upper − lower); null for shelves and where a point is missing. */
+  readonly q: number | null;
+  /** The −3.0103 dB points on either side of the peak, Hz; null where the response does not fall that far. */
+  readonly lower: number | null;
+  readonly upper: number | null;
+}
+
+const HALF_POWER_DB = 10 * Math.log10(2);
+const PER_OCTAVE = 24;
+
+/** A scan wide enough for a board's bands. @param characteristic frequencies of the legs, Hz; those that are not numbers are passed over */
+export function scanOf(board: Board, characteristic: readonly (number | undefined)[], opts: ValueOpts): Scan {
+  const known = characteristic.filter((f): f is number => f !== undefined && Number.isFinite(f) && f > 0);
+  return new Scan(compileBoard(board, opts), Math.min(1, ...known.map((f) => f / 32)), Math.max(1e6, ...known.map((f) => f * 32)));
+}
+
+/** Looks for peaks, edges and corners of one board: a coarse scan for brackets, a retuned single point for the roots. */
+export class Scan {
+  /** Factor on each band's admittance: 1 as it stands, 0 as if it were not there. */
+  readonly weights: Float64Array;
+  readonly #frequency: Float64Array;
+  readonly #grid: Sweep;
+  readonly #gridOut: TransferColumns;
+  readonly #point: Sweep;
+  readonly #pointOut = transferColumns(1, false);
+  readonly #slopeOut = transferColumns(1, true) as Required<TransferColumns>;
+  readonly #positions: Float64Array;
+  readonly #gain: Float64Array;
+  readonly #centred: Float64Array;
+
+  constructor(board: CompiledBoard, from: number, to: number) {
+    const points = Math.ceil(Math.log2(to / from) * PER_OCTAVE) + 1;
+    this.#frequency = logFrequencies(from, to, points);
+    this.#grid = new Sweep(board, angular(this.#frequency));
+    this.#gridOut = transferColumns(points, false);
+    this.#point = new Sweep(board, new Float64Array([1]));
+    this.#positions = new Float64Array(board.bands.length).fill(0.5);
+    this.weights = new Float64Array(board.bands.length).fill(1);
+    this.#centred = this.#sweepGain(new Float64Array(points));
+    this.#gain = new Float64Array(points);
+  }
+
+  #sweepGain(out: Float64Array): Float64Array {
+    this.#grid.run(this.#positions, this.#gridOut, this.weights);
+    for (let i = 0; i < out.length; i++) out[i] = decibels(this.#gridOut.re[i], this.#gridOut.im[i]);
+    return out;
+  }
+
+  /** Gain at a frequency given as ln f, dB, with the positions as they stand. */
+  #gainAt(lnF: number, positions = this.#positions): number {
+    this.#point.retune(2 * Math.PI * Math.exp(lnF));
+    this.#point.run(positions, this.#pointOut, this.weights);
+    return decibels(this.#pointOut.re[0], this.#pointOut.im[0]);
+  }
+
+  /** d(gain)/d(ln f), dB: −(20/ln 10)·ω·Im(H′/H). */
+  #slopeAt(lnF: number): number {
+    const omega = 2 * Math.PI * Math.exp(lnF);
+    this.#point.retune(omega);
+    this.#point.run(this.#positions, this.#slopeOut, this.weights);
+    const { re, im, slopeRe, slopeIm } = this.#slopeOut;
+    const norm = re[0] * re[0] + im[0] * im[0];
+    return (-20 / Math.LN10) * omega * ((slopeIm[0] * re[0] - slopeRe[0] * im[0]) / norm);
+  }
+
+  /** Gain at a frequency, Hz, with one slider at an end and the others centred, dB. */
+  gain(band: number, position: 0 | 1, frequency: number): number {
+    this.#positions[band] = position;
+    const gain = this.#gainAt(Math.log(frequency));
+    this.#positions[band] = 0.5;
+    return gain;
+  }
+
+  /** The peak or dip of a resonant band, with its edges. @param resonance of its leg, Hz */
+  resonance(band: number, position: 0 | 1, resonance: number): BandPeak {
+    return this.#with(band, position, () => {
+      const f = this.#frequency;
+      const sign = position === 1 ? 1 : -1;
+      const g = this.#gain;
+      // The highest local peak within two octaves of the leg's resonance.
+      let best = -1;
+      for (let i = 1; i < f.length - 1; i++) {
+        if (f[i] < resonance / 4 || f[i] > resonance * 4) continue;
+        if (sign * (g[i] - g[i - 1]) >= 0 && sign * (g[i] - g[i + 1]) > 0 && (best < 0 || sign * (g[i] - g[best]) > 0)) best = i;
+      }
+      if (best < 0) return { peak: this.#gainAt(Math.log(resonance)), frequency: null, q: null, lower: null, upper: null };
+      const lnPeak = this.#bracketed((x) => this.#slopeAt(x), best - 1, best + 1);
+      const peak = this.#gainAt(lnPeak);
+      const target = peak - sign * HALF_POWER_DB;
+      const lower = this.#crossing(this.#gain, target, sign, best, -1, (x) => this.#gainAt(x));
+      const upper = this.#crossing(this.#gain, target, sign, best, 1, (x) => this.#gainAt(x));
+      const frequency = Math.exp(lnPeak);
+      return { peak, frequency, lower, upper, q: lower === null || upper === null ? null : frequency / (upper - lower) };
+    });
+  }
+
+  /**
+   * Shelves and levels. The effect of the slider is the response less the response with all sliders centred, which takes
+   * coupling capacitors and op amps out of the question where the band works. The plateau is where the response changes
+   * least over two octaves among the frequencies where the effect is strong; the corner is where the effect is half of
+   * that on the plateau, in dB.
+   * `plateau` is the frequency where the plateau was read, Hz.
+   * @param side on which the corner lies: 1 above (low shelf), −1 below
+   */
+  shelf(band: number, position: 0 | 1, side: 1 | -1, isolatedBoost: number): BandPeak & { readonly plateau: number } {
+    return this.#with(band, position, () => {
+      const sign = position === 1 ? 1 : -1;
+      const effect = this.#gain.map((gain, i) => gain - this.#centred[i]);
+      const settled = this.#flattest((i) => sign * effect[i] > isolatedBoost / 4);
+      const at = settled < 0 ? argMax(effect, sign) : settled;
+      const centred = new Float64Array(this.#positions.length).fill(0.5);
+      const effectAt = (lnF: number): number => this.#gainAt(lnF) - this.#gainAt(lnF, centred);
+      const frequency = settled < 0 ? null : this.#crossing(effect, effect[at] / 2, sign, at, side, effectAt);
+      return { peak: this.#gain[at], frequency, q: null, lower: null, upper: null, plateau: this.#frequency[at] };
+    });
+  }
+
+  /** The scan point, among those that qualify, about which the gain varies least within an octave either way; −1 where none qualifies. */
+  #flattest(isFit: (index: number) => boolean): number {
+    const g = this.#gain;
+    let best = -1;
+    let least = Infinity;
+    for (let i = PER_OCTAVE; i < g.length - PER_OCTAVE; i++) {
+      if (!isFit(i)) continue;
+      const around = g.subarray(i - PER_OCTAVE, i + PER_OCTAVE + 1);
+      const variation = Math.max(...around) - Math.min(...around);
+      if (variation < least) [best, least] = [i, variation];
+    }
+    return best;
+  }
+
+  /** Runs a search with one slider at an end, then centres it again. */
+  #with<Found>(band: number, position: 0 | 1, search: () => Found): Found {
+    this.#positions[band] = position;
+    this.#sweepGain(this.#gain);
+    const found = search();
+    this.#positions[band] = 0.5;
+    return found;
+  }
+
+  #bracketed(f: (lnF: number) => number, from: number, to: number): number {
+    const [a, b] = [Math.log(this.#frequency[from]), Math.log(this.#frequency[to])];
+    const [fa, fb] = [f(a), f(b)];
+    // A curve flat to rounding has no sign change to show: its ends are as good as each other.
+    if (fa > 0 === fb > 0) return Math.abs(fa) < Math.abs(fb) ? a : b;
+    return findRoot(f, a, b, 1e-12, fa, fb);
+  }
+
+  /** Where a column falls past a target on one side of its peak, as a frequency; null where it never does. */
+  #crossing(column: Float64Array, target: number, sign: number, peak: number, direction: 1 | -1, exact: (lnF: number) => number): number | null {
+    for (let i = peak + direction; i >= 0 && i < column.length; i += direction) {
+      if (sign * (column[i] - target) >= 0) continue;
+      const inner = i - direction === peak ? peak : i - direction;
+      return Math.exp(this.#bracketed((x) => exact(x) - target, inner, i));
+    }
+    return null;
+  }
+}
+
+function argMax(column: Float64Array, sign: number): number {
+  let best = 0;
+  for (let i = 1; i < column.length; i++) if (sign * column[i] > sign * column[best]) best = i;
+  return best;
+}
