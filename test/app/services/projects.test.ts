@@ -130,6 +130,17 @@ describe("which paths are let in", () => {
     await expect(projects.open({ path })).rejects.toMatchObject({ code: "not-allowed" });
   });
 
+  test("not a relative path, even where it would lead inside", async () => {
+    await writeProject(join(mine, "a.bandwright"));
+    const before = process.cwd();
+    process.chdir(mine);
+    try {
+      await expect(projects.open({ path: "a.bandwright" })).rejects.toMatchObject({ code: "not-allowed" });
+    } finally {
+      process.chdir(before);
+    }
+  });
+
   test("not what is outside the roots, whether it exists or not, and however it is written", async () => {
     const secret = await writeProject(join(outside, "secret.bandwright"));
     for (const path of [secret, join(outside, "none.bandwright"), `${mine}/../../outside/secret.bandwright`, `${mine}-2/a.bandwright`]) {
