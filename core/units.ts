@@ -18,7 +18,7 @@ const UNIT_WORDS: Record<Quantity, readonly string[]> = {
 
 
 /** Decimal exponents of the same prefixes: numbers are read as `4.7e-9` so that 4n7 is exactly the double 4.7e-9. */
-const EXPONENT: Record<string, number> = { p: -12, n: -9, u: -6, µ: -6, μ: -6, m: -3, "": 0, k: 3, K: 3, M: 6, G: 9 };
+const EXPONENT: Record<string, number> = { p: -12, n: -9, u: -6, µ: -6, μ: -6, m: -3, "": 0, k: 3, K: 3, M: 6, G: 9, T: 12 };
 
 /** Letters that stand for the decimal mark without scaling (IEC 60062: R, F, H; V by common practice). */
 const MARK_LETTER: Record<Quantity, string> = {
@@ -49,13 +49,13 @@ function parseLiteral(source: string, quantity: Quantity): number | undefined {
     }
   }
   const marks = MARK_LETTER[quantity];
-  const plain = /^(\d+(?:[.,]\d*)?|[.,]\d+)([eE][+-]?\d+)?([pnuµμmkKMG]?)$/.exec(text);
+  const plain = /^(\d+(?:[.,]\d*)?|[.,]\d+)([eE][+-]?\d+)?([pnuµμmkKMGT]?)$/.exec(text);
   if (plain) {
     const [, digits, exponent, prefix] = plain;
     const power = (exponent ? Number(exponent.slice(1)) : 0) + EXPONENT[prefix!]!;
     return Number(`${digits!.replace(",", ".")}e${power}`);
   }
-  const coded = new RegExp(`^(\\d*)([pnuµμmkKMG${marks}])(\\d*)$`).exec(text);
+  const coded = new RegExp(`^(\\d*)([pnuµμmkKMGT${marks}])(\\d*)$`).exec(text);
   if (coded && (coded[1] !== "" || coded[3] !== "")) {
     const power = EXPONENT[coded[2]!] ?? 0;
     return Number(`${coded[1] || "0"}.${coded[3] || "0"}e${power}`);
@@ -115,7 +115,7 @@ function digits(value: number, significant: number): string {
   return String(rounded);
 }
 
-const PREFIX_STEPS: readonly (readonly [string, number])[] = [["p", -12], ["n", -9], ["µ", -6], ["m", -3], ["", 0], ["k", 3], ["M", 6], ["G", 9]];
+const PREFIX_STEPS: readonly (readonly [string, number])[] = [["p", -12], ["n", -9], ["µ", -6], ["m", -3], ["", 0], ["k", 3], ["M", 6], ["G", 9], ["T", 12]];
 
 /** Splits an SI value into mantissa text and prefix so that the mantissa lies in 1 … 1000 where a prefix exists. */
 function scaled(value: number, significant: number, allowed: readonly (readonly [string, number])[]): readonly [string, string] {

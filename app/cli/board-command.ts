@@ -1,6 +1,7 @@
 import { readFile } from "node:fs/promises";
 import { Command } from "commander";
 import { FaultError, faultText } from "../../core/errors.ts";
+import { unstablePoles, unstableText } from "../../core/analysis/poles.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
@@ -30,7 +31,7 @@ export function boardCommand(name: string, about: string, example: string): Comm
 }
 
 /**
- * Reads, checks and compiles a project file. Warnings go to stderr.
+ * Reads, checks and compiles a project file. Warnings go to stderr, and so does word of a board that oscillates.
  * @throws CommandFailure with every fault, one a line
  */
 export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedBoard> {
@@ -45,6 +46,8 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
     const board = resolveBoard(project);
     for (const warning of [...warnings, ...board.warnings]) process.stderr.write(`${file}: warning: ${faultText(warning)}\n`);
     const positions = sliderPositions(board, opts);
+    const unstable = unstablePoles(board, { positions });
+    if (unstable.length > 0) process.stderr.write(`${file}: ${unstableText(unstable)}\n`);
     return { board, positions, compiled: compileBoard(board, { positions }) };
   } catch (error) {
     if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));

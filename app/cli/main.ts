@@ -3,6 +3,8 @@ import packageJson from "../../package.json" with { type: "json" };
 import { bandsCommand } from "./bands.ts";
 import { checkCommand } from "./check.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
+import { equationsCommand } from "./equations.ts";
+import { polesCommand } from "./poles.ts";
 import { respondCommand } from "./respond.ts";
 
 /** Runs one command line; resolves with its exit code. Results go to stdout, messages to stderr. */
@@ -11,7 +13,7 @@ export async function runCommandLine(args: readonly string[]): Promise<number> {
     .description("Design assistant for analogue graphic equalizers, on the command line.")
     .version(packageJson.version)
     .addHelpText("after", "\nExample:\n  bandwright check channel.bandwright\n\nExit codes: 0 done, 1 failed, 2 bad input.");
-  for (const command of [checkCommand(), respondCommand(), bandsCommand()]) program.addCommand(command);
+  for (const command of [checkCommand(), respondCommand(), bandsCommand(), polesCommand(), equationsCommand()]) program.addCommand(command);
   for (const command of [program, ...program.commands]) command.exitOverride().showHelpAfterError("(--help says what is understood)");
   try {
     await program.parseAsync(args, { from: "user" });

@@ -55,7 +55,24 @@ export function polesAndZeros(board: Board, opts: ValueOpts = {}): PolesAndZeros
   const zeros = zeroRoots.map((root, index): Root => (index < atOrigin ? { re: 0, im: 0 } : { re: root.re, im: root.im }));
   const poles = poleRoots.map(({ re, im, x, y }): Pole => ({ re, im, ...participation(poleForm, x, y) }));
   const factored = fitGain(poles, zeros, response);
-  return { poles, zeros, ...factored, unstable: poles.filter((p) => p.re > 1e-9 * Math.hypot(p.re, p.im)) };
+  return { poles, zeros, ...factored, unstable: poles.filter(isUnstable) };
+}
+
+/** The poles that make a board oscillate: those with a positive real part. Quicker than `polesAndZeros`, which tells more. */
+export function unstablePoles(board: Board, opts: ValueOpts = {}): Pole[] {
+  const form = describeNetlist(expandBoard(board, opts));
+  const suspects = eigenvaluesOf(form).filter((root) => root.re > -1e-6 * Math.hypot(root.re, root.im));
+  return refine(form, suspects).filter(isUnstable).map(({ re, im, x, y }) => ({ re, im, ...participation(form, x, y) }));
+}
+
+function isUnstable({ re, im }: Root): boolean {
+  return re > 1e-9 * Math.hypot(re, im);
+}
+
+/** Says that a board oscillates, and in which loop. @param unstable at least one pole */
+export function unstableText(unstable: readonly Pole[]): string {
+  const names = [...new Set(unstable.map((p) => `“${p.block}”`))].join(", ");
+  return `unstable: a pole lies in the right half plane, so the board oscillates and no other figure means anything; look at the loop of ${names}`;
 }
 
 /** f = |s|/2π in Hz and Q = |s|/(−2·Re s); Q is ½ or less for real roots, negative where unstable, null at the origin. */

@@ -1,7 +1,10 @@
 import type { Board } from "../net/board.ts";
 import { compileBoard } from "../net/star.ts";
-import { bandFigures, type BandFigures } from "./bands.ts";
+import type { ValueOpts } from "../net/values.ts";
+import { bandFigures } from "./bands.ts";
+import { unstablePoles, unstableText } from "./poles.ts";
 import { logFrequencies, ResponseSweep } from "./response.ts";
+import { loopMargins, smallestMargin } from "./stability.ts";
 
 export interface Flatness {
   /** Largest departure from the gain at 1 kHz, dB, over the range. */
@@ -29,10 +32,18 @@ export function boardSize(board: Board): string {
   return `${count(bands, "band", "bands")} on ${count(buses, "bus", "buses")}, ${volts}`;
 }
 
-/** One line that says what a board does: size, boost in circuit, flatness. */
-export function boardSummary(board: Board, figures: readonly BandFigures[] = bandFigures(board)): string {
-  const peaks = figures.map((f) => f.boost.peak);
+/** One line that says what a board does: size, boost in circuit, flatness, and whether its loops are at peace. */
+export function boardSummary(board: Board, opts: ValueOpts = {}): string {
+  const peaks = bandFigures(board).map((f) => f.boost.peak);
   const boosts = peaks.length === 0 ? "" : `; boost in circuit ${Math.min(...peaks).toFixed(1)} to ${Math.max(...peaks).toFixed(1)} dB`;
   const flat = flatness(board);
-  return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred`;
+  return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred; ${stabilityText(board, opts)}`;
+}
+
+/** `smallest phase margin 57° (b6k3)`, or that the board is unstable. */
+export function stabilityText(board: Board, opts: ValueOpts = {}): string {
+  const unstable = unstablePoles(board, opts);
+  if (unstable.length > 0) return unstableText(unstable);
+  const least = smallestMargin(loopMargins(board, opts));
+  return least ? `smallest phase margin ${least.phaseMargin.toFixed(0)}° (${least.block})` : "ideal op amps, so no loop to judge";
 }

@@ -20,8 +20,8 @@ export function expandBoard(board: Board, opts: ValueOpts = {}): Netlist {
     for (const band of item.bands) {
       const wiper = net.node(`${band.id}.w`);
       const { boost, cut } = sliderResistances(band.slider!, sliderPosition(band, opts), opts);
-      net.resistor(bus.boost, wiper, boost, `${band.id}.slider`);
-      net.resistor(wiper, bus.cut, cut, `${band.id}.slider`);
+      net.resistor(bus.boost, wiper, boost, `${band.id}.slider`, "boost");
+      net.resistor(wiper, bus.cut, cut, `${band.id}.slider`, "cut");
       expandBlock(net, band, { ports: { in: GROUND, out: GROUND }, bus, wiper, reference }, board, opts);
     }
   }

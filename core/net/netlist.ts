@@ -11,6 +11,8 @@ interface TwoTerminal<Type extends string> {
   readonly b: NodeId;
   readonly value: number;
   readonly source: string;
+  /** Which part of the source, where it has several: `boost` and `cut` of a slider's track. */
+  readonly detail?: string;
 }
 
 /** `source` is the part's name, `block.role`. Values in SI units, always above 0. */
@@ -53,9 +55,9 @@ export class NetlistBuilder {
   }
 
   /** Adds a resistor; exactly 0 Ω merges its ends. */
-  resistor(a: NodeId, b: NodeId, value: number, source: string): void {
+  resistor(a: NodeId, b: NodeId, value: number, source: string, detail?: string): void {
     if (value === 0) this.merge(a, b);
-    else this.#elements.push({ type: "resistor", a, b, value, source });
+    else this.#elements.push({ type: "resistor", a, b, value, source, ...(detail === undefined ? {} : { detail }) });
   }
 
   capacitor(a: NodeId, b: NodeId, value: number, source: string): void {

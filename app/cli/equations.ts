@@ -1,0 +1,43 @@
+import type { Command } from "commander";
+import { boardReport, blockIds, type BlockReport } from "../../core/analysis/equation-report.ts";
+import { boardCommand, loadBoard, printJson, readFrequency, type SliderOpts } from "./board-command.ts";
+import { CommandFailure } from "./failure.ts";
+
+interface EquationsOpts extends SliderOpts {
+  readonly block?: string;
+  readonly at?: string;
+  readonly tex?: true;
+  readonly json?: true;
+}
+
+/** `equations FILE`: laws and node equations, with values put in. */
+export function equationsCommand(): Command {
+  return boardCommand("equations", "design laws and node equations of a board, with its values put in", "equations channel.bandwright --block b1k --at 1k")
+    .option("--block <ID>", "one block only")
+    .option("--at <HZ>", "put the numbers of this frequency in")
+    .option("--tex", "as LaTeX (needs amsmath)")
+    .option("--json", "as JSON")
+    .action(async (file: string, opts: EquationsOpts) => {
+      const at = opts.at === undefined ? undefined : readFrequency(opts.at, "--at");
+      const { board, positions } = await loadBoard(file, opts);
+      const ids = blockIds(board);
+      if (opts.block !== undefined && !ids.includes(opts.block)) throw new CommandFailure(`--block: there is no block “${opts.block}” with a part in this board: it has ${ids.join(", ")}`);
+      const report = boardReport(board, { positions, style: opts.tex ? "tex" : "text", frequency: at, blocks: opts.block === undefined ? ids : [opts.block] });
+      if (opts.json) printJson(report);
+      else process.stdout.write(`${report.blocks.map((block) => blockText(block, opts.tex === true)).join("\n\n")}\n`);
+    });
+}
+
+function blockText(block: BlockReport, isTex: boolean): string {
+  const lines: string[] = [];
+  const heading = `${block.label} (${block.id})`;
+  lines.push(isTex ? `% ${heading}` : heading);
+  for (const section of block.sections) {
+    lines.push(isTex ? `% ${section.title}` : `  ${section.title}`);
+    for (const line of section.lines) {
+      if (!isTex) lines.push(`    ${line.text}`);
+      else lines.push(line.isProse ? `% ${line.text}` : `\\[ ${line.text} \\]`);
+    }
+  }
+  return lines.join("\n");
+}
