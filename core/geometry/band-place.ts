@@ -43,7 +43,7 @@ export interface BandPlace {
 }
 
 /** Lines of figures by detail: label, peak, centre, Q, now. */
-export const FIGURE_LINES: Record<Detail, number> = { full: 5, short: 3, slim: 3 };
+export const FIGURE_LINES: Record<Detail, number> = { full: 5, short: 3, slim: 4 };
 
 export function detailOf(slot: number, scale: number): Detail {
   if (slot >= 68 && scale >= 0.78) return "full";

@@ -1,6 +1,6 @@
 /** The fixed frame of the sheet: the margins, the response above, the board below, and the scale of the drawings in it. */
 import { clamp, type Box } from "./units.ts";
-import { paddedSpan, type Ruling, type Span } from "./ruling.ts";
+import { moveSpan, paddedSpan, type Ruling, type Span } from "./ruling.ts";
 
 /** Pixels a grid unit at scale 1. */
 export const GRID = 4;
@@ -57,7 +57,7 @@ export interface FrameOpts {
   /** What is on show; null for all. */
   readonly span: Span | null;
   /** Height that the rails need at a scale. */
-  heightAt(scale: number): number;
+  readonly heightAt: (scale: number) => number;
 }
 
 /**
@@ -67,7 +67,8 @@ export interface FrameOpts {
 export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Frame {
   const { left, right, scale: marginScale } = margins(width);
   const limits = sheetLimits(range, width);
-  const shown = span ?? limits;
+  // A span kept from another range is brought inside this one.
+  const shown = span ? moveSpan(span, limits, 1) : limits;
   const room = Math.max(260, height - TOP - AXIS);
   const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.27), room * 0.46));
   const boardHeight = room - responseHeight;

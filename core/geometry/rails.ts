@@ -98,3 +98,17 @@ export interface RailPlace {
   readonly slot: number;
   readonly figuresTop: number | null;
 }
+
+/**
+ * Whether two projects give the same sheet but for slider positions: what is drawn and laid out once is kept while a
+ * knob moves.
+ */
+export function isSameSheet(a: Project, b: Project): boolean {
+  if (a === b) return true;
+  if (a.wires !== b.wires || a.supply !== b.supply || a.blocks.length !== b.blocks.length) return false;
+  return a.blocks.every((block, index) => {
+    const other = b.blocks[index];
+    return block === other || (block.id === other.id && block.kind === other.kind && block.label === other.label && block.opAmp === other.opAmp &&
+      block.parts === other.parts && block.at === other.at && block.slider?.track === other.slider?.track);
+  });
+}

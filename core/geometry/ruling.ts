@@ -55,7 +55,8 @@ export function zoomSpan(span: Span, limits: Span, factor: number, about: number
 
 /** The span moved by a factor in frequency, kept inside `limits`. */
 export function moveSpan(span: Span, limits: Span, factor: number): Span {
-  return keptInside(span.from * factor, Math.log(span.to / span.from), limits);
+  const width = Math.min(Math.log(span.to / span.from), Math.log(limits.to / limits.from));
+  return keptInside(span.from * factor, width, limits);
 }
 
 /** `limits` widened by pixels at both ends, for a ruling that many pixels wide. */

@@ -31,6 +31,8 @@ export interface SheetProps {
   readonly theme: "paper" | "night";
   /** Hz. */
   readonly range: { readonly from: number; readonly to: number };
+  /** Draws the phase with its own axis; off where absent. */
+  readonly isPhaseShown?: boolean;
   onSelect(ids: readonly string[], mode: "replace" | "toggle" | "add"): void;
   onKnobStart(id: string): void;
   onKnobMove(id: string, position: number): void;

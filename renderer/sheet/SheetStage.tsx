@@ -1,0 +1,169 @@
+import { memo, useCallback, useMemo } from "react";
+import { Layer, Stage } from "react-konva";
+import { useStore } from "zustand";
+import { knobY } from "../../core/geometry/band-place.ts";
+import type { ChainPlace } from "../../core/geometry/chain.ts";
+import type { SheetLayout } from "../../core/geometry/layout.ts";
+import { levelSpan, phaseSpan, type LevelSpan } from "../../core/geometry/levels.ts";
+import { readCurve } from "../../core/geometry/reading.ts";
+import type { Block, Project } from "../../core/model/project.ts";
+import { formatDb } from "../../core/units.ts";
+import { BandScene } from "./BandScene.tsx";
+import { drawChainBlock, drawRails, drawReference, drawWires } from "./draw/chain.ts";
+import { drawCurves } from "./draw/curves.ts";
+import { drawFigureCard, drawKnob } from "./draw/live.ts";
+import { drawCursor, drawMarquee, drawTag } from "./draw/overlay.ts";
+import { drawPaper } from "./draw/paper.ts";
+import type { Pen } from "./draw/pen.ts";
+import { travelText } from "./figure-texts.ts";
+import type { OverlayStore } from "./overlay-store.ts";
+import { Scene } from "./Scene.tsx";
+import type { SheetResults } from "./sheet-props.ts";
+import type { Inks } from "./tokens.ts";
+
+interface SheetStageProps {
+  readonly layout: SheetLayout;
+  /** As laid out: slider positions may be older than those of `blocks`. */
+  readonly drawn: Project;
+  readonly blocks: ReadonlyMap<string, Block>;
+  readonly results: SheetResults | null;
+  readonly selection: readonly string[];
+  readonly held: string | null;
+  readonly inks: Inks;
+  readonly ratio: number;
+  readonly isPhaseShown: boolean;
+  readonly overlay: OverlayStore;
+}
+
+/**
+ * Four layers, from what changes least to what changes most: the ruling, the board, the curves and knobs, the cursor.
+ * A knob that moves redraws the third alone.
+ */
+export function SheetStage(props: SheetStageProps) {
+  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, overlay } = props;
+  const { frame } = layout;
+  const figures = results?.figures;
+  const { levels, phase } = useSpans(results, isPhaseShown);
+
+  const paper = useCallback((pen: Pen) => drawPaper(pen, frame, levels, phase), [frame, levels, phase]);
+  const hasFigures = figures !== undefined && figures.size > 0;
+  const rails = useCallback(
+    (pen: Pen) => {
+      const { board, ruling } = frame;
+      // The rails come from the stage without a gap, the captions stand in the margin.
+      pen.clipped(0, board.top, ruling.right, board.bottom, () => drawRails(pen, layout, hasFigures));
+      pen.clipped(0, board.top, frame.width, board.bottom, () => {
+        drawWires(pen, layout);
+        drawReference(pen, layout, drawn.supply);
+      });
+    },
+    [frame, layout, hasFigures, drawn.supply],
+  );
+  const selected = useMemo(() => new Set(selection), [selection]);
+  const drawnBlocks = useMemo(() => new Map(drawn.blocks.map((block) => [block.id, block])), [drawn]);
+  const ordered = useMemo(() => layout.bands.toSorted((a, b) => Number(selected.has(a.id)) - Number(selected.has(b.id))), [layout, selected]);
+
+  const live = useCallback(
+    (pen: Pen) => {
+      const chosen = selection.length === 1 ? layout.bands.find((b) => b.id === selection[0]) : undefined;
+      drawCurves(pen, {
+        response: frame.response, ruling: frame.ruling, levels, phase,
+        total: results?.total ?? null, alone: results?.alone ?? null,
+        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "",
+      });
+      const { ruling, board } = frame;
+      pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
+        for (const place of layout.bands) {
+          if (place.box.right < ruling.left || place.box.left > ruling.right) continue;
+          drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), place.id === held);
+        }
+        const its = chosen && figures?.get(chosen.id);
+        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), ruling.left, ruling.right);
+        const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
+        if (grip) {
+          const position = blocks.get(grip.id)?.slider?.position ?? 0.5;
+          const now = results?.liveGain.get(grip.id);
+          drawTag(pen, [...(now === undefined ? [] : [formatDb(now)]), travelText(position)].join("   "), { x: grip.x + grip.knobHalf, y: knobY(grip, position) }, { ...board, left: ruling.left, right: ruling.right });
+        }
+      });
+    },
+    [layout, frame, levels, phase, results, figures, blocks, selection, held],
+  );
+
+  return (
+    <Stage key={ratio} width={frame.width} height={frame.height} listening={false}>
+      <Layer listening={false}>
+        <Scene inks={inks} ratio={ratio} draw={paper} />
+      </Layer>
+      <Layer listening={false}>
+        <Scene inks={inks} ratio={ratio} draw={rails} />
+        {layout.chain.map((place) => (
+          <ChainScene key={place.id} inks={inks} ratio={ratio} layout={layout} place={place} isSelected={selected.has(place.id)} />
+        ))}
+        {ordered.map((place) => (
+          <BandScene
+            key={place.id} inks={inks} ratio={ratio} frame={frame} place={place} block={drawnBlocks.get(place.id)!}
+            figures={figures?.get(place.id)} isSelected={selected.has(place.id)}
+          />
+        ))}
+      </Layer>
+      <Layer listening={false}>
+        <Scene inks={inks} ratio={ratio} draw={live} />
+      </Layer>
+      <OverlayLayer layout={layout} levels={levels} results={results} inks={inks} ratio={ratio} overlay={overlay} />
+    </Stage>
+  );
+}
+
+/** The axes' spans, the same objects as long as their ends are the same. */
+function useSpans(results: SheetResults | null, isPhaseShown: boolean): { levels: LevelSpan; phase: LevelSpan | null } {
+  const peaks = useMemo(() => (results ? [...results.figures.values()].flatMap((f) => [f.boost.peak, f.cut.peak]) : []), [results]);
+  const { top, bottom } = levelSpan(peaks, results ? [results.total.gain, ...(results.alone ? [results.alone.gain] : [])] : []);
+  const levels = useMemo(() => ({ top, bottom }), [top, bottom]);
+  const most = results && isPhaseShown ? phaseSpan(results.total.phase).top : null;
+  const phase = useMemo(() => (most === null ? null : { top: most, bottom: -most }), [most]);
+  return { levels, phase };
+}
+
+interface ChainSceneProps {
+  readonly inks: Inks;
+  readonly ratio: number;
+  readonly layout: SheetLayout;
+  readonly place: ChainPlace;
+  readonly isSelected: boolean;
+}
+
+const ChainScene = memo(function ChainScene({ inks, ratio, layout, place, isSelected }: ChainSceneProps) {
+  const { board, width } = layout.frame;
+  const draw = useCallback(
+    (pen: Pen) => pen.clipped(0, board.top, width, board.bottom, () => drawChainBlock(pen, place, isSelected)),
+    [board, width, place, isSelected],
+  );
+  return <Scene inks={inks} ratio={ratio} draw={draw} />;
+});
+
+interface OverlayLayerProps {
+  readonly layout: SheetLayout;
+  readonly levels: LevelSpan;
+  readonly results: SheetResults | null;
+  readonly inks: Inks;
+  readonly ratio: number;
+  readonly overlay: OverlayStore;
+}
+
+function OverlayLayer({ layout, levels, results, inks, ratio, overlay }: OverlayLayerProps) {
+  const { cursor, marquee } = useStore(overlay);
+  const draw = useCallback(
+    (pen: Pen) => {
+      if (marquee) drawMarquee(pen, marquee);
+      const reading = cursor !== null && results ? readCurve(results.total, cursor) : null;
+      if (cursor !== null && reading) drawCursor(pen, layout.frame, levels, { frequency: cursor, ...reading });
+    },
+    [layout, levels, results, cursor, marquee],
+  );
+  return (
+    <Layer listening={false}>
+      <Scene inks={inks} ratio={ratio} draw={draw} />
+    </Layer>
+  );
+}

@@ -1,0 +1,88 @@
+import { useEffect, useId, useRef, useState, type KeyboardEvent } from "react";
+import { BLOCKS } from "../../core/blocks/index.ts";
+import { nextPreferred } from "../../core/e-series.ts";
+import { partsOf, type Block } from "../../core/model/project.ts";
+import { editText, parseValue } from "../../core/units.ts";
+
+interface ValueEditorProps {
+  readonly block: Block;
+  readonly role: string;
+  readonly left: number;
+  readonly top: number;
+  /** Returns what is wrong with the text, or null when it was taken. */
+  readonly onTake: (text: string) => string | null;
+  readonly onLeave: () => void;
+}
+
+type PartQuantity = "resistance" | "capacitance" | "inductance";
+
+function quantityOf(block: Block, role: string): PartQuantity {
+  return BLOCKS[block.kind].roles.find((r) => r.role === role)?.quantity ?? "resistance";
+}
+
+function labelOf(block: Block, role: string): string {
+  return BLOCKS[block.kind].roles.find((r) => r.role === role)?.label ?? role;
+}
+
+/** A value taken for editing where it stands. Enter takes it, Esc leaves it, up and down step through preferred values. */
+export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEditorProps) {
+  const quantity = quantityOf(block, role);
+  const part = role === "track" ? block.slider?.track : partsOf(block)[role];
+  const first = part ? editText(part.value, quantity) : "";
+  const [text, setText] = useState(first);
+  const [fault, setFault] = useState<string | null>(null);
+  const input = useRef<HTMLInputElement>(null);
+  const faultId = useId();
+
+  useEffect(() => {
+    input.current?.focus({ preventScroll: true });
+    input.current?.select();
+  }, []);
+
+  const take = (): boolean => {
+    const wrong = text === first ? null : onTake(text);
+    setFault(wrong);
+    if (wrong === null) onLeave();
+    return wrong === null;
+  };
+  const step = (direction: 1 | -1): void => {
+    const read = parseValue(text, quantity);
+    if (!read.ok || read.value <= 0) return;
+    setText(editText(nextPreferred(read.value, quantity === "resistance" ? 24 : 12, direction), quantity));
+    setFault(null);
+  };
+  const onKeyDown = (event: KeyboardEvent): void => {
+    // The sheet's own keys rest while a value is typed.
+    event.stopPropagation();
+    if (event.key === "Enter") take();
+    else if (event.key === "Escape") onLeave();
+    else if (event.key === "ArrowUp" || event.key === "ArrowDown") {
+      event.preventDefault();
+      step(event.key === "ArrowUp" ? 1 : -1);
+    }
+  };
+
+  return (
+    <div className="sheet-value" style={{ left, top }} onPointerDown={(event) => event.stopPropagation()} onDoubleClick={(event) => event.stopPropagation()}>
+      <input
+        ref={input}
+        value={text}
+        aria-label={`${block.label ?? block.id}, ${labelOf(block, role)}`}
+        aria-invalid={fault !== null}
+        aria-describedby={fault === null ? undefined : faultId}
+        spellCheck={false}
+        autoComplete="off"
+        onChange={(event) => {
+          setText(event.target.value);
+          setFault(null);
+        }}
+        onKeyDown={onKeyDown}
+        onBlur={() => {
+          // Leaving the field takes what can be taken and drops the rest.
+          if (fault !== null || !take()) onLeave();
+        }}
+      />
+      {fault !== null && <p id={faultId} role="alert">{fault}</p>}
+    </div>
+  );
+}

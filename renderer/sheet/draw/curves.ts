@@ -1,0 +1,97 @@
+import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
+import { extremeIndex } from "../../../core/geometry/reading.ts";
+import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
+import { tagPlace, type Box } from "../../../core/geometry/units.ts";
+import { formatDb, formatValue } from "../../../core/units.ts";
+import type { Curve } from "../sheet-props.ts";
+import { faint, type Pen } from "./pen.ts";
+
+export interface CurveScene {
+  readonly response: Box;
+  readonly ruling: Ruling;
+  readonly levels: LevelSpan;
+  readonly phase: LevelSpan | null;
+  readonly total: Curve | null;
+  readonly alone: Curve | null;
+  /** Name of the band that is shown alone. */
+  readonly aloneLabel: string;
+}
+
+/** The response: what the sliders do together in ink, the selected band alone dashed and named. */
+export function drawCurves(pen: Pen, scene: CurveScene): void {
+  const { response, total, alone, inks, phase } = { ...scene, inks: pen.inks };
+  pen.clipped(response.left, response.top, response.right, response.bottom, () => {
+    if (total) fillBetween(pen, scene, total);
+    if (phase && total) stroke(pen, scene, total.frequency, total.phase, phase, inks.accent, 1.2, [2, 3]);
+    if (alone) stroke(pen, scene, alone.frequency, alone.gain, scene.levels, isBoost(alone) ? inks.boost : inks.cut, 1.6, [6, 4]);
+    if (total) stroke(pen, scene, total.frequency, total.gain, scene.levels, inks.ink, 2.2);
+  });
+  if (alone) nameAlone(pen, scene, alone);
+}
+
+function isBoost(curve: Curve): boolean {
+  return curve.gain[extremeIndex(curve.gain)] >= 0;
+}
+
+function trace(pen: Pen, scene: CurveScene, frequency: Float64Array, column: Float64Array, span: LevelSpan): void {
+  const { ctx } = pen;
+  const { ruling, response } = scene;
+  const height = response.bottom - response.top;
+  for (let i = 0; i < frequency.length; i++) ctx.lineTo(pixelOf(ruling, frequency[i]), levelY(span, response.top, height, column[i]));
+}
+
+function stroke(pen: Pen, scene: CurveScene, frequency: Float64Array, column: Float64Array, span: LevelSpan, color: string, width: number, dash: number[] = []): void {
+  const { ctx } = pen;
+  ctx.strokeStyle = color;
+  ctx.lineWidth = width;
+  ctx.setLineDash(dash);
+  ctx.beginPath();
+  trace(pen, scene, frequency, column, span);
+  ctx.stroke();
+  ctx.setLineDash([]);
+}
+
+/** A wash between the curve and 0 dB: ochre above, slate below. */
+function fillBetween(pen: Pen, scene: CurveScene, curve: Curve): void {
+  const { ctx, inks } = pen;
+  const { response, ruling, levels } = scene;
+  const zero = levelY(levels, response.top, response.bottom - response.top, 0);
+  const last = curve.frequency.length - 1;
+  for (const [color, top, bottom] of [[inks.boost, response.top, zero], [inks.cut, zero, response.bottom]] as const) {
+    pen.clipped(response.left, top, response.right, bottom, () => {
+      ctx.beginPath();
+      ctx.moveTo(pixelOf(ruling, curve.frequency[0]), zero);
+      trace(pen, scene, curve.frequency, curve.gain, levels);
+      ctx.lineTo(pixelOf(ruling, curve.frequency[last]), zero);
+      ctx.closePath();
+      ctx.fillStyle = faint(color, 0.11);
+      ctx.fill();
+    });
+  }
+}
+
+/** What the dashed curve is, beside its peak. */
+function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
+  const { response, ruling, levels, total } = scene;
+  const peak = extremeIndex(alone.gain);
+  const at = { x: pixelOf(ruling, alone.frequency[peak]), y: levelY(levels, response.top, response.bottom - response.top, alone.gain[peak]) };
+  if (at.x < response.left || at.x > response.right) return;
+  const isUp = isBoost(alone);
+  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}: ${formatDb(alone.gain[peak])}, ${formatValue(alone.frequency[peak], "frequency")}`;
+  const size = { width: pen.widthOf(text), height: 14 };
+  const within = { ...response, left: response.left + 4, right: response.right - 4, top: response.top + 2, bottom: response.bottom - 2 };
+  const beside = tagPlace({ x: at.x, y: isUp ? at.y + 12 : at.y - 12 + 2 * size.height }, size, within, 12);
+  // Out of the way of the other curve where that runs through the same place.
+  const ends = [beside.x, beside.x + size.width].map((x) => (total ? levelAt(total, scene, x) : null));
+  const isCrossed = ends.some((y) => y !== null && Math.abs(y - beside.y - 7) < 12);
+  const y = isCrossed ? (isUp ? within.top + 2 : within.bottom - size.height - 2) : beside.y;
+  pen.text(text, beside.x, y + size.height / 2, { color: isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper });
+}
+
+function levelAt(curve: Curve, scene: CurveScene, x: number): number | null {
+  const { ruling, response, levels } = scene;
+  const log = Math.log(ruling.to / ruling.from) * ((x - ruling.left) / (ruling.right - ruling.left));
+  const frequency = ruling.from * Math.exp(log);
+  const index = curve.frequency.findIndex((f) => f >= frequency);
+  return index < 0 ? null : levelY(levels, response.top, response.bottom - response.top, curve.gain[index]);
+}

@@ -1,0 +1,62 @@
+/** What moves while a slider is dragged. */
+import type { BandFigures } from "../../../core/analysis/bands.ts";
+import { knobY, type BandPlace } from "../../../core/geometry/band-place.ts";
+import { formatDb } from "../../../core/units.ts";
+import { bandFigureTexts } from "../figure-texts.ts";
+import { figureLine } from "./figure-line.ts";
+import type { Pen } from "./pen.ts";
+
+/** Nearer to the centre than this counts as centred: less than a twentieth of a millimetre of travel. */
+const CENTRE = 0.0005;
+
+export type Side = "boost" | "cut" | "centre";
+
+export function sideOf(position: number): Side {
+  return position > 0.5 + CENTRE ? "boost" : position < 0.5 - CENTRE ? "cut" : "centre";
+}
+
+/** The knob with its wiper lead, and the band's gain as it stands. Shape tells the side too: a notch up, down or none. */
+export function drawKnob(pen: Pen, place: BandPlace, position: number, now: number | undefined, isHeld: boolean): void {
+  const { inks, ctx } = pen;
+  const y = knobY(place, position);
+  const side = sideOf(position);
+  const { x, knobHalf, leadX, legX, legY, slot } = place;
+  const line = slot < 44 ? 1 : 1.25;
+  const bend = Math.round(legY - 4);
+  pen.line(legX === leadX ? [x + knobHalf, y, leadX, y, leadX, legY] : [x + knobHalf, y, leadX, y, leadX, bend, legX, bend, legX, legY], inks.ink, line);
+  const half = Math.max(4.5, knobHalf * 0.5);
+  const color = { boost: inks.boost, cut: inks.cut, centre: inks.inkSoft }[side];
+  pen.box(x, y, knobHalf * 2, half * 2, { fill: color, stroke: isHeld ? inks.ink : color, lineWidth: isHeld ? 1.6 : 1, radius: 3 });
+  pen.line([x - knobHalf + 4, y, x + knobHalf - 4, y], inks.paper, 1.6);
+  if (side !== "centre") {
+    const up = side === "boost" ? -1 : 1;
+    ctx.fillStyle = color;
+    ctx.beginPath();
+    ctx.moveTo(x - 3.5, y + up * half);
+    ctx.lineTo(x + 3.5, y + up * half);
+    ctx.lineTo(x, y + up * (half + 3.5));
+    ctx.fill();
+  }
+  if (now === undefined) return;
+  const text = formatDb(now);
+  const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: nowColor(pen, now) } as const;
+  pen.text(place.detail === "full" ? text : text.replace(" dB", ""), x, figureLine(place, "now"), { ...shown, isBold: place.detail === "full" });
+}
+
+function nowColor(pen: Pen, now: number): string {
+  if (Math.abs(now) < 0.05) return pen.inks.inkSoft;
+  return now > 0 ? pen.inks.boostText : pen.inks.cutText;
+}
+
+/** The figures of the selected band in full, over its neighbours, where its slot has no room for them. */
+export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, left: number, right: number): void {
+  const { inks } = pen;
+  const texts = bandFigureTexts(figures);
+  const lines = [figures.label, texts.peak, texts.centre, texts.quality, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
+  const width = Math.max(...lines.map((text, i) => pen.widthOf(text, i === 0 ? 12 : 11, i === 0))) + 20;
+  const height = lines.length * 15 + 10;
+  const x = Math.max(left + width / 2, Math.min(right - width / 2, place.x));
+  const top = place.figuresTop - 3;
+  pen.box(x, top + height / 2, width, height, { fill: inks.card, stroke: inks.accent, lineWidth: 1.4, radius: 6 });
+  lines.forEach((text, i) => pen.text(text, x, top + 5 + i * 15 + 7.5, { align: "center", isBold: i === 0, size: i === 0 ? 12 : 11, color: i === 0 ? inks.accent : inks.ink }));
+}

@@ -1,0 +1,39 @@
+/** What lies under everything: the ruling and the axes. */
+import { frequencyLabels, frequencyRules, octaveMarks } from "../../../core/geometry/ruling.ts";
+import { levelTicks, levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
+import type { Frame } from "../../../core/geometry/frame.ts";
+import type { Pen } from "./pen.ts";
+
+/** Vertical rules through response and board, the level rules of the response, and the labels of all axes. */
+export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: LevelSpan | null): void {
+  const { inks } = pen;
+  const { ruling, response, board } = frame;
+  for (const rule of frequencyRules(ruling)) {
+    pen.line([rule.x, response.top, rule.x, response.bottom], inks.rule, rule.weight === "decade" ? 1.6 : 1);
+    pen.line([rule.x, board.top, rule.x, frame.height], inks.rule, rule.weight === "decade" ? 1.6 : 1);
+  }
+  const height = response.bottom - response.top;
+  for (const level of levelTicks(levels, height)) {
+    const y = levelY(levels, response.top, height, level);
+    const isZero = level === 0;
+    pen.line([response.left, y, response.right, y], isZero ? inks.ruleStrong : inks.rule, isZero ? 1.4 : 1);
+    pen.text(`${level > 0 ? "+" : level < 0 ? "−" : ""}${Math.abs(level)}`, response.left - 10, y, { align: "right", color: isZero ? inks.ink : inks.inkSoft });
+  }
+  pen.text("gain", response.left - 52, response.top + 7, { align: "right", color: inks.inkSoft });
+  pen.text("dB", response.left - 38, response.top + 7, { align: "right", color: inks.inkSoft });
+  if (phase) {
+    for (let angle = phase.bottom; angle <= phase.top; angle += phase.top > 180 ? 90 : 45) {
+      const y = levelY(phase, response.top, height, angle);
+      pen.line([response.right, y, response.right + 4, y], inks.accent, 1);
+      pen.text(`${angle < 0 ? "−" : ""}${Math.abs(angle)}°`, response.right + 8, y, { color: inks.accent });
+    }
+  }
+  const axisY = (response.bottom + board.top) / 2;
+  for (const mark of octaveMarks(ruling)) pen.line([mark.x, response.bottom, mark.x, response.bottom + 4], inks.ruleStrong, 1);
+  for (const label of frequencyLabels(ruling, (text) => pen.widthOf(text))) {
+    pen.line([label.x, response.bottom, label.x, response.bottom + 4], inks.ruleStrong, 1);
+    pen.text(label.text, label.x, axisY + 2, { align: "center", color: inks.inkSoft });
+  }
+  pen.text("frequency", ruling.left - 10, axisY + 2, { align: "right", color: inks.inkSoft });
+  pen.text("Hz", ruling.right + 8, axisY + 2, { color: inks.inkSoft });
+}
