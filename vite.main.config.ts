@@ -1,6 +1,6 @@
 import { defineConfig } from "vite";
 
-/** The desktop window's main process: one module, with everything in it but Electron and Node. */
+/** The desktop window's main process: one module, with everything in it but Electron, Node and the database, which has a compiled part. */
 export default defineConfig({
   publicDir: false,
   ssr: { noExternal: true },
@@ -10,6 +10,6 @@ export default defineConfig({
     emptyOutDir: true,
     sourcemap: false,
     target: "node24",
-    rolldownOptions: { external: ["electron"], output: { format: "es", entryFileNames: "[name].mjs", codeSplitting: false } },
+    rolldownOptions: { external: ["electron", "better-sqlite3"], output: { format: "es", entryFileNames: "[name].mjs", codeSplitting: false } },
   },
 });

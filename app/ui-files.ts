@@ -10,6 +10,7 @@ const TYPES: Readonly<Record<string, string>> = {
   ".png": "image/png",
   ".woff2": "font/woff2",
   ".woff": "font/woff",
+  ".ttf": "font/ttf",
   ".wasm": "application/wasm",
 };
 
