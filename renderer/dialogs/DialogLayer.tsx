@@ -16,24 +16,24 @@ export function DialogLayer() {
 function OneDialog({ shown }: { readonly shown: Shown }) {
   switch (shown.name) {
     case "unsaved":
-      return <UnsavedDialog {...shown} />;
+      return <UnsavedDialog ask={shown.ask} close={shown.close} />;
     case "open":
-      return <OpenDialog {...shown} />;
+      return <OpenDialog ask={shown.ask} close={shown.close} />;
     case "saveAs":
-      return <SaveAsDialog {...shown} />;
+      return <SaveAsDialog ask={shown.ask} close={shown.close} />;
     case "replace":
-      return <ReplaceDialog {...shown} />;
+      return <ReplaceDialog ask={shown.ask} close={shown.close} />;
     case "changed":
-      return <ChangedDialog {...shown} />;
+      return <ChangedDialog ask={shown.ask} close={shown.close} />;
     case "faults":
-      return <FaultsDialog {...shown} />;
+      return <FaultsDialog ask={shown.ask} close={shown.close} />;
     case "failure":
-      return <FailureDialog {...shown} />;
+      return <FailureDialog ask={shown.ask} close={shown.close} />;
     case "commands":
-      return <CommandsDialog {...shown} />;
+      return <CommandsDialog ask={shown.ask} close={shown.close} />;
     case "keys":
-      return <KeysDialog {...shown} />;
+      return <KeysDialog ask={shown.ask} close={shown.close} />;
     case "about":
-      return <AboutDialog {...shown} />;
+      return <AboutDialog ask={shown.ask} close={shown.close} />;
   }
 }

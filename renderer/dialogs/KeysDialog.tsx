@@ -8,13 +8,18 @@ import type { DialogProps } from "./QuestionDialogs.tsx";
 /** What hands do on the sheet and in fields: gestures, which are no actions of their own. */
 const GESTURES: readonly (readonly [what: string, keys: readonly string[]])[] = [
   ["Move a slider, when its knob has the focus", ["↑", "↓"]],
+  ["Larger steps", ["PgUp", "PgDn"]],
+  ["Full cut, centre, full boost", ["Home", "0", "End"]],
+  ["Finer, while dragging a knob", ["Shift"]],
   ["Put the slider back while dragging", ["Esc"]],
+  ["Read the response, when it has the focus", ["←", "→"]],
+  ["Nudge the selected blocks", ["← ↑ → ↓"]],
   ["Walk through sliders and fields", ["Tab"]],
   ["Next preferred value in a field", ["↑", "↓"]],
   ["Zoom at the pointer", ["wheel"]],
   ["Pan", ["Space + drag"]],
   ["Add to the selection", ["Shift + click"]],
-  ["Copy while dragging", ["Alt + drag"]],
+  ["Select several", ["drag beside them"]],
   ["Edit a value in place", ["double-click"]],
 ];
 

@@ -25,7 +25,7 @@ export function nameProblem(name: string): string | null {
 
 /** Chooses a folder and a name. Whether an old file of that name may go is asked when it comes to it. */
 export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
-  const { context } = useShell();
+  const { context, host } = useShell();
   const [folder, setFolder] = useState<string | null>(() => folderOf(context.editor.store.getState().file));
   const [name, setName] = useState(ask.suggestedName);
   const [error, setError] = useState<string | null>(null);
@@ -46,17 +46,19 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
   };
   const isReadOnly = listing !== null && !listing.writable;
 
-  const save = (): void => {
-    if (!listing || isReadOnly) return;
+  const save = async (): Promise<void> => {
+    // Quick hands press Enter before the folder has been read.
+    const place = listing ?? (await host.call("files.list", { folder }).catch(() => null));
+    if (!place?.writable) return;
     const wrong = nameProblem(name);
     if (wrong !== null) {
       setError(wrong);
       field.current?.focus();
       return;
     }
-    const separator = listing.folder.includes("\\") ? "\\" : "/";
+    const separator = place.folder.includes("\\") ? "\\" : "/";
     const file = /\.bandwright$/i.test(name.trim()) ? name.trim() : `${name.trim()}.bandwright`;
-    close({ path: `${listing.folder.replace(/[\\/]$/, "")}${separator}${file}`, replace: false });
+    close({ path: `${place.folder.replace(/[\\/]$/, "")}${separator}${file}`, replace: false });
   };
 
   return (
@@ -71,7 +73,7 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
           <button type="button" className="button" onClick={() => close(null)}>
             Cancel
           </button>
-          <button type="button" className="button is-primary" disabled={listing === null || isReadOnly} onClick={save}>
+          <button type="button" className="button is-primary" disabled={listing === null || isReadOnly} onClick={() => void save()}>
             Save
           </button>
         </>
@@ -89,7 +91,7 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
             setName(event.target.value);
             setError(null);
           }}
-          onKeyDown={(event) => event.key === "Enter" && save()}
+          onKeyDown={(event) => event.key === "Enter" && void save()}
         />
         {error !== null && <span className="field-error">{error}</span>}
       </label>

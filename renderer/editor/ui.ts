@@ -39,6 +39,7 @@ export interface ContextMenuPlace {
 export interface UiState {
   readonly theme: Theme;
   readonly isPanelOpen: boolean;
+  readonly isPhaseShown: boolean;
   readonly cursor: Reading | null;
   /** The last thing worth telling, in the status line. */
   readonly notice: { readonly key: number; readonly text: string; readonly isWarning: boolean } | null;
@@ -57,7 +58,7 @@ export interface Ui {
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
   setTheme(theme: Theme): void;
-  patch(change: Partial<Pick<UiState, "isPanelOpen" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
+  patch(change: Partial<Pick<UiState, "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -70,6 +71,7 @@ export function createUi(): Ui {
   const store = createStore<UiState>(() => ({
     theme: keptTheme() ?? systemTheme(),
     isPanelOpen: window.innerWidth >= 900,
+    isPhaseShown: false,
     cursor: null,
     notice: null,
     dialogs: [],

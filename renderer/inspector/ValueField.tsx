@@ -1,4 +1,5 @@
 import { useId, useState } from "react";
+import { flushSync } from "react-dom";
 import type { Taken } from "../editor/part-text.ts";
 
 interface ValueFieldProps {
@@ -60,10 +61,12 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
         autoComplete="off"
         spellCheck={false}
         onFocus={(event) => {
-          setFocused(true);
           const input = event.currentTarget;
-          // After React has shown the text to be edited.
-          requestAnimationFrame(() => document.activeElement === input && input.select());
+          // The text to be edited has to stand there before it is marked, and before the first key arrives.
+          flushSync(() => setFocused(true));
+          input.select();
+          // A pointer sets its caret after this.
+          requestAnimationFrame(() => document.activeElement === input && input.dataset.untouched === "true" && input.select());
         }}
         onChange={(event) => {
           setDraft(event.target.value);

@@ -15,7 +15,7 @@ export function MenuBar() {
           <Menu.Trigger className="menu-trigger">{name}</Menu.Trigger>
           <Menu.Portal>
             <Menu.Positioner className="positioner" sideOffset={4} align="start">
-              <Menu.Popup className="popup">
+              <Menu.Popup className="popup" finalFocus={(by) => (by === "mouse" ? document.querySelector<HTMLElement>(".sheet-area") : true)}>
                 <MenuItems actions={ACTIONS.filter((action) => action.menu === name)} />
               </Menu.Popup>
             </Menu.Positioner>

@@ -12,7 +12,7 @@ import type { SheetProps } from "../sheet/sheet-props.ts";
 import { WiringFaults } from "./WiringFaults.tsx";
 import { MenuItems } from "./MenuBar.tsx";
 
-type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range">;
+type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range" | "isPhaseShown">;
 
 /** The sheet with what may lie over it: an invitation on an empty board, wiring faults, the context menu. */
 export function SheetArea() {
@@ -22,6 +22,7 @@ export function SheetArea() {
   const analysis = useEditorState((s) => s.analysis);
   const selection = useEditorState((s) => s.selection);
   const range = useEditorState((s) => s.range);
+  const isPhaseShown = useUiState((s) => s.isPhaseShown);
   const theme = useUiState((s) => s.theme);
   const isEmpty = !project.blocks.some((block) => BAND_KINDS.includes(block.kind));
 
@@ -44,8 +45,8 @@ export function SheetArea() {
   }, [editor, ui]);
 
   return (
-    <main className="sheet-area" aria-label="Sheet">
-      <Sheet ref={sheetRef} project={project} board={analysis.board} results={analysis.results} selection={selection} theme={theme} range={range} {...handlers} />
+    <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
+      <Sheet ref={sheetRef} project={project} board={analysis.board} results={analysis.results} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} {...handlers} />
       {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}
       <ContextMenu />

@@ -95,6 +95,8 @@ function Tool({ id, path, text, isPressed }: ToolProps) {
       aria-pressed={isPressed}
       title={chord === undefined ? label : `${label} (${chordText(chord, context.isMac)})`}
       disabled={!isPossible(action, context)}
+      // A click leaves the focus where the hands were working.
+      onMouseDown={(event) => event.preventDefault()}
       onClick={() => run(action, context)}
     >
       <svg viewBox="0 0 18 20" aria-hidden="true">

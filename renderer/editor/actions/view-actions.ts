@@ -20,6 +20,11 @@ export const VIEW_ACTIONS: readonly Action[] = [
     },
   },
   {
+    id: "phase", keywords: "degrees angle curve axis", menu: "View", group: 4, chords: ["Shift+P"],
+    label: (c) => (c.ui.store.getState().isPhaseShown ? "Hide the phase" : "Show the phase"),
+    perform: (c) => c.ui.patch({ isPhaseShown: !c.ui.store.getState().isPhaseShown }),
+  },
+  {
     id: "theme", keywords: "dark light colours paper night", menu: "View", group: 4, chords: ["T"],
     label: (c) => (c.ui.store.getState().theme === "paper" ? "Night theme" : "Paper theme"),
     perform: (c) => c.ui.setTheme(c.ui.store.getState().theme === "paper" ? "night" : "paper"),
