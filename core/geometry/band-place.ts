@@ -1,7 +1,7 @@
 import { BLOCKS } from "../blocks/index.ts";
 import { RAIL_GAP } from "../blocks/boost-cut-stage/drawing.ts";
 import type { Block } from "../model/project.ts";
-import { FULL_SLOT, GRID, LINE } from "./frame.ts";
+import { GRID, LINE } from "./frame.ts";
 import { clamp, type Box } from "./units.ts";
 
 /** How much is written: by how wide a band's slot is. */
@@ -47,7 +47,7 @@ export const FIGURE_LINES: Record<Detail, number> = { full: 5, short: 3, slim: 4
 
 export function detailOf(slot: number, scale: number): Detail {
   if (slot >= 68 && scale >= 0.78) return "full";
-  return slot >= 44 ? "short" : "slim";
+  return slot >= 36 ? "short" : "slim";
 }
 
 /** Heights of what a band is made of, from its rail down. */
@@ -61,12 +61,24 @@ export interface BandHeights {
 
 export function bandHeights(scale: number, slot: number, marginScale: number): BandHeights {
   return {
-    rail: RAIL_GAP * GRID * marginScale * clamp(scale, 0.8, 1),
+    rail: RAIL_GAP * GRID * marginScale * clamp(scale, 0.7, 1),
     drop: Math.round(14 * Math.max(0.8, scale)),
     track: Math.round(100 * scale),
-    lead: Math.round(12 * Math.max(0.8, scale)),
-    legGrid: GRID * Math.min(scale, slot / FULL_SLOT),
+    lead: Math.round(20 * Math.max(0.8, scale)),
+    legGrid: legGridOf(scale, slot),
   };
+}
+
+/** Room that a written value takes, px, and a gyrator leg without values, grid units. */
+const VALUE_ROOM = 26;
+const LEG_UNITS = 14.4;
+/** Smallest grid at which values stand clear of the symbols. */
+const LEAST_VALUE_GRID = 2.95;
+
+/** Pixels a grid unit of a leg: with its values beside it where there is room, else without and as large as fits. */
+function legGridOf(scale: number, slot: number): number {
+  const withValues = Math.min(GRID * scale, (slot - VALUE_ROOM) / LEG_UNITS);
+  return withValues >= LEAST_VALUE_GRID ? withValues : Math.min(GRID * scale, LEAST_VALUE_GRID - 0.05, slot / (LEG_UNITS + 2));
 }
 
 /** From the boost rail to the end of the figures. */
@@ -103,9 +115,11 @@ export function placeBand(at: BandAt): BandPlace {
   const trackBottom = trackTop + heights.track;
   const knobHalf = Math.round(11 * clamp(Math.min(scale, slot / 42), 0.7, 1.5));
   const leadX = x + knobHalf + 3;
-  const hasValues = heights.legGrid >= 3.4;
+  const hasValues = heights.legGrid >= LEAST_VALUE_GRID;
   const { drawing } = BLOCKS[block.kind];
-  const legX = hasValues ? leadX : Math.round(x - ((drawing.left + 2.7) / 2) * heights.legGrid);
+  // A branching leg is centred with its values; a straight one stands under its slider.
+  const lopsided = drawing.left < -5 ? -((drawing.left + 2.7) * heights.legGrid + (hasValues ? VALUE_ROOM : 0)) / 2 : 0;
+  const legX = Math.abs(lopsided - (leadX - x)) < 4 ? leadX : x + Math.round(lopsided);
   const legY = trackBottom + heights.lead;
   const figuresTop = Math.round(legY + at.legUnits * heights.legGrid + 10);
   return {

@@ -31,6 +31,8 @@ interface Pin {
 const STAGE_IN = { x: -46, y: 2 };
 const STAGE_OUT = { x: -2, y: -14 };
 const BUFFER_LENGTH = 14;
+/** Grid units that buffers in front of a stage hang below its in. */
+export const FEED_DROP = 5;
 
 /** Places and wires of everything that is not a band. */
 export function placeChain(
@@ -42,26 +44,26 @@ export function placeChain(
   const tops = new Map<string, number>();
   const { left, right } = frame.ruling;
   const put = (block: Block, drawing: Drawing, x: number, y: number): void => {
-    const box = { left: x + drawing.left * grid - 4, right: x + drawing.right * grid + 4, top: y + drawing.top * grid - 2, bottom: y + drawing.bottom * grid + 2 };
+    const box = { left: Math.max(3, x + drawing.left * grid - 4), right: x + drawing.right * grid + 4, top: y + drawing.top * grid - 2, bottom: y + drawing.bottom * grid + 2 };
     chain.push({ id: block.id, block, drawing, x, y, grid, box });
   };
   for (const place of places) {
     const { stage, feed, isLoose } = place.rail;
     if (isLoose) continue;
-    const inPin = { x: Math.round(left + STAGE_IN.x * grid), y: Math.round(place.y + STAGE_IN.y * grid) };
+    const inPin = { x: left + STAGE_IN.x * grid, y: place.y + STAGE_IN.y * grid };
     if (stage) {
       put(stage, BLOCKS[stage.kind].drawing, left, place.y);
       ins.set(stage.id, { ...inPin, side: "left" });
       outs.set(stage.id, { x: left + STAGE_OUT.x * grid, y: place.y + STAGE_OUT.y * grid });
-      tops.set(stage.id, place.top + 5);
+      tops.set(stage.id, place.top - 7);
     }
-    let y = inPin.y;
+    let y = inPin.y + (feed.buffers.length > 0 ? FEED_DROP * grid : 0);
     for (const buffer of feed.buffers.toReversed()) {
       put(buffer, risingBufferDrawing, inPin.x, y);
       outs.set(buffer.id, { x: inPin.x, y });
       y += BUFFER_LENGTH * grid;
       ins.set(buffer.id, { x: inPin.x, y, side: "below" });
-      tops.set(buffer.id, place.top + 5);
+      tops.set(buffer.id, place.top - 7);
     }
     const isFed = rails.input !== null && feed.from === rails.input.id;
     const isFirstPlace = rails.input !== null && !outs.has(rails.input.id);
@@ -71,7 +73,7 @@ export function placeChain(
     }
   }
   const last = places[lastRail(rails)];
-  const outY = Math.round(last.y + STAGE_OUT.y * grid);
+  const outY = last.y + STAGE_OUT.y * grid;
   rails.outputFeed.buffers.forEach((buffer, n) => {
     const x = right - (rails.outputFeed.buffers.length - n) * BUFFER_LENGTH * grid;
     put(buffer, bufferDrawing, x, outY);
@@ -103,6 +105,7 @@ function inputRail(rails: Rails): number {
 /** Straight where it can be, else along the free lane above the target's rail and down the left edge. */
 function route(from: { x: number; y: number }, to: Pin, laneY: number, grid: number): WirePath {
   if (Math.abs(from.x - to.x) < 1 && Math.abs(from.y - to.y) < 1) return [];
+  if (Math.abs(from.x - to.x) < 1 && from.y > to.y) return [from.x, from.y, to.x, to.y];
   if (to.side === "left" && to.x > from.x) {
     if (Math.abs(from.y - to.y) < 1) return [from.x, from.y, to.x, to.y];
     const turn = from.x < to.x - 4 * grid && to.x - from.x > 20 * grid ? from.x + 2 * grid : (from.x + to.x) / 2;

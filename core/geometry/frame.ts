@@ -12,7 +12,7 @@ const END_PAD = 30;
 /** Height of a line of figures, whatever the scale: text does not shrink. */
 export const LINE = 15;
 /** Scales of the board: smaller and its symbols run together, larger and one band fills the sheet. */
-export const LEAST_SCALE = 0.6;
+export const LEAST_SCALE = 0.5;
 const MOST_SCALE = 2.4;
 /** A band with all its values takes this much at scale 1. */
 export const FULL_SLOT = 88;

@@ -4,7 +4,7 @@ import { BLOCKS } from "../blocks/index.ts";
 import type { Block, Project, SheetPoint } from "../model/project.ts";
 import { bandFrequency } from "./band-frequency.ts";
 import { bandHeight, bandHeights, detailOf, placeBand, type BandPlace } from "./band-place.ts";
-import { placeChain, type ChainPlace, type WirePath } from "./chain.ts";
+import { FEED_DROP, placeChain, type ChainPlace, type WirePath } from "./chain.ts";
 import { frameOf, FULL_SLOT, GRID, LINE, type Frame } from "./frame.ts";
 import { slotWidth, spread } from "./placement.ts";
 import { lastRail, railsOf, type Rail, type RailPlace, type Rails } from "./rails.ts";
@@ -86,7 +86,7 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
   const roomiest = Math.min(...slots.map((slot, i) => (rails.rails[i].bands.length === 0 ? Infinity : Math.max(1, slot / FULL_SLOT))));
   const scale = Math.min(frame.scale, roomiest);
   slots = slotsOf(rails, xs, frame, scale);
-  const chainGrid = GRID * frame.marginScale * clamp(scale, 0.8, 1);
+  const chainGrid = chainGridOf(frame.marginScale, scale);
 
   const heights = rails.rails.map((rail, i) => railHeight(rail, rails, i, { scale, slot: slots[i], legUnits: legUnits[i], margin: frame.marginScale, isSingle }));
   const content = heights.reduce((a, b) => a + b, 0) + BETWEEN_RAILS;
@@ -110,6 +110,11 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
   return { frame, scale, chainGrid, rails: places, bands, chain, wires, reference, scroll, mostScroll };
 }
 
+/** The drawings in the margins shrink less than the board: there are few of them. */
+function chainGridOf(marginScale: number, scale: number): number {
+  return GRID * marginScale * clamp(scale, 0.7, 1);
+}
+
 function aboveOf(rail: Rail, chainGrid: number): number {
   return rail.isLoose ? 34 : ABOVE * chainGrid;
 }
@@ -123,10 +128,10 @@ interface RailSize {
 }
 
 function railHeight(rail: Rail, rails: Rails, index: number, size: RailSize): number {
-  const grid = GRID * size.margin * clamp(size.scale, 0.8, 1);
+  const grid = chainGridOf(size.margin, size.scale);
   const band = rail.bands.length === 0 ? 0 : bandHeight(bandHeights(size.scale, size.slot, size.margin), size.legUnits, detailOf(size.slot, size.scale));
   const hasInput = rail.feed.from !== null && rail.feed.from === rails.input?.id;
-  const feed = rail.isLoose ? 0 : (4 + 14 * rail.feed.buffers.length + (hasInput || rail.stage === null ? 27 : 0)) * grid;
+  const feed = rail.isLoose ? 0 : (4 + FEED_DROP + 14 * rail.feed.buffers.length + (hasInput || rail.stage === null ? 27 : 0)) * grid;
   const isLast = index === lastRail(rails);
   const ending = isLast ? (16 + (size.isSingle ? 28 : 0)) * grid : 0;
   return aboveOf(rail, grid) + Math.max(band, feed, ending, 40) + BETWEEN_RAILS;
@@ -172,7 +177,7 @@ function placeRail(rail: Rail, index: number, opts: RailOpts): BandPlace[] {
     return placeBand({
       block, rail: index, railY: opts.railY, legUnits: opts.legUnits, heights: opts.heights, x, trueX: wanted[n],
       frequency: bandFrequency(block, opts.figures?.get(block.id)), isByHand: hand !== null, isLoose: rail.isLoose,
-      isStaggered: slot < 44 && order.indexOf(n) % 2 === 1,
+      isStaggered: slot < 36 && order.indexOf(n) % 2 === 1,
       lower: hand ? Math.max(0, hand.y - RAIL_UNITS * index) * scale : 0, slot, scale, leaderTop: opts.leaderTop,
     });
   });

@@ -31,7 +31,7 @@ export function levelSpan(peaks: Iterable<number>, curves: Iterable<Float64Array
 }
 
 /** Multiples of a 1-2-5 step inside the span, ascending, at least `leastGap` pixels apart on an axis of `height` pixels. */
-export function levelTicks(span: LevelSpan, height: number, leastGap = 24): number[] {
+export function levelTicks(span: LevelSpan, height: number, leastGap = 19): number[] {
   const perPixel = (span.top - span.bottom) / height;
   const steps = [1, 2, 5, 10, 20, 50, 100];
   const step = steps.find((s) => s / perPixel >= leastGap) ?? 100;

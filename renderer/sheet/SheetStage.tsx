@@ -13,7 +13,7 @@ import { drawChainBlock, drawRails, drawReference, drawWires } from "./draw/chai
 import { drawCurves } from "./draw/curves.ts";
 import { drawFigureCard, drawKnob } from "./draw/live.ts";
 import { drawCursor, drawMarquee, drawTag } from "./draw/overlay.ts";
-import { drawPaper } from "./draw/paper.ts";
+import { drawPaper, drawScrollMark } from "./draw/paper.ts";
 import type { Pen } from "./draw/pen.ts";
 import { travelText } from "./figure-texts.ts";
 import type { OverlayStore } from "./overlay-store.ts";
@@ -45,7 +45,13 @@ export function SheetStage(props: SheetStageProps) {
   const figures = results?.figures;
   const { levels, phase } = useSpans(results, isPhaseShown);
 
-  const paper = useCallback((pen: Pen) => drawPaper(pen, frame, levels, phase), [frame, levels, phase]);
+  const paper = useCallback(
+    (pen: Pen) => {
+      drawPaper(pen, frame, levels, phase);
+      drawScrollMark(pen, layout);
+    },
+    [layout, frame, levels, phase],
+  );
   const hasFigures = figures !== undefined && figures.size > 0;
   const rails = useCallback(
     (pen: Pen) => {
@@ -75,10 +81,10 @@ export function SheetStage(props: SheetStageProps) {
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
         for (const place of layout.bands) {
           if (place.box.right < ruling.left || place.box.left > ruling.right) continue;
-          drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), place.id === held);
+          drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), place.id === held, selection.includes(place.id));
         }
         const its = chosen && figures?.get(chosen.id);
-        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), ruling.left, ruling.right);
+        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), { ...board, left: ruling.left, right: ruling.right });
         const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
         if (grip) {
           const position = blocks.get(grip.id)?.slider?.position ?? 0.5;

@@ -4,7 +4,8 @@ import { formatDb, formatValue } from "../../core/units.ts";
 
 export interface FigureTexts {
   readonly peak: string;
-  /** Without its unit, which the margin gives. */
+  /** Without their unit, which the margin gives: boost and cut, and the boost alone where there is no room for both. */
+  readonly barePeak: string;
   readonly shortPeak: string;
   readonly centre: string;
   readonly quality: string;
@@ -21,7 +22,8 @@ export function bandFigureTexts({ boost, cut, kind }: BandFigures): FigureTexts 
   const where = boost.frequency === null ? "—" : formatValue(boost.frequency, "frequency");
   return {
     peak: isMirrored ? `±${peak} dB` : `${formatDb(boost.peak).replace(" dB", "")} ${formatDb(cut.peak)}`,
-    shortPeak: `±${peak}`,
+    barePeak: isMirrored ? `±${peak}` : `+${peak} −${Math.abs(cut.peak).toFixed(1)}`,
+    shortPeak: isMirrored ? `±${peak}` : `+${peak}`,
     centre: shape === "level" ? "all alike" : where,
     quality: shape === "resonance" ? (boost.q === null ? "Q —" : `Q ${boost.q.toFixed(2)}`) : { "high-shelf": "high shelf", "low-shelf": "low shelf", level: "level" }[shape],
   };

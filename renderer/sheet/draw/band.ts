@@ -41,7 +41,7 @@ function drawTrack(pen: Pen, place: BandPlace): void {
   if (isLoose) pen.line([x, trackTop - 6, x, trackTop], inks.ink, line);
   else {
     pen.line([x, boostRailY, x, trackTop], inks.ink, line);
-    pen.line([returnX, cutRailY, returnX, trackBottom + 4, x, trackBottom + 4, x, trackBottom], inks.ink, line);
+    pen.line([returnX, cutRailY, returnX, trackBottom + 3, x, trackBottom + 3, x, trackBottom], inks.ink, line);
     pen.dot(x, boostRailY, 2.2, inks.ink);
     pen.dot(returnX, cutRailY, 2.2, inks.ink);
   }
@@ -61,13 +61,19 @@ function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigu
   const size = place.detail === "full" ? 12.5 : isSlim ? 10.5 : 11.5;
   // Slim labels share two lines, so each may be nearly two slots wide.
   const room = isSlim ? place.slot * 1.8 : place.slot - 4;
+  const over = isSelected ? {} : { halo: inks.paper };
   const label = fittedLabel(block.label ?? block.id, (text) => pen.widthOf(text, size, true) <= room);
-  pen.text(label, place.x, figureLine(place, place.isStaggered ? "staggered" : "label"), { size, isBold: true, align: "center", color: isSelected ? inks.accent : inks.ink });
+  pen.text(label, place.x, figureLine(place, place.isStaggered ? "staggered" : "label"), { size, isBold: true, align: "center", color: isSelected ? inks.accent : inks.ink, ...over });
   if (!figures) return;
   const texts = bandFigureTexts(figures);
   if (place.detail === "full") {
-    pen.text(texts.peak, place.x, figureLine(place, "peak"), { size: 11.5, align: "center" });
-    pen.text(texts.centre, place.x, figureLine(place, "centre"), { align: "center", color: inks.inkSoft });
-    pen.text(texts.quality, place.x, figureLine(place, "quality"), { align: "center", color: inks.inkSoft });
-  } else pen.text(texts.shortPeak, place.x, figureLine(place, "peak"), { size: isSlim ? 10 : 11, align: "center" });
+    const peak = [texts.peak, texts.barePeak].find((text) => pen.widthOf(text, 11.5) <= place.slot - 2) ?? texts.shortPeak;
+    pen.text(peak, place.x, figureLine(place, "peak"), { size: 11.5, align: "center", ...over });
+    pen.text(texts.centre, place.x, figureLine(place, "centre"), { align: "center", color: inks.inkSoft, ...over });
+    pen.text(texts.quality, place.x, figureLine(place, "quality"), { align: "center", color: inks.inkSoft, ...over });
+  } else {
+    const small = isSlim ? 10 : 11;
+    const short = pen.widthOf(texts.shortPeak, small) <= place.slot - 2 ? texts.shortPeak : texts.shortPeak.slice(1);
+    pen.text(short, place.x, figureLine(place, "peak"), { size: small, align: "center", ...over });
+  }
 }

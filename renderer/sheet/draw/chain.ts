@@ -14,7 +14,9 @@ export function drawRails(pen: Pen, layout: SheetLayout, hasFigures: boolean): v
   const { ruling } = layout.frame;
   for (const rail of layout.rails) {
     if (rail.rail.stage) {
-      for (const y of [rail.y, rail.y + rail.gap]) pen.line([ruling.left, y, ruling.right, y], pen.inks.ink, 1.8);
+      // From where the stage's own wires reach them.
+      pen.line([ruling.left - 29.5 * layout.chainGrid, rail.y, ruling.right, rail.y], pen.inks.ink, 1.8);
+      pen.line([ruling.left - 32 * layout.chainGrid, rail.y + rail.gap, ruling.right, rail.y + rail.gap], pen.inks.ink, 1.8);
       if (rail.rail.bands.length === 0) pen.text("no band on this bus yet", ruling.left + 24, rail.y + rail.gap + 24, { color: pen.inks.inkSoft, size: 12 });
     }
     if (rail.rail.isLoose) pen.text("On no bus: these take no part", ruling.left + 8, rail.top + 16, { color: pen.inks.warning, isBold: true, size: 12 });
@@ -24,14 +26,14 @@ export function drawRails(pen: Pen, layout: SheetLayout, hasFigures: boolean): v
 
 function drawCaptions(pen: Pen, layout: SheetLayout, rail: RailPlace, hasFigures: boolean): void {
   const first = layout.bands.find((band) => band.rail === rail.index && !band.isByHand);
-  if (!first || !hasFigures) return;
+  if (!first || !hasFigures || rail.rail.isLoose) return;
   const x = layout.frame.ruling.left - 12;
   const write = (text: string, line: Parameters<typeof figureLine>[1]): void => pen.text(text, x, figureLine(first, line), { align: "right", color: pen.inks.inkSoft });
   if (first.detail === "full") {
-    write("peak in circuit", "peak");
+    write("peak in circuit, dB", "peak");
     write("centre", "centre");
     write("width", "quality");
-    write("now", "now");
+    write("as it stands", "now");
   } else {
     write("peak, dB", "peak");
     write("now, dB", "now");
@@ -59,11 +61,16 @@ export function drawChainBlock(pen: Pen, place: ChainPlace, isSelected: boolean)
   const { grid, x, y } = place;
   const name = block.label ?? BLOCKS[block.kind].label;
   if (block.kind === "boost-cut-stage") {
-    pen.text(name, x - 46 * grid, y - 19.5 * grid, { isBold: true, size: 12 });
+    pen.text(name, x - 46 * grid, y - 21 * grid, { isBold: true, size: 12 });
     if (block.opAmp) pen.text(block.opAmp, x - 17 * grid, y - 18 * grid, { color: inks.inkSoft, size: 10.5 });
   } else if (block.kind === "input") pen.text(block.label ?? "in", x + 4 * grid, y + 21 * grid, { isBold: true, size: 12 });
   else if (block.kind === "output") pen.text(block.label ?? "out", x + 13.6 * grid, y + 16.5 * grid, { isBold: true, size: 12 });
-  else if (block.opAmp) pen.text(block.opAmp, box.right + 2, (box.top + box.bottom) / 2, { color: inks.inkSoft, size: 10.5 });
+  else if (block.opAmp) {
+    // Beside a buffer that stands up, above one that lies.
+    const isUp = box.bottom - box.top > box.right - box.left;
+    if (isUp) pen.text(block.opAmp, box.right + 2, (box.top + box.bottom) / 2, { color: inks.inkSoft, size: 10.5 });
+    else pen.text(block.opAmp, x + 6 * grid, y - 4 * grid, { color: inks.inkSoft, size: 10.5, align: "center" });
+  }
 }
 
 /** The divider that a single supply makes its reference from. */

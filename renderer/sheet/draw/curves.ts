@@ -1,7 +1,7 @@
 import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
 import { extremeIndex } from "../../../core/geometry/reading.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
-import { tagPlace, type Box } from "../../../core/geometry/units.ts";
+import type { Box } from "../../../core/geometry/units.ts";
 import { formatDb, formatValue } from "../../../core/units.ts";
 import type { Curve } from "../sheet-props.ts";
 import { faint, type Pen } from "./pen.ts";
@@ -78,14 +78,18 @@ function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
   if (at.x < response.left || at.x > response.right) return;
   const isUp = isBoost(alone);
   const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}: ${formatDb(alone.gain[peak])}, ${formatValue(alone.frequency[peak], "frequency")}`;
-  const size = { width: pen.widthOf(text), height: 14 };
-  const within = { ...response, left: response.left + 4, right: response.right - 4, top: response.top + 2, bottom: response.bottom - 2 };
-  const beside = tagPlace({ x: at.x, y: isUp ? at.y + 12 : at.y - 12 + 2 * size.height }, size, within, 12);
+  const width = pen.widthOf(text);
+  // Beside the peak, a little further out than the curve goes, on the side that has the room.
+  const isRight = at.x + 14 + width <= response.right - 4;
+  const x = Math.max(response.left + 4, isRight ? at.x + 14 : at.x - 14 - width);
+  const beside = Math.max(response.top + 9, Math.min(response.bottom - 9, isUp ? at.y - 7 : at.y + 9));
   // Out of the way of the other curve where that runs through the same place.
-  const ends = [beside.x, beside.x + size.width].map((x) => (total ? levelAt(total, scene, x) : null));
-  const isCrossed = ends.some((y) => y !== null && Math.abs(y - beside.y - 7) < 12);
-  const y = isCrossed ? (isUp ? within.top + 2 : within.bottom - size.height - 2) : beside.y;
-  pen.text(text, beside.x, y + size.height / 2, { color: isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper });
+  const isCrossed = [x, x + width / 2, x + width].some((end) => {
+    const y = total && levelAt(total, scene, end);
+    return y !== null && Math.abs(y - beside) < 11;
+  });
+  const y = isCrossed ? (isUp ? response.top + 9 : response.bottom - 9) : beside;
+  pen.text(text, x, y, { color: isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper });
 }
 
 function levelAt(curve: Curve, scene: CurveScene, x: number): number | null {

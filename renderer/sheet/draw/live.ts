@@ -1,6 +1,7 @@
 /** What moves while a slider is dragged. */
 import type { BandFigures } from "../../../core/analysis/bands.ts";
 import { knobY, type BandPlace } from "../../../core/geometry/band-place.ts";
+import { clamp, type Box } from "../../../core/geometry/units.ts";
 import { formatDb } from "../../../core/units.ts";
 import { bandFigureTexts } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
@@ -16,13 +17,13 @@ export function sideOf(position: number): Side {
 }
 
 /** The knob with its wiper lead, and the band's gain as it stands. Shape tells the side too: a notch up, down or none. */
-export function drawKnob(pen: Pen, place: BandPlace, position: number, now: number | undefined, isHeld: boolean): void {
+export function drawKnob(pen: Pen, place: BandPlace, position: number, now: number | undefined, isHeld: boolean, isSelected: boolean): void {
   const { inks, ctx } = pen;
   const y = knobY(place, position);
   const side = sideOf(position);
   const { x, knobHalf, leadX, legX, legY, slot } = place;
   const line = slot < 44 ? 1 : 1.25;
-  const bend = Math.round(legY - 4);
+  const bend = Math.round(legY - 7);
   pen.line(legX === leadX ? [x + knobHalf, y, leadX, y, leadX, legY] : [x + knobHalf, y, leadX, y, leadX, bend, legX, bend, legX, legY], inks.ink, line);
   const half = Math.max(4.5, knobHalf * 0.5);
   const color = { boost: inks.boost, cut: inks.cut, centre: inks.inkSoft }[side];
@@ -40,7 +41,9 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
   if (now === undefined) return;
   const text = formatDb(now);
   const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: nowColor(pen, now) } as const;
-  pen.text(place.detail === "full" ? text : text.replace(" dB", ""), x, figureLine(place, "now"), { ...shown, isBold: place.detail === "full" });
+  const bare = text.replace(" dB", "");
+  const written = place.detail === "full" ? text : pen.widthOf(bare, shown.size) <= slot - 2 ? bare : formatDb(now, 0).replace(" dB", "");
+  pen.text(written, x, figureLine(place, "now"), { ...shown, isBold: place.detail === "full", ...(isSelected ? {} : { halo: pen.inks.paper }) });
 }
 
 function nowColor(pen: Pen, now: number): string {
@@ -49,14 +52,14 @@ function nowColor(pen: Pen, now: number): string {
 }
 
 /** The figures of the selected band in full, over its neighbours, where its slot has no room for them. */
-export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, left: number, right: number): void {
+export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, within: Box): void {
   const { inks } = pen;
   const texts = bandFigureTexts(figures);
   const lines = [figures.label, texts.peak, texts.centre, texts.quality, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
   const width = Math.max(...lines.map((text, i) => pen.widthOf(text, i === 0 ? 12 : 11, i === 0))) + 20;
   const height = lines.length * 15 + 10;
-  const x = Math.max(left + width / 2, Math.min(right - width / 2, place.x));
-  const top = place.figuresTop - 3;
+  const x = clamp(place.x, within.left + width / 2, within.right - width / 2);
+  const top = Math.min(place.figuresTop - 3, within.bottom - height - 4);
   pen.box(x, top + height / 2, width, height, { fill: inks.card, stroke: inks.accent, lineWidth: 1.4, radius: 6 });
   lines.forEach((text, i) => pen.text(text, x, top + 5 + i * 15 + 7.5, { align: "center", isBold: i === 0, size: i === 0 ? 12 : 11, color: i === 0 ? inks.accent : inks.ink }));
 }

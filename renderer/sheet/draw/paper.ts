@@ -2,6 +2,7 @@
 import { frequencyLabels, frequencyRules, octaveMarks } from "../../../core/geometry/ruling.ts";
 import { levelTicks, levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
 import type { Frame } from "../../../core/geometry/frame.ts";
+import type { SheetLayout } from "../../../core/geometry/layout.ts";
 import type { Pen } from "./pen.ts";
 
 /** Vertical rules through response and board, the level rules of the response, and the labels of all axes. */
@@ -19,8 +20,7 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
     pen.line([response.left, y, response.right, y], isZero ? inks.ruleStrong : inks.rule, isZero ? 1.4 : 1);
     pen.text(`${level > 0 ? "+" : level < 0 ? "−" : ""}${Math.abs(level)}`, response.left - 10, y, { align: "right", color: isZero ? inks.ink : inks.inkSoft });
   }
-  pen.text("gain", response.left - 52, response.top + 7, { align: "right", color: inks.inkSoft });
-  pen.text("dB", response.left - 38, response.top + 7, { align: "right", color: inks.inkSoft });
+  sideways(pen, "gain, dB", response.left - 44, (response.top + response.bottom) / 2, inks.inkSoft);
   if (phase) {
     for (let angle = phase.bottom; angle <= phase.top; angle += phase.top > 180 ? 90 : 45) {
       const y = levelY(phase, response.top, height, angle);
@@ -28,12 +28,31 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
       pen.text(`${angle < 0 ? "−" : ""}${Math.abs(angle)}°`, response.right + 8, y, { color: inks.accent });
     }
   }
+  if (phase) sideways(pen, "phase, degrees", response.right + 50, (response.top + response.bottom) / 2, inks.accent);
   const axisY = (response.bottom + board.top) / 2;
   for (const mark of octaveMarks(ruling)) pen.line([mark.x, response.bottom, mark.x, response.bottom + 4], inks.ruleStrong, 1);
   for (const label of frequencyLabels(ruling, (text) => pen.widthOf(text))) {
     pen.line([label.x, response.bottom, label.x, response.bottom + 4], inks.ruleStrong, 1);
     pen.text(label.text, label.x, axisY + 2, { align: "center", color: inks.inkSoft });
   }
-  pen.text("frequency", ruling.left - 10, axisY + 2, { align: "right", color: inks.inkSoft });
-  pen.text("Hz", ruling.right + 8, axisY + 2, { color: inks.inkSoft });
+  pen.text("frequency, Hz", ruling.left - 10, axisY + 2, { align: "right", color: inks.inkSoft });
+}
+
+/** At the right edge: which part of the board is on show, where it is taller than its place. */
+export function drawScrollMark(pen: Pen, layout: SheetLayout): void {
+  if (layout.mostScroll === 0) return;
+  const { board, width } = layout.frame;
+  const seen = board.bottom - board.top;
+  const length = (seen * seen) / (seen + layout.mostScroll);
+  const top = board.top + ((seen - length) * layout.scroll) / layout.mostScroll;
+  pen.box(width - 5, top + length / 2, 4, length - 6, { fill: pen.inks.ruleStrong, radius: 2 });
+}
+
+/** A word along an axis, read from the right. */
+function sideways(pen: Pen, text: string, x: number, y: number, color: string): void {
+  pen.ctx.save();
+  pen.ctx.translate(x, y);
+  pen.ctx.rotate(-Math.PI / 2);
+  pen.text(text, 0, 0, { align: "center", color });
+  pen.ctx.restore();
 }

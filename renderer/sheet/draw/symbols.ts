@@ -47,11 +47,12 @@ function drawPart(pen: Pen, part: PartSymbol, at: { x: number; y: number }, grid
     lead(body / 2, half);
     pen.box(at.x, at.y, part.isFlat ? body : across, part.isFlat ? across : body, { fill: pen.inks.paper, stroke: color, lineWidth: line });
   } else if (part.symbol === "capacitor") {
-    const [gap, plate] = [grid * 0.62, grid * 2];
+    // Two plates stay two plates however small they get.
+    const [gap, plate] = [Math.max(grid * 0.62, 1.75), grid * 2];
     lead(-half, -gap);
     lead(gap, half);
     for (const side of [-gap, gap]) {
-      pen.line(part.isFlat ? [at.x + side, at.y - plate, at.x + side, at.y + plate] : [at.x - plate, at.y + side, at.x + plate, at.y + side], color, line * 1.5);
+      pen.line(part.isFlat ? [at.x + side, at.y - plate, at.x + side, at.y + plate] : [at.x - plate, at.y + side, at.x + plate, at.y + side], color, grid >= 3 ? line * 1.5 : line);
     }
   } else drawWinding(pen, at, grid, half, color, lead);
 }
