@@ -1,31 +1,7 @@
 import * as v from "valibot";
 import { PROJECT_FORMAT, type Project } from "../model/project.ts";
 import { FAULTS_SCHEMA } from "./failures.ts";
-
-interface MethodDefinition {
-  readonly args: v.GenericSchema;
-  readonly result: v.GenericSchema;
-  /** Mutating calls run one at a time, in the order they came. */
-  readonly mutates: boolean;
-}
-
-function method<const D extends MethodDefinition>(definition: D): D {
-  return definition;
-}
-
-function list<T>(item: v.GenericSchema<T>): v.GenericSchema<readonly T[]> {
-  return v.array(item);
-}
-
-const NOTHING = v.strictObject({});
-
-/** Paths are absolute and never empty; no system takes one with a NUL in it. */
-const PATH = v.pipe(
-  v.string(),
-  v.minLength(1),
-  v.maxLength(4096),
-  v.check((path) => !path.includes("\0"), "must have no NUL character"),
-);
+import { list, method, NOTHING, PATH } from "./method.ts";
 
 const FINGERPRINT = v.pipe(v.string(), v.regex(/^[0-9a-f]{64}$/, "must be 64 hexadecimal digits"));
 
