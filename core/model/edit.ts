@@ -59,16 +59,21 @@ export function setPart(project: Project, id: string, role: string, part: Part |
   });
 }
 
+/** A part without what is known of one piece: the role's tolerance and a coil's winding stay. */
+export function bareOf(part: Part): Part {
+  return without(without(without(without(part, "stock"), "measured"), "piece"), "second");
+}
+
 /**
- * Gives a part another value. Which stock line it was and what the meter said go: both spoke of the piece that was there
- * before. An absent optional part comes in with its usual tolerance.
+ * Gives a part another value. Which stock line and piece it was, what the meter said and any second piece go: all spoke
+ * of what was there before. An absent optional part comes in with its usual tolerance.
  */
 export function setPartValue(project: Project, id: string, role: string, value: number): Patch {
   const block = project.blocks.find((b) => b.id === id);
   if (!block) return [];
   const part = partOf(block, role);
   if (part?.value === value) return [];
-  if (part) return setPart(project, id, role, { ...without(without(part, "stock"), "measured"), value });
+  if (part) return setPart(project, id, role, { ...bareOf(part), value });
   const definition = BLOCKS[block.kind].roles.find((r) => r.role === role);
   return definition ? setPart(project, id, role, { value, tolerance: definition.tolerance }) : [];
 }
@@ -81,9 +86,9 @@ export function setPartDatum(project: Project, id: string, role: string, key: "t
   return setPart(project, id, role, value === undefined ? without(part, key) : { ...part, [key]: value });
 }
 
-/** Names the op amp of a block. */
+/** Names the op amp of a block; its stock line goes, since it spoke of the type before. */
 export function setOpAmp(project: Project, id: string, opAmp: string): Patch {
-  return changeBlocks(project, [id], (block) => (block.opAmp === opAmp ? block : { ...block, opAmp }));
+  return changeBlocks(project, [id], (block) => (block.opAmp === opAmp ? block : { ...without(block, "opAmpStock"), opAmp }));
 }
 
 /** Names a block; an empty text takes its label away. */

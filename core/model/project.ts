@@ -1,5 +1,14 @@
 import type { BlockKind } from "../blocks/kinds.ts";
 
+/** Two pieces joined to make one value: what the second one is, and what the first alone is worth. */
+export interface SecondPart {
+  /** Stock line of the second piece. */
+  readonly stock?: string;
+  readonly value: number;
+  readonly joined: "series" | "parallel";
+  readonly firstValue: number;
+}
+
 /** A part: SI value, with what is known of the piece that will be soldered in. */
 export interface Part {
   readonly value: number;
@@ -9,6 +18,10 @@ export interface Part {
   readonly stock?: string;
   /** Value on the user's meter, SI. */
   readonly measured?: number;
+  /** Which measured piece of the parts library. */
+  readonly piece?: number;
+  /** Where two pieces make the value: `value` is both together, `stock` the first one's line. Changes no number. */
+  readonly second?: SecondPart;
   /** Inductors only: winding resistance in ohms, in series with the inductance. */
   readonly windingR?: number;
   /** Inductors only: self-capacitance in farads, across the winding. */
@@ -42,6 +55,8 @@ export interface Block {
   readonly at?: SheetPoint;
   /** Name in the project's `opAmps`, then in the built-in table, or `"ideal"`. */
   readonly opAmp?: string;
+  /** Stock line of the op amp. */
+  readonly opAmpStock?: string;
   readonly slider?: Slider;
   /** Keyed by the roles of the block's definition; other keys are kept and ignored. May be absent where a kind has no roles. */
   readonly parts?: Readonly<Record<string, Part>>;
@@ -72,6 +87,7 @@ export interface SupplyReference {
   readonly lowerR: Part;
   readonly bypassC: Part;
   readonly opAmp?: string;
+  readonly opAmpStock?: string;
 }
 
 export interface SingleSupply {

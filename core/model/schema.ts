@@ -43,7 +43,8 @@ const WANTED: Readonly<Record<string, string>> = {
   parts: "an object of parts by role",
   reference: "{ upperR, lowerR, bypassC, opAmp? }",
   position: "a number from 0 (full cut) to 1 (full boost)",
-  ...Object.fromEntries(["value", "positive", "negative", "voltage", "openLoopGain", "gainBandwidth", "inputR"].map((key) => [key, "a number above 0"])),
+  joined: "series or parallel",
+  ...Object.fromEntries(["value", "firstValue", "positive", "negative", "voltage", "openLoopGain", "gainBandwidth", "inputR"].map((key) => [key, "a number above 0"])),
   outputR: "a number of 0 or more",
   x: "a number",
   y: "a number",
@@ -65,7 +66,11 @@ function oneOf<const Names extends readonly string[]>(names: Names) {
   return v.picklist(names, expected(`one of ${names.join(", ")}`));
 }
 
-const partEntries = { value: above0, tolerance: v.optional(fraction), stock: v.optional(text), measured: v.optional(above0) };
+const secondSchema = object({ stock: v.optional(text), value: above0, joined: oneOf(["series", "parallel"]), firstValue: above0 });
+const partEntries = {
+  value: above0, tolerance: v.optional(fraction), stock: v.optional(text), measured: v.optional(above0),
+  piece: v.optional(number("the number of a measured piece, 1 or more", (value) => Number.isInteger(value) && value > 0)), second: v.optional(secondSchema),
+};
 const partSchema = object(partEntries);
 const coilSchema = object({ ...partEntries, windingR: v.optional(atLeast0), selfC: v.optional(atLeast0) });
 
@@ -92,6 +97,7 @@ function blockSchema(kind: BlockKind): v.GenericSchema {
     label: v.optional(text),
     at: v.optional(object({ x: finite, y: finite })),
     opAmp: hasOpAmp ? name : v.optional(v.unknown()),
+    opAmpStock: v.optional(text),
     slider: hasSlider ? sliderSchema : v.optional(v.unknown()),
     parts: roles.every((r) => r.isOptional) ? v.optional(parts) : parts,
   });
@@ -111,7 +117,7 @@ const supplySchema = v.lazy((input: unknown): v.GenericSchema => {
   const kind = typeof input === "object" && input !== null && "kind" in input ? input.kind : undefined;
   if (kind === "split") return object({ kind: v.literal("split"), positive: above0, negative: above0 });
   if (kind === "single") {
-    return object({ kind: v.literal("single"), voltage: above0, reference: object({ upperR: partSchema, lowerR: partSchema, bypassC: partSchema, opAmp: v.optional(name) }) });
+    return object({ kind: v.literal("single"), voltage: above0, reference: object({ upperR: partSchema, lowerR: partSchema, bypassC: partSchema, opAmp: v.optional(name), opAmpStock: v.optional(text) }) });
   }
   return object({ kind: oneOf(["split", "single"]) });
 });

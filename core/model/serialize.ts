@@ -7,10 +7,11 @@ type JsonObject = { readonly [key: string]: Json };
 
 const PROJECT_KEYS = ["format", "version", "name", "notes", "supply", "temperature", "blocks", "wires", "opAmps"];
 const SUPPLY_KEYS = ["kind", "positive", "negative", "voltage", "reference"];
-const REFERENCE_KEYS = ["upperR", "lowerR", "bypassC", "opAmp"];
-const BLOCK_KEYS = ["id", "kind", "label", "at", "opAmp", "slider", "parts"];
+const REFERENCE_KEYS = ["upperR", "lowerR", "bypassC", "opAmp", "opAmpStock"];
+const BLOCK_KEYS = ["id", "kind", "label", "at", "opAmp", "opAmpStock", "slider", "parts"];
 const SLIDER_KEYS = ["track", "law", "position", "endR"];
-const PART_KEYS = ["value", "tolerance", "stock", "measured", "windingR", "selfC"];
+const PART_KEYS = ["value", "tolerance", "stock", "measured", "piece", "second", "windingR", "selfC"];
+const SECOND_KEYS = ["stock", "value", "joined", "firstValue"];
 const OP_AMP_KEYS = [
   "openLoopGain", "gainBandwidth", "inputR", "outputR", "slewRate", "noiseVoltage", "noiseVoltageCorner", "noiseCurrent",
   "noiseCurrentCorner", "swingLoss", "outputCurrent", "offsetVoltage", "biasCurrent", "supplyCurrent",
@@ -36,7 +37,7 @@ function ordered(object: Json | undefined, keys: readonly string[], inner: Reado
   return Object.fromEntries(entries.map(({ key }) => [key, inner[key] ? inner[key](object[key]) : object[key]]));
 }
 
-const part = (value: Json): Json => ordered(value, PART_KEYS);
+const part = (value: Json): Json => ordered(value, PART_KEYS, { second: (second) => ordered(second, SECOND_KEYS) });
 
 function everyEntry(value: Json, change: (value: Json) => Json): Json {
   return isObject(value) ? Object.fromEntries(Object.entries(value).map(([key, inner]) => [key, change(inner)])) : value;

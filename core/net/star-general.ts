@@ -24,7 +24,7 @@ class Below {
  * dH/ds along with H. Same elimination as the fast columns in star.ts, which it is tested against.
  */
 export class GeneralStar {
-  readonly board: CompiledBoard;
+  #board: CompiledBoard;
   readonly omega: Float64Array;
   /** Kept leg ports, one for every band and frequency. */
   readonly #legs: readonly (readonly LegPort[])[];
@@ -37,7 +37,7 @@ export class GeneralStar {
   readonly #d: readonly Dual[] = Array.from({ length: 28 }, () => new Dual());
 
   constructor(board: CompiledBoard, omega: Float64Array) {
-    this.board = board;
+    this.#board = board;
     this.omega = omega;
     this.#ra = new Float64Array(board.bands.length);
     this.#rb = new Float64Array(board.bands.length);
@@ -46,17 +46,24 @@ export class GeneralStar {
     this.retune();
   }
 
+  /** Puts another version of the same board in; legs that differ are worked out anew. */
+  replace(board: CompiledBoard): void {
+    const old = this.#board;
+    this.#board = board;
+    for (const [index, band] of board.bands.entries()) if (band.leg !== old.bands[index].leg) for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k]);
+  }
+
   /** Works out the legs anew after `omega` has changed. */
   retune(): void {
-    this.board.bands.forEach((band, index) => {
+    this.#board.bands.forEach((band, index) => {
       for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k]);
     });
   }
 
   run(positions: Float64Array, out: TransferColumns, weights: Float64Array): void {
-    const { items } = this.board;
+    const { items } = this.#board;
     const h = this.#h;
-    for (const band of this.board.bands) {
+    for (const band of this.#board.bands) {
       const { boost, cut } = band.resistances(positions[band.index]);
       this.#ra[band.index] = boost;
       this.#rb[band.index] = cut;
@@ -81,7 +88,7 @@ export class GeneralStar {
     const omega = this.omega[k];
     const [sm, sp, mp, mr, pr, rm, rp, rr, y, t, e, yf, alpha, beta, gamma, mx, px, a11, a12, a21, a22, det, vm, vo, vp, q, load, b1] = this.#d;
     for (const sum of [sm, sp, mp, mr, pr, rm, rp, rr]) sum.real(0);
-    const hasReference = this.board.reference !== undefined;
+    const hasReference = this.#board.reference !== undefined;
     for (const band of item.bands) {
       const ra = this.#ra[band.index];
       const rb = this.#rb[band.index];
@@ -193,7 +200,7 @@ export class GeneralStar {
     // v·(1 + Z·(loadG + ii)) = 1 + Z·(loadG − ir)·v_r
     d.shift(below.ii, item.loadG).mul(d, z).shift(d, 1);
     vr.real(0);
-    const { reference } = this.board;
+    const { reference } = this.#board;
     if (reference) {
       // v_r·(Yref + loadG + rr) = (loadG − ri)·v
       this.#referenceAdmittance(reference, omega, n).add(n, below.rr).shift(n, item.loadG);

@@ -5,7 +5,7 @@
  */
 import { BLOCKS } from "../blocks/index.ts";
 import type { Leg } from "../blocks/definition.ts";
-import type { OpAmpModel } from "../model/project.ts";
+import type { Block, OpAmpModel, Project } from "../model/project.ts";
 import type { Board } from "./board.ts";
 import type { TransferColumns } from "./transfer.ts";
 import { GeneralStar } from "./star-general.ts";
@@ -67,34 +67,64 @@ export function compileBoard(board: Board, opts: ValueOpts = {}): CompiledBoard 
   const bands: BandForm[] = [];
   const positions: number[] = [];
   const items = board.chain.map(({ block, driver, bands: hung }): ItemForm => {
-    const values = blockValues(block, opts);
-    const amp = BLOCKS[block.kind].hasOpAmp ? opAmpModel(project, block.opAmp, `blocks.${block.id}.opAmp`) : "ideal";
-    switch (block.kind) {
-      case "input":
-        return { type: "input", sourceR: values.sourceR, couplingC: values.couplingC ?? 0, loadG: values.loadR === undefined ? 0 : 1 / values.loadR };
-      case "buffer":
-        return { type: "buffer", amp: ampForm(amp), driver };
-      case "output":
-        return { type: "output", driver, seriesR: values.seriesR, couplingC: values.couplingC ?? 0, loadR: values.loadR };
-      default: {
-        const stageBands = hung.map((band): BandForm => {
-          const definition = BLOCKS[band.kind];
-          const bandAmp = definition.hasOpAmp ? opAmpModel(project, band.opAmp, `blocks.${band.id}.opAmp`) : "ideal";
-          const slider = band.slider!;
-          const index = positions.push(sliderPosition(band, opts)) - 1;
-          return { id: band.id, index, leg: definition.leg!(blockValues(band, opts), bandAmp), resistances: (x) => sliderResistances(slider, x, opts) };
-        });
-        bands.push(...stageBands);
-        return { type: "stage", amp: ampForm(amp), driver, inputG: 1 / values.inputR, feedbackG: 1 / values.feedbackR, feedbackC: values.feedbackC ?? 0, bands: stageBands };
-      }
-    }
+    const stageBands = hung.map((band) => bandForm(project, band, positions.push(sliderPosition(band, opts)) - 1, opts));
+    bands.push(...stageBands);
+    return itemForm(project, block, driver, stageBands, opts);
   });
   const path: number[] = [];
   for (let at = board.output; at >= 0; at = board.chain[at].driver) path.unshift(at);
   return { items, output: board.output, path, bands, reference: referenceForm(board, opts), positions: Float64Array.from(positions) };
 }
 
-function referenceForm(board: Board, opts: ValueOpts): ReferenceForm | undefined {
+function bandForm(project: Project, band: Block, index: number, opts: ValueOpts): BandForm {
+  const definition = BLOCKS[band.kind];
+  const amp = definition.hasOpAmp ? opAmpModel(project, band.opAmp, `blocks.${band.id}.opAmp`) : "ideal";
+  const slider = band.slider!;
+  return { id: band.id, index, leg: definition.leg!(blockValues(band, opts), amp), resistances: (x) => sliderResistances(slider, x, opts) };
+}
+
+function itemForm(project: Project, block: Block, driver: number, bands: readonly BandForm[], opts: ValueOpts): ItemForm {
+  const values = blockValues(block, opts);
+  const amp = BLOCKS[block.kind].hasOpAmp ? opAmpModel(project, block.opAmp, `blocks.${block.id}.opAmp`) : "ideal";
+  switch (block.kind) {
+    case "input":
+      return { type: "input", sourceR: values.sourceR, couplingC: values.couplingC ?? 0, loadG: values.loadR === undefined ? 0 : 1 / values.loadR };
+    case "buffer":
+      return { type: "buffer", amp: ampForm(amp), driver };
+    case "output":
+      return { type: "output", driver, seriesR: values.seriesR, couplingC: values.couplingC ?? 0, loadR: values.loadR };
+    default:
+      return { type: "stage", amp: ampForm(amp), driver, inputG: 1 / values.inputR, feedbackG: 1 / values.feedbackR, feedbackC: values.feedbackC ?? 0, bands };
+  }
+}
+
+/**
+ * A compiled board with other parts, op amp or track in one block, everything else shared with the one it came from: what
+ * trying a part in one place costs. Wiring and slider positions stay.
+ * @param board of which `compiled` was made; @param block with its new values
+ * @throws RangeError where the board has no block of that id; FaultError where its op amp is unknown
+ */
+export function recompileBlock(compiled: CompiledBoard, board: Board, block: Block, opts: ValueOpts = {}): CompiledBoard {
+  const { project } = board;
+  const at = board.chain.findIndex((item) => item.block.id === block.id);
+  if (at >= 0) {
+    const old = compiled.items[at];
+    const item = itemForm(project, block, board.chain[at].driver, old.type === "stage" ? old.bands : [], opts);
+    return { ...compiled, items: compiled.items.with(at, item) };
+  }
+  const old = compiled.bands.find((band) => band.id === block.id);
+  if (!old) throw new RangeError(`the board has no block “${block.id}”`);
+  const form = bandForm(project, block, old.index, opts);
+  const bands = compiled.bands.with(old.index, form);
+  return { ...compiled, bands, items: compiled.items.map((item) => (item.type === "stage" && item.bands.includes(old) ? { ...item, bands: item.bands.map((band) => (band === old ? form : band)) } : item)) };
+}
+
+/** A compiled board with another supply reference, everything else shared. */
+export function recompileReference(compiled: CompiledBoard, project: Project, opts: ValueOpts = {}): CompiledBoard {
+  return { ...compiled, reference: referenceForm({ project }, opts) };
+}
+
+function referenceForm(board: Pick<Board, "project">, opts: ValueOpts): ReferenceForm | undefined {
   const { supply } = board.project;
   if (supply.kind === "split") return undefined;
   const { upperR, lowerR, bypassC, opAmp } = supply.reference;
@@ -109,7 +139,7 @@ function referenceForm(board: Board, opts: ValueOpts): ReferenceForm | undefined
  * for other slider positions costs one division a band and frequency. Nothing is allocated in `run`.
  */
 export class Sweep {
-  readonly board: CompiledBoard;
+  #board: CompiledBoard;
   readonly omega: Float64Array;
   readonly #ones: Float64Array;
   readonly #legRe: Float64Array[] = [];
@@ -124,7 +154,7 @@ export class Sweep {
 
   /** @param omega rad/s, all above 0; kept, not copied: change it through `retune` alone */
   constructor(board: CompiledBoard, omega: Float64Array) {
-    this.board = board;
+    this.#board = board;
     this.omega = omega;
     this.#ones = new Float64Array(board.bands.length).fill(1);
     const points = omega.length;
@@ -143,11 +173,27 @@ export class Sweep {
     }
   }
 
+  get board(): CompiledBoard {
+    return this.#board;
+  }
+
+  /**
+   * Puts another version of the same board in (see `recompileBlock`): only the legs that differ are worked out anew.
+   * @throws RangeError where it has other bands, or where one has a reference with an impedance and the other has not
+   */
+  replace(board: CompiledBoard): void {
+    const old = this.#board;
+    if (board.bands.length !== old.bands.length || board.items.length !== old.items.length || (board.reference === undefined) !== (old.reference === undefined)) throw new RangeError("not a version of the same board");
+    this.#board = board;
+    this.#general?.replace(board);
+    for (const [index, re] of this.#legRe.entries()) if (board.bands[index].leg !== old.bands[index].leg) board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
+  }
+
   /** Moves a sweep of one point to another frequency, rad/s: what root-finding uses, without allocating. */
   retune(omega: number): void {
     this.omega[0] = omega;
     this.#general?.retune();
-    for (const [index, re] of this.#legRe.entries()) this.board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
+    for (const [index, re] of this.#legRe.entries()) this.#board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
   }
 
   /**
@@ -156,12 +202,12 @@ export class Sweep {
    * @param weights factor on each band's admittance, track included: 1 as it stands (the default), 0 as if it were not there
    */
   run(positions: Float64Array, out: TransferColumns, weights: Float64Array = this.#ones): void {
-    if (out.slopeRe || this.board.reference) {
-      this.#general ??= new GeneralStar(this.board, this.omega);
+    if (out.slopeRe || this.#board.reference) {
+      this.#general ??= new GeneralStar(this.#board, this.omega);
       this.#general.run(positions, out, weights);
       return;
     }
-    const { items, path } = this.board;
+    const { items, path } = this.#board;
     for (const [re, im] of this.#load) {
       re.fill(0);
       im.fill(0);
