@@ -1,8 +1,8 @@
 import { BLOCKS } from "../blocks/index.ts";
 import { RAIL_GAP } from "../blocks/boost-cut-stage/drawing.ts";
 import type { Block } from "../model/project.ts";
-import { GRID, LINE } from "./frame.ts";
-import { clamp, type Box } from "./units.ts";
+import { GRID, LINE, valueFontSize } from "./frame.ts";
+import { clamp, type Box, type SheetPlace } from "./units.ts";
 
 /** How much is written: by how wide a band's slot is. */
 export type Detail = "full" | "short" | "slim";
@@ -17,7 +17,8 @@ export interface BandPlace {
   readonly trueX: number | null;
   /** Hz. */
   readonly frequency: number | null;
-  readonly isByHand: boolean;
+  /** Where it was put by hand; null where the ruling decides. */
+  readonly hand: SheetPlace | null;
   /** The band hangs on no bus: nothing to join it to. */
   readonly isLoose: boolean;
   readonly slot: number;
@@ -69,11 +70,13 @@ export function bandHeights(scale: number, slot: number, marginScale: number): B
   };
 }
 
-/** Room that a written value takes, px, and a gyrator leg without values, grid units. */
+/** Width of a written value in heights of its letters; and in pixels where they are smallest. */
+const VALUE_CHARACTERS = 2.5;
 const VALUE_ROOM = 26;
+/** Width of a gyrator leg without values, grid units. */
 const LEG_UNITS = 14.4;
 /** Smallest grid at which values stand clear of the symbols. */
-const LEAST_VALUE_GRID = 2.95;
+const LEAST_VALUE_GRID = 2.8;
 
 /** Pixels a grid unit of a leg: with its values beside it where there is room, else without and as large as fits. */
 function legGridOf(scale: number, slot: number): number {
@@ -95,7 +98,7 @@ export interface BandAt {
   readonly x: number;
   readonly trueX: number | null;
   readonly frequency: number | null;
-  readonly isByHand: boolean;
+  readonly hand: SheetPlace | null;
   readonly isLoose: boolean;
   readonly isStaggered: boolean;
   /** Pixels that a band moved by hand hangs lower. */
@@ -118,12 +121,12 @@ export function placeBand(at: BandAt): BandPlace {
   const hasValues = heights.legGrid >= LEAST_VALUE_GRID;
   const { drawing } = BLOCKS[block.kind];
   // A branching leg is centred with its values; a straight one stands under its slider.
-  const lopsided = drawing.left < -5 ? -((drawing.left + 2.7) * heights.legGrid + (hasValues ? VALUE_ROOM : 0)) / 2 : 0;
+  const lopsided = drawing.left < -5 ? -((drawing.left + 2.7) * heights.legGrid + (hasValues ? valueFontSize(heights.legGrid) * VALUE_CHARACTERS : 0)) / 2 : 0;
   const legX = Math.abs(lopsided - (leadX - x)) < 4 ? leadX : x + Math.round(lopsided);
   const legY = trackBottom + heights.lead;
   const figuresTop = Math.round(legY + at.legUnits * heights.legGrid + 10);
   return {
-    id: block.id, rail: at.rail, x, trueX: at.trueX, frequency: at.frequency, isByHand: at.isByHand, isLoose: at.isLoose, slot, detail, hasValues,
+    id: block.id, rail: at.rail, x, trueX: at.trueX, frequency: at.frequency, hand: at.hand, isLoose: at.isLoose, slot, detail, hasValues,
     isStaggered: at.isStaggered, leaderTop: at.leaderTop,
     boostRailY, cutRailY, trackTop, trackBottom, knobHalf, returnX: x - knobHalf - 4, leadX, legX, legY,
     legGrid: heights.legGrid, figuresTop,

@@ -29,7 +29,7 @@ interface Pin {
 
 /** The in of a stage and its out, in grid units from where its rails begin. */
 const STAGE_IN = { x: -46, y: 2 };
-const STAGE_OUT = { x: -2, y: -14 };
+const STAGE_OUT = { x: -0.5, y: -14 };
 const BUFFER_LENGTH = 14;
 /** Grid units that buffers in front of a stage hang below its in. */
 export const FEED_DROP = 5;

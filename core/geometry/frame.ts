@@ -13,7 +13,7 @@ const END_PAD = 30;
 export const LINE = 15;
 /** Scales of the board: smaller and its symbols run together, larger and one band fills the sheet. */
 export const LEAST_SCALE = 0.5;
-const MOST_SCALE = 2.4;
+const MOST_SCALE = 1.7;
 /** A band with all its values takes this much at scale 1. */
 export const FULL_SLOT = 88;
 
@@ -83,4 +83,9 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
     board: { left: 0, right: width, top: responseBottom + AXIS, bottom: height },
     scale: clamp(fitting * zoom, LEAST_SCALE, MOST_SCALE),
   };
+}
+
+/** Text size for drawings at a scale: it follows the grid, but never below what can be read. */
+export function valueFontSize(grid: number): number {
+  return Math.round(clamp(grid * 2.7, 10, 16) * 2) / 2;
 }

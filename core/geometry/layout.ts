@@ -8,7 +8,7 @@ import { FEED_DROP, placeChain, type ChainPlace, type WirePath } from "./chain.t
 import { frameOf, FULL_SLOT, GRID, LINE, type Frame } from "./frame.ts";
 import { slotWidth, spread } from "./placement.ts";
 import { lastRail, railsOf, type Rail, type RailPlace, type Rails } from "./rails.ts";
-import { frequencyOfSheetX, pixelOf, sheetXOf, type Span } from "./ruling.ts";
+import { frequencyAt, frequencyOfSheetX, pixelOf, sheetXOf, type Span } from "./ruling.ts";
 import { clamp, sheetUnits, type SheetPlace } from "./units.ts";
 
 /** Sheet units from one rail to the next in files, whatever the screen makes of it. */
@@ -103,7 +103,7 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
     const bandSizes = bandHeights(scale, slots[index], frame.marginScale);
     const placed = placeRail(rail, index, { frame, scale, slot: slots[index], wanted: xs[index], heights: bandSizes, legUnits: legUnits[index], railY: y, leaderTop: y - above + 6, figures: opts.figures, ...(moving ? { moving } : {}) });
     bands.push(...placed);
-    places.push({ rail, index, top: top + shift, y, gap: bandSizes.rail, bottom: top + heights[index] + shift, slot: slots[index], figuresTop: placed.find((b) => !b.isByHand)?.figuresTop ?? null });
+    places.push({ rail, index, top: top + shift, y, gap: bandSizes.rail, bottom: top + heights[index] + shift, slot: slots[index], figuresTop: placed.find((b) => b.hand === null)?.figuresTop ?? null });
     top += heights[index];
   });
   const { chain, wires, reference } = placeChain(project, rails, places, frame, chainGrid, hasReferenceAmp);
@@ -140,9 +140,8 @@ function railHeight(rail: Rail, rails: Rails, index: number, size: RailSize): nu
 function slotsOf(rails: Rails, wanted: (readonly (number | null)[])[], frame: Frame, scale: number): number[] {
   const ends = extent(frame);
   return rails.rails.map((rail, i) => {
-    const xs = wanted[i].filter((x, n): x is number => x !== null && rail.bands[n].at?.byHand !== true);
-    const levels = wanted[i].length - wanted[i].filter((x) => x !== null).length;
-    return slotWidth(xs, FULL_SLOT * scale, LEAST_SLOT, ((ends.right - ends.left) * xs.length) / Math.max(1, xs.length + levels));
+    const xs = wanted[i].filter((_, n) => rail.bands[n].at?.byHand !== true).map((x) => x ?? ends.right);
+    return slotWidth(xs, FULL_SLOT * scale, LEAST_SLOT, ends.right - ends.left);
   });
 }
 
@@ -175,8 +174,8 @@ function placeRail(rail: Rail, index: number, opts: RailOpts): BandPlace[] {
     const hand = hands[n];
     const x = hand ? pixelOf(frame.ruling, frequencyOfSheetX(hand.x)) : xs[free.indexOf(n)];
     return placeBand({
-      block, rail: index, railY: opts.railY, legUnits: opts.legUnits, heights: opts.heights, x, trueX: wanted[n],
-      frequency: bandFrequency(block, opts.figures?.get(block.id)), isByHand: hand !== null, isLoose: rail.isLoose,
+      block, rail: index, railY: opts.railY, legUnits: opts.legUnits, heights: opts.heights, x, trueX: wanted[n], hand,
+      frequency: bandFrequency(block, opts.figures?.get(block.id)), isLoose: rail.isLoose,
       isStaggered: slot < 36 && order.indexOf(n) % 2 === 1,
       lower: hand ? Math.max(0, hand.y - RAIL_UNITS * index) * scale : 0, slot, scale, leaderTop: opts.leaderTop,
     });
@@ -190,10 +189,11 @@ export function movedPlace(layout: SheetLayout, id: string, dx: number, dy: numb
   const band = layout.bands.find((b) => b.id === id);
   const { ruling } = layout.frame;
   if (band) {
-    const frequency = ruling.from * (ruling.to / ruling.from) ** ((band.x + dx - ruling.left) / (ruling.right - ruling.left));
-    const heights = bandHeights(layout.scale, band.slot, layout.frame.marginScale);
-    const lower = band.trackTop - band.cutRailY - heights.drop + dy;
-    return { x: tidy(sheetXOf(frequency)), y: tidy(RAIL_UNITS * band.rail + Math.max(0, lower) / layout.scale), byHand: true };
+    const rail = RAIL_UNITS * band.rail;
+    // From the exact place, so that a move along one axis leaves the other as it was.
+    const { x, y } = band.hand ?? { x: sheetXOf(frequencyAt(ruling, band.x)), y: rail };
+    const moved = sheetXOf(frequencyAt(ruling, pixelOf(ruling, frequencyOfSheetX(x)) + dx));
+    return { x: tidy(moved), y: tidy(Math.max(rail, y + dy / layout.scale)), byHand: true };
   }
   const rail = layout.rails.find((r) => r.rail.stage?.id === id);
   if (!rail) return null;

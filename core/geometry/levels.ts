@@ -26,18 +26,22 @@ export function levelSpan(peaks: Iterable<number>, curves: Iterable<Float64Array
       if (value < bottom) bottom = value;
     }
   }
-  const step = (value: number): number => Math.ceil((value + 0.5) / 3) * 3;
-  return { top: step(top), bottom: -step(Math.min(-bottom, Math.max(MOST_BELOW, top))) };
+  return { top: stepped(top), bottom: -stepped(Math.min(-bottom, Math.max(MOST_BELOW, top))) };
 }
 
 /** Multiples of a 1-2-5 step inside the span, ascending, at least `leastGap` pixels apart on an axis of `height` pixels. */
-export function levelTicks(span: LevelSpan, height: number, leastGap = 19): number[] {
+export function levelTicks(span: LevelSpan, height: number, leastGap = 24): number[] {
   const perPixel = (span.top - span.bottom) / height;
   const steps = [1, 2, 5, 10, 20, 50, 100];
   const step = steps.find((s) => s / perPixel >= leastGap) ?? 100;
   const out: number[] = [];
   for (let n = Math.ceil(span.bottom / step); n * step <= span.top; n++) out.push(n * step);
   return out;
+}
+
+/** Up to the next 3 dB, a little room included. */
+function stepped(value: number): number {
+  return Math.ceil((value + 0.5) / 3) * 3;
 }
 
 export function levelY(span: LevelSpan, top: number, height: number, gain: number): number {

@@ -20,7 +20,7 @@ export function spread(wanted: readonly number[], width: number, left: number, r
     }
     pools.push(pool);
   });
-  const out = new Array<number>(count);
+  const out = wanted.map(() => 0);
   let rank = 0;
   const least = left + pitch / 2;
   const most = right - pitch / 2 - (count - 1) * pitch;

@@ -40,8 +40,6 @@ export function railsOf(project: Project): Rails {
     if (from.endsWith(".out") && to.endsWith(".in") && !driverOf.has(target)) driverOf.set(target, source);
     if (from.endsWith(".bus") && to.endsWith(".bus") && !stageOfBand.has(target)) stageOfBand.set(target, source);
   }
-  const isBand = (b: Block): boolean => BLOCKS[b.kind].place === "band";
-  const isStage = (b: Block): boolean => BLOCKS[b.kind].place === "chain" && BLOCKS[b.kind].ports.includes("bus");
   const stages = project.blocks.filter(isStage);
   const depth = (block: Block): number => {
     let steps = 0;
@@ -84,6 +82,14 @@ export function lastRail(rails: Rails): number {
   const driving = rails.rails.findIndex((rail) => rail.stage !== null && rail.stage.id === rails.outputFeed.from);
   if (driving >= 0) return driving;
   return Math.max(0, rails.rails.findLastIndex((rail) => !rail.isLoose));
+}
+
+function isBand(block: Block): boolean {
+  return BLOCKS[block.kind].place === "band";
+}
+
+function isStage(block: Block): boolean {
+  return BLOCKS[block.kind].place === "chain" && BLOCKS[block.kind].ports.includes("bus");
 }
 
 /** Where a rail is, in pixels. */

@@ -5,7 +5,8 @@ import { partsOf, type Block, type Part } from "../model/project.ts";
 import { formatCode } from "../units.ts";
 import type { BandPlace } from "./band-place.ts";
 import type { ChainPlace } from "./chain.ts";
-import { clamp, type Box } from "./units.ts";
+import { valueFontSize } from "./frame.ts";
+import type { Box } from "./units.ts";
 
 export interface ValueTarget {
   readonly id: string;
@@ -23,11 +24,6 @@ export interface DrawingPlace {
   readonly x: number;
   readonly y: number;
   readonly grid: number;
-}
-
-/** Text size for drawings at a scale: it follows the grid, but never below what can be read. */
-export function valueFontSize(grid: number): number {
-  return Math.round(clamp(grid * 2.7, 10, 16) * 2) / 2;
 }
 
 /** A value as the sheet writes it: the letter code of the trade, such as 4k7, 470R or 3n9, of at most three digits. */

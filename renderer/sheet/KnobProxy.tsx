@@ -27,10 +27,13 @@ interface KnobProxyProps {
 const STEP = 0.01;
 const BIG_STEP = 0.1;
 
+function to(value: number): number {
+  return Math.max(0, Math.min(1, Math.round(value * 1e4) / 1e4));
+}
+
 /** Where a key takes a slider; null for keys that are not its own. */
 export function keyedPosition(key: string, isShift: boolean, position: number): number | null {
   const step = isShift ? BIG_STEP : STEP;
-  const to = (value: number): number => Math.max(0, Math.min(1, Math.round(value * 1e4) / 1e4));
   switch (key) {
     case "ArrowUp":
     case "ArrowRight":

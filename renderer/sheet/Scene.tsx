@@ -13,5 +13,7 @@ export interface SceneProps {
 
 /** One drawing on a layer. */
 export const Scene = memo(function Scene({ inks, ratio, draw }: SceneProps) {
+  // Konva's name for the canvas context that it wraps.
+  // oxlint-disable-next-line no-underscore-dangle
   return <Shape listening={false} perfectDrawEnabled={false} sceneFunc={(context: Context) => draw(new Pen(context._context, inks, ratio))} />;
 });

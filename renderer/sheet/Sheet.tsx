@@ -18,7 +18,7 @@ import { ValueEditor } from "./ValueEditor.tsx";
 import { pannedView, revealingView, useView, zoomedView } from "./view.ts";
 
 /** The drawing sheet: the response above, the board below, on one frequency ruling. It reports gestures and decides nothing. */
-export function Sheet(props: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
+export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
   const { project, results, selection, theme, range } = props;
   const element = useRef<HTMLDivElement>(null);
   const size = useSize(element);
@@ -40,13 +40,20 @@ export function Sheet(props: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
   );
   const layout = useMemo(() => (whole ? layoutSheet({ ...whole, ...view, ...(moving ? { moving } : {}) }) : null), [whole, view, moving]);
 
+  // Handlers that stay the same from move to move, so that only the proxy that changes is rendered again.
+  const latest = useRef({ props, layout, view, blocks });
+  useLayoutEffect(() => {
+    latest.current = { props, layout, view, blocks };
+  });
   const onCursorAt = useCallback(
     (frequency: number | null) => {
       overlay.setState({ cursor: frequency });
-      const reading = frequency === null || !results ? null : readCurve(results.total, frequency);
-      props.onCursor(frequency === null || !reading ? null : { frequency, ...reading });
+      const now = latest.current.props;
+      const shown = now.results;
+      const reading = frequency === null || !shown ? null : readCurve(shown.total, frequency);
+      now.onCursor(frequency === null || !reading ? null : { frequency, ...reading });
     },
-    [overlay, results, props],
+    [overlay],
   );
   const pan = (dx: number, dy: number): void => {
     if (layout) setView(pannedView(view, layout, dx, dy));
@@ -60,11 +67,6 @@ export function Sheet(props: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
     onEdit: (value) => edit(value.id, value.role), onCursorAt,
   });
 
-  // The proxies' handlers stay the same from move to move, so that only the proxy that changes is rendered again.
-  const latest = useRef({ props, layout, view, blocks });
-  useLayoutEffect(() => {
-    latest.current = { props, layout, view, blocks };
-  });
   const actions = useMemo(
     () => ({
       onKnobStart: (id: string) => {
@@ -90,7 +92,7 @@ export function Sheet(props: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
     [setView],
   );
 
-  useImperativeHandle(props.ref, (): SheetHandle => ({
+  useImperativeHandle(ref, (): SheetHandle => ({
     fit,
     zoomBy: (factor) => {
       if (layout) zoom(factor, { x: (layout.frame.ruling.left + layout.frame.ruling.right) / 2, y: layout.frame.board.top });

@@ -1,5 +1,5 @@
 import type { BandFigures } from "../../core/analysis/bands.ts";
-import type { Project } from "../../core/model/project.ts";
+import type { Project, SheetPoint } from "../../core/model/project.ts";
 import type { Board } from "../../core/net/board.ts";
 
 /** A response in columns: Hz, dB, degrees. */
@@ -39,7 +39,9 @@ export interface SheetProps {
   onKnobEnd(): void;
   onKnobCancel(): void;
   /** One undo step a drag. */
-  onMove(moves: readonly { readonly id: string; readonly at: { readonly x: number; readonly y: number } }[]): void;
+  onMove(moves: readonly { readonly id: string; readonly at: SheetPoint }[]): void;
+  /** Blocks dragged with Alt: copies go to these places, the blocks stay. Absent: they are moved. */
+  onDuplicate?(copies: readonly { readonly id: string; readonly at: SheetPoint }[]): void;
   /** Returns what is wrong with the text, or null when it was taken. */
   onEditValue(id: string, role: string, text: string): string | null;
   onContextMenu(at: { readonly clientX: number; readonly clientY: number; readonly target: string | null }): void;
@@ -52,7 +54,7 @@ export interface SheetHandle {
   zoomBy(factor: number): void;
   panBy(dx: number, dy: number): void;
   /** Places that put every band back under its own frequency. */
-  arrange(): { id: string; at: { x: number; y: number } }[];
+  arrange(): { id: string; at: SheetPoint }[];
   focusBlock(id: string): void;
   editValue(id: string): void;
   /** Page coordinates, or null where it is not on the sheet. */

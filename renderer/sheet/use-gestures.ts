@@ -82,6 +82,7 @@ export function useGestures(opts: GestureOpts) {
     const isSelected = props.selection.includes(hit.id);
     if (!isSelected) props.onSelect([hit.id], "replace");
     if (hit.part === "knob") {
+      opts.onCursorAt(null);
       const position = blocks.get(hit.id)?.slider?.position ?? 0.5;
       gesture.current = { kind: "knob", id: hit.id, isStarted: false, isFine: event.shiftKey, fromY: at.y, fromPosition: position };
       return;
@@ -143,6 +144,11 @@ export function useGestures(opts: GestureOpts) {
     if (style !== cursorStyle) setCursorStyle(style);
   };
 
+  const report = (moves: Parameters<SheetProps["onMove"]>[0], isCopy: boolean): void => {
+    if (isCopy && props.onDuplicate) props.onDuplicate(moves);
+    else props.onMove(moves);
+  };
+
   const onPointerUp = (event: PointerEvent<HTMLDivElement>): void => {
     const active = gesture.current;
     if (!active || !layout) return;
@@ -154,7 +160,7 @@ export function useGestures(opts: GestureOpts) {
       else if (!active.isAdding) props.onSelect([], "replace");
     }
     if (active.kind === "move") {
-      if (active.isStarted && opts.moving && opts.moving.size > 0) props.onMove([...opts.moving].map(([id, at]) => ({ id, at })));
+      if (active.isStarted && opts.moving && opts.moving.size > 0) report([...opts.moving].map(([id, at]) => ({ id, at })), event.altKey);
       // A click on one of several selected blocks picks that one.
       else if (!active.isStarted && active.ids.length > 1) props.onSelect([active.id], "replace");
     }

@@ -51,8 +51,12 @@ export function useFontsReady(): boolean {
     };
     const timer = setTimeout(done, FONT_PATIENCE);
     // Each weight that the sheet sets, with letters beyond Latin that values need.
-    const wanted = [400, 600].map((weight) => document.fonts.load(`${weight} 12px ${FONT}`, "AΩµ±−"));
-    Promise.all(wanted).then(done, done);
+    const load = async (): Promise<void> => {
+      const wanted = [400, 600].map((weight) => document.fonts.load(`${weight} 12px ${FONT}`, "AΩµ±−"));
+      await Promise.allSettled(wanted);
+      done();
+    };
+    void load();
     return () => {
       isGone = true;
       clearTimeout(timer);

@@ -38,10 +38,14 @@ export function pannedView(view: View, layout: SheetLayout, dx: number, dy: numb
   };
 }
 
+function beyond(value: number, least: number, most: number): number {
+  if (value < least) return least - value;
+  return value > most ? most - value : 0;
+}
+
 /** The view moved just far enough to show a place. */
 export function revealingView(view: View, layout: SheetLayout, at: { x: number; y: number }): View {
   const { ruling, board } = layout.frame;
-  const beyond = (value: number, least: number, most: number): number => (value < least ? least - value : value > most ? most - value : 0);
   const dx = beyond(at.x, ruling.left + 40, ruling.right - 40);
   const dy = beyond(at.y, board.top + 40, board.bottom - 40);
   return dx === 0 && dy === 0 ? view : pannedView(view, layout, view.span ? dx : 0, dy);

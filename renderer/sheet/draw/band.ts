@@ -5,7 +5,7 @@ import { bandValues } from "../../../core/geometry/values.ts";
 import { partsOf, type Block } from "../../../core/model/project.ts";
 import { bandFigureTexts, fittedLabel } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
-import { drawDrawing, drawValues } from "./symbols.ts";
+import { drawDrawing, drawValues, lineOf } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
 
 /** All of a band that stays while its slider moves: leader, track, leg, values and figures. */
@@ -37,7 +37,7 @@ function drawLeader(pen: Pen, place: BandPlace, isSelected: boolean): void {
 function drawTrack(pen: Pen, place: BandPlace): void {
   const { inks } = pen;
   const { x, returnX, trackTop, trackBottom, boostRailY, cutRailY, isLoose } = place;
-  const line = place.slot < 44 ? 1 : 1.25;
+  const line = place.slot < 44 ? 1 : Math.max(1.25, lineOf(place.legGrid));
   if (isLoose) pen.line([x, trackTop - 6, x, trackTop], inks.ink, line);
   else {
     pen.line([x, boostRailY, x, trackTop], inks.ink, line);

@@ -25,7 +25,7 @@ export function drawRails(pen: Pen, layout: SheetLayout, hasFigures: boolean): v
 }
 
 function drawCaptions(pen: Pen, layout: SheetLayout, rail: RailPlace, hasFigures: boolean): void {
-  const first = layout.bands.find((band) => band.rail === rail.index && !band.isByHand);
+  const first = layout.bands.find((band) => band.rail === rail.index && band.hand === null);
   if (!first || !hasFigures || rail.rail.isLoose) return;
   const x = layout.frame.ruling.left - 12;
   const write = (text: string, line: Parameters<typeof figureLine>[1]): void => pen.text(text, x, figureLine(first, line), { align: "right", color: pen.inks.inkSoft });

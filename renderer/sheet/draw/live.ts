@@ -5,6 +5,7 @@ import { clamp, type Box } from "../../../core/geometry/units.ts";
 import { formatDb } from "../../../core/units.ts";
 import { bandFigureTexts } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
+import { lineOf } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
 
 /** Nearer to the centre than this counts as centred: less than a twentieth of a millimetre of travel. */
@@ -22,7 +23,7 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
   const y = knobY(place, position);
   const side = sideOf(position);
   const { x, knobHalf, leadX, legX, legY, slot } = place;
-  const line = slot < 44 ? 1 : 1.25;
+  const line = slot < 44 ? 1 : Math.max(1.25, lineOf(place.legGrid));
   const bend = Math.round(legY - 7);
   pen.line(legX === leadX ? [x + knobHalf, y, leadX, y, leadX, legY] : [x + knobHalf, y, leadX, y, leadX, bend, legX, bend, legX, legY], inks.ink, line);
   const half = Math.max(4.5, knobHalf * 0.5);
@@ -43,7 +44,15 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
   const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: nowColor(pen, now) } as const;
   const bare = text.replace(" dB", "");
   const written = place.detail === "full" ? text : pen.widthOf(bare, shown.size) <= slot - 2 ? bare : formatDb(now, 0).replace(" dB", "");
-  pen.text(written, x, figureLine(place, "now"), { ...shown, isBold: place.detail === "full", ...(isSelected ? {} : { halo: pen.inks.paper }) });
+  const lineY = figureLine(place, "now");
+  const isBold = place.detail === "full";
+  if (!isSelected) {
+    // Plain ground behind the letters: an outline about each would cost most of the frame.
+    const width = pen.widthOf(written, shown.size, isBold) + 2;
+    ctx.fillStyle = inks.paper;
+    ctx.fillRect(x - width / 2, lineY - 6, width, 12);
+  }
+  pen.text(written, x, lineY, { ...shown, isBold });
 }
 
 function nowColor(pen: Pen, now: number): string {

@@ -19,7 +19,8 @@ export function drawCursor(pen: Pen, frame: Frame, levels: LevelSpan, reading: C
   const x = pixelOf(ruling, reading.frequency);
   if (x < ruling.left || x > ruling.right) return;
   const y = levelY(levels, response.top, response.bottom - response.top, reading.gain);
-  pen.line([x, response.top, x, frame.height], faint(inks.accent, 0.7), 1);
+  pen.line([x, response.top, x, response.bottom], faint(inks.accent, 0.8), 1);
+  pen.line([x, frame.board.top, x, frame.height], faint(inks.accent, 0.35), 1);
   const onCurve = Math.max(response.top, Math.min(response.bottom, y));
   if (y === onCurve) {
     pen.dot(x, y, 4.5, inks.paper);

@@ -14,7 +14,7 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
     pen.line([rule.x, board.top, rule.x, frame.height], inks.rule, rule.weight === "decade" ? 1.6 : 1);
   }
   const height = response.bottom - response.top;
-  for (const level of levelTicks(levels, height)) {
+  for (const level of levelTicks(levels, height, height < 200 ? 18 : 28)) {
     const y = levelY(levels, response.top, height, level);
     const isZero = level === 0;
     pen.line([response.left, y, response.right, y], isZero ? inks.ruleStrong : inks.rule, isZero ? 1.4 : 1);
@@ -38,9 +38,12 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
   pen.text("frequency, Hz", ruling.left - 10, axisY + 2, { align: "right", color: inks.inkSoft });
 }
 
+/** A board taller than its place by less than this has its margin out of sight, no more. */
+const LEAST_SCROLL = 12;
+
 /** At the right edge: which part of the board is on show, where it is taller than its place. */
 export function drawScrollMark(pen: Pen, layout: SheetLayout): void {
-  if (layout.mostScroll === 0) return;
+  if (layout.mostScroll < LEAST_SCROLL) return;
   const { board, width } = layout.frame;
   const seen = board.bottom - board.top;
   const length = (seen * seen) / (seen + layout.mostScroll);

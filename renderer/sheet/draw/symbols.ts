@@ -3,7 +3,8 @@ import { SYMBOL_LENGTH, type AmplifierSymbol, type Drawing, type MarkSymbol, typ
 import type { DrawingPlace, ValueTarget } from "../../../core/geometry/values.ts";
 import type { Pen } from "./pen.ts";
 
-const lineOf = (grid: number): number => (grid >= 3 ? 1.25 : 1);
+/** Line width of drawings by the size of their grid. */
+export const lineOf = (grid: number): number => (grid >= 5.5 ? 1.6 : grid >= 3 ? 1.25 : 1);
 
 /** Draws a block's symbols and wires. `has` tells whether a part is present. */
 export function drawDrawing(pen: Pen, drawing: Drawing, place: DrawingPlace, has: (role: string) => boolean, color = pen.inks.ink): void {
@@ -20,7 +21,7 @@ export function drawDrawing(pen: Pen, drawing: Drawing, place: DrawingPlace, has
     else if (symbol.needs === undefined || has(symbol.needs)) drawMark(pen, symbol, at, grid, color);
   }
   for (const joint of drawing.joints) {
-    if (joint.needs === undefined || has(joint.needs)) pen.dot(x + joint.x * grid, y + joint.y * grid, Math.max(1.4, grid * 0.55), color);
+    if (joint.needs === undefined || has(joint.needs)) pen.dot(x + joint.x * grid, y + joint.y * grid, Math.max(1.4, Math.min(3, grid * 0.55)), color);
   }
 }
 
@@ -93,7 +94,7 @@ function drawAmplifier(pen: Pen, amp: AmplifierSymbol, at: { x: number; y: numbe
   ctx.restore();
   if (grid < 2) return;
   const sign = grid * 0.65;
-  const signLine = Math.max(1, grid * 0.28);
+  const signLine = Math.max(1, Math.min(1.5, grid * 0.28));
   for (const [side, which] of [[-2 * grid, amp.first], [2 * grid, amp.first === "+" ? "-" : "+"]] as const) {
     const along = length - 1.5 * grid;
     const [x, y] = amp.points === "up" ? [at.x + side, at.y + along] : [at.x - along * mirror, at.y + side];
