@@ -4,7 +4,7 @@ import { BAND_KINDS, BLOCKS } from "../blocks/index.ts";
 import type { BlockKind } from "../blocks/kinds.ts";
 import { nearestPreferred } from "../e-series.ts";
 import { formatValue } from "../units.ts";
-import { blockName, changeBlocks } from "./edit.ts";
+import { blockName, changeBlocks, isStage } from "./edit.ts";
 import { newBlock } from "./new-project.ts";
 import { patchBetween, type Patch } from "./patch.ts";
 import { partsOf, type Block, type Part, type Project, type Wire } from "./project.ts";
@@ -81,14 +81,14 @@ const KIND_LABEL: Partial<Record<BlockKind, string>> = { "shelf-section": "High"
 export function stageOf(project: Project, id: string): string | undefined {
   const block = project.blocks.find((b) => b.id === id);
   if (!block) return undefined;
-  if (BLOCKS[block.kind].place === "chain" && BLOCKS[block.kind].ports.includes("bus")) return id;
+  if (isStage(block)) return id;
   const from = project.wires.find((w) => w.to === `${id}.bus`)?.from;
   return from?.endsWith(".bus") ? from.slice(0, -".bus".length) : undefined;
 }
 
 /** The stages of a project, in file order. */
 export function stagesOf(project: Project): Block[] {
-  return project.blocks.filter((b) => BLOCKS[b.kind].place === "chain" && BLOCKS[b.kind].ports.includes("bus"));
+  return project.blocks.filter(isStage);
 }
 
 function bandsOn(project: Project, stage: string): Block[] {

@@ -116,6 +116,11 @@ export function moveBlocks(project: Project, moves: readonly { readonly id: stri
   });
 }
 
+/** Whether a block carries a bus. */
+export function isStage(block: Block): boolean {
+  return BLOCKS[block.kind].place === "chain" && BLOCKS[block.kind].ports.includes("bus");
+}
+
 function blockOfEnd(end: string): string {
   return end.slice(0, end.lastIndexOf("."));
 }
@@ -131,7 +136,6 @@ export function removeBlocks(project: Project, ids: readonly string[]): Edit {
     const { place } = BLOCKS[block.kind];
     if (place === "source" || place === "load") return { ok: false, message: `“${blockName(block)}” stays: a board needs its ${place === "source" ? "input" : "output"}.` };
   }
-  const isStage = (block: Block): boolean => BLOCKS[block.kind].ports.includes("bus") && BLOCKS[block.kind].place === "chain";
   const stages = project.blocks.filter(isStage);
   if (stages.some((s) => doomed.has(s.id)) && stages.every((s) => doomed.has(s.id))) {
     return { ok: false, message: `“${blockName(stages.find((s) => doomed.has(s.id))!)}” stays: it is the last stage, and bands need one to hang on.` };

@@ -103,10 +103,13 @@ function withRows<T>(rows: readonly T[], pairs: readonly [Row<T> | null, Row<T> 
   return result;
 }
 
+function entry(fields: Record<string, unknown>, key: string): Entry | null {
+  return Object.hasOwn(fields, key) ? { value: fields[key] } : null;
+}
+
 function fieldChanges(before: Project, after: Project): Change[] {
   const old = before as unknown as Record<string, unknown>;
   const fresh = after as unknown as Record<string, unknown>;
-  const entry = (fields: Record<string, unknown>, key: string): Entry | null => (Object.hasOwn(fields, key) ? { value: fields[key] } : null);
   return [...new Set([...Object.keys(old), ...Object.keys(fresh)])]
     .filter((key) => key !== "blocks" && key !== "wires" && old[key] !== fresh[key])
     .map((key) => ({ table: "project", id: key, before: entry(old, key), after: entry(fresh, key) }));

@@ -48,6 +48,11 @@ export function FolderList({ label, empty, rows, index, onIndex, onChoose, onKey
   );
 }
 
+/** The folder of a file, by either system's separators; empty at the top. */
+export function folderOf(path: string): string {
+  return path.slice(0, Math.max(0, path.lastIndexOf("/"), path.lastIndexOf("\\")));
+}
+
 /** Scrolls the row in hand into view. */
 export function showRow(row: HTMLElement | null): void {
   row?.scrollIntoView({ block: "nearest" });

@@ -2,7 +2,7 @@ import { useEffect, useRef, useState } from "react";
 import type { ResultOf } from "../../core/contract/methods.ts";
 import { useShell } from "../editor/hooks.ts";
 import { DialogFrame } from "./DialogFrame.tsx";
-import { FolderList, folderRows, type FileRow } from "./FolderList.tsx";
+import { FolderList, folderOf, folderRows, type FileRow } from "./FolderList.tsx";
 import type { DialogProps } from "./QuestionDialogs.tsx";
 import { useFolder } from "./use-folder.ts";
 import { useListPlace, walkList } from "./use-list-keys.ts";
@@ -42,7 +42,7 @@ export function OpenDialog({ ask, close }: DialogProps<"open">) {
   };
   const trouble = isDemos ? demoProblem : problem;
   // The demos have their own place in the list of places.
-  const roots = (listing?.roots ?? []).filter((root) => root.name !== "Demos");
+  const roots = (listing?.roots ?? []).filter((root) => !demos.some((demo) => folderOf(demo.path) === root.path));
 
   return (
     <DialogFrame

@@ -1,7 +1,7 @@
 import { useRef, useState } from "react";
 import { useShell } from "../editor/hooks.ts";
 import { DialogFrame } from "./DialogFrame.tsx";
-import { FolderList, folderRows } from "./FolderList.tsx";
+import { FolderList, folderOf, folderRows } from "./FolderList.tsx";
 import { isWithin } from "./OpenDialog.tsx";
 import type { DialogProps } from "./QuestionDialogs.tsx";
 import { useFolder } from "./use-folder.ts";
@@ -26,7 +26,7 @@ export function nameProblem(name: string): string | null {
 /** Chooses a folder and a name. Whether an old file of that name may go is asked when it comes to it. */
 export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
   const { context, host } = useShell();
-  const [folder, setFolder] = useState<string | null>(() => folderOf(context.editor.store.getState().file));
+  const [folder, setFolder] = useState<string | null>(() => startFolder(context.editor.store.getState().file));
   const [name, setName] = useState(ask.suggestedName);
   const [error, setError] = useState<string | null>(null);
   const { listing, problem } = useFolder(folder);
@@ -123,7 +123,6 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
 }
 
 /** A file that was opened from a place that can be written to is saved beside itself; a demo is not. */
-function folderOf(file: { readonly path: string; readonly isWritable: boolean } | null): string | null {
-  if (!file?.isWritable) return null;
-  return file.path.slice(0, Math.max(file.path.lastIndexOf("/"), file.path.lastIndexOf("\\"))) || null;
+function startFolder(file: { readonly path: string; readonly isWritable: boolean } | null): string | null {
+  return file?.isWritable ? folderOf(file.path) || null : null;
 }

@@ -1,6 +1,7 @@
 import { BLOCKS } from "../../core/blocks/index.ts";
+import type { BlockKind } from "../../core/blocks/kinds.ts";
 import { nextPreferred, type ESeries } from "../../core/e-series.ts";
-import { blockName, setPartDatum, setPartValue, TRACK } from "../../core/model/edit.ts";
+import { blockName, setPartValue, TRACK } from "../../core/model/edit.ts";
 import type { Block } from "../../core/model/project.ts";
 import { parseValue, type Quantity } from "../../core/units.ts";
 import type { Editor } from "./store.ts";
@@ -15,8 +16,8 @@ export function quantityOf(block: Block, role: string): Quantity | undefined {
 }
 
 /** What a role is called on the screen. */
-export function roleLabel(block: Block, role: string): string {
-  return role === TRACK ? "track" : (BLOCKS[block.kind].roles.find((r) => r.role === role)?.label ?? role);
+export function roleLabel(kind: BlockKind, role: string): string {
+  return role === TRACK ? "track" : (BLOCKS[kind].roles.find((r) => r.role === role)?.label ?? role);
 }
 
 /** Reads a part's value: above 0. */
@@ -48,15 +49,8 @@ export function editPartText(editor: Editor, id: string, role: string, text: str
   if (!block || !quantity) return "there is no such part";
   const read = readPositive(text, quantity);
   if (!read.ok) return read.message;
-  editor.apply(`set ${roleLabel(block, role)} of “${blockName(block)}”`, setPartValue(project, id, role, read.value));
+  editor.apply(`set ${roleLabel(block.kind, role)} of “${blockName(block)}”`, setPartValue(project, id, role, read.value));
   return null;
-}
-
-/** Sets or clears a datum of a part, as one step. */
-export function editPartDatum(editor: Editor, block: Block, role: string, key: "tolerance" | "measured" | "windingR" | "selfC", value: number | undefined): void {
-  const names = { tolerance: "tolerance", measured: "measured value", windingR: "winding R", selfC: "self C" };
-  const label = `set ${names[key]} of ${roleLabel(block, role)}, “${blockName(block)}”`;
-  editor.apply(label, setPartDatum(editor.store.getState().project, block.id, role, key, value));
 }
 
 /** The series in which a value steps: what shops stock of each. */

@@ -1,10 +1,12 @@
+import { memo } from "react";
 import type { BandFigures, BandPeak } from "../../core/analysis/bands.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
 import { formatDb, formatValue } from "../../core/units.ts";
 
 const NONE = "–";
 const hertz = (value: number | null): string => (value === null ? NONE : formatValue(value, "frequency"));
-const plain = (value: number | null): string => (value === null ? NONE : formatValue(value, "plain"));
+/** A Q this low is no peak any more, and its digits say nothing. */
+const plain = (value: number | null): string => (value === null ? NONE : value < 0.01 ? "< 0.01" : formatValue(value, "plain"));
 
 interface Row {
   readonly label: string;
@@ -36,7 +38,7 @@ function rowsFor(figures: BandFigures): readonly Row[] {
 }
 
 /** What a band does in circuit, both ends of its slider, and its leg alone. */
-export function FiguresSection({ figures }: { readonly figures: BandFigures }) {
+export const FiguresSection = memo(function FiguresSection({ figures }: { readonly figures: BandFigures }) {
   const leg = [
     ["L", figures.inductance === null ? null : formatValue(figures.inductance, "inductance")],
     ["f₀", figures.resonance === null ? null : formatValue(figures.resonance, "frequency")],
@@ -76,4 +78,4 @@ export function FiguresSection({ figures }: { readonly figures: BandFigures }) {
       )}
     </section>
   );
-}
+});

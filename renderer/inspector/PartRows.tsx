@@ -1,5 +1,4 @@
-import { TRACK } from "../../core/model/edit.ts";
-import type { Block, Part } from "../../core/model/project.ts";
+import type { Part } from "../../core/model/project.ts";
 import { editText, formatValue, type Quantity } from "../../core/units.ts";
 import { readAtLeastZero, readPositive, readTolerance, stepPreferred } from "../editor/part-text.ts";
 import { ValueField } from "./ValueField.tsx";
@@ -121,9 +120,4 @@ function CoilRow({ label, quantity, value, onTake }: { readonly label: string; r
       />
     </div>
   );
-}
-
-/** A slider's track as one more part of its block. */
-export function trackRole(block: Block): PartRole[] {
-  return block.slider ? [{ role: TRACK, label: "track", quantity: "resistance", isOptional: false, part: block.slider.track }] : [];
 }

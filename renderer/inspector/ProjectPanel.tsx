@@ -10,7 +10,9 @@ import { ValueField } from "./ValueField.tsx";
 /** The project as a whole: what it is, what feeds it, what it comes to. */
 export function ProjectPanel() {
   const { editor } = useShell().context;
-  const project = useEditorState((s) => s.project);
+  const notes = useEditorState((s) => s.project.notes ?? "");
+  const supply = useEditorState((s) => s.project.supply);
+  const temperature = useEditorState((s) => s.project.temperature ?? 25);
   const now = (): Project => editor.store.getState().project;
   return (
     <>
@@ -19,14 +21,14 @@ export function ProjectPanel() {
         <p className="quiet">Select a block to see its values.</p>
       </header>
       <Summary />
-      <Notes notes={project.notes ?? ""} />
-      <SupplySection supply={project.supply} />
+      <Notes notes={notes} />
+      <SupplySection supply={supply} />
       <section className="panel-section" aria-label="Surroundings">
         <div className="row">
           <span className="row-label">temperature</span>
           <ValueField
             label="Temperature"
-            value={project.temperature ?? 25}
+            value={temperature}
             format={(value) => formatValue(value, "temperature", { significant: "exact" })}
             edit={String}
             read={(text) => {
@@ -52,7 +54,7 @@ function range(values: readonly number[], text: (value: number) => string): stri
 }
 
 function Summary() {
-  const project = useEditorState((s) => s.project);
+  const size = useEditorState((s) => sizeText(s.project));
   const figures = useEditorState((s) => s.analysis.results?.figures);
   const peaks = [...(figures?.values() ?? [])];
   return (
@@ -60,7 +62,7 @@ function Summary() {
       <h3>Summary</h3>
       <div className="row">
         <span className="row-label">size</span>
-        <span>{sizeText(project)}</span>
+        <span>{size}</span>
       </div>
       {peaks.length > 0 && (
         <>

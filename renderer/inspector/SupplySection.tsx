@@ -54,7 +54,7 @@ function Volts({ label, value, onTake, sign = "" }: { readonly label: string; re
 }
 
 function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly set: (what: string, next: SingleSupply) => void }) {
-  const project = useEditorState((s) => s.project);
+  const opAmps = useEditorState((s) => s.project.opAmps);
   const { reference } = supply;
   const roles: PartRole[] = [
     { role: "upperR", label: "upper R", quantity: "resistance", isOptional: false, part: reference.upperR },
@@ -85,11 +85,11 @@ function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly s
         <Choice
           label="Op amp that buffers the reference"
           value={reference.opAmp ?? DIRECT}
-          options={[{ value: DIRECT, label: DIRECT }, ...opAmpOptions(project)]}
+          options={[{ value: DIRECT, label: DIRECT }, ...opAmpOptions(opAmps)]}
           onChoose={(opAmp) => set("set the reference's op amp", { ...supply, reference: opAmp === DIRECT ? without(reference, "opAmp") : { ...reference, opAmp } })}
         />
       </div>
-      {isFromTable(project, reference.opAmp) && <p className="hint">Typical values from memory: check the maker's current sheet.</p>}
+      {isFromTable(opAmps, reference.opAmp) && <p className="hint">Typical values from memory: check the maker's current sheet.</p>}
       {reference.opAmp === undefined && <p className="caution">Every band shares the divider's impedance, which couples them at low frequencies. A larger bypass C or a buffer parts them.</p>}
       <p className="caution">Coupling capacitors now stand off the reference voltage: mind the polarity and the voltage rating of electrolytics.</p>
     </>

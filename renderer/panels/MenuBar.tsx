@@ -1,13 +1,13 @@
 import { Menu } from "@base-ui/react/menu";
 import { Menubar } from "@base-ui/react/menubar";
-import { Fragment } from "react";
+import { Fragment, memo } from "react";
 import { chordsOf, isPossible, labelOf, MENUS, type Action } from "../editor/actions/action.ts";
 import { ACTIONS, run } from "../editor/actions/actions.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useShell } from "../editor/hooks.ts";
 
 /** All menus, made from the action table. */
-export function MenuBar() {
+export const MenuBar = memo(function MenuBar() {
   return (
     <Menubar className="menu-bar" aria-label="Menus">
       {MENUS.map((name) => (
@@ -24,7 +24,7 @@ export function MenuBar() {
       ))}
     </Menubar>
   );
-}
+});
 
 /** Entries for actions, with a rule between groups. */
 export function MenuItems({ actions }: { readonly actions: readonly Action[] }) {

@@ -1,5 +1,5 @@
 import { Menu } from "@base-ui/react/menu";
-import { useMemo } from "react";
+import { memo, useMemo } from "react";
 import { BAND_KINDS } from "../../core/blocks/index.ts";
 import { moveBlocks, setPosition } from "../../core/model/edit.ts";
 import { isPossible } from "../editor/actions/action.ts";
@@ -75,13 +75,13 @@ function Invitation() {
 const BLOCK_MENU = ["edit-value", "centre-slider", "slider-boost", "slider-cut", "duplicate", "cut", "copy", "paste", "delete"];
 const SHEET_MENU = ["paste", "centre-all", "arrange", "fit", "zoom-in", "zoom-out", "select-all"];
 
-function ContextMenu() {
+const ContextMenu = memo(function ContextMenu() {
   const { context } = useShell();
   const place = useUiState((s) => s.contextMenu);
   const isOnBlock = place?.target !== undefined && place.target !== null;
   const wanted = isOnBlock ? BLOCK_MENU : SHEET_MENU;
   const prefix = isOnBlock ? "change-to-" : "add-";
-  const actions = [...ACTIONS.filter((a) => a.id.startsWith(prefix) && isPossible(a, context)), ...wanted.map(actionById)];
+  const actions = [...wanted.map(actionById), ...ACTIONS.filter((a) => a.id.startsWith(prefix) && isPossible(a, context))];
   const anchor = useMemo(() => ({ getBoundingClientRect: () => DOMRect.fromRect({ x: place?.clientX ?? 0, y: place?.clientY ?? 0, width: 0, height: 0 }) }), [place]);
   return (
     <Menu.Root open={place !== null} onOpenChange={(isOpen) => !isOpen && context.ui.patch({ contextMenu: null })}>
@@ -94,4 +94,4 @@ function ContextMenu() {
       </Menu.Portal>
     </Menu.Root>
   );
-}
+});

@@ -11,14 +11,15 @@ import { MenuBar } from "./MenuBar.tsx";
 
 /** Name, size and state of the board; menus; the few things that hands reach for most. */
 export function TopLine() {
-  const project = useEditorState((s) => s.project);
+  const name = useEditorState((s) => s.project.name);
+  const size = useEditorState((s) => `${sizeText(s.project)} · ${supplyText(s.project)}`);
   const state = useEditorState((s) => (s.isDirty ? "edited" : s.file === null ? "not saved yet" : s.file.isWritable ? "saved" : s.file.isDemo ? "read-only demo" : "write-protected"));
   return (
     <header className="top-line">
       <div className="top-title">
-        <NameField name={project.name} />
+        <NameField name={name} />
         <p className="subtitle" data-testid="subtitle">
-          {sizeText(project)} · {supplyText(project)} · {state}
+          {size} · {state}
         </p>
       </div>
       <MenuBar />

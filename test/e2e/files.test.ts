@@ -138,6 +138,24 @@ describe("files", () => {
   });
 });
 
+describe("when the machine's side is gone", () => {
+  test("the page says so, keeps the board, and gives out a copy", async () => {
+    session = await Session.start(browser, { file: DEMO });
+    await session.sheet.knob("b1k").focus();
+    await session.keyboard.press("End");
+    await session.app.stop();
+    const banner = session.page.getByRole("alert").filter({ hasText: "connection to Bandwright has ended" });
+    const download = session.page.waitForEvent("download");
+    await banner.getByRole("button", { name: "Download a copy" }).click();
+    const copy = restoreProject(await readFile(await (await download).path(), "utf8")).project;
+    expect(copy.blocks.find((b) => b.id === "b1k")!.slider!.position).toBe(1);
+    await session.keyboard.press("Control+s");
+    await session.dialog("Save the project as").getByText("The connection to Bandwright has ended").waitFor();
+    // The browser tells of the broken connection, as it should.
+    session.complaints.splice(0);
+  });
+});
+
 describe("without a pointer", () => {
   test("open a demo, slide, change a value, add a band, save, read the keys", async () => {
     session = await Session.start(browser, { size: { width: 1024, height: 700 } });

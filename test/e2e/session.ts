@@ -86,6 +86,8 @@ export class Session {
       await this.page.keyboard.type(words);
       await this.press(["Enter"]);
       await this.dialog("All commands").waitFor({ state: "detached" });
+      // The command runs as soon as the focus is back.
+      await this.page.evaluate(() => new Promise((resolve) => setTimeout(resolve)));
     },
     /** Tabs on until the element has the focus. */
     tabTo: async (target: Locator): Promise<void> => {

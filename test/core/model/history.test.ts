@@ -1,4 +1,4 @@
-import fc from "fast-check";
+import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { BAND_KINDS } from "../../../core/blocks/index.ts";
 import { moveBlocks, removeBlocks, setField, setLabel, setOpAmp, setPart, setPartDatum, setPartValue, setPositions, setSlider } from "../../../core/model/edit.ts";

@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { chordsOf, MENUS, type Action, type ActionContext } from "../../../renderer/editor/actions/action.ts";
+import { chordsOf, MENUS, type ActionContext } from "../../../renderer/editor/actions/action.ts";
 import { ACTIONS, actionForKey } from "../../../renderer/editor/actions/actions.ts";
 import { chordText, isChord, type KeyPress } from "../../../renderer/editor/actions/chords.ts";
 import { createEditor } from "../../../renderer/editor/store.ts";
@@ -13,11 +13,16 @@ function press(key: string, code: string, modifiers: Partial<KeyPress> = {}): Ke
 const browser = { isDesktop: false };
 const desktop = { isDesktop: true };
 
+function unused(): never {
+  throw new Error("not used");
+}
+
+function idAt(focus: Parameters<typeof actionForKey>[1], key: KeyPress): string | undefined {
+  return actionForKey(key, focus, context())?.id;
+}
+
 /** What key matching looks at; nothing is performed here. */
 function context(isMac = false): ActionContext {
-  const unused = (): never => {
-    throw new Error("not used");
-  };
   return {
     editor: createEditor(newProject()),
     ui: { store: unused, ask: unused, notify: unused, setTheme: unused, patch: unused } as unknown as ActionContext["ui"],
@@ -101,12 +106,9 @@ describe("chords", () => {
 });
 
 describe("keys are not stolen", () => {
-  const idAt = (focus: Parameters<typeof actionForKey>[1], key: KeyPress): string | undefined => actionForKey(key, focus, context())?.id;
-
   test("while typing", () => {
-    const taken = (action: Action): boolean => action.inFields === "always";
     for (const action of ACTIONS) {
-      if (!taken(action)) continue;
+      if (action.inFields !== "always") continue;
       for (const chord of chordsOf(action, browser)) expect(chord).toMatch(/Mod|Alt/);
     }
     expect(idAt("field", press("f", "KeyF"))).toBeUndefined();
