@@ -34,7 +34,7 @@ function ordered(object: Json | undefined, keys: readonly string[], inner: Reado
   // The sort is stable: unknown keys share the rank of the known key before them.
   entries.sort((a, b) => a.at - b.at);
   // fromEntries defines own properties, so that even a key "__proto__" survives.
-  return Object.fromEntries(entries.map(({ key }) => [key, inner[key] ? inner[key](object[key]) : object[key]]));
+  return Object.fromEntries(entries.map(({ key }) => [key, Object.hasOwn(inner, key) ? inner[key](object[key]) : object[key]]));
 }
 
 const part = (value: Json): Json => ordered(value, PART_KEYS, { second: (second) => ordered(second, SECOND_KEYS) });

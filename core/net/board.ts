@@ -101,13 +101,18 @@ export function resolveBoard(project: Project): Board {
     const driver = driverOf.get(block.id);
     if (driver) driven.set(driver.block, [...(driven.get(driver.block) ?? []), block]);
   }
+  const hung = Map.groupBy(
+    project.blocks.filter((b) => busOf.has(b.id)),
+    (b) => busOf.get(b.id)!.stage,
+  );
+  // Depth first, drivers before what they drive; a stack of our own, since a chain may be longer than the engine's.
   const chain: ChainItem[] = [];
-  const visit = (block: Block, driver: number): void => {
-    const bands = project.blocks.filter((b) => busOf.get(b.id)?.stage === block.id);
-    const index = chain.push({ block, driver, bands }) - 1;
-    for (const next of driven.get(block.id) ?? []) visit(next, index);
-  };
-  visit(source, -1);
+  const open = [{ block: source, driver: -1 }];
+  for (let next = open.pop(); next; next = open.pop()) {
+    const { block, driver: by } = next;
+    const index = chain.push({ block, driver: by, bands: hung.get(block.id) ?? [] }) - 1;
+    for (const after of (driven.get(block.id) ?? []).toReversed()) open.push({ block: after, driver: index });
+  }
 
   const inChain = new Set(chain.flatMap((item) => [item.block.id, ...item.bands.map((b) => b.id)]));
   project.blocks.forEach((block, index) => {
