@@ -51,13 +51,13 @@ const WANTED: Readonly<Record<string, string>> = {
 };
 
 /** Unknown keys are let through: they are kept on save. */
-function object<Entries extends v.ObjectEntries>(entries: Entries) {
+function object<Entries extends v.ObjectEntries>(entries: Entries, wanted: Readonly<Record<string, string>> = WANTED) {
   // A plain object first: an array would pass as an object without keys.
   return v.pipe(
     plainObject,
     v.looseObject(entries, (issue) => {
       const key = String(issue.path?.at(-1)?.key ?? "");
-      return `is missing: must be ${Object.hasOwn(WANTED, key) ? WANTED[key] : 'a part such as { "value": 470 }'}`;
+      return `is missing: must be ${Object.hasOwn(wanted, key) ? wanted[key] : 'a part such as { "value": 470 }'}`;
     }),
   );
 }
@@ -119,7 +119,7 @@ const supplySchema = v.lazy((input: unknown): v.GenericSchema => {
   if (kind === "single") {
     return object({ kind: v.literal("single"), voltage: above0, reference: object({ upperR: partSchema, lowerR: partSchema, bypassC: partSchema, opAmp: v.optional(name), opAmpStock: v.optional(text) }) });
   }
-  return object({ kind: oneOf(["split", "single"]) });
+  return object({ kind: oneOf(["split", "single"]) }, { kind: "one of split, single" });
 });
 
 const opAmpSchema = object({
@@ -135,6 +135,19 @@ const opAmpSchema = object({
   ),
 });
 
+/** Every entry of `opAmps`, whatever its name: the library's own record schema passes over names such as "__proto__". */
+const opAmpsSchema = v.pipe(
+  plainObject,
+  v.rawCheck(({ dataset, addIssue }) => {
+    if (!dataset.typed) return;
+    for (const [key, value] of Object.entries(dataset.value)) {
+      for (const { message, path = [] } of v.safeParse(opAmpSchema, value).issues ?? []) {
+        addIssue({ message, path: [{ type: "object", origin: "value", input: dataset.value, key, value }, ...path] });
+      }
+    }
+  }),
+);
+
 const list = (item: v.GenericSchema) => v.array(item, expected("a list"));
 
 /** The shape of a version 1 project; what ties its places together (ids, op-amp names, wiring) is checked beside it. */
@@ -145,5 +158,5 @@ export const projectSchema = object({
   temperature: v.optional(number("a temperature in °C above −273.15", (value) => value > -273.15)),
   blocks: list(anyBlock),
   wires: list(object({ from: text, to: text })),
-  opAmps: v.optional(v.pipe(plainObject, v.record(v.string(), opAmpSchema))),
+  opAmps: v.optional(opAmpsSchema),
 });
