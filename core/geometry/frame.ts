@@ -70,7 +70,7 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
   // A span kept from another range is brought inside this one.
   const shown = span ? moveSpan(span, limits, 1) : limits;
   const room = Math.max(260, height - TOP - AXIS);
-  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.27), room * 0.46));
+  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.24), room * 0.46));
   const boardHeight = room - responseHeight;
   let fitting = LEAST_SCALE;
   while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;

@@ -15,7 +15,7 @@ import { clamp, sheetUnits, type SheetPlace } from "./units.ts";
 const RAIL_UNITS = 480;
 /** Narrowest slot that still shows a slider. */
 const LEAST_SLOT = 28;
-const BETWEEN_RAILS = 14;
+const BETWEEN_RAILS = 12;
 /** Grid units above a rail (the stage's op amp) and below it (what feeds a stage, what ends the chain). */
 const ABOVE = 23;
 
@@ -141,7 +141,7 @@ function slotsOf(rails: Rails, wanted: (readonly (number | null)[])[], frame: Fr
   const ends = extent(frame);
   return rails.rails.map((rail, i) => {
     const xs = wanted[i].filter((_, n) => rail.bands[n].at?.byHand !== true).map((x) => x ?? ends.right);
-    return slotWidth(xs, FULL_SLOT * scale, LEAST_SLOT, ends.right - ends.left);
+    return slotWidth(xs, FULL_SLOT * Math.max(1, scale), LEAST_SLOT, ends.right - ends.left);
   });
 }
 

@@ -33,6 +33,13 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
   const [fault, setFault] = useState<string | null>(null);
   const input = useRef<HTMLInputElement>(null);
   const faultId = useId();
+  /** Leaving takes the focus away, and that must not take the value again. */
+  const isLeft = useRef(false);
+  const leave = (): void => {
+    if (isLeft.current) return;
+    isLeft.current = true;
+    onLeave();
+  };
 
   useEffect(() => {
     input.current?.focus({ preventScroll: true });
@@ -42,7 +49,7 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
   const take = (): boolean => {
     const wrong = text === first ? null : onTake(text);
     setFault(wrong);
-    if (wrong === null) onLeave();
+    if (wrong === null) leave();
     return wrong === null;
   };
   const step = (direction: 1 | -1): void => {
@@ -55,7 +62,7 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
     // The sheet's own keys rest while a value is typed.
     event.stopPropagation();
     if (event.key === "Enter") take();
-    else if (event.key === "Escape") onLeave();
+    else if (event.key === "Escape") leave();
     else if (event.key === "ArrowUp" || event.key === "ArrowDown") {
       event.preventDefault();
       step(event.key === "ArrowUp" ? 1 : -1);
@@ -79,7 +86,7 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
         onKeyDown={onKeyDown}
         onBlur={() => {
           // Leaving the field takes what can be taken and drops the rest.
-          if (fault !== null || !take()) onLeave();
+          if (!isLeft.current && (fault !== null || !take())) leave();
         }}
       />
       {fault !== null && <p id={faultId} role="alert">{fault}</p>}

@@ -73,7 +73,7 @@ function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigu
     pen.text(texts.quality, place.x, figureLine(place, "quality"), { align: "center", color: inks.inkSoft, ...over });
   } else {
     const small = isSlim ? 10 : 11;
-    const short = pen.widthOf(texts.shortPeak, small) <= place.slot - 2 ? texts.shortPeak : texts.shortPeak.slice(1);
+    const short = [texts.barePeak, texts.shortPeak].find((text) => pen.widthOf(text, small) <= place.slot - 2) ?? texts.shortPeak.slice(1);
     pen.text(short, place.x, figureLine(place, "peak"), { size: small, align: "center", ...over });
   }
 }

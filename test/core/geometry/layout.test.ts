@@ -1,0 +1,143 @@
+import * as fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import { runs } from "../../fixtures/runs.ts";
+import { bandFrequency } from "../../../core/geometry/band-frequency.ts";
+import { arrangedPlaces, layoutSheet, movedPlace, type LayoutOpts, type SheetLayout } from "../../../core/geometry/layout.ts";
+import { pixelOf } from "../../../core/geometry/ruling.ts";
+import { overlaps } from "../../../core/geometry/units.ts";
+import type { Block, Project } from "../../../core/model/project.ts";
+import { boardOf, gyratorAt, THIRD_OCTAVES, twoStages } from "../../helpers/sheet-boards.ts";
+
+const RANGE = { from: 20, to: 20e3 };
+
+function layOut(project: Project, opts: Partial<LayoutOpts> = {}): SheetLayout {
+  return layoutSheet({ project, figures: null, width: 1090, height: 780, range: RANGE, span: null, scroll: 0, ...opts });
+}
+
+function expectApart(layout: SheetLayout): void {
+  const { bands } = layout;
+  for (let i = 0; i < bands.length; i++) {
+    for (let j = i + 1; j < bands.length; j++) {
+      // Places are whole pixels: sides may share one.
+      const [a, b] = [bands[i].box, bands[j].box];
+      expect(overlaps({ ...a, left: a.left + 1, right: a.right - 1 }, b), `${bands[i].id} and ${bands[j].id}`).toBe(false);
+    }
+  }
+}
+
+const OCTAVES = [63, 125, 250, 500, 1000, 2000, 4000, 8000];
+
+describe("layout", () => {
+  test("an octave band hangs under its own frequency, with its values and all figures", () => {
+    const layout = layOut(boardOf(OCTAVES.map((f) => gyratorAt(f))));
+    for (const band of layout.bands) {
+      expect(Math.abs(band.x - band.trueX!)).toBeLessThan(3);
+      expect(band.detail).toBe("full");
+      expect(band.hasValues).toBe(true);
+    }
+    expectApart(layout);
+  });
+
+  test("the ruling of the response is that of the board", () => {
+    const layout = layOut(boardOf([gyratorAt(1000)]));
+    const { ruling, response } = layout.frame;
+    expect([response.left, response.right]).toEqual([ruling.left, ruling.right]);
+    expect(layout.bands[0].trueX).toBe(pixelOf(ruling, layout.bands[0].frequency!));
+  });
+
+  test.each([["one rail", boardOf], ["two rails", twoStages]])("31 third-octave bands on %s stand apart at any width and zoom", (_, make) => {
+    const project = make(THIRD_OCTAVES.map((f) => gyratorAt(f, `b${f}`.replace(".", "_"))));
+    for (const width of [700, 1090, 1900]) {
+      expectApart(layOut(project, { width }));
+      expectApart(layOut(project, { width, span: { from: 300, to: 3000 } }));
+    }
+  });
+
+  test("31 bands gain their values when zoomed in", () => {
+    const project = boardOf(THIRD_OCTAVES.map((f) => gyratorAt(f, `b${f}`.replace(".", "_"))));
+    expect(layOut(project).bands.every((b) => !b.hasValues)).toBe(true);
+    expect(layOut(project, { span: { from: 500, to: 2000 } }).bands.every((b) => b.hasValues)).toBe(true);
+  });
+
+  test("62 bands at random stand apart, also at a fit", () => {
+    fc.assert(
+      fc.property(fc.array(fc.double({ min: 1.3, max: 4.3, noNaN: true }), { minLength: 62, maxLength: 62 }), (logs) => {
+        expectApart(layOut(boardOf(logs.map((log, i) => gyratorAt(10 ** log, `b${i}`))), { width: 1400 }));
+      }),
+      runs(20),
+    );
+  });
+
+  test("fits two rails on a usual screen, and scrolls no further than the board reaches", () => {
+    const project = twoStages(THIRD_OCTAVES.slice(0, 20).map((f) => gyratorAt(f, `b${f}`.replace(".", "_"))));
+    const layout = layOut(project);
+    expect(layout.rails).toHaveLength(2);
+    expect(layout.mostScroll).toBeLessThan(20);
+    const low = layOut(project, { height: 480, scroll: 1e6 });
+    expect(low.scroll).toBe(low.mostScroll);
+    expect(low.rails[1].bottom).toBeLessThanOrEqual(low.frame.board.bottom + 15);
+  });
+
+  test("draws what is wired wrongly: a band on no bus has a row of its own, a board without a stage its ends", () => {
+    const project = boardOf([gyratorAt(1000)]);
+    const unhung = layOut({ ...project, wires: project.wires.filter((w) => !w.from.endsWith(".bus")) });
+    expect(unhung.rails.map((r) => r.rail.isLoose)).toEqual([false, true]);
+    expect(unhung.bands[0].isLoose).toBe(true);
+    const bare = layOut({ ...project, blocks: project.blocks.filter((b) => b.id !== "eq") });
+    expect(bare.chain.map((c) => c.id).sort()).toEqual(["in", "out"]);
+    expect(layOut({ ...project, blocks: [], wires: [] }).bands).toEqual([]);
+  });
+
+  test("a level, which has no frequency, stands at the right end", () => {
+    const level: Block = { id: "lvl", kind: "level-section", slider: { track: { value: 10e3 }, position: 0.5 }, parts: { seriesR: { value: 680 } } };
+    const layout = layOut(boardOf([level, gyratorAt(100)]));
+    expect(bandFrequency(level, undefined)).toBeNull();
+    expect(layout.bands.find((b) => b.id === "lvl")!.x).toBeGreaterThan(layout.frame.ruling.right - 100);
+  });
+});
+
+describe("places by hand", () => {
+  const [band] = [gyratorAt(1000)];
+
+  test("a place that no hand gave says nothing", () => {
+    const plain = layOut(boardOf([band]));
+    const placed = layOut(boardOf([{ ...band, at: { x: 480, y: 160 } }]));
+    expect(placed.bands).toEqual(plain.bands);
+  });
+
+  test("a moved band stays where it was put, in units of the ruling, at any zoom", () => {
+    const layout = layOut(boardOf([band]));
+    const at = movedPlace(layout, band.id, 100, 40)!;
+    expect(at.byHand).toBe(true);
+    const project = boardOf([{ ...band, at }]);
+    const moved = layOut(project).bands[0];
+    expect(Math.abs(moved.x - layout.bands[0].x - 100)).toBeLessThanOrEqual(1);
+    expect(moved.trackTop - layout.bands[0].trackTop).toBeCloseTo(40, 0);
+    expect(moved.trueX).toBe(layout.bands[0].trueX);
+    const zoomed = layOut(project, { span: { from: 500, to: 5000 } });
+    expect(Math.abs(zoomed.bands[0].x - pixelOf(zoomed.frame.ruling, 10 * 10 ** (at.x / 300)))).toBeLessThanOrEqual(1);
+  });
+
+  test("a move along one axis leaves the other as it was", () => {
+    const start = { x: 651.3, y: 37.7, byHand: true };
+    const layout = layOut(boardOf([{ ...band, at: start }]));
+    expect(movedPlace(layout, band.id, 12, 0)!.y).toBe(37.7);
+    expect(movedPlace(layout, band.id, 0, 12)!.x).toBe(651.3);
+  });
+
+  test("arranging gives back what was moved, and nothing else", () => {
+    const project = boardOf([{ ...band, at: { x: 900, y: 30, byHand: true } }, gyratorAt(100)]);
+    const places = arrangedPlaces(project, null, RANGE);
+    expect(places.map((p) => p.id)).toEqual([band.id]);
+    expect(places[0].at.byHand).toBeUndefined();
+    const back = { ...project, blocks: project.blocks.map((b) => (b.id === band.id ? { ...b, at: places[0].at } : b)) };
+    expect(layOut(back).bands.map((b) => b.x)).toEqual(layOut(boardOf([band, gyratorAt(100)])).bands.map((b) => b.x));
+    expect(arrangedPlaces(back, null, RANGE)).toEqual([]);
+  });
+
+  test("the ends of the chain have their fixed places", () => {
+    const layout = layOut(boardOf([band]));
+    expect(movedPlace(layout, "in", 50, 50)).toBeNull();
+    expect(movedPlace(layout, "eq", 0, 50)!.y).toBeGreaterThan(0);
+  });
+});

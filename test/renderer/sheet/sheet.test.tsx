@@ -1,0 +1,205 @@
+// @vitest-environment jsdom
+import { act } from "react";
+import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
+import { boardOf, gyratorAt } from "../../helpers/sheet-boards.ts";
+import { mountSheet, stubSurroundings, type Mounted } from "./mount-sheet.tsx";
+
+const FREQUENCIES = [4000, 63, 250, 1000];
+let sheet: Mounted;
+
+beforeEach(async () => {
+  stubSurroundings();
+  sheet = await mountSheet(boardOf(FREQUENCIES.map((f) => gyratorAt(f))));
+});
+afterEach(async () => {
+  await sheet.unmount();
+  vi.restoreAllMocks();
+  vi.unstubAllGlobals();
+});
+
+const knobs = (): HTMLElement[] => [...sheet.page.querySelectorAll<HTMLElement>("[data-band]")];
+const knob = (id: string): HTMLElement => sheet.page.querySelector<HTMLElement>(`[data-band="${id}"]`)!;
+
+async function press(target: HTMLElement, key: string, opts: KeyboardEventInit = {}): Promise<void> {
+  await act(async () => {
+    target.dispatchEvent(new KeyboardEvent("keydown", { key, bubbles: true, cancelable: true, ...opts }));
+    target.dispatchEvent(new KeyboardEvent("keyup", { key, bubbles: true, ...opts }));
+  });
+}
+
+async function point(type: string, at: { x: number; y: number }, opts: MouseEventInit = {}): Promise<void> {
+  await act(async () => {
+    sheet.sheet.dispatchEvent(new MouseEvent(type, { bubbles: true, cancelable: true, button: 0, clientX: at.x, clientY: at.y, ...opts }));
+  });
+}
+
+/** Every sixteenth pixel of all layers that carries ink. */
+function inkedPixels(): number {
+  let count = 0;
+  for (const canvas of sheet.page.querySelectorAll("canvas")) {
+    const { data } = canvas.getContext("2d")!.getImageData(0, 0, canvas.width, canvas.height);
+    for (let i = 3; i < data.length; i += 64) if (data[i] > 0) count++;
+  }
+  return count;
+}
+
+describe("the sheet", () => {
+  test("draws on its four layers", async () => {
+    await act(async () => new Promise((resolve) => { setTimeout(resolve, 50); }));
+    expect(sheet.page.querySelectorAll("canvas")).toHaveLength(4);
+    expect(inkedPixels()).toBeGreaterThan(2000);
+  });
+
+  test("has a slider for every band, from left to right, named and told in words", () => {
+    expect(knobs().map((k) => k.dataset.band)).toEqual(["b63", "b250", "b1000", "b4000"]);
+    const one = knob("b1000");
+    expect(one.getAttribute("role")).toBe("slider");
+    expect(one.getAttribute("aria-label")).toBe("1 kHz");
+    expect(one.getAttribute("aria-valuenow")).toBe("50");
+    expect(one.getAttribute("aria-valuetext")).toMatch(/^[+−]?\d+\.\d dB, 50 % of travel$/);
+    expect(one.tabIndex).toBe(0);
+  });
+
+  test("has a button for every block of the chain", async () => {
+    const names = [...sheet.page.querySelectorAll<HTMLElement>("[data-block]")].map((b) => b.dataset.block);
+    expect(new Set(names)).toEqual(new Set(["in", "eq", "out"]));
+    await press(sheet.page.querySelector<HTMLElement>('[data-block="eq"]')!, "Enter");
+    expect(sheet.selection()).toEqual(["eq"]);
+  });
+
+  test("keys move a slider: arrows by 1 %, with Shift and Page by 10 %, Home and End to its ends, 0 to the centre", async () => {
+    const one = knob("b1000");
+    const now = (): number => Number(one.getAttribute("aria-valuenow"));
+    await press(one, "ArrowUp");
+    expect(now()).toBe(51);
+    await press(one, "ArrowDown", { shiftKey: true });
+    expect(now()).toBe(41);
+    await press(one, "PageUp");
+    expect(now()).toBe(51);
+    await press(one, "End");
+    expect(now()).toBe(100);
+    expect(one.getAttribute("aria-valuetext")).toMatch(/^\+\d+\.\d dB, 100 % of travel$/);
+    await press(one, "Home");
+    expect(now()).toBe(0);
+    await press(one, "0");
+    expect(now()).toBe(50);
+    // Every key was one gesture with an end.
+    expect(sheet.log.filter(([name]) => name === "start")).toHaveLength(6);
+    expect(sheet.log.filter(([name]) => name === "end")).toHaveLength(6);
+  });
+
+  test("a knob follows the pointer, finer with Shift; the release ends the gesture", async () => {
+    const at = sheet.handle.screenPlaceOf("b1000", "knob")!;
+    await point("pointerdown", at);
+    expect(sheet.selection()).toEqual(["b1000"]);
+    await point("pointermove", { x: at.x, y: at.y - 20 });
+    const coarse = sheet.project().blocks.find((b) => b.id === "b1000")!.slider!.position;
+    expect(coarse).toBeGreaterThan(0.6);
+    expect(sheet.handle.screenPlaceOf("b1000", "knob")!.y).toBeCloseTo(at.y - 20, 0);
+    await point("pointermove", { x: at.x, y: at.y - 20 }, { shiftKey: true });
+    await point("pointermove", { x: at.x, y: at.y - 30 }, { shiftKey: true });
+    const fine = sheet.project().blocks.find((b) => b.id === "b1000")!.slider!.position;
+    expect((fine - coarse) / (coarse - 0.5)).toBeCloseTo(0.05, 2);
+    await point("pointerup", { x: at.x, y: at.y - 30 });
+    expect(sheet.log.map(([name]) => name).filter((n) => n === "start" || n === "end")).toEqual(["start", "end"]);
+  });
+
+  test("a press alone starts no gesture, Esc takes one back, a double click centres", async () => {
+    const at = sheet.handle.screenPlaceOf("b63", "knob")!;
+    await point("pointerdown", at);
+    await point("pointerup", at);
+    expect(sheet.log.some(([name]) => name === "start")).toBe(false);
+    await point("pointerdown", at);
+    await point("pointermove", { x: at.x, y: at.y - 30 });
+    await press(sheet.sheet, "Escape");
+    await point("pointerup", { x: at.x, y: at.y - 30 });
+    expect(sheet.log.filter(([name]) => name === "cancel" || name === "end")).toEqual([["cancel"]]);
+    expect(knob("b63").getAttribute("aria-valuenow")).toBe("50");
+    await press(knob("b63"), "End");
+    await point("dblclick", sheet.handle.screenPlaceOf("b63", "knob")!);
+    expect(knob("b63").getAttribute("aria-valuenow")).toBe("50");
+  });
+
+  test("a band dragged by its figures is moved by hand, in one step; Arrange puts it back", async () => {
+    const box = sheet.handle.screenPlaceOf("b250", "block")!;
+    const grip = { x: box.x - 20, y: box.y + 130 };
+    await point("pointerdown", grip);
+    await point("pointermove", { x: grip.x + 20, y: grip.y });
+    await point("pointermove", { x: grip.x + 60, y: grip.y + 10 });
+    expect(sheet.log.some(([name]) => name === "place")).toBe(false);
+    await point("pointerup", { x: grip.x + 60, y: grip.y + 10 });
+    const places = sheet.log.filter(([name]) => name === "place");
+    expect(places).toHaveLength(1);
+    expect(places[0][1]).toMatchObject([{ id: "b250", at: { byHand: true } }]);
+    expect(sheet.handle.screenPlaceOf("b250", "block")!.x).toBeCloseTo(box.x + 60, -0.5);
+    expect(sheet.handle.arrange().map((p) => p.id)).toEqual(["b250"]);
+  });
+
+  test("arrows nudge what is selected", async () => {
+    await press(knob("b250"), "Enter");
+    await press(sheet.sheet, "ArrowRight");
+    expect(sheet.log.at(-1)).toMatchObject(["place", [{ id: "b250", at: { byHand: true } }]]);
+  });
+
+  test("a marquee selects what it touches, a click on paper nothing", async () => {
+    const [a, b] = ["b63", "b250"].map((id) => sheet.handle.screenPlaceOf(id, "block")!);
+    const low = { x: a.x - 60, y: 770 };
+    await point("pointerdown", low);
+    await point("pointermove", { x: b.x, y: a.y });
+    await point("pointerup", { x: b.x, y: a.y });
+    expect(sheet.selection()).toEqual(["b63", "b250"]);
+    await point("pointerdown", low);
+    await point("pointerup", low);
+    expect(sheet.selection()).toEqual([]);
+  });
+
+  test("a value is edited where it stands: up steps to the next preferred value, Enter takes it, a fault is told", async () => {
+    await act(async () => sheet.handle.editValue("b1000"));
+    const input = (): HTMLInputElement | null => sheet.page.querySelector<HTMLInputElement>(".sheet-value input");
+    expect(input()!.value).toBe("220n");
+    await press(input()!, "ArrowUp");
+    expect(input()!.value).toBe("270n");
+    const type = async (text: string): Promise<void> => act(async () => {
+      Object.getOwnPropertyDescriptor(HTMLInputElement.prototype, "value")!.set!.call(input(), text);
+      input()!.dispatchEvent(new Event("input", { bubbles: true }));
+    });
+    await type("bad");
+    await press(input()!, "Enter");
+    expect(sheet.page.querySelector("[role=alert]")!.textContent).toBe("not understood");
+    expect(input()!.getAttribute("aria-invalid")).toBe("true");
+    await type("330n");
+    await press(input()!, "Enter");
+    expect(sheet.log.filter(([name]) => name === "edit")).toEqual([["edit", "b1000", "seriesC", "bad"], ["edit", "b1000", "seriesC", "330n"]]);
+    expect(input()).toBeNull();
+  });
+
+  test("the response has a cursor for keys and for the pointer", async () => {
+    const response = sheet.page.querySelector<HTMLElement>("[data-response]")!;
+    await press(response, "ArrowRight");
+    expect(response.getAttribute("aria-valuetext")).toMatch(/^1\.03 kHz: [+−]?\d+\.\d\d dB, -?\d+°$/);
+    const at = sheet.handle.screenPlaceOf("b250", "knob")!;
+    await point("pointermove", { x: at.x, y: 100 });
+    const [, reading] = sheet.log.findLast(([name]) => name === "cursor")! as [string, { frequency: number }];
+    expect(reading.frequency / 250).toBeCloseTo(1, 0);
+  });
+
+  test("zooming brings a band nearer, fitting brings all of them back", async () => {
+    const before = sheet.handle.screenPlaceOf("b63", "knob")!;
+    await act(async () => sheet.handle.zoomBy(3));
+    expect(sheet.handle.screenPlaceOf("b63", "knob")!.x).toBeLessThan(before.x - 200);
+    await act(async () => sheet.handle.focusBlock("b63"));
+    expect(document.activeElement).toBe(knob("b63"));
+    expect(sheet.handle.screenPlaceOf("b63", "knob")!.x).toBeGreaterThan(200);
+    await act(async () => sheet.handle.fit());
+    expect(sheet.handle.screenPlaceOf("b63", "knob")).toEqual(before);
+  });
+
+  test("wiring faults leave the blocks on the sheet", async () => {
+    await sheet.unmount();
+    const project = boardOf([gyratorAt(1000)]);
+    sheet = await mountSheet({ ...project, wires: project.wires.filter((w) => w.to !== "out.in") });
+    expect(knob("b1000").getAttribute("aria-valuetext")).toBe("50 % of travel");
+    expect(sheet.page.querySelector("[data-response]")).toBeNull();
+    expect(sheet.page.querySelectorAll("[data-block]")).toHaveLength(3);
+  });
+});
