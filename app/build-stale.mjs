@@ -63,7 +63,9 @@ async function build(root, configs, output) {
  * @returns {Promise<void>}
  */
 function runVite(root, args) {
-  const child = spawn(process.execPath, [join(root, "node_modules", "vite", "bin", "vite.js"), ...args], { cwd: root, stdio: ["ignore", "pipe", "pipe"] });
+  // A test run's NODE_ENV would leave the libraries' development builds where the next start takes them up.
+  const env = { ...process.env, NODE_ENV: "production" };
+  const child = spawn(process.execPath, [join(root, "node_modules", "vite", "bin", "vite.js"), ...args], { cwd: root, env, stdio: ["ignore", "pipe", "pipe"] });
   let output = "";
   child.stdout.on("data", (chunk) => (output += chunk));
   child.stderr.on("data", (chunk) => (output += chunk));

@@ -1,6 +1,6 @@
 import { createHash } from "node:crypto";
 import { access, constants, mkdir, open, readdir, stat } from "node:fs/promises";
-import { dirname, extname, join } from "node:path";
+import { basename, dirname, extname, join } from "node:path";
 import { HostFailure } from "../../core/contract/failures.ts";
 import type { ArgsOf, ResultOf } from "../../core/contract/methods.ts";
 import { FaultError, type Fault } from "../../core/errors.ts";
@@ -60,7 +60,8 @@ export function createProjects(opts: ProjectsOpts): Projects {
         await opts.guard.grant(opts.launchPath);
         return { path: opts.launchPath };
       }
-      return { path: (await demoPaths(opts.demoFolder))[0] ?? null };
+      const shipped = await demoPaths(opts.demoFolder);
+      return { path: shipped.find((path) => basename(path) === OPENING_DEMO) ?? shipped[0] ?? null };
     },
 
     async open({ path: asked }) {
@@ -96,6 +97,9 @@ export function withExtension(path: string): string {
 export function isProjectName(name: string): boolean {
   return extname(name).toLowerCase() === PROJECT_EXTENSION;
 }
+
+/** What a start without a file shows. */
+const OPENING_DEMO = "saltmarsh-voice-channel.bandwright";
 
 async function demoPaths(folder: string): Promise<readonly string[]> {
   try {

@@ -6,7 +6,7 @@ import { BLOCK_KINDS, type BlockKind } from "../blocks/kinds.ts";
 export function showValue(value: unknown): string {
   if (value === undefined) return "nothing";
   if (typeof value === "number") return String(value);
-  const text = JSON.stringify(value) ?? String(value);
+  const text = JSON.stringify(value) ?? typeof value;
   return text.length > 48 ? `${text.slice(0, 45)}…` : text;
 }
 
@@ -56,7 +56,8 @@ function object<Entries extends v.ObjectEntries>(entries: Entries, wanted: Reado
   return v.pipe(
     plainObject,
     v.looseObject(entries, (issue) => {
-      const key = String(issue.path?.at(-1)?.key ?? "");
+      const last: unknown = issue.path?.at(-1)?.key;
+      const key = typeof last === "string" ? last : "";
       return `is missing: must be ${Object.hasOwn(wanted, key) ? wanted[key] : 'a part such as { "value": 470 }'}`;
     }),
   );
