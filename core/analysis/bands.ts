@@ -1,9 +1,10 @@
 import { BLOCKS } from "../blocks/index.ts";
 import type { BlockKind } from "../blocks/kinds.ts";
+import type { Block } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { lawResults } from "./laws.ts";
-import { scanOf, type BandPeak } from "./scan.ts";
+import { scanOf, type BandPeak, type Scan } from "./scan.ts";
 
 /** The figures of one band. */
 export interface BandFigures {
@@ -32,13 +33,8 @@ export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = 
   if (bands.length === 0) return [];
   const scan = scanOf(board, bands.flatMap(({ laws }) => [laws.f0, laws.fc]), opts);
   return bands.map(({ band, laws }, index): BandFigures => {
-    const { shape } = BLOCKS[band.kind];
     const isolatedBoost = 20 * Math.log10(laws.G);
-    const figure = (position: 0 | 1): BandPeak => {
-      if (shape === "resonance") return scan.resonance(index, position, laws.f0);
-      const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, isolatedBoost);
-      return { peak, frequency, q, lower, upper };
-    };
+    const figure = (position: 0 | 1): BandPeak => endFigure(scan, index, band, laws, position);
     const boost = figure(1);
     return {
       id: band.id,
@@ -53,6 +49,14 @@ export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = 
       interactionLoss: isolatedBoost - boost.peak,
     };
   });
+}
+
+/** What a band does at one end of its travel, on a scan of its board. @param index of the band; @param laws of its leg */
+export function endFigure(scan: Scan, index: number, band: Block, laws: Readonly<Record<string, number>>, position: 0 | 1): BandPeak {
+  const { shape } = BLOCKS[band.kind];
+  if (shape === "resonance") return scan.resonance(index, position, laws.f0);
+  const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, 20 * Math.log10(laws.G));
+  return { peak, frequency, q, lower, upper };
 }
 
 export type { BandPeak };

@@ -32,6 +32,7 @@ export class Scan {
   /** Factor on each band's admittance: 1 as it stands, 0 as if it were not there. */
   readonly weights: Float64Array;
   readonly #frequency: Float64Array;
+  readonly #perOctave: number;
   readonly #grid: Sweep;
   readonly #gridOut: TransferColumns;
   readonly #point: Sweep;
@@ -40,9 +41,12 @@ export class Scan {
   readonly #positions: Float64Array;
   readonly #gain: Float64Array;
   readonly #centred: Float64Array;
+  #isCentredFresh = true;
 
-  constructor(board: CompiledBoard, from: number, to: number) {
-    const points = Math.ceil(Math.log2(to / from) * PER_OCTAVE) + 1;
+  /** @param perOctave points of the coarse scan, which finds brackets; the figures come from the continuous response all the same */
+  constructor(board: CompiledBoard, from: number, to: number, perOctave = PER_OCTAVE) {
+    const points = Math.ceil(Math.log2(to / from) * perOctave) + 1;
+    this.#perOctave = perOctave;
     this.#frequency = logFrequencies(from, to, points);
     this.#grid = new Sweep(board, angular(this.#frequency));
     this.#gridOut = transferColumns(points, false);
@@ -51,6 +55,13 @@ export class Scan {
     this.weights = new Float64Array(board.bands.length).fill(1);
     this.#centred = this.#sweepGain(new Float64Array(points));
     this.#gain = new Float64Array(points);
+  }
+
+  /** Puts another version of the same board in: see `Sweep.replace`. */
+  replace(board: CompiledBoard): void {
+    this.#grid.replace(board);
+    this.#point.replace(board);
+    this.#isCentredFresh = false;
   }
 
   #sweepGain(out: Float64Array): Float64Array {
@@ -116,6 +127,8 @@ export class Scan {
    * @param side on which the corner lies: 1 above (low shelf), −1 below
    */
   shelf(band: number, position: 0 | 1, side: 1 | -1, isolatedBoost: number): BandPeak & { readonly plateau: number } {
+    if (!this.#isCentredFresh) this.#sweepGain(this.#centred);
+    this.#isCentredFresh = true;
     return this.#with(band, position, () => {
       const sign = position === 1 ? 1 : -1;
       const effect = this.#gain.map((gain, i) => gain - this.#centred[i]);
@@ -133,9 +146,10 @@ export class Scan {
     const g = this.#gain;
     let best = -1;
     let least = Infinity;
-    for (let i = PER_OCTAVE; i < g.length - PER_OCTAVE; i++) {
+    const octave = this.#perOctave;
+    for (let i = octave; i < g.length - octave; i++) {
       if (!isFit(i)) continue;
-      const around = g.subarray(i - PER_OCTAVE, i + PER_OCTAVE + 1);
+      const around = g.subarray(i - octave, i + octave + 1);
       const variation = Math.max(...around) - Math.min(...around);
       if (variation < least) [best, least] = [i, variation];
     }

@@ -5,7 +5,7 @@ import type { OpAmpModel, Project } from "./project.ts";
 export const IDEAL = "ideal";
 
 /** Built-in models: typical values from memory of data sheets, to be checked against the maker's current sheet. */
-export const BUILT_IN_OP_AMPS: Readonly<Record<string, OpAmpModel & { readonly about: string }>> = table.models;
+export const BUILT_IN_OP_AMPS: Readonly<Record<string, OpAmpModel & { readonly about: string; /** In one package. */ readonly amplifiers: number }>> = table.models;
 
 /** Names that a block of this project may use: its own models first, then `ideal`, then the built-in table. */
 export function opAmpNames(project: Pick<Project, "opAmps">): string[] {

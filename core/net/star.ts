@@ -147,24 +147,30 @@ export class Sweep {
   /** The full reduction: at once where the board needs it, else made when a slope is first asked for. */
   #general: GeneralStar | undefined;
   /** Columns of the stage at work: Σ Rb·y, Σ Ra·y, Σ Ra·Rb·y/T. */
-  readonly #sums: readonly Float64Array[];
+  #sums: readonly Float64Array[] = [];
   /** Load admittance at each item's out, and its gain. */
-  readonly #load: readonly (readonly [Float64Array, Float64Array])[];
-  readonly #gain: readonly (readonly [Float64Array, Float64Array])[];
+  #load: readonly (readonly [Float64Array, Float64Array])[] = [];
+  #gain: readonly (readonly [Float64Array, Float64Array])[] = [];
 
   /** @param omega rad/s, all above 0; kept, not copied: change it through `retune` alone */
   constructor(board: CompiledBoard, omega: Float64Array) {
     this.#board = board;
     this.omega = omega;
     this.#ones = new Float64Array(board.bands.length).fill(1);
-    const points = omega.length;
-    const column = (): Float64Array => new Float64Array(points);
+    this.#prepare();
+  }
+
+  #prepare(): void {
+    const { omega } = this;
+    const board = this.#board;
+    const column = (): Float64Array => new Float64Array(omega.length);
     const pair = (): readonly [Float64Array, Float64Array] => [column(), column()];
     this.#general = board.reference ? new GeneralStar(board, omega) : undefined;
     const isFast = board.reference === undefined;
     this.#sums = isFast ? [column(), column(), column(), column(), column(), column()] : [];
     this.#load = isFast ? board.items.map(pair) : [];
     this.#gain = isFast ? board.items.map(pair) : [];
+    this.#legRe.length = this.#legIm.length = 0;
     if (!isFast) return;
     for (const band of board.bands) {
       this.#legRe.push(column());
@@ -179,12 +185,17 @@ export class Sweep {
 
   /**
    * Puts another version of the same board in (see `recompileBlock`): only the legs that differ are worked out anew.
-   * @throws RangeError where it has other bands, or where one has a reference with an impedance and the other has not
+   * @throws RangeError where it has other bands or another chain
    */
   replace(board: CompiledBoard): void {
     const old = this.#board;
-    if (board.bands.length !== old.bands.length || board.items.length !== old.items.length || (board.reference === undefined) !== (old.reference === undefined)) throw new RangeError("not a version of the same board");
+    if (board.bands.length !== old.bands.length || board.items.length !== old.items.length) throw new RangeError("not a version of the same board");
     this.#board = board;
+    // A reference that gains or loses its impedance changes the way of working.
+    if ((board.reference === undefined) !== (old.reference === undefined)) {
+      this.#prepare();
+      return;
+    }
     this.#general?.replace(board);
     for (const [index, re] of this.#legRe.entries()) if (board.bands[index].leg !== old.bands[index].leg) board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
   }

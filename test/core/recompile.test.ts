@@ -56,6 +56,7 @@ describe("a compiled board with one block changed", () => {
         const compiled = compileBoard(resolveBoard(project));
         const sweep = new Sweep(compiled, omega);
         columnsOf(sweep, compiled.positions);
+        sweep.replace(recompileReference(compiled, { ...project, supply: { kind: "split", positive: 9, negative: 9 } }));
         sweep.replace(recompileReference(compiled, other));
         expect(columnsOf(sweep, compiled.positions)).toEqual(columnsOf(new Sweep(compileBoard(resolveBoard(other)), omega), compiled.positions));
       }),

@@ -1,0 +1,168 @@
+import { findOpAmp } from "../model/op-amps.ts";
+import type { Project } from "../model/project.ts";
+import { bestPairs, isSum, pairTolerance, type Joined, type Pair, type PairItem } from "./pairs.ts";
+import { amplifiersIn, partFromStock, type BoardRole, type Filling } from "./roles.ts";
+import { polarityProblems, powerProblems, ratingProblems, type BoardStress, type Problem } from "./stress.ts";
+import { availableOf, isPolarised, unitCost, type StockedLine } from "./stock.ts";
+
+/** An amount of money; different currencies are never added. */
+export interface Money {
+  readonly amount: number;
+  /** ISO 4217. */
+  readonly currency: string;
+}
+
+/** A part from the drawer that could go into a role: one piece, or two joined. */
+export interface Candidate {
+  /** Lines taken, one piece of each (of the same one, two). */
+  readonly lines: readonly StockedLine[];
+  readonly joined: Joined | null;
+  /** SI; null for op amps. */
+  readonly value: number | null;
+  /** Fraction; worst case for a pair. */
+  readonly tolerance: number | null;
+  /** value/wanted − 1; 0 for op amps. */
+  readonly deviation: number;
+  /** What a unit's role costs at the quantity of the build; a share of the package for op amps. Null where unknown. */
+  readonly cost: Money | null;
+  /** Pieces of its lines that remain after the build, the least of them; below 0 where there are too few. */
+  readonly left: number;
+  readonly problems: readonly Problem[];
+  readonly filling: Filling;
+}
+
+export interface CandidateOpts {
+  /** Fraction either way; 0.2 by default. */
+  readonly window?: number;
+  /** How many at most, nearest first; 50 by default. */
+  readonly most?: number;
+  /** Pairs of two pieces too. */
+  readonly pairs?: boolean;
+  /** Units to build, 1 by default: pieces have to be there for each. */
+  readonly units?: number;
+  /** Lines with too few free pieces too, with a fault. */
+  readonly withShort?: boolean;
+  /** What the part has to bear; without it, ratings are not checked. */
+  readonly stress?: BoardStress | undefined;
+}
+
+/** Tolerates rounding of values such as 4.7e-9 read from text. */
+const SAME_VALUE = 1e-9;
+
+/** Parts of the drawer for a role: right kind, within the window, pieces there that nobody has spoken for; nearest first, then cheapest. */
+export function candidatesFor(project: Project, role: BoardRole, lines: readonly StockedLine[], opts: CandidateOpts = {}): Candidate[] {
+  const { most = 50, pairs = false, units = 1 } = opts;
+  const found = role.kind === "op-amp" ? opAmpCandidates(project, lines, opts) : singleCandidates(role, lines, opts);
+  if (pairs && (role.kind === "resistor" || role.kind === "capacitor")) found.push(...pairCandidates(role, role.kind, lines, most, units, opts));
+  return found.toSorted(byNearness).slice(0, most);
+}
+
+function byNearness(a: Candidate, b: Candidate): number {
+  const near = Math.abs(a.deviation) - Math.abs(b.deviation);
+  if (Math.abs(near) > SAME_VALUE) return near;
+  return a.lines.length - b.lines.length || (a.cost?.amount ?? Infinity) - (b.cost?.amount ?? Infinity) || compareText(a.lines[0].id, b.lines[0].id);
+}
+
+export function compareText(a: string, b: string): number {
+  return a < b ? -1 : a > b ? 1 : 0;
+}
+
+/** Of `Infinity − Infinity` and the like nothing can be said; a null cost sorts last. */
+function costOf(lines: readonly StockedLine[], units: number): Money | null {
+  const { currency } = lines[0];
+  let amount = 0;
+  for (const line of lines) {
+    const count = lines.filter((l) => l.id === line.id).length * units;
+    const cost = unitCost(line, count);
+    if (cost === null || line.currency !== currency) return null;
+    amount += cost;
+  }
+  return { amount, currency };
+}
+
+function singleCandidates(role: BoardRole, lines: readonly StockedLine[], opts: CandidateOpts): Candidate[] {
+  const { window = 0.2, units = 1, withShort = false } = opts;
+  const wanted = role.value!;
+  return lines.flatMap((line): Candidate[] => {
+    if (line.kind !== role.kind || line.value === null || !(line.value > 0)) return [];
+    const deviation = line.value / wanted - 1;
+    const left = availableOf(line) - units;
+    if (Math.abs(deviation) > window + SAME_VALUE || (left < 0 && !withShort)) return [];
+    return [{
+      lines: [line], joined: null, value: line.value, tolerance: line.tolerance, deviation, left,
+      cost: costOf([line], units),
+      problems: [...stockProblems(line, left), ...lineProblems(role, line, opts.stress)],
+      filling: { part: partFromStock(role.part!, line.value, line.tolerance, line.id) },
+    }];
+  });
+}
+
+function pairCandidates(role: BoardRole, kind: "resistor" | "capacitor", lines: readonly StockedLine[], most: number, units: number, opts: CandidateOpts): Candidate[] {
+  const { window = 0.2 } = opts;
+  const wanted = role.value!;
+  const items = lines.flatMap((line) => (line.kind === kind && line.value !== null && line.value > 0 ? [{ line, value: line.value, available: availableOf(line) }] : []));
+  return (["series", "parallel"] as const).flatMap((joined) => {
+    const sums = isSum(kind, joined);
+    return bestPairs(wanted, items, sums, most, units).flatMap((pair): Candidate[] => {
+      const deviation = pair.value / wanted - 1;
+      return Math.abs(deviation) > window + SAME_VALUE ? [] : [pairCandidate(role, pair, joined, sums, deviation, units, opts.stress)];
+    });
+  });
+}
+
+function pairCandidate(role: BoardRole, pair: Pair<PairItem & { readonly line: StockedLine }>, joined: Joined, sums: boolean, deviation: number, units: number, stress: BoardStress | undefined): Candidate {
+  const [a, b] = [pair.first.line, pair.second.line];
+  const lines = [a, b];
+  const tolerance = pairTolerance(pair.first.value, pair.second.value, a.tolerance, b.tolerance, sums);
+  const left = a.id === b.id ? availableOf(a) - 2 * units : Math.min(availableOf(a), availableOf(b)) - units;
+  // Each half is held to the whole's voltage and heat: leakage shares a steady voltage out as it pleases.
+  const problems = lines.flatMap((line) => lineProblems(role, line, stress));
+  const isNew = (p: Problem, index: number): boolean => problems.findIndex((q) => q.message === p.message) === index;
+  const whole = partFromStock(role.part!, pair.value, tolerance, a.id);
+  return {
+    lines, joined, value: pair.value, tolerance, deviation, left, cost: costOf(lines, units), problems: problems.filter(isNew),
+    filling: { part: { ...whole, second: { stock: b.id, value: pair.second.value, joined, firstValue: pair.first.value } } },
+  };
+}
+
+function opAmpCandidates(project: Project, lines: readonly StockedLine[], opts: CandidateOpts): Candidate[] {
+  const { units = 1, withShort = false } = opts;
+  return lines.flatMap((line): Candidate[] => {
+    if (line.kind !== "op-amp" || line.type === null) return [];
+    const left = availableOf(line) - units;
+    if (left < 0 && !withShort) return [];
+    const name = modelName(project, line.type);
+    const cost = costOf([line], units);
+    const problems = stockProblems(line, left);
+    if (name === undefined) problems.push({ level: "fault", about: "model", message: `no figures are known for a ${line.type}: give the project a model of that name first` });
+    return [{
+      lines: [line], joined: null, value: null, tolerance: null, deviation: 0, left, problems,
+      cost: cost && { ...cost, amount: cost.amount / amplifiersIn(line.type) },
+      filling: { opAmp: name ?? line.type, stock: line.id },
+    }];
+  });
+}
+
+/** The project's name for an op-amp type, whatever the case it is written in. */
+export function modelName(project: Project, type: string): string | undefined {
+  return [type, type.toUpperCase(), ...Object.keys(project.opAmps ?? {}).filter((name) => name.toLowerCase() === type.toLowerCase())].find((name) => findOpAmp(project, name) !== undefined);
+}
+
+function stockProblems(line: StockedLine, left: number): Problem[] {
+  return left < 0 ? [{ level: "fault", about: "stock", message: `${-left} too few of ${line.id}: ${Math.max(0, availableOf(line))} are free` }] : [];
+}
+
+/** What is wrong with a line in a role, as far as voltage, heat and polarity go. */
+export function lineProblems(role: BoardRole, line: StockedLine, stress: BoardStress | undefined): Problem[] {
+  const at = stress?.get(role.name);
+  if (!at) return [];
+  if (role.kind === "capacitor") return [...ratingProblems(line.rating, at), ...(isPolarised(line) ? polarityProblems(line.rating, at) : [])];
+  if (role.kind === "resistor" || role.kind === "potentiometer") return powerProblems(line.rating, at);
+  if (role.kind === "inductor") return [{ level: "caution", about: "model", message: "the drawer does not know its winding resistance and self-capacitance: those of the part before are kept" }];
+  return [];
+}
+
+/** Whether anything bars it. */
+export function hasFault(candidate: Pick<Candidate, "problems">): boolean {
+  return candidate.problems.some((p) => p.level === "fault");
+}
