@@ -75,7 +75,7 @@ export function SheetStage(props: SheetStageProps) {
       drawCurves(pen, {
         response: frame.response, ruling: frame.ruling, levels, phase,
         total: results?.total ?? null, alone: results?.alone ?? null,
-        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "",
+        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "", ghost: results?.ghost ?? null,
       });
       const { ruling, board } = frame;
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {

@@ -9,6 +9,15 @@ export interface Curve {
   readonly phase: Float64Array;
 }
 
+/** The response as another part would make it, held against the present one. */
+export interface Ghost {
+  /** What it is with, such as `6n2 C0G 1 %`. */
+  readonly label: string;
+  readonly total: Curve;
+  /** As `alone` of the results; null where that is. */
+  readonly alone: Curve | null;
+}
+
 /** What the sheet shows of a board's computation. */
 export interface SheetResults {
   /** The response with the sliders as they stand. */
@@ -19,6 +28,7 @@ export interface SheetResults {
   readonly figures: ReadonlyMap<string, BandFigures>;
   /** dB of the total response at each band's in-circuit centre now, by band id. */
   readonly liveGain: ReadonlyMap<string, number>;
+  readonly ghost?: Ghost | null;
 }
 
 /** The sheet draws what it is given and reports what the hands do; it decides nothing. */

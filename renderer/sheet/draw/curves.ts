@@ -3,7 +3,7 @@ import { extremeIndex } from "../../../core/geometry/reading.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
 import type { Box } from "../../../core/geometry/units.ts";
 import { formatDb, formatValue } from "../../../core/units.ts";
-import type { Curve } from "../sheet-props.ts";
+import type { Curve, Ghost } from "../sheet-props.ts";
 import { faint, type Pen } from "./pen.ts";
 
 export interface CurveScene {
@@ -15,18 +15,22 @@ export interface CurveScene {
   readonly alone: Curve | null;
   /** Name of the band that is shown alone. */
   readonly aloneLabel: string;
+  readonly ghost?: Ghost | null;
 }
 
 /** The response: what the sliders do together in ink, the selected band alone dashed and named. */
 export function drawCurves(pen: Pen, scene: CurveScene): void {
-  const { response, total, alone, inks, phase } = { ...scene, inks: pen.inks };
+  const { response, total, alone, ghost, inks, phase } = { ...scene, inks: pen.inks };
   pen.clipped(response.left, response.top, response.right, response.bottom, () => {
     if (total) fillBetween(pen, scene, total);
     if (phase && total) stroke(pen, scene, total.frequency, total.phase, phase, inks.accent, 1.2, [2, 3]);
     if (alone) stroke(pen, scene, alone.frequency, alone.gain, scene.levels, isBoost(alone) ? inks.boost : inks.cut, 1.6, [6, 4]);
     if (total) stroke(pen, scene, total.frequency, total.gain, scene.levels, inks.ink, 2.2);
+    // Dots over the lines, so that what stays the same shows as much as what moves.
+    if (ghost) for (const curve of [ghost.total, ...(ghost.alone ? [ghost.alone] : [])]) stroke(pen, scene, curve.frequency, curve.gain, scene.levels, inks.accent, 2.4, [0.1, 5]);
   });
   if (alone) nameAlone(pen, scene, alone);
+  if (ghost) nameGhost(pen, scene, ghost);
 }
 
 function isBoost(curve: Curve): boolean {
@@ -90,6 +94,20 @@ function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
   });
   const y = isCrossed ? (isUp ? response.top + 9 : response.bottom - 9) : beside;
   pen.text(text, x, y, { color: isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper });
+}
+
+/** What the dotted curves are, where they depart most, on the side away from the line they depart from. */
+function nameGhost(pen: Pen, scene: CurveScene, ghost: Ghost): void {
+  const { response, ruling, levels } = scene;
+  const [now, then] = scene.alone && ghost.alone ? [scene.alone, ghost.alone] : [scene.total, ghost.total];
+  if (!now || now.gain.length !== then.gain.length) return;
+  let most = extremeIndex(then.gain);
+  for (let i = 0; i < then.gain.length; i++) if (Math.abs(then.gain[i] - now.gain[i]) > Math.abs(then.gain[most] - now.gain[most])) most = i;
+  const text = `with ${ghost.label}`;
+  const width = pen.widthOf(text, 11, true);
+  const x = Math.max(response.left + 6, Math.min(response.right - 6 - width, pixelOf(ruling, then.frequency[most]) - width / 2));
+  const y = levelY(levels, response.top, response.bottom - response.top, then.gain[most]) + (then.gain[most] >= now.gain[most] ? -13 : 13);
+  pen.text(text, x, Math.max(response.top + 9, Math.min(response.bottom - 9, y)), { color: pen.inks.accent, halo: pen.inks.paper, isBold: true });
 }
 
 function levelAt(curve: Curve, scene: CurveScene, x: number): number | null {
