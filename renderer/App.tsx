@@ -4,9 +4,10 @@ import { isPossible } from "./editor/actions/action.ts";
 import { ShellProvider, useEditorState, useShell, useUiState, type Shell } from "./editor/hooks.ts";
 import { DialogLayer } from "./dialogs/DialogLayer.tsx";
 import { Panel } from "./inspector/Panel.tsx";
-import { SheetArea } from "./panels/SheetArea.tsx";
 import { StatusLine } from "./panels/StatusLine.tsx";
 import { TopLine } from "./panels/TopLine.tsx";
+import { ViewArea } from "./ViewArea.tsx";
+import type { ViewId } from "./views.ts";
 
 interface AppProps {
   readonly shell: Shell;
@@ -41,7 +42,7 @@ function Frame() {
         </div>
       )}
       <div className={isPanelOpen ? "main has-panel" : "main"}>
-        <SheetArea />
+        <ViewArea />
         {isPanelOpen && <Panel />}
       </div>
       <StatusLine />
@@ -55,7 +56,7 @@ function useKeys(): void {
   useEffect(() => {
     const onKeyDown = (event: KeyboardEvent): void => {
       if (event.defaultPrevented || event.isComposing || context.ui.store.getState().dialogs.length > 0) return;
-      const focus = focusOf(event.target);
+      const focus = focusOf(event.target, context.ui.store.getState().view);
       if (focus === null) return;
       const action = actionForKey(event, focus, context);
       if (!action) return;
@@ -71,13 +72,14 @@ function useKeys(): void {
 }
 
 /** Null where keys belong to an open menu or list. */
-function focusOf(target: EventTarget | null): Focus | null {
+function focusOf(target: EventTarget | null, view: ViewId): Focus | null {
   if (!(target instanceof Element)) return "elsewhere";
   if (target.closest("[role=menu], [role=menubar], [role=listbox], [role=dialog]")) return target.closest("[role=menubar]") ? "elsewhere" : null;
   if (target instanceof HTMLTextAreaElement || (target instanceof HTMLInputElement && !["range", "radio", "checkbox"].includes(target.type))) {
     return target.dataset.untouched === "true" ? "untouched-field" : "field";
   }
-  return target === document.body || target.closest(".sheet-area") ? "sheet" : "elsewhere";
+  const isSheet = view === "board" && (target === document.body || target.closest(".sheet-area") !== null);
+  return isSheet ? "sheet" : "elsewhere";
 }
 
 function useTitle(): void {

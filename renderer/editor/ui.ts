@@ -1,5 +1,6 @@
 import { createStore, type StoreApi } from "zustand/vanilla";
 import type { Fault } from "../../core/errors.ts";
+import type { ViewId } from "../views.ts";
 
 export type Theme = "paper" | "night";
 
@@ -38,6 +39,7 @@ export interface ContextMenuPlace {
 
 export interface UiState {
   readonly theme: Theme;
+  readonly view: ViewId;
   readonly isPanelOpen: boolean;
   readonly isPhaseShown: boolean;
   readonly cursor: Reading | null;
@@ -58,7 +60,7 @@ export interface Ui {
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
   setTheme(theme: Theme): void;
-  patch(change: Partial<Pick<UiState, "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
+  patch(change: Partial<Pick<UiState, "view" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -70,6 +72,7 @@ export function createUi(): Ui {
   const systemTheme = (): Theme => (system.matches ? "night" : "paper");
   const store = createStore<UiState>(() => ({
     theme: keptTheme() ?? systemTheme(),
+    view: "board",
     isPanelOpen: window.innerWidth >= 900,
     isPhaseShown: false,
     cursor: null,

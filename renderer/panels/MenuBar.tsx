@@ -15,7 +15,7 @@ export const MenuBar = memo(function MenuBar() {
           <Menu.Trigger className="menu-trigger">{name}</Menu.Trigger>
           <Menu.Portal>
             <Menu.Positioner className="positioner" sideOffset={4} align="start">
-              <Menu.Popup className="popup" finalFocus={(by) => (by === "mouse" ? document.querySelector<HTMLElement>(".sheet-area") : true)}>
+              <Menu.Popup className="popup" finalFocus={(by) => (by === "mouse" ? document.querySelector<HTMLElement>(".view:not([hidden]) > main") : true)}>
                 <MenuItems actions={ACTIONS.filter((action) => action.menu === name)} />
               </Menu.Popup>
             </Menu.Positioner>

@@ -8,6 +8,7 @@ import { actionById, run } from "../editor/actions/actions.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { MenuBar } from "./MenuBar.tsx";
+import { ViewTabs } from "./ViewTabs.tsx";
 
 /** Name, size and state of the board; menus; the few things that hands reach for most. */
 export function TopLine() {
@@ -23,6 +24,7 @@ export function TopLine() {
         </p>
       </div>
       <MenuBar />
+      <ViewTabs />
       <div className="top-tools">
         <Tool id="undo" path="M7 5 3 9l4 4M3 9h7a4 4 0 0 1 0 8H7" text="" />
         <Tool id="redo" path="m11 5 4 4-4 4M15 9H8a4 4 0 0 0 0 8h3" text="" />

@@ -105,7 +105,7 @@ export const EDIT_ACTIONS: readonly Action[] = [
   { id: "select-previous", label: "Select previous block", keywords: "back band walk", menu: "Edit", group: 3, chords: ["Shift+N"], perform: (c) => step(c, -1) },
   {
     id: "edit-value", label: "Edit value on the sheet", keywords: "change part capacitor resistor type", menu: "Edit", group: 4, chords: ["F2"],
-    when: (c) => selectedBlocks(c).length === 1,
+    when: (c) => c.ui.store.getState().view === "board" && selectedBlocks(c).length === 1,
     perform: (c) => c.sheet()?.editValue(selectedBlocks(c)[0].id),
   },
   {

@@ -1,26 +1,39 @@
 import { moveBlocks } from "../../../core/model/edit.ts";
-import type { Action } from "./action.ts";
+import { VIEWS } from "../../views.ts";
+import type { Action, ActionContext } from "./action.ts";
 
 const ZOOM_STEP = 1.25;
 const PAN_STEP = 80;
 
+function isBoardShown(c: ActionContext): boolean {
+  return c.ui.store.getState().view === "board";
+}
+
+const showActions = VIEWS.map(
+  ({ id, label, keywords, chord }): Action => ({
+    id: `show-${id}`, label: `Show ${label.toLowerCase()}`, keywords, menu: "View", group: 0, chords: [chord], inFields: "always",
+    perform: (c) => c.ui.patch({ view: id, contextMenu: null }),
+  }),
+);
+
 export const VIEW_ACTIONS: readonly Action[] = [
-  { id: "fit", label: "Fit the sheet", keywords: "zoom whole overview reset view", menu: "View", group: 1, chords: ["F"], perform: (c) => c.sheet()?.fit() },
-  { id: "zoom-in", label: "Zoom in", keywords: "larger closer magnify", menu: "View", group: 1, chords: ["+", "="], perform: (c) => c.sheet()?.zoomBy(ZOOM_STEP) },
-  { id: "zoom-out", label: "Zoom out", keywords: "smaller further", menu: "View", group: 1, chords: ["-"], perform: (c) => c.sheet()?.zoomBy(1 / ZOOM_STEP) },
-  { id: "pan-left", label: "Show what is further left", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(PAN_STEP, 0) },
-  { id: "pan-right", label: "Show what is further right", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(-PAN_STEP, 0) },
-  { id: "pan-up", label: "Show what is further up", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(0, PAN_STEP) },
-  { id: "pan-down", label: "Show what is further down", keywords: "pan scroll move view", menu: null, group: 2, perform: (c) => c.sheet()?.panBy(0, -PAN_STEP) },
+  ...showActions,
+  { id: "fit", label: "Fit the sheet", keywords: "zoom whole overview reset view", menu: "View", group: 1, chords: ["F"], when: isBoardShown, perform: (c) => c.sheet()?.fit() },
+  { id: "zoom-in", label: "Zoom in", keywords: "larger closer magnify", menu: "View", group: 1, chords: ["+", "="], when: isBoardShown, perform: (c) => c.sheet()?.zoomBy(ZOOM_STEP) },
+  { id: "zoom-out", label: "Zoom out", keywords: "smaller further", menu: "View", group: 1, chords: ["-"], when: isBoardShown, perform: (c) => c.sheet()?.zoomBy(1 / ZOOM_STEP) },
+  { id: "pan-left", label: "Show what is further left", keywords: "pan scroll move view", menu: null, group: 2, when: isBoardShown, perform: (c) => c.sheet()?.panBy(PAN_STEP, 0) },
+  { id: "pan-right", label: "Show what is further right", keywords: "pan scroll move view", menu: null, group: 2, when: isBoardShown, perform: (c) => c.sheet()?.panBy(-PAN_STEP, 0) },
+  { id: "pan-up", label: "Show what is further up", keywords: "pan scroll move view", menu: null, group: 2, when: isBoardShown, perform: (c) => c.sheet()?.panBy(0, PAN_STEP) },
+  { id: "pan-down", label: "Show what is further down", keywords: "pan scroll move view", menu: null, group: 2, when: isBoardShown, perform: (c) => c.sheet()?.panBy(0, -PAN_STEP) },
   {
-    id: "arrange", label: "Arrange bands under their frequencies", keywords: "tidy place layout order align", menu: "View", group: 3, chords: ["Shift+A"],
+    id: "arrange", label: "Arrange bands under their frequencies", keywords: "tidy place layout order align", menu: "View", group: 3, chords: ["Shift+A"], when: isBoardShown,
     perform: (c) => {
       const moves = c.sheet()?.arrange() ?? [];
       c.editor.apply("arrange", moveBlocks(c.editor.store.getState().project, moves));
     },
   },
   {
-    id: "phase", keywords: "degrees angle curve axis", menu: "View", group: 4, chords: ["Shift+P"],
+    id: "phase", keywords: "degrees angle curve axis", menu: "View", group: 4, chords: ["Shift+P"], when: isBoardShown,
     label: (c) => (c.ui.store.getState().isPhaseShown ? "Hide the phase" : "Show the phase"),
     perform: (c) => c.ui.patch({ isPhaseShown: !c.ui.store.getState().isPhaseShown }),
   },
