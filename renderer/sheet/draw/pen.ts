@@ -96,11 +96,12 @@ export class Pen {
     return this.ctx.measureText(text).width;
   }
 
-  /** Draws inside a rectangle only. */
+  /** Draws inside a rectangle only, its sides on the device's pixels: an edge between pixels makes clipping slow. */
   clipped(left: number, top: number, right: number, bottom: number, draw: () => void): void {
+    const whole = (value: number): number => Math.round(value * this.ratio) / this.ratio;
     this.ctx.save();
     this.ctx.beginPath();
-    this.ctx.rect(left, top, right - left, bottom - top);
+    this.ctx.rect(whole(left), whole(top), whole(right) - whole(left), whole(bottom) - whole(top));
     this.ctx.clip();
     draw();
     this.ctx.restore();
