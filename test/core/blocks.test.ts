@@ -1,6 +1,6 @@
 /** One suite for every block kind there is: it reads the definitions and knows no kind by name. */
 import * as fc from "fast-check";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { lawResults } from "../../core/analysis/laws.ts";
 import { angular, logFrequencies } from "../../core/analysis/response.ts";
 import type { LegCase, LegPort } from "../../core/blocks/definition.ts";
@@ -20,6 +20,8 @@ import { Dual } from "../../core/num/dual.ts";
 import { probeLeg } from "../fixtures/leg-probe.ts";
 import { runs } from "../fixtures/runs.ts";
 import { blockArbitrary, modelArbitrary, partsArbitrary } from "../helpers/boards.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 const caseFiles: Readonly<Record<string, { readonly CASES: readonly LegCase[] }>> = import.meta.glob("../../core/blocks/*/cases.ts", { eager: true });
 const casesOf = (kind: BlockKind): readonly LegCase[] => caseFiles[`../../core/blocks/${kind}/cases.ts`]?.CASES ?? [];

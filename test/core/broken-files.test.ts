@@ -1,10 +1,12 @@
 /** What a bad file gets: one fault for each thing wrong, with its JSON path and what was expected, and never a crash. */
 import { readFileSync } from "node:fs";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { FaultError, type Fault } from "../../core/errors.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import { BROKEN_FILES, SEVERAL_FAULTS } from "../fixtures/broken-files.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 function faultsOf(text: string): readonly Fault[] {
   try {

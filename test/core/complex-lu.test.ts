@@ -1,9 +1,11 @@
 import * as fc from "fast-check";
 import { complex, lusolve, type Complex } from "mathjs";
 import { Matrix, solve } from "ml-matrix";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { ComplexLu } from "../../core/num/complex-lu.ts";
 import { runs } from "../fixtures/runs.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 interface System {
   readonly size: number;

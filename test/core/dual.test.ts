@@ -1,7 +1,9 @@
 import * as fc from "fast-check";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { Dual } from "../../core/num/dual.ts";
 import { runs } from "../fixtures/runs.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 /** A random rational function of s as a tree. */
 type Tree = { readonly op: "affine"; readonly constant: number; readonly slope: number } | { readonly op: "add" | "sub" | "mul" | "div"; readonly a: Tree; readonly b: Tree } | { readonly op: "scale" | "shift"; readonly a: Tree; readonly by: number };

@@ -1,7 +1,7 @@
 import * as fc from "fast-check";
 import { complex, lusolve, type Complex } from "mathjs";
 import { Matrix, solve } from "ml-matrix";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { resolveBoard } from "../../core/net/board.ts";
 import { expandBoard } from "../../core/net/expand.ts";
 import { GROUND, NetlistBuilder, type Netlist } from "../../core/net/netlist.ts";
@@ -9,6 +9,8 @@ import { describeNetlist, nodalTransfer } from "../../core/net/nodal.ts";
 import { transferColumns } from "../../core/net/transfer.ts";
 import { runs } from "../fixtures/runs.ts";
 import { boardArbitrary } from "../helpers/boards.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 interface Point {
   readonly re: number;

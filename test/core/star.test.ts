@@ -1,5 +1,5 @@
 import * as fc from "fast-check";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { angular, logFrequencies } from "../../core/analysis/response.ts";
 import type { Project } from "../../core/model/project.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
@@ -11,6 +11,8 @@ import type { ValueOpts } from "../../core/net/values.ts";
 import { preciseTransfer, type PreciseTransfer } from "../fixtures/precise.ts";
 import { runs } from "../fixtures/runs.ts";
 import { bandOf, boardArbitrary, crowdedBoardArbitrary, oneBus, positionArbitrary, tenBandBoard } from "../helpers/boards.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 const OMEGA = angular(logFrequencies(10, 40e3, 13));
 

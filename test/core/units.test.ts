@@ -1,8 +1,10 @@
 import * as fc from "fast-check";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { seriesValues } from "../../core/e-series.ts";
 import { editText, formatCode, formatDb, formatFigure, formatValue, parseValue, type Quantity } from "../../core/units.ts";
 import { runs } from "../fixtures/runs.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 function valueOf(text: string, quantity: Quantity): number {
   const parsed = parseValue(text, quantity);

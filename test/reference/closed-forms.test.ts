@@ -1,6 +1,6 @@
 /** Closed forms of the literature and of algebra, held against the general node equations. */
 import * as fc from "fast-check";
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { logFrequencies } from "../../core/analysis/response.ts";
 import type { Block } from "../../core/model/project.ts";
 import { runs } from "../fixtures/runs.ts";
@@ -9,6 +9,8 @@ import { netlistOf, nodalH } from "../fixtures/figures.ts";
 import { preciseTransfer } from "../fixtures/precise.ts";
 import { bandOf, blockArbitrary, logUniform, oneBus, tenBandBoard } from "../helpers/boards.ts";
 import { BAND_KINDS } from "../../core/blocks/index.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 interface Complex {
   readonly re: number;

@@ -1,11 +1,13 @@
 /** Rules of the trade without a source of their own: common practice. */
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { bandFigures } from "../../core/analysis/bands.ts";
 import { logFrequencies } from "../../core/analysis/response.ts";
 import type { Block } from "../../core/model/project.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import { centredBut, netlistOf, nodalGain } from "../fixtures/figures.ts";
 import { bandOf, oneBus } from "../helpers/boards.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 describe("lone leg (common practice)", () => {
   const project = oneBus([bandOf("b", "inductor-section", { seriesC: 1 / ((2 * Math.PI * 95.75) ** 2 * 1.842), seriesR: 330, inductor: 1.842 })], { inputR: 3300 - 0.01, feedbackR: 3300 });

@@ -2,13 +2,15 @@
  * The ten-band octave table (Audio/Radio Handbook, National Semiconductor, 1980), from memory, and the figures of an
  * independent full nodal analysis of it: openLoopGain 1e5, gainBandwidth 10 MHz, inputR 300 kΩ, outputR 50 Ω, endR 0.
  */
-import { describe, expect, test } from "vitest";
+import { describe, expect, test, vi } from "vitest";
 import { bandFigures } from "../../core/analysis/bands.ts";
 import { logFrequencies, respond, ResponseSweep } from "../../core/analysis/response.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import { compileBoard } from "../../core/net/star.ts";
 import { centredBut, netlistOf, nodalGain, searchPeak } from "../fixtures/figures.ts";
 import { TEN_BANDS, tenBandBoard } from "../helpers/boards.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
 
 const project = tenBandBoard();
 const board = resolveBoard(project);
