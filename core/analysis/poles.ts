@@ -35,7 +35,18 @@ export interface PolesAndZeros {
 }
 
 /** Roots past this are infinite for all that a netlist of real parts can say, rad/s. */
-const FARTHEST = 1e13;
+const FARTHEST = 1e14;
+
+/** Roots below this are at the origin, rad/s: a time constant of three centuries is a charge that stays for ever. */
+const AT_ORIGIN = 1e-10;
+/** Roots below this have no sign to speak of, rad/s: bootstrapped input resistances leave them to rounding. */
+const SLOWEST_SIGN = 1e-6;
+
+/** Shifts for the slow roots and for the fast ones, rad/s; where a board happens to have a root at one, the next serves. */
+const NEAR_SHIFTS = [1, 1.618, 2.718];
+const FAR_SHIFTS = [1e11, 1.618e11, 2.718e11];
+/** Both tell the roots in this range alike, rad/s. */
+const [SHARED_FROM, SHARED_TO] = [1e5, 1e9];
 
 /**
  * Poles and zeros of v(load)/EMF from the descriptor form (G + s·C)·x = b of the whole board, inductors and op-amp poles
@@ -51,7 +62,7 @@ export function polesAndZeros(board: Board, opts: ValueOpts = {}): PolesAndZeros
   const zeroForm = withOutputHeld(poleForm);
   const zeroRoots = refine(zeroForm, eigenvaluesOf(zeroForm));
   const response = responseOf(board, opts);
-  const atOrigin = zerosAtOrigin(board, opts, [...poleRoots, ...zeroRoots]);
+  const atOrigin = zerosAtOrigin(board, opts, poleRoots);
   const zeros = zeroRoots.map((root, index): Root => (index < atOrigin ? { re: 0, im: 0 } : { re: root.re, im: root.im }));
   const poles = poleRoots.map(({ re, im, x, y }): Pole => ({ re, im, ...participation(poleForm, x, y) }));
   const factored = fitGain(poles, zeros, response);
@@ -66,7 +77,9 @@ export function unstablePoles(board: Board, opts: ValueOpts = {}): Pole[] {
 }
 
 function isUnstable({ re, im }: Root): boolean {
-  return re > 1e-9 * Math.hypot(re, im);
+  const size = Math.hypot(re, im);
+  // A pole at the origin or next to it is a node that keeps its charge, such as a capacitor into an op amp's input.
+  return size > SLOWEST_SIGN && re > 1e-9 * size;
 }
 
 /** Says that a board oscillates, and in which loop. @param unstable at least one pole */
@@ -101,14 +114,33 @@ function withOutputHeld(form: Descriptor): Descriptor {
   return { ...form, conductance };
 }
 
+/**
+ * A shift tells roots well that are not many decades larger than itself: past that, roots at infinity, which rounding
+ * scatters, look like any other. So slow roots are read from a low shift, fast ones from a high one, and the seam lies in
+ * the widest gap of the range that both tell alike.
+ */
 function eigenvaluesOf(form: Descriptor): Root[] {
+  const near = shiftedRoots(form, NEAR_SHIFTS);
+  const far = shiftedRoots(form, FAR_SHIFTS);
+  const sizeOf = ({ re, im }: Root): number => Math.hypot(re, im);
+  const shared = near.map(sizeOf).filter((size) => size > SHARED_FROM && size < SHARED_TO).sort((a, b) => a - b);
+  let seam = SHARED_FROM;
+  let widest = 0;
+  [SHARED_FROM, ...shared].forEach((size, i) => {
+    const ratio = (shared[i] ?? SHARED_TO) / size;
+    if (ratio > widest) [widest, seam] = [ratio, size * Math.sqrt(ratio)];
+  });
+  return [...near.filter((root) => sizeOf(root) < seam), ...far.filter((root) => sizeOf(root) >= seam && sizeOf(root) < FARTHEST)];
+}
+
+/** The roots as one shift tells them, the infinite ones apart. */
+function shiftedRoots(form: Descriptor, shifts: readonly number[]): Root[] {
   const { size: n, conductance, storage, storageTerms } = form;
   const m = storageTerms.length;
   const lu = new ComplexLu(n);
   const column = new Float64Array(n);
   const zero = new Float64Array(n);
-  // σ lies on the side where a working board has no roots; one that happens to have one there takes the next.
-  for (const sigma of [1, 1.618, 2.718]) {
+  for (const sigma of shifts) {
     for (let i = 0; i < n * n; i++) lu.re[i] = conductance[i] + sigma * storage[i];
     lu.im.fill(0);
     if (!lu.factor()) continue;
@@ -121,22 +153,25 @@ function eigenvaluesOf(form: Descriptor): Root[] {
       storageTerms.forEach(({ v, value }, i) => {
         let sum = 0;
         for (const [index, factor] of v) sum += factor * column[index];
-        k[i * m + j] = value * sum;
+        // Times the shift, so that K is of the size of 1.
+        k[i * m + j] = sigma * value * sum;
       });
     });
     const { re, im } = realEigenvalues(k, m);
     const roots: Root[] = [];
     for (let i = 0; i < m; i++) {
       const norm = re[i] * re[i] + im[i] * im[i];
-      const root = { re: sigma - re[i] / norm, im: im[i] / norm };
-      if (norm > 0 && Math.hypot(root.re, root.im) < FARTHEST) roots.push(root);
+      if (norm > 0) roots.push({ re: sigma - (sigma * re[i]) / norm, im: (sigma * im[i]) / norm });
     }
     return roots;
   }
   return [];
 }
 
-/** Two-sided Rayleigh quotient iteration on every root; of a complex pair one is worked on and mirrored. */
+/**
+ * Two-sided Rayleigh quotient iteration on every root; of a complex pair one is worked on and mirrored. Each step squares
+ * the error or better, so that one of a billionth is the last.
+ */
 function refine(form: Descriptor, roots: readonly Root[]): RefinedRoot[] {
   const { size: n, conductance, storage } = form;
   const lu = new ComplexLu(n);
@@ -144,18 +179,19 @@ function refine(form: Descriptor, roots: readonly Root[]): RefinedRoot[] {
   for (const start of roots) {
     if (start.im < 0) continue;
     let { re, im } = start;
+    const reach = reachOf(start, roots);
     let x: Vector = { re: ramp(n, 1), im: im === 0 ? new Float64Array(n) : ramp(n, 2) };
     let y: Vector = { re: ramp(n, 3), im: im === 0 ? new Float64Array(n) : ramp(n, 4) };
     let step = Infinity;
-    for (let iteration = 0; iteration < 4 && step > 1e-14 * Math.hypot(re, im); iteration++) {
+    for (let iteration = 0; iteration < 8 && step > 1e-9 * Math.hypot(re, im); iteration++) {
       for (let i = 0; i < n * n; i++) {
         lu.re[i] = conductance[i] + re * storage[i];
         lu.im[i] = im * storage[i];
       }
       // Singular to the last bit: the root is exact already.
       if (!lu.factor()) break;
-      const right = iteration === 0 ? x : multiply(storage, n, x, false);
-      const left = iteration === 0 ? y : multiply(storage, n, y, true);
+      const right = multiply(storage, n, x, false);
+      const left = multiply(storage, n, y, true);
       x = { re: right.re.slice(), im: right.im.slice() };
       y = { re: left.re.slice(), im: left.im.slice() };
       lu.solve(x.re, x.im);
@@ -170,8 +206,9 @@ function refine(form: Descriptor, roots: readonly Root[]): RefinedRoot[] {
       const deltaRe = -(ar * cr + ai * ci) / norm;
       const deltaIm = start.im === 0 ? 0 : -(ai * cr - ar * ci) / norm;
       const size = Math.hypot(deltaRe, deltaIm);
-      // A step that leaves the neighbourhood would end on another root: the eigenvalue stands as it is.
-      if (!Number.isFinite(size) || Math.hypot(re + deltaRe - start.re, im + deltaIm - start.im) > 1e-3 * Math.hypot(start.re, start.im)) break;
+      if (!Number.isFinite(size)) break;
+      // A step that leaves the neighbourhood would end on another root: the vectors have to settle first.
+      if (Math.hypot(re + deltaRe - start.re, im + deltaIm - start.im) > reach) continue;
       re += deltaRe;
       im += deltaIm;
       step = size;
@@ -192,7 +229,16 @@ function refine(form: Descriptor, roots: readonly Root[]): RefinedRoot[] {
   }
   return refined
     .flatMap((root) => (root.im === 0 ? [root] : [root, { ...root, im: -root.im, x: conjugate(root.x), y: conjugate(root.y) }]))
+    .map((root) => (Math.hypot(root.re, root.im) < AT_ORIGIN ? { ...root, re: 0, im: 0 } : root))
     .sort((a, b) => Math.hypot(a.re, a.im) - Math.hypot(b.re, b.im) || b.im - a.im);
+}
+
+/** How far a root may move from its start: what rounding can have done to it, short of its neighbours. */
+function reachOf(start: Root, roots: readonly Root[]): number {
+  const size = Math.hypot(start.re, start.im);
+  let nearest = Infinity;
+  for (const other of roots) if (other !== start) nearest = Math.min(nearest, Math.hypot(other.re - start.re, other.im - start.im));
+  return Math.max(1e-3 * size, Math.min(size, nearest) / 2);
 }
 
 /** A fixed vector with something of every direction in it. */
@@ -299,19 +345,21 @@ function responseOf(board: Board, opts: ValueOpts): Sampled {
 
 /**
  * How many zeros lie exactly at the origin (one a series capacitor in the signal path, as a rule): |H| rises with that power
- * of ω far below every other root. A multiple root is the one thing that an eigenvalue solver blurs.
+ * of ω below every other root, less one for a pole there. A multiple root is the one thing that an eigenvalue solver blurs.
  */
-function zerosAtOrigin(board: Board, opts: ValueOpts, roots: readonly Root[]): number {
-  const slowest = Math.min(...roots.map(({ re, im }) => Math.hypot(re, im)).filter((size) => size > 1e-4));
+function zerosAtOrigin(board: Board, opts: ValueOpts, poles: readonly Root[]): number {
+  const sizes = poles.map(({ re, im }) => Math.hypot(re, im));
+  const slowest = Math.min(...sizes.filter((size) => size > 0));
   if (!Number.isFinite(slowest)) return 0;
   const columns = transferColumns(1, true) as Required<ReturnType<typeof transferColumns>>;
-  const omega = new Float64Array([slowest * 1e-3]);
+  // Well below the slowest pole, and well above those that pass for the origin.
+  const omega = new Float64Array([Math.sqrt(slowest * AT_ORIGIN)]);
   const compiled = compileBoard(board, opts);
   new Sweep(compiled, omega).run(compiled.positions, columns);
   // d ln|H| / d ln ω = −ω·Im(H′/H)
   const { re, im, slopeRe, slopeIm } = columns;
   const slope = (-omega[0] * (slopeIm[0] * re[0] - slopeRe[0] * im[0])) / (re[0] * re[0] + im[0] * im[0]);
-  return Math.max(0, Math.round(slope));
+  return Math.max(0, Math.round(slope) + sizes.filter((size) => size === 0).length);
 }
 
 /** The gain that ties the factored form to the response at its middle, and how well the two agree everywhere else. */

@@ -12,7 +12,10 @@ export interface LoopMargin {
   /** `block.opAmp`. */
   readonly source: string;
   readonly block: string;
-  /** Degrees between the loop gain's angle and ±180° where its size is 1; the smallest, if it crosses more than once. */
+  /**
+   * Degrees that the loop gain's angle stays short of ±180° where its size is 1; the smallest, if it crosses more than once.
+   * Negative where the angle, followed from low frequencies, has gone past.
+   */
   readonly phaseMargin: number | null;
   /** Hz, where the phase margin is taken. */
   readonly crossover: number | null;
@@ -47,6 +50,7 @@ export function loopMargins(board: Board, opts: ValueOpts = {}): LoopMargin[] {
       return loops.gain(k);
     };
     const lnSize = (x: number): number => Math.log(Math.hypot(...at(x)));
+    let angle = Math.atan2(im[0], re[0]);
     let phaseMargin: number | null = null;
     let crossover: number | null = null;
     let gainMargin: number | null = null;
@@ -57,7 +61,7 @@ export function loopMargins(board: Board, opts: ValueOpts = {}): LoopMargin[] {
       if (before > 0 !== after > 0) {
         const x = findRoot(lnSize, ln[i - 1], ln[i], 1e-9, before, after);
         const [tr, ti] = at(x);
-        const margin = 180 - Math.abs(Math.atan2(ti, tr)) * (180 / Math.PI);
+        const margin = 180 - Math.abs(angle + turnBetween(at, ln[i - 1], x, [re[i - 1], im[i - 1]], [tr, ti])) * (180 / Math.PI);
         if (phaseMargin === null || margin < phaseMargin) [phaseMargin, crossover] = [margin, Math.exp(x)];
       }
       if (im[i - 1] > 0 !== im[i] > 0 && (re[i - 1] < 0 || re[i] < 0)) {
@@ -66,9 +70,19 @@ export function loopMargins(board: Board, opts: ValueOpts = {}): LoopMargin[] {
         const margin = -20 * Math.log10(Math.abs(tr));
         if (tr < 0 && (gainMargin === null || Math.abs(margin) < Math.abs(gainMargin))) [gainMargin, phaseCrossing] = [margin, Math.exp(x)];
       }
+      angle += turnBetween(at, ln[i - 1], ln[i], [re[i - 1], im[i - 1]], [re[i], im[i]]);
     }
     return { source, block: source.slice(0, source.lastIndexOf(".")), phaseMargin, crossover, gainMargin, phaseCrossing };
   });
+}
+
+/** How far a curve's angle turns between two of its points, radians; halved until no step leaves doubt about the way round. */
+function turnBetween(at: (x: number) => readonly [number, number], from: number, to: number, start: readonly [number, number], end: readonly [number, number], depth = 0): number {
+  const turn = Math.atan2(end[1] * start[0] - end[0] * start[1], end[0] * start[0] + end[1] * start[1]);
+  if (Math.abs(turn) < 1 || depth === 12) return turn;
+  const middle = (from + to) / 2;
+  const between = at(middle);
+  return turnBetween(at, from, middle, start, between, depth + 1) + turnBetween(at, middle, to, between, end, depth + 1);
 }
 
 /** The smallest phase margin of a board; undefined where no loop crosses. */
