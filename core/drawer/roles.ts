@@ -115,3 +115,10 @@ export function amplifiersIn(type: string): number {
   const key = Object.keys(BUILT_IN_OP_AMPS).find((name) => name.toLowerCase() === type.toLowerCase());
   return key === undefined ? 1 : BUILT_IN_OP_AMPS[key].amplifiers;
 }
+
+/** A board with the blocks of a changed project in the same wiring. */
+export function onProject(board: Board, project: Project): Board {
+  const blocks = new Map(project.blocks.map((b) => [b.id, b]));
+  const chain = board.chain.map((item) => ({ ...item, block: blocks.get(item.block.id)!, bands: item.bands.map((b) => blocks.get(b.id)!) }));
+  return { ...board, project, chain };
+}

@@ -46,8 +46,12 @@ export function boardStress(board: Board, opts: SwingOpts = {}): BoardStress {
   return found;
 }
 
-/** Most that a circuit with a polarised capacitor may turn its voltage round: this many volts, and this part of its rating. */
-export const MOST_REVERSE = { volts: 0.5, ofRating: 0.1 } as const;
+/**
+ * How far the voltage of a polarised capacitor may turn round, whichever is less of the volts and the part of its rating:
+ * `always` is let pass, `onPeaks` is what the loudest signal may do with a caution. A steady voltage beyond `always`, and
+ * peaks beyond `onPeaks`, bar it.
+ */
+export const MOST_REVERSE = { always: 0.5, onPeaks: 2, ofRating: 0.1 } as const;
 
 /** Below this much spare voltage or power, as part of the rating, a part is held to be close to its limit. */
 const LEAST_SPARE = 0.2;
@@ -77,13 +81,14 @@ export function ratingProblems(rating: number | null, stress: PartStress): Probl
 
 /** Which way round a polarised capacitor goes, and whether it stays so. */
 export function polarityProblems(rating: number | null, stress: PartStress): Problem[] {
-  const allowed = Math.min(MOST_REVERSE.volts, rating === null ? Infinity : MOST_REVERSE.ofRating * rating);
+  const ofRating = rating === null ? Infinity : MOST_REVERSE.ofRating * rating;
+  const allowed = Math.min(MOST_REVERSE.always, ofRating);
   const steadyReverse = Math.min(Math.max(0, -stress.low), Math.max(0, stress.high));
   if (steadyReverse > allowed) return [{ level: "fault", about: "polarity", message: `polarised, and its steady voltage may be ${volts(steadyReverse)} either way round` }];
   const kept = stress.positive === null ? 0 : Math.min(Math.abs(stress.low), Math.abs(stress.high));
   const reverse = stress.peak - kept;
   const way = stress.positive === null ? "no steady voltage says which way round it goes" : `+ to ${stress.positive}`;
-  if (reverse > allowed) return [{ level: "caution", about: "polarity", message: `polarised, ${way}, and the loudest signal turns its voltage round by up to ${volts(reverse)}: take a bipolar one` }];
+  if (reverse > allowed) return [{ level: reverse > Math.min(MOST_REVERSE.onPeaks, ofRating) ? "fault" : "caution", about: "polarity", message: `polarised, ${way}, and the loudest signal turns its voltage round by up to ${volts(reverse)}: a bipolar one would not mind` }];
   return [];
 }
 

@@ -10,7 +10,7 @@ import { Sweep, type CompiledBoard } from "../net/star.ts";
 import { transferColumns } from "../net/transfer.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { candidatesFor, compareText, hasFault, type Candidate, type CandidateOpts } from "./candidates.ts";
-import { filledBlock, filledProject, fillingPatch, type BoardRole } from "./roles.ts";
+import { filledBlock, filledProject, fillingPatch, onProject, type BoardRole } from "./roles.ts";
 import { boardStress, type Problem } from "./stress.ts";
 import type { StockedLine } from "./stock.ts";
 import { TrialBoard } from "./trial.ts";
@@ -93,11 +93,8 @@ function byEffect(a: RankedCandidate, b: RankedCandidate): number {
 }
 
 function loopProblems(board: Board, role: BoardRole, candidate: Candidate, values: ValueOpts): Problem[] {
-  const { project } = board;
-  const other = filledProject(project, [{ role, filling: candidate.filling }]);
-  const blocks = new Map(other.blocks.map((b) => [b.id, b]));
-  const chain = board.chain.map((item) => ({ ...item, block: blocks.get(item.block.id)!, bands: item.bands.map((b) => blocks.get(b.id)!) }));
-  const unstable = unstablePoles({ ...board, project: other, chain }, values);
+  const other = filledProject(board.project, [{ role, filling: candidate.filling }]);
+  const unstable = unstablePoles(onProject(board, other), values);
   return unstable.length === 0 ? [] : [{ level: "fault", about: "model", message: "the board oscillates with it" }];
 }
 

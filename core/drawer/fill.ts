@@ -1,0 +1,193 @@
+import { IDEAL } from "../model/op-amps.ts";
+import type { Patch } from "../model/patch.ts";
+import type { Project } from "../model/project.ts";
+import type { Board } from "../net/board.ts";
+import { compileBoard } from "../net/star.ts";
+import { countLines, sumMoney } from "./bill.ts";
+import { candidatesFor, compareText, hasFault, type Candidate, type Money } from "./candidates.ts";
+import { FillSearch, type OpenRole } from "./fill-search.ts";
+import { amplifiersIn, boardRoles, filledProject, fillingPatch, onProject, type BoardRole, type Filling } from "./roles.ts";
+import { boardStress, type BoardStress, type Problem } from "./stress.ts";
+import { availableOf, unitCost, type StockedLine } from "./stock.ts";
+import { ResponseError, TrialBoard } from "./trial.ts";
+
+export interface FillOpts {
+  /** Units to build; 1 by default. */
+  readonly units?: number;
+  /** Fraction either way of a role's value; 0.2 by default. */
+  readonly window?: number;
+  /** Most that the parts of a unit may cost. Parts without a price in this currency are then left out. */
+  readonly ceiling?: Money;
+  /** Roles that name a line of the drawer with enough pieces keep it. */
+  readonly keep?: boolean;
+  /** Only these roles, by name. */
+  readonly only?: readonly string[];
+  readonly positions?: Readonly<Record<string, number>>;
+  readonly stress?: BoardStress;
+}
+
+export interface PlacedRole {
+  readonly role: BoardRole;
+  /** Null for op amps, which go by the package, and for roles that keep what they have. */
+  readonly candidate: Candidate | null;
+  readonly line: StockedLine;
+  readonly problems: readonly Problem[];
+}
+
+export interface UnplacedRole {
+  readonly role: BoardRole;
+  readonly reason: string;
+}
+
+export interface FillResult {
+  readonly project: Project;
+  readonly patch: Patch;
+  readonly placed: readonly PlacedRole[];
+  readonly unplaced: readonly UnplacedRole[];
+  /** Root of the mean square of ResponseError, dB, against the board as it was. */
+  readonly error: number;
+  /** Largest departure at any of its points and settings, dB. */
+  readonly worst: number;
+  /** Whether every way to fill the board has been tried. */
+  readonly isExhaustive: boolean;
+  /** Parts of one unit; one amount a currency. Prices at the quantity of the build. */
+  readonly cost: readonly Money[];
+  /** False where even the cheapest parts cost more than the ceiling. */
+  readonly isWithinCeiling: boolean;
+}
+
+/**
+ * Fills a board from the drawer: a line for every role, tracks and op amps too, so that the response departs least from
+ * that of the board as it stands. Pieces have to be free for every unit; parts that ratings or polarity bar are not
+ * taken; parts with a caution only where nothing else fits. Roles without a line keep their value and are named with
+ * the reason. Same input, same result.
+ */
+export function fillBoard(board: Board, lines: readonly StockedLine[], opts: FillOpts = {}): FillResult {
+  const { units = 1, ceiling } = opts;
+  const values = opts.positions ? { positions: opts.positions } : {};
+  const stress = opts.stress ?? boardStress(board, values);
+  const roles = boardRoles(board).filter((r) => opts.only === undefined || opts.only.includes(r.name));
+  const free = new Map(lines.map((l) => [l.id, Math.floor(Math.max(0, availableOf(l)) / units)]));
+  const byId = new Map(lines.map((l) => [l.id, l]));
+  const placed: PlacedRole[] = [];
+  const unplaced: UnplacedRole[] = [];
+  const isPriced = (line: StockedLine): boolean => ceiling === undefined || (line.currency === ceiling.currency && unitCost(line, units) !== null);
+
+  let open = roles.filter((r) => r.kind !== "op-amp");
+  if (opts.keep) open = open.filter((role) => !isKept(role, byId, free, placed));
+  const ampsCost = placeOpAmps(roles.filter((r) => r.kind === "op-amp"), lines, { units, isPriced, placed, unplaced });
+  const keptCost = placed.filter((p) => p.role.kind !== "op-amp").reduce((sum, p) => sum + (unitCost(p.line, units) ?? 0), 0);
+
+  const offers = open.map((role): OpenRole => {
+    const all = candidatesFor(board.project, role, lines, { window: opts.window ?? 0.2, units, stress, most: MOST_CANDIDATES });
+    const sound = all.filter((c) => !hasFault(c) && isPriced(c.lines[0]) && (free.get(c.lines[0].id) ?? 0) > 0);
+    const quiet = sound.filter((c) => c.problems.length === 0);
+    return { role, candidates: quiet.length > 0 ? quiet : sound };
+  });
+  const trial = new TrialBoard(board, values);
+  const target = compileBoard(board, values);
+  const searched = offers.filter((o) => o.candidates.length > 0);
+  const search = new FillSearch(trial, target, searched, { capacity: free, ceiling: ceiling && ceiling.amount - ampsCost - keptCost });
+  const found = search.run();
+
+  const fillings: { role: BoardRole; filling: Filling }[] = placed.filter((p) => p.role.kind === "op-amp").map((p) => ({ role: p.role, filling: { opAmp: p.role.type!, stock: p.line.id } }));
+  for (const offer of offers) if (offer.candidates.length === 0) unplaced.push({ role: offer.role, reason: reasonFor(board, offer.role, lines, opts, stress) });
+  for (const [i, { role, candidates }] of searched.entries()) {
+    const at = found.choice[i];
+    if (at < 0) {
+      const ids = candidates.map((c) => c.lines[0].id).join(", ");
+      unplaced.push({ role, reason: ceiling ? `what fits (${ids}) is taken by other roles or would break the ceiling` : `every piece that fits (${ids}) is taken by other roles` });
+    } else {
+      const candidate = candidates[at];
+      placed.push({ role, candidate, line: candidate.lines[0], problems: candidate.problems });
+      fillings.push({ role, filling: candidate.filling });
+    }
+  }
+  const order = new Map(roles.map((r, i) => [r.name, i]));
+  const inOrder = <T extends { readonly role: BoardRole }>(rows: T[]): T[] => rows.toSorted((a, b) => order.get(a.role.name)! - order.get(b.role.name)!);
+  const project = filledProject(board.project, fillings);
+  const cost = costOfUnit(board, project, placed, lines, units);
+  const error = new ResponseError(target);
+  const gains = error.gains(trial.compiled);
+  const spent = cost.find((m) => m.currency === ceiling?.currency)?.amount ?? 0;
+  return {
+    project, patch: fillingPatch(board.project, fillings),
+    placed: inOrder(placed), unplaced: inOrder(unplaced),
+    error: Math.sqrt(found.error), worst: gains.reduce((most, g, i) => Math.max(most, Math.abs(g - error.target[i])), 0),
+    isExhaustive: found.isExhaustive, cost, isWithinCeiling: ceiling === undefined || spent <= ceiling.amount * (1 + 1e-9),
+  };
+}
+
+/** Nearest first; further ones would hardly be taken. */
+const MOST_CANDIDATES = 16;
+
+/** Keeps a role's own line where it has one with a piece left, and takes that piece out of what is free. */
+function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: PlacedRole[]): boolean {
+  const line = role.stock === null ? undefined : byId.get(role.stock);
+  const second = role.part?.second?.stock;
+  const wanted = [role.stock, ...(second === undefined ? [] : [second])];
+  if (!line || role.part?.second !== undefined && second === undefined) return false;
+  const need = new Map<string, number>();
+  for (const id of wanted) if (id !== null) need.set(id, (need.get(id) ?? 0) + 1);
+  if ([...need].some(([id, count]) => (free.get(id) ?? 0) < count)) return false;
+  for (const [id, count] of need) free.set(id, free.get(id)! - count);
+  placed.push({ role, candidate: null, line, problems: [] });
+  return true;
+}
+
+/** Op amps by type, by the package: eight amplifiers of a dual type take four. @returns cost of a unit's packages */
+function placeOpAmps(
+  roles: readonly BoardRole[],
+  lines: readonly StockedLine[],
+  { units, isPriced, placed, unplaced }: { readonly units: number; readonly isPriced: (line: StockedLine) => boolean; readonly placed: PlacedRole[]; readonly unplaced: UnplacedRole[] },
+): number {
+  let cost = 0;
+  for (const type of new Set(roles.map((r) => r.type!))) {
+    if (type === IDEAL) continue;
+    const own = roles.filter((r) => r.type === type);
+    const packages = packagesFor(own.length, type);
+    const known = lines.filter((l) => l.kind === "op-amp" && l.type?.toLowerCase() === type.toLowerCase());
+    const enough = known.filter((l) => availableOf(l) >= packages * units && isPriced(l));
+    const [line] = enough.toSorted((a, b) => (unitCost(a, packages * units) ?? Infinity) - (unitCost(b, packages * units) ?? Infinity) || compareText(a.id, b.id));
+    if (line) {
+      cost += packages * (unitCost(line, packages * units) ?? 0);
+      for (const role of own) placed.push({ role, candidate: null, line, problems: [] });
+      continue;
+    }
+    const there = Math.max(0, ...known.map(availableOf));
+    const reason = known.length === 0 ? `the drawer has no ${type}` : there >= packages * units ? `no ${type} has a price that can be counted` : `${packages * units} ${type} packages are needed (${own.length} amplifiers a unit), ${there} are free in one line`;
+    for (const role of own) unplaced.push({ role, reason });
+  }
+  return cost;
+}
+
+/** Packages of a type that hold a number of amplifiers. */
+export function packagesFor(amplifiers: number, type: string): number {
+  return Math.ceil(amplifiers / amplifiersIn(type));
+}
+
+/** Why nothing of the drawer goes into a role, from the nearest thing that there is. */
+function reasonFor(board: Board, role: BoardRole, lines: readonly StockedLine[], opts: FillOpts, stress: BoardStress): string {
+  const { window = 0.2, units = 1 } = opts;
+  const percent = `${Number((window * 100).toPrecision(3))} %`;
+  const ofKind = lines.filter((l) => l.kind === role.kind && l.value !== null);
+  if (ofKind.length === 0) return `the drawer has no ${role.kind === "potentiometer" ? "potentiometer or slider" : role.kind}`;
+  const within = candidatesFor(board.project, role, lines, { window, units, stress, most: MOST_CANDIDATES, withShort: true });
+  if (within.length === 0) {
+    const nearest = ofKind.toSorted((a, b) => Math.abs(Math.log(a.value! / role.value!)) - Math.abs(Math.log(b.value! / role.value!)))[0];
+    return `no value within ${percent} (the nearest is ${nearest.id}, ${Number(((nearest.value! / role.value! - 1) * 100).toPrecision(3))} % off)`;
+  }
+  const [first] = within;
+  const fault = first.problems.find((p) => p.level === "fault");
+  if (fault) return `${first.lines[0].id}: ${fault.message}`;
+  return opts.ceiling ? `no price in ${opts.ceiling.currency} for what fits` : `every piece of ${first.lines[0].id} is taken`;
+}
+
+function costOfUnit(board: Board, project: Project, placed: readonly PlacedRole[], lines: readonly StockedLine[], units: number): Money[] {
+  const names = new Set(placed.map((p) => p.role.name));
+  const roles = boardRoles(onProject(board, project)).filter((r) => names.has(r.name));
+  return sumMoney([...countLines(roles, lines).counted].map(([line, { perUnit }]) => {
+    const each = unitCost(line, perUnit * units);
+    return each === null ? null : { amount: each * perUnit, currency: line.currency };
+  }));
+}
