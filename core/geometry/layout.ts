@@ -13,6 +13,8 @@ import { clamp, sheetUnits, type SheetPlace } from "./units.ts";
 
 /** Sheet units from one rail to the next in files, whatever the screen makes of it. */
 const RAIL_UNITS = 480;
+/** Slot in which a band's values and figures can be read. */
+const VALUE_SLOT = 69;
 /** Narrowest slot that still shows a slider. */
 const LEAST_SLOT = 28;
 const BETWEEN_RAILS = 12;
@@ -72,13 +74,15 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
       const frequency = bandFrequency(band, opts.figures?.get(band.id));
       return frequency === null ? null : pixelOf(frame.ruling, frequency);
     }));
+  const fitted = frameOf({ ...opts, span: null, heightAt: () => 0 });
+  const wantedFitted = wanted(fitted);
+  // Slots are the same at every scale up to 1.
+  const smallSlots = slotsOf(rails, wantedFitted, fitted, 1);
   const heightAt = (scale: number): number => {
-    const frame = fitted;
-    const margin = frame.marginScale;
-    const slots = slotsOf(rails, wanted(frame), frame, scale);
+    const margin = fitted.marginScale;
+    const slots = scale <= 1 ? smallSlots : slotsOf(rails, wantedFitted, fitted, scale);
     return rails.rails.reduce((sum, rail, i) => sum + railHeight(rail, rails, i, { scale, slot: slots[i], legUnits: legUnits[i], margin, isSingle }), 0) + BETWEEN_RAILS;
   };
-  const fitted = frameOf({ ...opts, span: null, heightAt: () => 0 });
   const frame = frameOf({ ...opts, heightAt });
   const xs = wanted(frame);
   let slots = slotsOf(rails, xs, frame, frame.scale);
@@ -141,7 +145,7 @@ function slotsOf(rails: Rails, wanted: (readonly (number | null)[])[], frame: Fr
   const ends = extent(frame);
   return rails.rails.map((rail, i) => {
     const xs = wanted[i].filter((_, n) => rail.bands[n].at?.byHand !== true).map((x) => x ?? ends.right);
-    return slotWidth(xs, FULL_SLOT * Math.max(1, scale), LEAST_SLOT, ends.right - ends.left);
+    return slotWidth(xs, { best: FULL_SLOT * Math.max(1, scale), enough: VALUE_SLOT, least: LEAST_SLOT }, ends.left, ends.right);
   });
 }
 

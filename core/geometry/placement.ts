@@ -31,14 +31,35 @@ export function spread(wanted: readonly number[], width: number, left: number, r
   return out;
 }
 
+/** How far a band may be pushed from its frequency for the sake of a wider slot, px: its leader still tells at a glance. */
+const REACH = 36;
+
+export interface SlotSizes {
+  /** All that a band can use. */
+  readonly best: number;
+  /** Enough for its values: wider than this it is not pushed aside. */
+  readonly enough: number;
+  /** Narrower, and the slider cannot be held. */
+  readonly least: number;
+}
+
 /**
- * A width for bands that want to be at `wanted`: as wide as `best` where they have the room, narrower where most of them
- * stand closer or where all of them would not fit.
+ * A width for bands that want to be at `wanted`: what most of the gaps between them give, up to `best`. Where that is
+ * not enough for the values they fan out to it, if a short leader reaches that far. Between the ends all always fit.
  */
-export function slotWidth(wanted: readonly number[], best: number, least: number, room: number): number {
+export function slotWidth(wanted: readonly number[], { best, enough, least }: SlotSizes, left: number, right: number): number {
+  const room = (right - left) / Math.max(1, wanted.length);
   if (wanted.length < 2) return Math.min(best, room);
   const sorted = [...wanted].sort((a, b) => a - b);
   const gaps = sorted.slice(1).map((x, i) => x - sorted[i]).sort((a, b) => a - b);
   const usual = gaps[Math.floor(gaps.length / 2)];
-  return Math.min(Math.max(least, Math.min(best, usual)), room / wanted.length);
+  if (usual >= enough) return Math.min(best, usual, room);
+  // Pushed aside only where that makes the values readable.
+  const fanned = Math.min(enough, room);
+  return fanned === enough && reachOf(wanted, fanned, left, right) <= REACH ? fanned : Math.min(Math.max(least, usual), room);
+}
+
+/** The furthest push, px. */
+function reachOf(wanted: readonly number[], width: number, left: number, right: number): number {
+  return spread(wanted, width, left, right).reduce((most, x, i) => Math.max(most, Math.abs(x - wanted[i])), 0);
 }

@@ -8,7 +8,7 @@ export function referenceDrawing(hasOpAmp: boolean): Drawing {
       partDown("resistor", "upperR", 5, 5),
       { ...partDown("resistor", "lowerR", 5, 14), value: { x: 6.9, y: 16.4, align: "left" } },
       { symbol: "ground", x: 5, y: 18 },
-      { symbol: "capacitor", role: "bypassC", x: 15, y: 14, value: { x: 17.5, y: 14, align: "left" } },
+      { symbol: "capacitor", role: "bypassC", x: 15, y: 14, value: { x: 17.5, y: 15.9, align: "left" } },
       { symbol: "ground", x: 15, y: 18 },
       ...(hasOpAmp ? [{ symbol: "amplifier", x: 21, y: 7, points: "right", length: 5, width: 7, first: "-" } as const] : []),
       { symbol: "reference", x: hasOpAmp ? 22.5 : 21, y: hasOpAmp ? 8 : 9.5 },

@@ -48,18 +48,30 @@ describe("spread", () => {
 });
 
 describe("slot width", () => {
-  test("as wide as is best where there is room, as wide as most of the gaps where there is less", () => {
-    expect(slotWidth([100, 200, 300], 88, 28, 1000)).toBe(88);
-    expect(slotWidth([100, 160, 220], 88, 28, 1000)).toBe(60);
+  const SIZES = { best: 88, enough: 69, least: 28 };
+  const reach = (wanted: readonly number[], width: number): number => Math.max(...spread(wanted, width, 0, 1000).map((x, i) => Math.abs(x - wanted[i])));
+
+  test("as wide as is best where there is room", () => {
+    expect(slotWidth([100, 200, 300], SIZES, 0, 1000)).toBe(88);
+    expect(slotWidth([100, 175, 250], SIZES, 0, 1000)).toBe(75);
+  });
+
+  test("closer bands fan out a little for their values, and stay where they are where that would take more", () => {
+    const octaves = Array.from({ length: 8 }, (_, i) => 250 + 60 * i);
+    const width = slotWidth(octaves, SIZES, 0, 1000);
+    expect(width).toBeCloseTo(69, 0);
+    expect(reach(octaves, width)).toBeLessThan(37);
+    const thirds = Array.from({ length: 16 }, (_, i) => 200 + 30 * i);
+    expect(slotWidth(thirds, SIZES, 0, 1000)).toBe(30);
   });
 
   test("two close bands do not narrow the rest", () => {
-    expect(slotWidth([100, 110, 300, 500, 700], 88, 28, 1000)).toBe(88);
+    expect(slotWidth([100, 110, 300, 500, 700], SIZES, 0, 1000)).toBe(88);
   });
 
   test("never more than what all of them have together", () => {
     fc.assert(fc.property(wishes, (wanted) => {
-      expect(slotWidth(wanted, 88, 28, 1000) * wanted.length).toBeLessThanOrEqual(1000 + 1e-6);
+      expect(slotWidth(wanted, SIZES, 0, 1000) * wanted.length).toBeLessThanOrEqual(1000 + 1e-6);
     }), runs(200));
   });
 });
