@@ -1,8 +1,9 @@
 import { homedir } from "node:os";
 import { basename, dirname, join } from "node:path";
 import { HostFailure } from "../core/contract/failures.ts";
-import type { ArgsOf, ResultOf } from "../core/contract/methods.ts";
+import type { ArgsOf, EventData, EventName, ResultOf } from "../core/contract/methods.ts";
 import type { Handlers } from "./host.ts";
+import { createDrawer } from "./services/drawer.ts";
 import { createFiles } from "./services/files.ts";
 import { createPathGuard, type PathGuard, type Root } from "./services/path-guard.ts";
 import { createProjects } from "./services/projects.ts";
@@ -21,10 +22,25 @@ export interface ShellOpts {
   readonly launchPath: string | null;
   /** Null in a browser: the page shows a chooser of its own. */
   readonly dialogs: NativeDialogs | null;
+  /** The user's own parts library; made where there is none. */
+  readonly drawerPath: string;
+  /** The table of the starter drawer. */
+  readonly starterPath: string;
+  /** Sends an event to the screens. */
+  readonly emit: <E extends EventName>(name: E, data: EventData<E>) => void;
 }
 
-/** All handlers of a session, and the guard that the shell lets picked files through. */
-export function createHandlers(opts: ShellOpts): { readonly handlers: Handlers; readonly guard: PathGuard } {
+/** Everything that a session's host stands on. */
+export interface SessionHandlers {
+  readonly handlers: Handlers;
+  /** The shell lets picked files through it. */
+  readonly guard: PathGuard;
+  /** To be called when the host has closed. */
+  readonly close: () => Promise<void>;
+}
+
+/** All handlers of a session. */
+export function createHandlers(opts: ShellOpts): SessionHandlers {
   const projectsFolder = join(homedir(), "Bandwright");
   const roots: Root[] = [{ name: "My projects", path: projectsFolder }, { name: "Demos", path: opts.demoFolder }];
   const launchFolder = opts.launchPath === null ? null : dirname(opts.launchPath);
@@ -36,6 +52,7 @@ export function createHandlers(opts: ShellOpts): { readonly handlers: Handlers; 
   const { demoFolder, launchPath, dialogs } = opts;
   const projects = createProjects({ guard, projectsFolder, demoFolder, launchPath });
   const files = createFiles({ guard, projectsFolder, demoFolder });
+  const drawer = createDrawer({ guard, drawerPath: opts.drawerPath, starterPath: opts.starterPath, now: () => new Date(), emit: opts.emit });
 
   const handlers: Handlers = {
     "host.capabilities": async () => ({
@@ -60,6 +77,7 @@ export function createHandlers(opts: ShellOpts): { readonly handlers: Handlers; 
       return answer;
     },
     "files.list": files.list,
+    ...drawer.handlers,
   };
-  return { handlers, guard };
+  return { handlers, guard, close: drawer.close };
 }

@@ -7,6 +7,7 @@ import { HostFailure } from "../core/contract/failures.ts";
 import { createHandlers } from "./handlers.ts";
 import { createHost, type Handlers } from "./host.ts";
 import { serveLoopback } from "./serve.ts";
+import { ownDrawerPath } from "./services/drawer-path.ts";
 import { loadUiFiles } from "./ui-files.ts";
 
 const START_PAGE = "bandwright.html";
@@ -26,7 +27,17 @@ export interface LoopbackShellOpts {
 export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
   const dist = join(opts.root, "dist");
   const { version } = JSON.parse(readFileSync(join(opts.root, "package.json"), "utf8")) as { version: string };
-  const { handlers } = createHandlers({ version, demoFolder: join(opts.root, "assets", "demo"), launchPath: opts.file, dialogs: null });
+  const assets = join(opts.root, "assets");
+  const { handlers, close } = createHandlers({
+    version,
+    demoFolder: join(assets, "demo"),
+    launchPath: opts.file,
+    dialogs: null,
+    drawerPath: ownDrawerPath(),
+    starterPath: join(assets, "drawer", "starter.csv"),
+    // Nothing can happen before the first call, and the host is there by then.
+    emit: (name, data) => host.emit(name, data),
+  });
   const host = createHost(handlers, (error) => console.error(error));
   if (opts.file !== null) await sayWhatIsWrong(handlers, opts.file);
   const server = await serveLoopback(host, await loadUiFiles(join(dist, "ui")));
@@ -48,6 +59,7 @@ export async function runLoopbackShell(opts: LoopbackShellOpts): Promise<void> {
 
   await stopped;
   await server.close();
+  await close();
 }
 
 /** A file that will not open is told of in the page too, but that may be far from where its name was typed. */

@@ -6,6 +6,7 @@ import { createHandlers, type NativeDialogs } from "./handlers.ts";
 import { createHost } from "./host.ts";
 import { carryOverIpc } from "./ipc-carrier.ts";
 import { fileArgument, secondStartPath, type SecondStart } from "./open-requests.ts";
+import { ownDrawerPath } from "./services/drawer-path.ts";
 import { withExtension } from "./services/projects.ts";
 import { loadUiFiles } from "./ui-files.ts";
 
@@ -55,11 +56,23 @@ async function start(): Promise<void> {
   refusePermissions();
   Menu.setApplicationMenu(process.platform === "darwin" ? macMenu() : null);
 
-  const demoFolder = app.isPackaged ? join(process.resourcesPath, "demo") : join(app.getAppPath(), "assets", "demo");
-  const { handlers, guard } = createHandlers({ version: app.getVersion(), demoFolder, launchPath: early.shift() ?? null, dialogs: nativeDialogs() });
+  const assets = app.isPackaged ? process.resourcesPath : join(app.getAppPath(), "assets");
+  const { handlers, guard, close } = createHandlers({
+    version: app.getVersion(),
+    demoFolder: join(assets, "demo"),
+    launchPath: early.shift() ?? null,
+    dialogs: nativeDialogs(),
+    drawerPath: ownDrawerPath(),
+    starterPath: join(assets, "drawer", "starter.csv"),
+    // Nothing can happen before the first call, and the host is there by then.
+    emit: (name, data) => host.emit(name, data),
+  });
   const host = createHost(handlers, (error) => console.error(error));
   carryOverIpc(host, ipcMain, () => window?.webContents ?? null);
-  finishSavesBeforeQuitting(() => host.close());
+  finishSavesBeforeQuitting(async () => {
+    await host.close();
+    await close();
+  });
 
   window = createWindow();
   await window.loadURL(APP_PAGE);

@@ -1,7 +1,7 @@
 import * as v from "valibot";
 import {
   BILL_SCHEMA, BUILD_SCHEMA, CANDIDATES_SCHEMA, COUNT, COUNT_FROM_ONE, DRAWER_LINE_SCHEMA, FACETS_SCHEMA, FILTER_SCHEMA, HOLDER_SCHEMA, IMPORT_REPORT_SCHEMA, LEDGER_ENTRY_SCHEMA,
-  LINE_FIELDS_SCHEMA, LINE_ID, MAPPING_SCHEMA, MOVE_SCHEMA, PIECE_SCHEMA, PUT_PIECE_SCHEMA, READING_SCHEMA, REFERENCE, SORT_SCHEMA, STEP_SCHEMA, STOCK_LINE_SCHEMA,
+  LINE_FIELDS_SCHEMA, LINE_ID, MAPPING_SCHEMA, MOVE_SCHEMA, OWNED_VALUE_SCHEMA, PIECE_SCHEMA, PUT_PIECE_SCHEMA, READING_SCHEMA, REFERENCE, SORT_SCHEMA, STEP_SCHEMA, STOCK_LINE_SCHEMA,
 } from "./drawer-schemas.ts";
 import { list, method, NOTHING, PATH } from "./method.ts";
 
@@ -39,6 +39,8 @@ export const DRAWER_METHODS = {
   }),
   /** Counts a column's values among the lines that fit the filter; each column leaves its own choices aside. */
   "drawer.facets": method({ args: v.strictObject({ filter: FILTER_SCHEMA }), result: FACETS_SCHEMA, mutates: false }),
+  /** The values among the lines that fit the filter, ascending; of one kind, or they do not compare. */
+  "drawer.values": method({ args: v.strictObject({ filter: FILTER_SCHEMA }), result: v.object({ values: list(OWNED_VALUE_SCHEMA) }), mutates: false }),
   /** Lines in use of about a value, the nearest first. */
   "drawer.candidates": method({ args: CANDIDATES_SCHEMA, result: v.object({ lines: list(DRAWER_LINE_SCHEMA) }), mutates: false }),
   /** One line, who holds pieces of it, its single pieces, and every change of its fields, the newest first. */

@@ -37,8 +37,11 @@ const FIELDS = {
 export const STOCK_LINE_SCHEMA: v.GenericSchema<StockLine> = v.strictObject({ id: LINE_ID, ...FIELDS });
 
 /** Some of a line's fields, to be set on many lines at once. */
-export const LINE_FIELDS_SCHEMA = v.partial(v.strictObject(FIELDS));
-export type LineFields = v.InferOutput<typeof LINE_FIELDS_SCHEMA>;
+export type LineFields = Partial<Omit<StockLine, "id">>;
+const PART_OF_FIELDS = v.partial(v.strictObject(FIELDS));
+export const LINE_FIELDS_SCHEMA: v.GenericSchema<LineFields> = v.pipe(
+  v.custom<LineFields>((value) => typeof value === "object" && value !== null && Object.values(value).every((one) => one !== undefined) && v.is(PART_OF_FIELDS, value), "must be some of a line's fields, each with its value"),
+);
 
 /** A line as the drawer gives it. */
 export interface DrawerLine extends StockedLine {
@@ -134,6 +137,10 @@ export const FACETS_SCHEMA = v.object({
   tolerance: list(v.object({ value: v.nullable(NUMBER), count: COUNT })),
 });
 export type Facets = v.InferOutput<typeof FACETS_SCHEMA>;
+
+/** Lines of one value taken together. */
+export const OWNED_VALUE_SCHEMA = v.object({ value: NUMBER, lines: COUNT, quantity: COUNT });
+export type OwnedValue = v.InferOutput<typeof OWNED_VALUE_SCHEMA>;
 
 /** Lines that could stand in for a part. */
 export const CANDIDATES_SCHEMA = v.strictObject({

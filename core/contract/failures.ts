@@ -1,5 +1,6 @@
 import * as v from "valibot";
 import { faultText, type Fault } from "../errors.ts";
+import { DRAWER_FAILURES, drawerFailureText } from "./drawer-failures.ts";
 
 const path = v.string();
 
@@ -41,6 +42,7 @@ export const FAILURES = {
   "changed-on-disk": v.object({ path }),
   /** The project itself is faulty; nothing was opened or written. */
   "project-faults": v.object({ path, faults: FAULTS_SCHEMA }),
+  ...DRAWER_FAILURES,
 };
 
 export type FailureCode = keyof typeof FAILURES;
@@ -104,6 +106,8 @@ export function failureText(failure: Failure): string {
       return `${failure.data.path} has changed on disk since it was opened here.`;
     case "project-faults":
       return `${failure.data.path} is not a sound project:\n${failure.data.faults.map(faultText).join("\n")}`;
+    default:
+      return drawerFailureText(failure);
   }
 }
 

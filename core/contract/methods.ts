@@ -1,5 +1,6 @@
 import * as v from "valibot";
 import { PROJECT_FORMAT, type Project } from "../model/project.ts";
+import { DRAWER_EVENTS, DRAWER_METHODS } from "./drawer-methods.ts";
 import { FAULTS_SCHEMA } from "./failures.ts";
 import { list, method, NOTHING, PATH } from "./method.ts";
 
@@ -102,12 +103,14 @@ export const METHODS = {
     }),
     mutates: false,
   }),
+  ...DRAWER_METHODS,
 };
 
 /** What the machine tells the screens unasked. */
 export const EVENTS = {
   /** The user opened a project from outside: a second start, or the file manager. */
   "project.openRequested": v.object({ path: v.string() }),
+  ...DRAWER_EVENTS,
 };
 
 export type MethodName = keyof typeof METHODS;

@@ -28,7 +28,7 @@ export interface ImportMapping {
 export const DELIMITERS = [",", ";", "\t", "|"] as const;
 export type Delimiter = (typeof DELIMITERS)[number];
 
-export const ENCODINGS = ["utf-8", "windows-1252"] as const;
+export const ENCODINGS = ["utf-8", "windows-1252", "utf-16le"] as const;
 export type Encoding = (typeof ENCODINGS)[number];
 
 /** How a file's bytes become a table. */

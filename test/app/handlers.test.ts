@@ -8,6 +8,7 @@ import { newProject } from "../../core/model/new-project.ts";
 import { serializeProject } from "../../core/model/serialize.ts";
 
 const DEMOS = fileURLToPath(new URL("../../assets/demo", import.meta.url));
+const STARTER = fileURLToPath(new URL("../../assets/drawer/starter.csv", import.meta.url));
 
 let base = "";
 const realHome = process.env.HOME;
@@ -23,7 +24,16 @@ afterEach(async () => {
 });
 
 function shell(own: Partial<ShellOpts> = {}) {
-  return createHandlers({ version: "1.2.3", demoFolder: DEMOS, launchPath: null, dialogs: null, ...own });
+  return createHandlers({
+    version: "1.2.3",
+    demoFolder: DEMOS,
+    launchPath: null,
+    dialogs: null,
+    drawerPath: join(base, "drawer.sqlite"),
+    starterPath: STARTER,
+    emit: () => undefined,
+    ...own,
+  });
 }
 
 function dialogs(path: string | null): NativeDialogs {

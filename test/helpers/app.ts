@@ -29,7 +29,7 @@ export async function startApp(opts: StartOpts = {}): Promise<RunningApp> {
   const home = opts.home ?? (await mkdtemp(join(tmpdir(), "bandwright-home-")));
   const child = spawn(process.execPath, [join(CHECKOUT, "app", "launch.mjs"), "--no-open", ...(opts.file === undefined ? [] : [opts.file])], {
     cwd: CHECKOUT,
-    env: { ...process.env, HOME: home, USERPROFILE: home, INIT_CWD: CHECKOUT },
+    env: { ...process.env, HOME: home, USERPROFILE: home, BANDWRIGHT_DRAWER: join(home, "drawer.sqlite"), INIT_CWD: CHECKOUT },
     stdio: ["ignore", "pipe", "pipe"],
   });
   const ended = new Promise<number | null>((resolve) => {

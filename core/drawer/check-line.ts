@@ -1,0 +1,41 @@
+import type { StockKind, StockLine } from "./stock.ts";
+
+/** What values of a kind are measured in; null for op amps, which have a type instead. */
+export const QUANTITY_OF = { resistor: "resistance", potentiometer: "resistance", capacitor: "capacitance", inductor: "inductance", "op-amp": null } as const satisfies Record<StockKind, string | null>;
+
+/** What a kind's rating is in; null where it has none. */
+export const RATING_UNIT = { resistor: "W", potentiometer: "W", capacitor: "V", inductor: null, "op-amp": null } as const satisfies Record<StockKind, string | null>;
+
+/** What is wrong with a line, in words; nothing where it can be kept. */
+export function lineProblems(line: StockLine): readonly string[] {
+  const problems: string[] = [];
+  const complain = (message: string): void => void problems.push(message);
+
+  if (line.id.trim() === "") complain("it needs an id");
+  else if (line.id !== line.id.trim() || /\p{Cc}/u.test(line.id)) complain("its id must not begin or end with a space, and be on one line");
+  if (line.id.length > 100) complain("its id has more than 100 characters");
+
+  if (line.kind === "op-amp") {
+    if (line.value !== null) complain("an op amp has a type, and no value");
+    if (line.type === null || line.type.trim() === "") complain("an op amp needs its type, such as TL072");
+  } else {
+    if (line.value === null) complain(`a ${line.kind} needs a value`);
+    else if (!(line.value > 0 && Number.isFinite(line.value))) complain(`its value must be a number above 0, got ${line.value}`);
+    if (line.type !== null) complain(`only op amps have a type, a ${line.kind} has none`);
+  }
+  if (line.tolerance !== null && !(line.tolerance >= 0 && line.tolerance <= 1)) complain(`its tolerance must be from 0 to 100 %, got ${percent(line.tolerance)}`);
+  if (line.rating !== null && !(line.rating > 0 && Number.isFinite(line.rating))) complain(`its rating must be a number above 0, got ${line.rating}`);
+  if (line.temperatureCoefficient !== null && !(Math.abs(line.temperatureCoefficient) <= 0.1)) complain("its temperature coefficient must be from −100 000 to 100 000 ppm/K");
+  if (line.currency !== "" && !/^[A-Z]{3}$/.test(line.currency)) complain(`its currency must be a code of three letters, such as EUR, got “${line.currency}”`);
+  line.prices.forEach(({ from, unitCost }, index) => {
+    if (!(unitCost >= 0 && Number.isFinite(unitCost))) complain(`its price from ${from} must be 0 or more, got ${unitCost}`);
+    if (!Number.isSafeInteger(from) || from < 1) complain(`a price must hold from a whole number of pieces, got ${from}`);
+    const before = line.prices[index - 1];
+    if (before === undefined ? from !== 1 : from <= before.from) complain(before === undefined ? "its first price must hold from 1 piece" : "its prices must go up in number of pieces");
+  });
+  return problems;
+}
+
+function percent(fraction: number): string {
+  return `${Number((fraction * 100).toPrecision(6))} %`;
+}

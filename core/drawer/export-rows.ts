@@ -1,0 +1,56 @@
+import { editText, parseValue } from "../units.ts";
+import { QUANTITY_OF, RATING_UNIT } from "./check-line.ts";
+import { readCoefficient, readRating, readTolerance } from "./cells.ts";
+import type { ImportField, ImportMapping } from "./mapping.ts";
+import type { StockedLine } from "./stock.ts";
+
+/** The columns of an export, in order, under the names that an import knows them by. */
+const COLUMNS = [
+  ["id", "id"], ["kind", "kind"], ["value", "value"], ["type", "type"], ["tolerance", "tolerance"], ["rating", "rating"], ["technology", "technology"], ["temperature coefficient", "temperatureCoefficient"],
+  ["package", "package"], ["location", "location"], ["quantity", "quantity"], ["prices", "prices"], ["currency", "currency"], ["supplier", "supplier"], ["order code", "orderCode"], ["notes", "notes"], ["retired", "retired"],
+] as const satisfies readonly (readonly [string, ImportField])[];
+
+export const EXPORT_HEADERS: readonly string[] = COLUMNS.map(([header]) => header);
+
+/** How an export is read back: nothing about it is guessed. */
+export const EXPORT_MAPPING: ImportMapping = {
+  columns: COLUMNS.map(([, field], column) => ({ column, field, unit: "", from: 1 })),
+  defaults: { kind: null, currency: "" },
+};
+
+/** Whether a table's headers are those of an export. */
+export function isExport(headers: readonly string[]): boolean {
+  return headers.length === EXPORT_HEADERS.length && headers.every((header, index) => header.trim() === EXPORT_HEADERS[index]);
+}
+
+/** A line as an export writes it: in trade notation where that says exactly the same number, else in plain SI. */
+export function exportRow(line: StockedLine & { readonly retired: boolean }): readonly string[] {
+  const quantity = QUANTITY_OF[line.kind];
+  return [
+    line.id,
+    line.kind,
+    line.value === null || quantity === null ? "" : exact(line.value, editText(line.value, quantity), (text) => parseValue(text, quantity)),
+    line.type ?? "",
+    line.tolerance === null ? "" : exact(line.tolerance, `${trimmed(line.tolerance * 100)}%`, (text) => readTolerance(text, "")),
+    line.rating === null ? "" : exact(line.rating, `${trimmed(line.rating)}${RATING_UNIT[line.kind] ?? ""}`, (text) => readRating(text, "")),
+    line.technology,
+    line.temperatureCoefficient === null ? "" : exact(line.temperatureCoefficient, `${trimmed(line.temperatureCoefficient * 1e6)}ppm`, (text) => readCoefficient(text, "")),
+    line.package,
+    line.location,
+    String(line.quantity),
+    line.prices.map(({ from, unitCost }) => `${from}:${unitCost}`).join(";"),
+    line.currency,
+    line.supplier,
+    line.orderCode,
+    line.notes,
+    line.retired ? "yes" : "",
+  ];
+}
+
+function trimmed(value: number): string {
+  return String(Number(value.toPrecision(12)));
+}
+
+function exact(value: number, text: string, read: (text: string) => { readonly ok: boolean; readonly value?: number }): string {
+  return read(text).value === value ? text : String(value);
+}
