@@ -102,10 +102,10 @@ export function SheetStage(props: SheetStageProps) {
         <Scene inks={inks} ratio={ratio} draw={paper} />
       </Layer>
       <Layer listening={false}>
-        <Scene inks={inks} ratio={ratio} draw={rails} />
         {layout.chain.map((place) => (
           <ChainScene key={place.id} inks={inks} ratio={ratio} layout={layout} place={place} isSelected={selected.has(place.id)} />
         ))}
+        <Scene inks={inks} ratio={ratio} draw={rails} />
         {ordered.map((place) => (
           <BandScene
             key={place.id} inks={inks} ratio={ratio} frame={frame} place={place} block={drawnBlocks.get(place.id)!}
