@@ -8,6 +8,7 @@ import { StatusLine } from "./panels/StatusLine.tsx";
 import { TopLine } from "./panels/TopLine.tsx";
 import { ViewArea } from "./ViewArea.tsx";
 import type { ViewId } from "./views.ts";
+import { useIsUnstable } from "./worker/hooks.ts";
 
 interface AppProps {
   readonly shell: Shell;
@@ -28,10 +29,11 @@ function Frame() {
   const isPanelOpen = useUiState((s) => s.isPanelOpen);
   const isConnected = useUiState((s) => s.isConnected);
   const isBusy = useUiState((s) => s.isBusy);
+  const isUnstable = useIsUnstable();
   useKeys();
   useTitle();
   return (
-    <div className="app" aria-busy={isBusy}>
+    <div className="app" aria-busy={isBusy} data-unstable={isUnstable || undefined}>
       <TopLine />
       {!isConnected && (
         <div className="banner" role="alert">

@@ -8,6 +8,7 @@ import type { Shell } from "./editor/hooks.ts";
 import type { HostClient } from "./host/client.ts";
 import { connectHost, ConnectError } from "./host/connect.ts";
 import type { SheetHandle } from "./sheet/sheet-props.ts";
+import { createAnalyst } from "./worker/analyst.ts";
 
 interface StartProps {
   readonly editor: Editor;
@@ -43,7 +44,8 @@ async function start(editor: Editor, ui: Ui): Promise<Shell> {
     isMac: capabilities.platform === "darwin",
     isDesktop: capabilities.fileDialogs === "native",
   };
-  return { context, sheetRef, host, version: capabilities.version };
+  const analyst = createAnalyst(editor, () => new Worker(new URL("./worker/worker.ts", import.meta.url), { type: "module" }));
+  return { context, sheetRef, host, analyst, version: capabilities.version };
 }
 
 /** Connects, opens what the session was started with, and shows the screen; or says why not. */

@@ -86,7 +86,7 @@ export function lawAccounts(band: Block, stage: Block, opts: ValueOpts = {}): La
       value,
       inputs: lawSymbols(law.expression).map((symbol) => ({ symbol, quantity: lawSymbolQuantity(band.kind, symbol), value: results[symbol] ?? scope[symbol] })),
       elasticity: lawSymbols(tree).map((symbol) => {
-        const slope = Number(derivative(tree, symbol).evaluate({ ...scope }));
+        const slope = Number(derivative(tree, symbol, { simplify: false }).evaluate({ ...scope }));
         return { symbol, value: (slope * scope[symbol]) / value };
       }),
     };

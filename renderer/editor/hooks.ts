@@ -2,6 +2,7 @@ import { createContext, useContext } from "react";
 import { useStore } from "zustand";
 import type { HostClient } from "../host/client.ts";
 import type { SheetHandle } from "../sheet/sheet-props.ts";
+import type { Analyst } from "../worker/analyst.ts";
 import type { ActionContext } from "./actions/action.ts";
 import type { EditorState } from "./store.ts";
 import type { UiState } from "./ui.ts";
@@ -11,6 +12,7 @@ export interface Shell {
   readonly context: ActionContext;
   readonly sheetRef: { current: SheetHandle | null };
   readonly host: HostClient;
+  readonly analyst: Analyst;
   readonly version: string;
 }
 

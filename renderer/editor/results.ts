@@ -117,7 +117,7 @@ export function nearestIndex(column: Float64Array, value: number): number {
 }
 
 /** Whether two documents differ in nothing but slider positions, places and texts that no figure carries. */
-function isSameModel(a: Project, b: Project): boolean {
+export function isSameModel(a: Project, b: Project): boolean {
   if (a === b) return true;
   if (a.wires !== b.wires || a.supply !== b.supply || a.opAmps !== b.opAmps || a.temperature !== b.temperature) return false;
   if (a.blocks === b.blocks) return true;

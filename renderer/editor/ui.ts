@@ -35,11 +35,19 @@ export interface ContextMenuPlace {
   readonly clientX: number;
   readonly clientY: number;
   readonly target: string | null;
+  /** Where on the frequency ruling it was opened, Hz. */
+  readonly frequency: number | null;
 }
+
+/** The pages of the equations: one block, or what belongs to the board as a whole. */
+export type EquationsPage = "block" | "poles";
 
 export interface UiState {
   readonly theme: Theme;
   readonly view: ViewId;
+  readonly equationsPage: EquationsPage;
+  /** Where numbers are put into equations, Hz; null for the place that the block itself suggests. */
+  readonly equationsAt: number | null;
   readonly isPanelOpen: boolean;
   readonly isPhaseShown: boolean;
   readonly cursor: Reading | null;
@@ -60,7 +68,7 @@ export interface Ui {
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
   setTheme(theme: Theme): void;
-  patch(change: Partial<Pick<UiState, "view" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
+  patch(change: Partial<Pick<UiState, "view" | "equationsPage" | "equationsAt" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -73,6 +81,8 @@ export function createUi(): Ui {
   const store = createStore<UiState>(() => ({
     theme: keptTheme() ?? systemTheme(),
     view: "board",
+    equationsPage: "block",
+    equationsAt: null,
     isPanelOpen: window.innerWidth >= 900,
     isPhaseShown: false,
     cursor: null,

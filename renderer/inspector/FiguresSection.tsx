@@ -47,7 +47,7 @@ export const FiguresSection = memo(function FiguresSection({ figures }: { readon
   return (
     <section className="panel-section" aria-label="In circuit">
       <h3>In circuit, others centred</h3>
-      <table className="figure-table">
+      <table className="figure-table is-circuit-figure">
         <thead>
           <tr>
             <th scope="col">

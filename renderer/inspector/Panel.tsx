@@ -2,6 +2,8 @@ import { blockName } from "../../core/model/edit.ts";
 import { isPossible } from "../editor/actions/action.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
+import { WarningSign } from "../panels/Stability.tsx";
+import { useIsUnstable } from "../worker/hooks.ts";
 import { BlockPanel } from "./BlockPanel.tsx";
 import { ProjectPanel } from "./ProjectPanel.tsx";
 
@@ -13,9 +15,21 @@ export function Panel() {
   const [only] = blocks;
   return (
     <aside className="panel" aria-label="Panel">
+      <VoidNote />
       {/* The key gives every block fresh fields: a draft typed for one never lands in another. */}
       {only === undefined ? <ProjectPanel /> : blocks.length === 1 ? <BlockPanel key={only.id} block={only} /> : <SeveralPanel names={blocks.map(blockName)} />}
     </aside>
+  );
+}
+
+/** Says why the figures below are struck. */
+function VoidNote() {
+  const isUnstable = useIsUnstable();
+  if (!isUnstable) return null;
+  return (
+    <p className="void-note">
+      <WarningSign /> Unstable: the struck figures mean nothing.
+    </p>
   );
 }
 

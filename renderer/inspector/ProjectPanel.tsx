@@ -68,11 +68,11 @@ function Summary() {
         <>
           <div className="row">
             <span className="row-label">boost in circuit</span>
-            <span>{range(peaks.map((f) => f.boost.peak), (v) => formatDb(v))}</span>
+            <span className="is-circuit-figure">{range(peaks.map((f) => f.boost.peak), (v) => formatDb(v))}</span>
           </div>
           <div className="row">
             <span className="row-label">taken by neighbours</span>
-            <span>{range(peaks.map((f) => f.interactionLoss), (v) => `${v.toFixed(1)} dB`)}</span>
+            <span className="is-circuit-figure">{range(peaks.map((f) => f.interactionLoss), (v) => `${v.toFixed(1)} dB`)}</span>
           </div>
         </>
       )}

@@ -67,7 +67,7 @@ export function SliderSection({ block, slider }: { readonly block: Block; readon
         <span className="row-label" data-testid="slider-percent">
           {percent(slider.position)}
         </span>
-        {live !== undefined && <span data-testid="live-gain">{formatDb(live, 2)} now</span>}
+        {live !== undefined && <span className="is-circuit-figure" data-testid="live-gain">{formatDb(live, 2)} now</span>}
       </div>
       <div className="row">
         <span className="row-label">law</span>

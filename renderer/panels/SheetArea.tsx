@@ -9,6 +9,7 @@ import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { editPartText } from "../editor/part-text.ts";
 import { Sheet } from "../sheet/Sheet.tsx";
 import type { SheetProps } from "../sheet/sheet-props.ts";
+import { UnstableBanner } from "./Stability.tsx";
 import { WiringFaults } from "./WiringFaults.tsx";
 import { MenuItems } from "./MenuBar.tsx";
 
@@ -38,7 +39,7 @@ export function SheetArea() {
       onEditValue: (id, role, text) => editPartText(editor, id, role, text),
       onContextMenu: (at) => {
         if (at.target !== null && !editor.store.getState().selection.includes(at.target)) editor.select([at.target]);
-        ui.patch({ contextMenu: at });
+        ui.patch({ contextMenu: { ...at, frequency: ui.store.getState().cursor?.frequency ?? null } });
       },
       onCursor: (cursor) => ui.patch({ cursor }),
     };
@@ -47,6 +48,7 @@ export function SheetArea() {
   return (
     <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
       <Sheet ref={sheetRef} project={project} board={analysis.board} results={analysis.results} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} {...handlers} />
+      <UnstableBanner />
       {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}
       <ContextMenu />
@@ -72,8 +74,8 @@ function Invitation() {
   );
 }
 
-const BLOCK_MENU = ["edit-value", "centre-slider", "slider-boost", "slider-cut", "duplicate", "cut", "copy", "paste", "delete"];
-const SHEET_MENU = ["paste", "centre-all", "arrange", "fit", "zoom-in", "zoom-out", "select-all"];
+const BLOCK_MENU = ["edit-value", "centre-slider", "slider-boost", "slider-cut", "equations-here", "duplicate", "cut", "copy", "paste", "delete"];
+const SHEET_MENU = ["equations-here", "paste", "centre-all", "arrange", "fit", "zoom-in", "zoom-out", "select-all"];
 
 const ContextMenu = memo(function ContextMenu() {
   const { context } = useShell();

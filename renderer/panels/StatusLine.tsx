@@ -1,6 +1,7 @@
 import { Popover } from "@base-ui/react/popover";
 import { formatDb, formatValue } from "../../core/units.ts";
 import { useEditorState, useUiState } from "../editor/hooks.ts";
+import { StabilityStatus } from "./Stability.tsx";
 import { FaultList } from "./WiringFaults.tsx";
 
 /** One line: what the pointer is on, what just happened, how flat the board is, what to look at. */
@@ -16,10 +17,11 @@ export function StatusLine() {
       </p>
       {isSingle && <span className="status-caution">single supply: mind the polarity of coupling capacitors</span>}
       {flatness !== null && (
-        <span data-testid="flatness" title="20 Hz to 20 kHz, against 1 kHz">
+        <span className="is-circuit-figure" data-testid="flatness" title="20 Hz to 20 kHz, against 1 kHz">
           flat within {formatFlatness(flatness)} with sliders centred
         </span>
       )}
+      <StabilityStatus />
       <Warnings />
     </footer>
   );
@@ -32,7 +34,7 @@ function formatFlatness(flatness: number): string {
 function CursorReading() {
   const cursor = useUiState((s) => s.cursor);
   return (
-    <span className="status-reading">
+    <span className={cursor ? "status-reading is-circuit-figure" : "status-reading"}>
       {cursor ? `${formatValue(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
     </span>
   );

@@ -1,9 +1,16 @@
 import { moveBlocks } from "../../../core/model/edit.ts";
+import { formatValue } from "../../../core/units.ts";
 import { VIEWS } from "../../views.ts";
 import type { Action, ActionContext } from "./action.ts";
 
 const ZOOM_STEP = 1.25;
 const PAN_STEP = 80;
+
+/** The frequency that the hands are at: under the open menu, else the cursor's, Hz. */
+function frequencyHere(c: ActionContext): number | null {
+  const { contextMenu, cursor } = c.ui.store.getState();
+  return contextMenu?.frequency ?? cursor?.frequency ?? null;
+}
 
 function isBoardShown(c: ActionContext): boolean {
   return c.ui.store.getState().view === "board";
@@ -18,6 +25,16 @@ const showActions = VIEWS.map(
 
 export const VIEW_ACTIONS: readonly Action[] = [
   ...showActions,
+  {
+    id: "show-poles", label: "Show poles, zeros and loops", keywords: "stability oscillation margin damping s-plane unstable equations", menu: "View", group: 0,
+    perform: (c) => c.ui.patch({ view: "equations", equationsPage: "poles", contextMenu: null }),
+  },
+  {
+    id: "equations-here", keywords: "numbers frequency cursor point node currents", menu: null, group: 0, chords: ["E"],
+    label: (c) => `Equations at ${formatValue(frequencyHere(c) ?? 1000, "frequency")}`,
+    when: (c) => isBoardShown(c) && frequencyHere(c) !== null,
+    perform: (c) => c.ui.patch({ view: "equations", equationsPage: "block", equationsAt: frequencyHere(c), contextMenu: null }),
+  },
   { id: "fit", label: "Fit the sheet", keywords: "zoom whole overview reset view", menu: "View", group: 1, chords: ["F"], when: isBoardShown, perform: (c) => c.sheet()?.fit() },
   { id: "zoom-in", label: "Zoom in", keywords: "larger closer magnify", menu: "View", group: 1, chords: ["+", "="], when: isBoardShown, perform: (c) => c.sheet()?.zoomBy(ZOOM_STEP) },
   { id: "zoom-out", label: "Zoom out", keywords: "smaller further", menu: "View", group: 1, chords: ["-"], when: isBoardShown, perform: (c) => c.sheet()?.zoomBy(1 / ZOOM_STEP) },
