@@ -19,7 +19,7 @@ const VALUE_SLOT = 69;
 const LEAST_SLOT = 28;
 const BETWEEN_RAILS = 12;
 /** Grid units above a rail (the stage's op amp) and below it (what feeds a stage, what ends the chain). */
-const ABOVE = 23;
+const ABOVE = 23.5;
 
 export interface SheetLayout {
   readonly frame: Frame;

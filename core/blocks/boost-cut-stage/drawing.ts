@@ -32,5 +32,5 @@ export const stageDrawing: Drawing = {
     { x: -10.5, y: -14, needs: "feedbackC" },
     { x: -10.5, y: 0, needs: "feedbackC" },
   ],
-  left: -46, right: 0, top: -22.5, bottom: 4,
+  left: -46, right: 0, top: -22, bottom: 4,
 };
