@@ -116,7 +116,8 @@ export class DrawerStore {
     });
   }
 
-  addLine(line: StockLine, quantity: number): { step: number; line: DrawerLine } {
+  addLine(asked: StockLine, quantity: number): { step: number; line: DrawerLine } {
+    const line = tidy(asked);
     requireSoundLine(line);
     const { step } = asStep(this.db, this.now(), `Add ${line.id}`, (one) => {
       if (findLine(this.db, line.id) !== null) throw new HostFailure("drawer-refused", { problems: [`${line.id}: there is a line of that name already.`] });
@@ -127,7 +128,7 @@ export class DrawerStore {
   }
 
   editLines(ids: readonly string[], fields: LineFields): Changed {
-    return this.edit(`Edit ${namesOf(ids)}`, ids, fields);
+    return this.edit(`Edit ${namesOf(ids)}`, ids, tidy(fields));
   }
 
   retireLines(ids: readonly string[], retired: boolean): Changed {
@@ -272,6 +273,11 @@ export class DrawerStore {
 /** Opens the drawer file at a path, or makes it. @throws HostFailure drawer-unusable */
 export async function openDrawer(opts: DrawerOpts): Promise<DrawerStore> {
   return new DrawerStore(await openDb(opts.path), opts.now);
+}
+
+/** Texts without spaces around them, as a table would bring them. */
+function tidy<T extends object>(fields: T): T {
+  return Object.fromEntries(Object.entries(fields).map(([field, value]: [string, unknown]) => [field, typeof value === "string" ? value.trim() : value])) as T;
 }
 
 function certain(step: number | null): number {

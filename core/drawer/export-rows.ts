@@ -29,7 +29,7 @@ export function exportRow(line: StockedLine & { readonly retired: boolean }): re
   return [
     line.id,
     line.kind,
-    line.value === null || quantity === null ? "" : exact(line.value, editText(line.value, quantity), (text) => parseValue(text, quantity)),
+    line.value === null || quantity === null ? "" : exact(line.value, editText(line.value, quantity).replace("µ", "u"), (text) => parseValue(text, quantity)),
     line.type ?? "",
     line.tolerance === null ? "" : exact(line.tolerance, `${trimmed(line.tolerance * 100)}%`, (text) => readTolerance(text, "")),
     line.rating === null ? "" : exact(line.rating, `${trimmed(line.rating)}${RATING_UNIT[line.kind] ?? ""}`, (text) => readRating(text, "")),
