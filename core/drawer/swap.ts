@@ -11,7 +11,7 @@ import { transferColumns } from "../net/transfer.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { candidatesFor, compareText, hasFault, type Candidate, type CandidateOpts } from "./candidates.ts";
 import { filledBlock, filledProject, fillingPatch, onProject, type BoardRole } from "./roles.ts";
-import { boardStress, type Problem } from "./stress.ts";
+import { boardStress, type PartStress, type Problem } from "./stress.ts";
 import type { StockedLine } from "./stock.ts";
 import { TrialBoard } from "./trial.ts";
 
@@ -52,6 +52,8 @@ export interface Swap {
   readonly role: BoardRole;
   /** Of each band that the role can move, with the part that is there. */
   readonly before: readonly { readonly band: string; readonly boost: BandPeak }[];
+  /** What a part here has to bear; null where that was not worked out. */
+  readonly stress: PartStress | null;
   /** Best first: those that nothing bars, then by what they do to the response, cost and id. */
   readonly candidates: readonly RankedCandidate[];
 }
@@ -79,7 +81,7 @@ export function rankSwaps(board: Board, role: BoardRole, lines: readonly Stocked
     const problems = role.kind === "op-amp" ? [...candidate.problems, ...loopProblems(board, role, candidate, values)] : candidate.problems;
     return { ...candidate, problems, ...compare.with(compiled, (block) => (block.id === role.block ? filledBlock(block, role.role, candidate.filling) : block)), isInPlace, patch };
   });
-  return { role, before: compare.before, candidates: candidates.toSorted(byEffect) };
+  return { role, before: compare.before, stress: stress?.get(role.name) ?? null, candidates: candidates.toSorted(byEffect) };
 }
 
 const NO_CHANGE: BandChange = { band: "", peak: 0, centre: null, q: null };

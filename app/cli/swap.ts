@@ -1,0 +1,88 @@
+import type { Command } from "commander";
+import { boardRoles, findRole, type BoardRole } from "../../core/drawer/roles.ts";
+import { rankSwaps, type RankedCandidate, type Swap } from "../../core/drawer/swap.ts";
+import { RATING_CAUTION } from "../../core/drawer/stress.ts";
+import { applyPatch } from "../../core/model/patch.ts";
+import { formatDb } from "../../core/units.ts";
+import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { moneyText, percentText, readCount, readFraction, stockText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
+import { CommandFailure } from "./failure.ts";
+
+interface SwapCommandOpts extends SliderOpts, ChooseOpts {
+  readonly role: string;
+  readonly pairs?: true;
+  readonly units: string;
+  readonly window: string;
+  readonly most: string;
+  readonly take?: string;
+  readonly output?: string;
+}
+
+/** `swap FILE --role ROLE`: parts of the drawer for one role, ranked by what they do to the board. */
+export function swapCommand(): Command {
+  return withDrawerOptions(
+    boardCommand("swap", "parts of the drawer for one role, ranked by what they do to the whole board", "swap channel.bandwright --role b1k.seriesC --pairs --take 1 -o other.bandwright")
+      .requiredOption("--role <ROLE>", "role as block.role, such as b1k.seriesC, b1k.slider, b1k.opAmp or reference.upperR")
+      .option("--pairs", "two pieces in series or parallel too")
+      .option("--units <N>", "units to build: pieces have to be there for each", "1")
+      .option("--window <FRACTION>", "how far the value may be off", "20%")
+      .option("--most <N>", "how many to try, nearest first", "50")
+      .option("--take <N>", "put number N of the list into the board and write it to -o")
+      .option("-o, --output <FILE>", "where to write the board"),
+  ).action(async (file: string, opts: SwapCommandOpts) => {
+    const units = readCount(opts.units, "--units");
+    const window = readFraction(opts.window, "--window");
+    const most = readCount(opts.most, "--most", 10_000);
+    const take = opts.take === undefined ? undefined : readCount(opts.take, "--take");
+    if ((take === undefined) !== (opts.output === undefined)) throw new CommandFailure("--take and -o go together: which number of the list, and where to write the board");
+    const { board, positions } = await loadBoard(file, opts);
+    const role = findRole(board, opts.role);
+    if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
+    const lines = await withDrawer(opts, (store) => store.allLines());
+    const swap = rankSwaps(board, role, lines, { positions, units, window, most, pairs: opts.pairs === true });
+    const taken = take === undefined ? undefined : swap.candidates[take - 1];
+    if (take !== undefined && !taken) throw new CommandFailure(`--take: the list has ${swap.candidates.length} entries, so there is no number ${take}`);
+    if (taken && opts.output !== undefined) await writeProject(opts.output, applyPatch(board.project, taken.patch));
+    if (opts.json) printJson({ ...swapJson(swap), taken: take ?? null });
+    else printSwap(swap, role);
+    if (taken) process.stderr.write(`${opts.output}: ${role.name} is now ${taken.lines.map((l) => l.id).join(" and ")}\n`);
+  });
+}
+
+function swapJson({ role, before, stress, candidates }: Swap): object {
+  return {
+    role: { name: role.name, label: role.label, kind: role.kind, value: role.value, type: role.type, stock: role.stock },
+    before, stress,
+    candidates: candidates.map((c, i) => ({
+      number: i + 1, lines: c.lines.map((l) => l.id), joined: c.joined, value: c.value, type: c.lines[0].type, tolerance: c.tolerance, deviation: c.deviation,
+      change: c.change, changes: c.changes, asItStands: c.asItStands, atFullBoost: c.atFullBoost, worst: c.worst,
+      cost: c.cost, left: c.left, isInPlace: c.isInPlace, problems: c.problems,
+    })),
+  };
+}
+
+function printSwap({ candidates, stress }: Swap, role: BoardRole): void {
+  process.stdout.write(`${role.label} (${role.name}), now ${stockText(role.kind, role.value, role.type)}${role.stock === null ? "" : `, ${role.stock}`}\n`);
+  if (stress && role.kind === "capacitor") {
+    const way = stress.positive === null ? "no steady voltage to keep a polarised one the right way round" : `+ to ${stress.positive}`;
+    process.stdout.write(`bears ${Math.max(Math.abs(stress.low), Math.abs(stress.high)).toPrecision(3)} V steady and up to ${stress.peak.toPrecision(3)} V of signal; ${way}\n`);
+  }
+  if (candidates.length === 0) {
+    process.stdout.write("\nnothing in the drawer fits\n");
+    return;
+  }
+  process.stdout.write("\n");
+  printTable(
+    ["line", "no.", "value", "off", "tolerance", "peak", "centre", "Q", "as set", "full boost", "cost", "left"],
+    candidates.map((c, i) => [
+      `${c.lines.map((l) => l.id).join(c.joined === "series" ? " + " : " ‖ ")}${c.isInPlace ? " (in place)" : ""}`, String(i + 1), stockText(role.kind, c.value, c.lines[0].type), c.value === null ? "–" : percentText(c.deviation), c.tolerance === null ? "–" : `${Number((c.tolerance * 100).toPrecision(3))} %`,
+      formatDb(c.change.peak, 2), percentText(c.change.centre), percentText(c.change.q), `${c.asItStands.toFixed(2)} dB`, `${c.atFullBoost.toFixed(2)} dB`, moneyText(c.cost), String(c.left),
+    ]),
+  );
+  const notes = candidates.flatMap((c, i) => c.problems.map((p) => noteText(c, i, p)));
+  if (notes.length > 0) process.stdout.write(`\n${notes.join("\n")}\n${RATING_CAUTION}\n`);
+}
+
+function noteText(c: RankedCandidate, index: number, { level, message }: RankedCandidate["problems"][number]): string {
+  return `${index + 1}. ${c.lines.map((l) => l.id).join(", ")}: ${level === "fault" ? "does not do: " : ""}${message}`;
+}
