@@ -1,5 +1,5 @@
 import type { Command } from "commander";
-import { boardReport, blockIds, type BlockReport } from "../../core/analysis/equation-report.ts";
+import { blockReportText, boardReport, blockIds } from "../../core/analysis/equation-report.ts";
 import { boardCommand, loadBoard, printJson, readFrequency, type SliderOpts } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
 
@@ -24,20 +24,6 @@ export function equationsCommand(): Command {
       if (opts.block !== undefined && !ids.includes(opts.block)) throw new CommandFailure(`--block: there is no block “${opts.block}” with a part in this board: it has ${ids.join(", ")}`);
       const report = boardReport(board, { positions, style: opts.tex ? "tex" : "text", frequency: at, blocks: opts.block === undefined ? ids : [opts.block] });
       if (opts.json) printJson(report);
-      else process.stdout.write(`${report.blocks.map((block) => blockText(block, opts.tex === true)).join("\n\n")}\n`);
+      else process.stdout.write(`${report.blocks.map((block) => blockReportText(block, opts.tex ? "tex" : "text")).join("\n\n")}\n`);
     });
-}
-
-function blockText(block: BlockReport, isTex: boolean): string {
-  const lines: string[] = [];
-  const heading = `${block.label} (${block.id})`;
-  lines.push(isTex ? `% ${heading}` : heading);
-  for (const section of block.sections) {
-    lines.push(isTex ? `% ${section.title}` : `  ${section.title}`);
-    for (const line of section.lines) {
-      if (!isTex) lines.push(`    ${line.text}`);
-      else lines.push(line.isProse ? `% ${line.text}` : `\\[ ${line.text} \\]`);
-    }
-  }
-  return lines.join("\n");
 }

@@ -77,6 +77,21 @@ export function boardReport(board: Board, opts: ReportOpts): BoardReport {
   return { frequency: frequency ?? null, gain, blocks };
 }
 
+/** A block's equations as text, or as LaTeX that a document with amsmath takes as it is (prose as comments). */
+export function blockReportText(block: BlockReport, style: EquationStyle): string {
+  const isTex = style === "tex";
+  const heading = `${block.label} (${block.id})`;
+  const lines = [isTex ? `% ${heading}` : heading];
+  for (const section of block.sections) {
+    lines.push(isTex ? `% ${section.title}` : `  ${section.title}`);
+    for (const line of section.lines) {
+      if (!isTex) lines.push(`    ${line.text}`);
+      else lines.push(line.isProse ? `% ${line.text}` : `\\[ ${line.text} \\]`);
+    }
+  }
+  return lines.join("\n");
+}
+
 function lawLines(band: Block, stage: Block, opts: ReportOpts): ReportLine[] {
   const { style } = opts;
   return lawAccounts(band, stage, opts).flatMap((account): ReportLine[] => {

@@ -40,8 +40,9 @@ function printed(tree: MathNode, style: EquationStyle, symbol: (name: string) =>
     const { name } = node as MathNode & { name: string };
     return name === "pi" ? (style === "tex" ? "\\pi" : "π") : symbol(name);
   };
-  const opts = { handler, parenthesis: "keep" as const, implicit: "show" as const };
-  return style === "tex" ? tree.toTex(opts).replaceAll("\\cdot", "\\cdot ") : tree.toString(opts).replaceAll(" * ", "·").replaceAll("sqrt", "√");
+  // A fraction bar groups by itself what the text has in brackets.
+  const opts = { handler, parenthesis: style === "tex" ? ("auto" as const) : ("keep" as const), implicit: "show" as const };
+  return style === "tex" ? tree.toTex(opts).replaceAll("\\cdot", "\\cdot ").replaceAll(/2\\cdot +\\pi\\cdot +/g, "2\\pi\\,") : tree.toString(opts).replaceAll(" * ", "·").replaceAll("sqrt", "√");
 }
 
 /** A design law in three steps: with symbols, with this board's values put in, and the result. */
@@ -61,7 +62,7 @@ export function lawSteps(account: LawAccount, kind: BlockKind, style: EquationSt
 export function complexText(z: ComplexValue, unit: string, style: EquationStyle): string {
   const angle = ((Math.atan2(z.im, z.re) * 180) / Math.PI).toFixed(2).replace("-", "−");
   const size = engineering(Math.hypot(z.re, z.im), unit);
-  return style === "tex" ? `${texValue(size)}\\angle ${angle.replace("−", "-")}^\\circ` : `${size} ∠ ${angle}°`;
+  return style === "tex" ? `${texValue(size)}\\angle{${angle.replace("−", "-")}}^\\circ` : `${size} ∠ ${angle}°`;
 }
 
 const ENGINEERING = ["f", "p", "n", "µ", "m", "", "k", "M", "G"];

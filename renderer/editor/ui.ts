@@ -39,8 +39,8 @@ export interface ContextMenuPlace {
   readonly frequency: number | null;
 }
 
-/** The pages of the equations: one block, or what belongs to the board as a whole. */
-export type EquationsPage = "block" | "poles";
+/** The pages of the equations: the selected block, the divider of a single supply, or what belongs to the board as a whole. */
+export type EquationsPage = "block" | "reference" | "poles";
 
 export interface UiState {
   readonly theme: Theme;

@@ -1,40 +1,45 @@
 import { useMemo } from "react";
-import { blockIds, boardReport } from "../../core/analysis/equation-report.ts";
-import { blockName } from "../../core/model/edit.ts";
-import { useEditorState, useShell } from "../editor/hooks.ts";
+import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
+import { UnstableBanner } from "../panels/Stability.tsx";
 import { WiringFaults } from "../panels/WiringFaults.tsx";
+import { BlockList } from "./BlockList.tsx";
+import { BlockPage } from "./BlockPage.tsx";
 import "./equations.css";
+import { PolesPage } from "./PolesPage.tsx";
+import { shownBlock } from "./shown.ts";
 
-/** The equations behind the selected block. */
+/** The mathematics behind the board: each block's equations, and the poles, zeros and loops of the whole. */
 export function EquationsArea() {
-  const { editor } = useShell().context;
+  const { editor, ui } = useShell().context;
   const { board, faults } = useEditorState((s) => s.analysis);
   const selection = useEditorState((s) => s.selection);
-  const ids = useMemo(() => (board ? blockIds(board) : []), [board]);
-  const chosen = ids.find((id) => selection.includes(id)) ?? ids[0];
-  const report = useMemo(() => (board && chosen !== undefined ? boardReport(board, { style: "text", blocks: [chosen] }).blocks[0] : null), [board, chosen]);
-  const names = new Map(board?.project.blocks.map((block) => [block.id, blockName(block)]));
+  const page = useUiState((s) => s.equationsPage);
+  const shown = useMemo(() => (board ? shownBlock(board, selection, page) : null), [board, selection, page]);
+  if (!board || shown === null) {
+    return (
+      <main className="equations is-empty" aria-label="Equations" tabIndex={-1}>
+        <WiringFaults faults={faults} />
+      </main>
+    );
+  }
   return (
     <main className="equations" aria-label="Equations" tabIndex={-1}>
-      {faults.length > 0 && <WiringFaults faults={faults} />}
-      <nav className="equations-list" aria-label="Blocks">
-        {ids.map((id) => (
-          <button key={id} type="button" className="equations-entry" aria-current={id === chosen} onClick={() => editor.select([id])}>
-            {names.get(id) ?? id}
-          </button>
-        ))}
-      </nav>
-      {report && (
-        <article className="equations-page">
-          <h2>{report.label}</h2>
-          {report.sections.map((section) => (
-            <section key={section.title}>
-              <h3>{section.title}</h3>
-              <pre>{section.lines.map((line) => line.text).join("\n")}</pre>
-            </section>
-          ))}
-        </article>
-      )}
+      <BlockList
+        board={board}
+        shown={page === "poles" ? null : shown}
+        onShow={(id) => {
+          if (id === "poles" || id === "reference") ui.patch({ equationsPage: id });
+          else {
+            editor.select([id]);
+            ui.patch({ equationsPage: "block" });
+          }
+        }}
+      />
+      {/* Pages scroll from their top, each anew. */}
+      <div className="equations-page" key={page === "poles" ? "poles" : shown}>
+        <UnstableBanner but={page === "poles" ? "" : "The design laws, which are sums on paper, still hold."} />
+        {page === "poles" ? <PolesPage board={board} /> : <BlockPage board={board} id={shown} />}
+      </div>
     </main>
   );
 }

@@ -1,4 +1,5 @@
 import { smallestMargin } from "../../core/analysis/stability.ts";
+import { BLOCKS } from "../../core/blocks/index.ts";
 import { blockName } from "../../core/model/edit.ts";
 import type { Project } from "../../core/model/project.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
@@ -8,7 +9,10 @@ import { useIsUnstable, useStability } from "../worker/hooks.ts";
 /** What people call a block of the analysis; the divider of a single supply is no block of the file. */
 export function nameOfBlock(project: Project, id: string): string {
   const block = project.blocks.find((b) => b.id === id);
-  return block ? blockName(block) : id === "reference" ? "signal reference" : id;
+  if (!block) return id === "reference" ? "signal reference" : id;
+  // A board has one input and one output: their kind says more than an id.
+  const isEnd = block.kind === "input" || block.kind === "output";
+  return block.label === undefined && isEnd ? BLOCKS[block.kind].label : blockName(block);
 }
 
 /** The smallest phase margin of the board, or that it oscillates and where. */

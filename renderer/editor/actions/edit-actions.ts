@@ -4,6 +4,7 @@ import { copyBands, duplicateBands, stageOf, type Addition } from "../../../core
 import { formatDb, formatValue } from "../../../core/units.ts";
 import type { BandFigures } from "../../../core/analysis/bands.ts";
 import type { Block } from "../../../core/model/project.ts";
+import { copyText } from "../copy-text.ts";
 import { selectedBlocks, type Action, type ActionContext } from "./action.ts";
 
 /** `1 kHz`, or `3 blocks`: what the last steps and messages call a selection. */
@@ -118,21 +119,6 @@ export const EDIT_ACTIONS: readonly Action[] = [
     },
   },
 ];
-
-async function copyText(text: string): Promise<void> {
-  try {
-    await navigator.clipboard.writeText(text);
-  } catch {
-    // The desktop window grants no permissions at all; the older way needs none.
-    const carrier = document.createElement("textarea");
-    carrier.value = text;
-    document.body.append(carrier);
-    carrier.select();
-    const isCopied = document.execCommand("copy");
-    carrier.remove();
-    if (!isCopied) throw new Error("The clipboard cannot be used here.");
-  }
-}
 
 function step(c: ActionContext, by: 1 | -1): void {
   const { project, selection } = c.editor.store.getState();
