@@ -10,7 +10,7 @@ const HEADERS: readonly (readonly [ImportField, RegExp])[] = [
   ["tolerance", /^(?:tol|tolerance|accuracy)$/],
   ["temperatureCoefficient", /^(?:tc|tcr|tcc|tempco|tempcoeff?|temperaturecoefficient|ppm(?:k|c)?)$/],
   ["rating", /^(?:rating|rated(?:voltage|power)?|voltage(?:rating)?|power(?:rating)?|workingvoltage|volts?|watts?|wattage|vmax|pmax)$/],
-  ["quantity", /^(?:qty|quantity|stock|instock|onhand|count|amount|pieces|pcs|number|available|stocked)$/],
+  ["quantity", /^(?:(?:stock|current|total)?(?:qty|quantity|count|level)|stock|instock|onhand|amount|pieces|pcs|number|available|stocked)$/],
   ["location", /^(?:location|place|bin|box|shelf|drawer|storage|where|position)$/],
   ["package", /^(?:package|pkg|case|size|footprint|pitch|leadpitch|leadspacing|form|housing|mounting)$/],
   ["technology", /^(?:technology|tech|dielectric|material|construction|series|composition)$/],
@@ -70,7 +70,7 @@ function typeField(cells: readonly string[]): ImportField {
 }
 
 function plainHeader(header: string): string {
-  const spaced = header.replace(/([a-z])([A-Z])/g, "$1 $2").replace(UNIT, "").replaceAll(/[€$£¥₹]|\b(?:EUR|USD|GBP|CHF|JPY)\b/g, "");
+  const spaced = header.replace(UNIT, "").replaceAll(/[€$£¥₹]|\b(?:EUR|USD|GBP|CHF|JPY)\b/g, "");
   return spaced.toLowerCase().replaceAll("@", "at").replaceAll("+", "up").replaceAll(/[^\p{L}\p{N}]+/gu, "");
 }
 

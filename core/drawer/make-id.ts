@@ -10,10 +10,15 @@ const LETTER = { resistor: "R", capacitor: "C", inductor: "L", potentiometer: "P
  */
 export function makeId(line: Pick<StockLine, "kind" | "value" | "type" | "technology" | "tolerance" | "rating" | "package">): string {
   const quantity = QUANTITY_OF[line.kind];
-  // A capital letter would make milli of mega.
-  const value = line.value === null || quantity === null ? (line.type ?? "") : formatCode(line.value, quantity, 6);
+  const value = line.value === null || quantity === null ? (line.type ?? "") : valueCode(line.value, quantity);
   const parts = [LETTER[line.kind], value, words(line.technology), line.tolerance === null ? "" : `${Number((line.tolerance * 100).toPrecision(3))}%`, ratingText(line), words(line.package)];
   return parts.filter((part) => part !== "").join("-").slice(0, 100);
+}
+
+/** The trade writes 2200u rather than 2m2. */
+function valueCode(value: number, quantity: "resistance" | "capacitance" | "inductance"): string {
+  if (quantity === "capacitance" && value >= 1e-3) return `${Number((value * 1e6).toPrecision(6))}u`;
+  return formatCode(value, quantity, 6);
 }
 
 /** The same, but not one that is taken: a number is added. */

@@ -32,7 +32,10 @@ function joinUnits(text: string): string {
 
 function readTerm(token: string): SearchTerm {
   const words = token.toLowerCase().match(/[\p{L}\p{N}]+/gu) ?? [];
-  return { words, ranges: readRanges(token.replace(/^±/, "")) };
+  const ranges = readRanges(token.replace(/^±/, ""));
+  // A value may be part of a name too, as in R-4K7-MF25. Taken to pieces it would fit anything: 2.5 % has a 2 and a 5.
+  const isWord = words.length === 1 && !/%|ppm/i.test(token);
+  return { words: ranges.length === 0 || isWord ? words : [], ranges };
 }
 
 function readRanges(token: string): readonly ValueRange[] {

@@ -1,0 +1,135 @@
+import { existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from "node:fs";
+import { dirname, join } from "node:path";
+import Database from "better-sqlite3";
+import { beforeEach, describe, expect, test } from "vitest";
+import { isHostFailure } from "../../core/contract/failures.ts";
+import { openDrawer } from "../../app/store/drawer-store.ts";
+import { asOrdinaryUser } from "../helpers/ordinary-user.ts";
+import { importText, openScratch, scratchFolder } from "../helpers/drawer.ts";
+
+const STARTER = readFileSync(new URL("../../assets/drawer/starter.csv", import.meta.url));
+const PAGE = 4096;
+
+let path = "";
+beforeEach(async () => {
+  path = join(scratchFolder(), "my drawer.sqlite");
+});
+
+async function soundBytes(): Promise<Buffer> {
+  const store = await openScratch(join(scratchFolder(), "sound.sqlite"));
+  await importText(store, STARTER);
+  store.close();
+  return readFileSync(store.path);
+}
+
+async function refusal() {
+  const error: unknown = await openDrawer({ path, now: () => new Date(0) }).catch((caught: unknown) => caught);
+  if (!isHostFailure(error, "drawer-unusable")) throw new Error(`not refused: ${String(error)}`);
+  return error;
+}
+
+/** Every third byte of a page turned over. */
+function withPage(bytes: Buffer, number: number): Buffer {
+  const damaged = Buffer.from(bytes);
+  for (let at = number * PAGE; at < (number + 1) * PAGE; at += 3) damaged[at] = damaged[at] ^ 0xff;
+  return damaged;
+}
+
+const DAMAGE: Readonly<Record<string, { readonly reason: string; readonly bytes: (sound: Buffer) => Buffer }>> = {
+  "cut short by half": { reason: "damaged", bytes: (sound) => sound.subarray(0, Math.floor(sound.length / 2 / PAGE) * PAGE) },
+  "cut short in the middle of a page": { reason: "damaged", bytes: (sound) => sound.subarray(0, 3 * PAGE + 1000) },
+  "cut short in its header": { reason: "damaged", bytes: (sound) => sound.subarray(0, 50) },
+  "with its schema's page turned over": { reason: "damaged", bytes: (sound) => Buffer.concat([sound.subarray(0, 100), withPage(sound, 0).subarray(100)]) },
+  "with a page in the middle turned over": { reason: "damaged", bytes: (sound) => withPage(sound, Math.floor(sound.length / PAGE / 2)) },
+  "with a page of zeros": { reason: "damaged", bytes: (sound) => Buffer.concat([sound.subarray(0, 5 * PAGE), Buffer.alloc(PAGE), sound.subarray(6 * PAGE)]) },
+  "of other bytes": { reason: "not-a-drawer", bytes: (sound) => Buffer.from(sound.map((byte, index) => (byte * 31 + index * 17) & 0xff)) },
+  "that is a text": { reason: "not-a-drawer", bytes: () => Buffer.from("id,kind,value\nR-1,resistor,4k7\n".repeat(10)) },
+};
+
+describe.each(Object.entries(DAMAGE))("a file %s", (_name, { reason, bytes }) => {
+  test("is told of, copied once, and left as it was", async () => {
+    const damaged = bytes(await soundBytes());
+    writeFileSync(path, damaged);
+    const error = await refusal();
+    expect(error.data.reason).toBe(reason);
+    const copy = error.data.backup;
+    if (copy === null) throw new Error("no copy was made");
+    expect(copy).toMatch(/my drawer\.damaged-[0-9a-f]{8}\.sqlite$/);
+    expect(error.message).toContain(copy);
+    expect(readFileSync(copy).equals(damaged)).toBe(true);
+    expect(readFileSync(path).equals(damaged)).toBe(true);
+
+    expect((await refusal()).data.backup).toBe(copy);
+    expect(readdirSync(dirname(path)).filter((name) => name.includes("damaged") && name.endsWith(".sqlite"))).toHaveLength(1);
+    expect(readFileSync(path).equals(damaged)).toBe(true);
+  });
+});
+
+test("any page but the free ones, turned over, is noticed or harms nothing", async () => {
+  const sound = await soundBytes();
+  const pages = Math.floor(sound.length / PAGE);
+  let noticed = 0;
+  for (let number = 1; number < pages; number += Math.ceil(pages / 12)) {
+    writeFileSync(path, withPage(sound, number));
+    const outcome = await openDrawer({ path, now: () => new Date(0) }).then(
+      (store) => (store.close(), "opened"),
+      (error: unknown) => (isHostFailure(error, "drawer-unusable") ? error.data.reason : String(error)),
+    );
+    expect(["opened", "damaged"]).toContain(outcome);
+    if (outcome === "damaged") noticed += 1;
+    else writeFileSync(path, sound);
+  }
+  expect(noticed).toBeGreaterThan(5);
+});
+
+test("another program's database is refused, and neither copied nor touched", async () => {
+  const db = new Database(path);
+  db.exec("CREATE TABLE recipes (name TEXT)");
+  db.close();
+  const before = readFileSync(path);
+  const { data } = await refusal();
+  expect(data).toMatchObject({ reason: "not-a-drawer", backup: null });
+  expect(readFileSync(path).equals(before)).toBe(true);
+});
+
+test("a folder of that name is refused", async () => {
+  mkdirSync(path);
+  expect((await refusal()).data.reason).toBe("not-a-drawer");
+});
+
+test("an empty file is a drawer that was never begun", async () => {
+  writeFileSync(path, "");
+  const store = await openScratch(path);
+  expect(store.info().lines).toBe(0);
+});
+
+test("a file that may not be read says so", async () => {
+  const store = await openScratch(path);
+  store.close();
+  await asOrdinaryUser(async () => {
+    expect((await refusal()).data.reason).toBe("permission");
+  });
+  expect(existsSync(path)).toBe(true);
+});
+
+test("damage that is met later is told of too, and copied", async () => {
+  const sound = await soundBytes();
+  writeFileSync(path, sound);
+  const store = await openScratch(path);
+  expect(store.info().lines).toBe(429);
+  store.close();
+  const again = await openScratch(path);
+  // Behind its back, all but the schema.
+  const damaged = Buffer.from(sound);
+  for (let at = PAGE; at < damaged.length; at += 1) damaged[at] = damaged[at] ^ 0xff;
+  writeFileSync(path, damaged);
+  let error: unknown;
+  try {
+    again.allLines();
+  } catch (caught) {
+    error = caught;
+  }
+  if (!isHostFailure(error, "drawer-unusable")) throw new Error(`not refused: ${String(error)}`);
+  expect(error.data.reason).toBe("damaged");
+  expect(readFileSync(error.data.backup ?? "").equals(damaged)).toBe(true);
+});

@@ -1,0 +1,167 @@
+import { beforeEach, describe, expect, test } from "vitest";
+import type { DrawerStore } from "../../app/store/drawer-store.ts";
+import { EVERY_LINE } from "../../core/contract/drawer-schemas.ts";
+import { capacitor, openScratch, resistor } from "../helpers/drawer.ts";
+
+let drawer: DrawerStore;
+beforeEach(async () => {
+  drawer = await openScratch();
+});
+
+function ids(text: string, withRetired = false): readonly string[] {
+  return drawer.lines({ ...EVERY_LINE, text, withRetired }, { by: "id", descending: false }, 0, 100).lines.map((line) => line.id);
+}
+
+describe("lines", () => {
+  test("a line comes back as it was put", () => {
+    const line = resistor("Größe Ω-4k7 “µ” 電阻", { location: "Kästchen 3", notes: "two\nlines", prices: [{ from: 1, unitCost: 0.1 }, { from: 100, unitCost: 0.06 }], currency: "EUR", temperatureCoefficient: -50e-6 });
+    const added = drawer.addLine(line, 7);
+    expect(added.line).toEqual({ ...line, quantity: 7, reserved: 0, retired: false });
+    expect(drawer.find(line.id)).toEqual(added.line);
+    expect(ids("größe")).toEqual([line.id]);
+    expect(ids("kastchen 電阻")).toEqual([line.id]);
+  });
+
+  test.each([
+    [{ value: null }, "R-1: a resistor needs a value"],
+    [{ value: -1 }, "R-1: its value must be a number above 0, got -1"],
+    [{ type: "TL072" }, "R-1: only op amps have a type"],
+    [{ kind: "op-amp" as const }, "R-1: an op amp has a type, and no value"],
+    [{ tolerance: 1.5 }, "R-1: its tolerance must be from 0 to 100 %, got 150 %"],
+    [{ rating: 0 }, "R-1: its rating must be a number above 0"],
+    [{ currency: "euro" }, "R-1: its currency must be a code of three letters"],
+    [{ prices: [{ from: 10, unitCost: 1 }] }, "R-1: its first price must hold from 1 piece"],
+    [{ prices: [{ from: 1, unitCost: 1 }, { from: 1, unitCost: 2 }] }, "R-1: its prices must go up"],
+    [{ id: "a\nb" }, "must not begin or end with a space, and be on one line"],
+    [{ id: "  " }, "it needs an id"],
+  ])("%j is refused, with the line's name", (own, complaint) => {
+    expect(() => drawer.addLine(resistor("R-1", own), 0)).toThrow(complaint);
+    expect(drawer.info().lines).toBe(0);
+    expect(drawer.steps(5)).toEqual([]);
+  });
+
+  test("a second line of the same name is refused", () => {
+    drawer.addLine(resistor("R-1"), 1);
+    expect(() => drawer.addLine(capacitor("R-1"), 1)).toThrow("R-1: there is a line of that name already.");
+  });
+
+  test("an edit of many lines is one step with a trace in each, all or none", () => {
+    for (const id of ["R-1", "R-2", "R-3"]) drawer.addLine(resistor(id, { location: "old" }), 1);
+    expect(drawer.editLines(["R-1", "R-2"], { location: "box 4", tolerance: 0.01 })).toMatchObject({ changed: 2 });
+    expect(drawer.line("R-2").history).toMatchObject([
+      { label: "Edit 2 lines", before: { location: "old" }, after: { location: "box 4" } },
+      { label: "Add R-2", before: null },
+    ]);
+    expect(drawer.editLines(["R-1"], { location: "box 4" })).toEqual({ step: null, changed: 0 });
+    expect(() => drawer.editLines(["R-1", "R-9"], { location: "nowhere" })).toThrow("There is no line “R-9”");
+    expect(() => drawer.editLines(["R-3", "R-1"], { value: null })).toThrow("R-3: a resistor needs a value");
+    expect(drawer.find("R-1")?.location).toBe("box 4");
+    expect(ids("box")).toEqual(["R-1", "R-2"]);
+    expect(ids("old")).toEqual(["R-3"]);
+  });
+
+  test("a retired line is not offered, and comes back", () => {
+    drawer.addLine(resistor("R-1"), 4);
+    drawer.retireLines(["R-1"], true);
+    expect(ids("")).toEqual([]);
+    expect(ids("", true)).toEqual(["R-1"]);
+    expect(drawer.info()).toMatchObject({ lines: 0, retired: 1 });
+    expect(drawer.candidates({ kind: "resistor", value: 4700, within: 0.1, type: null, technology: [], ratingFrom: null, toleranceTo: null, availableFrom: 0, limit: 10 })).toEqual([]);
+    drawer.retireLines(["R-1"], false);
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 4, retired: false });
+  });
+});
+
+describe("undo", () => {
+  test("puts back what an edit took, unless it has been changed since", async () => {
+    drawer.addLine(resistor("R-1", { location: "box 1", notes: "first" }), 1);
+    const { step } = drawer.editLines(["R-1"], { location: "box 2", prices: [{ from: 1, unitCost: 0.2 }] });
+    const undone = await drawer.undo(step ?? 0);
+    expect(undone.label).toBe("Undo: Edit R-1");
+    expect(drawer.find("R-1")).toMatchObject({ location: "box 1", prices: [] });
+    expect(ids("box 2")).toEqual([]);
+    const redone = await drawer.undo(undone.step);
+    expect(redone.label).toBe("Redo: Edit R-1");
+    expect(drawer.find("R-1")).toMatchObject({ location: "box 2", prices: [{ from: 1, unitCost: 0.2 }] });
+    await expect(drawer.undo(step ?? 0)).rejects.toThrow("it has been undone already");
+    drawer.editLines(["R-1"], { location: "box 3" });
+    await expect(drawer.undo(redone.step)).rejects.toThrow("R-1: its location has been changed since.");
+    expect(drawer.find("R-1")?.location).toBe("box 3");
+    await expect(drawer.undo(999)).rejects.toMatchObject({ code: "drawer-missing" });
+  });
+
+  test("of an added line takes it out of use, with its pieces", async () => {
+    const { step } = drawer.addLine(resistor("R-1"), 12);
+    const undone = await drawer.undo(step);
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 0, retired: true });
+    await drawer.undo(undone.step);
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 12, retired: false });
+  });
+
+  test("of a purchase is refused where the pieces have gone", async () => {
+    drawer.addLine(resistor("R-1"), 0);
+    const { step } = drawer.move([{ line: "R-1", kind: "bought", count: 10, reference: "", note: "" }]);
+    drawer.move([{ line: "R-1", kind: "reserved", count: 7, reference: "Channel", note: "" }]);
+    await expect(drawer.undo(step)).rejects.toThrow("R-1: 10 pieces came in, and only 3 of them are free to be taken out again.");
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 10, reserved: 7 });
+  });
+});
+
+describe("pieces", () => {
+  test("are kept with their marks, changed, removed, and brought back", async () => {
+    drawer.addLine(capacitor("C-1"), 3);
+    const { pieces } = drawer.putPieces([
+      { id: null, line: "C-1", mark: "b", value: 1.02e-7, frequency: 1000 },
+      { id: null, line: "C-1", mark: "a", value: 9.9e-8, frequency: null },
+    ]);
+    expect(drawer.pieces("C-1").map((piece) => piece.mark)).toEqual(["a", "b"]);
+    drawer.putPieces([{ ...pieces[0], value: 1.03e-7 }]);
+    const removed = drawer.removePieces([pieces[1].id]);
+    expect(drawer.pieces("C-1")).toEqual([{ id: pieces[0].id, line: "C-1", mark: "b", value: 1.03e-7, frequency: 1000 }]);
+    await drawer.undo(removed.step ?? 0);
+    expect(drawer.pieces("C-1")).toContainEqual(pieces[1]);
+    expect(drawer.info().pieces).toBe(2);
+  });
+
+  test("no two of a line have one mark, but any number has none", () => {
+    drawer.addLine(capacitor("C-1"), 3);
+    drawer.putPieces([{ id: null, line: "C-1", mark: "", value: 1e-7, frequency: null }, { id: null, line: "C-1", mark: "", value: 1e-7, frequency: null }, { id: null, line: "C-1", mark: "7", value: 1e-7, frequency: null }]);
+    expect(() => drawer.putPieces([{ id: null, line: "C-1", mark: "7", value: 2e-7, frequency: null }])).toThrow("C-1: there is a piece marked 7 already");
+    expect(() => drawer.putPieces([{ id: null, line: "C-1", mark: "8", value: 0, frequency: -1 }])).toThrow("its value must be a number above 0, got 0\nC-1, piece 8: it must be measured at a frequency above 0");
+    expect(drawer.pieces("C-1")).toHaveLength(3);
+  });
+});
+
+describe("builds", () => {
+  beforeEach(() => {
+    drawer.addLine(resistor("R-1"), 20);
+    drawer.addLine(capacitor("C-1"), 6);
+  });
+
+  test("hold what their units take, book what was finished, and let the rest go", () => {
+    const { build } = drawer.reserve("Channel", 3, [{ line: "R-1", count: 4 }, { line: "C-1", count: 1 }, { line: "R-1", count: 1 }]);
+    expect(build).toMatchObject({ reference: "Channel", units: 3, unitsUsed: 0, state: "reserved", bill: [{ line: "R-1", count: 5, held: 15 }, { line: "C-1", count: 1, held: 3 }] });
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 20, reserved: 15 });
+    expect(drawer.use("Channel", 2).build).toMatchObject({ units: 1, unitsUsed: 2, state: "reserved" });
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 10, reserved: 5 });
+    drawer.release("Channel");
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 10, reserved: 0 });
+    expect(drawer.builds()).toMatchObject([{ reference: "Channel", units: 0, unitsUsed: 2, state: "released" }]);
+    expect(() => drawer.use("Channel", 1)).toThrow("Channel: nothing is held for it any more");
+    expect(() => drawer.release("Nobody")).toThrow("Nothing is recorded for “Nobody”.");
+  });
+
+  test("reserving again is changing one's mind: what was held counts as free", () => {
+    drawer.reserve("Channel", 3, [{ line: "R-1", count: 5 }]);
+    expect(drawer.reserve("Channel", 4, [{ line: "R-1", count: 5 }]).build).toMatchObject({ units: 4, bill: [{ held: 20 }] });
+    expect(() => drawer.reserve("Pedal", 1, [{ line: "R-1", count: 1 }])).toThrow("R-1: 1 wanted, but none of 20 are free; held by Channel (20).");
+    expect(() => drawer.reserve("Channel", 5, [{ line: "R-1", count: 5 }])).toThrow("R-1: 25 wanted, but only 20 of 20 are free.");
+    expect(drawer.find("R-1")?.reserved).toBe(20);
+    expect(() => drawer.use("Channel", 5)).toThrow("Channel: pieces are held for 4 units, so 5 cannot be booked.");
+  });
+
+  test("nothing is held of a retired line", () => {
+    drawer.retireLines(["C-1"], true);
+    expect(() => drawer.reserve("Channel", 1, [{ line: "C-1", count: 1 }])).toThrow("C-1: it is retired");
+  });
+});
