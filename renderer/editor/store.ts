@@ -59,8 +59,8 @@ export interface Editor {
   select(ids: readonly string[], mode?: "replace" | "toggle" | "add"): void;
 }
 
-/** The whole frequency range that is computed and shown, Hz. */
-export const FULL_RANGE: Range = { from: 10, to: 40e3 };
+/** The range that a board opens with, computed and shown, Hz: octaves wide enough for bands to stand under their frequencies. */
+export const FULL_RANGE: Range = { from: 20, to: 20e3 };
 
 /** Builds the document store around a first document. */
 export function createEditor(project: Project): Editor {

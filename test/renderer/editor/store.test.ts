@@ -6,7 +6,7 @@ import { newProject } from "../../../core/model/new-project.ts";
 import type { Project } from "../../../core/model/project.ts";
 import { resolveBoard } from "../../../core/net/board.ts";
 import { compileBoard } from "../../../core/net/star.ts";
-import { createEditor, type Editor } from "../../../renderer/editor/store.ts";
+import { createEditor, FULL_RANGE, type Editor } from "../../../renderer/editor/store.ts";
 
 let editor: Editor;
 const state = () => editor.store.getState();
@@ -100,7 +100,7 @@ describe("results", () => {
     editor.begin("slide");
     editor.preview((base) => setPosition(base, "b1k", 0.8));
     const { total, liveGain, figures } = state().analysis.results!;
-    const fresh = respond(compileBoard(resolveBoard(now())), logFrequencies(10, 40e3, 481));
+    const fresh = respond(compileBoard(resolveBoard(now())), logFrequencies(FULL_RANGE.from, FULL_RANGE.to, 481));
     for (let i = 0; i < 481; i++) expect(total.gain[i]).toBeCloseTo(fresh.gain[i]!, 9);
     const centre = figures.get("b1k")!.boost.frequency!;
     expect(liveGain.get("b1k")).toBeCloseTo(respond(compileBoard(resolveBoard(now())), new Float64Array([centre])).gain[0]!, 9);
