@@ -1,5 +1,6 @@
 import { useEffect, useState } from "react";
 import { App } from "./App.tsx";
+import { createDrawer } from "./drawer/drawer-store.ts";
 import type { ActionContext } from "./editor/actions/action.ts";
 import { createFiles } from "./editor/files.ts";
 import type { Editor } from "./editor/store.ts";
@@ -39,6 +40,7 @@ async function start(editor: Editor, ui: Ui): Promise<Shell> {
     editor,
     ui,
     files,
+    drawer: createDrawer(host, ui),
     sheet: () => sheetRef.current,
     clipboard: { bands: [] },
     isMac: capabilities.platform === "darwin",

@@ -1,10 +1,11 @@
 import type { ComponentType } from "react";
+import { DrawerView } from "./drawer/DrawerView.tsx";
 import { useUiState } from "./editor/hooks.ts";
 import { EquationsArea } from "./equations/EquationsArea.tsx";
 import { SheetArea } from "./panels/SheetArea.tsx";
 import { tabId, viewElementId, VIEWS, type ViewId } from "./views.ts";
 
-const COMPONENTS: Readonly<Record<ViewId, ComponentType>> = { board: SheetArea, equations: EquationsArea };
+const COMPONENTS: Readonly<Record<ViewId, ComponentType>> = { board: SheetArea, equations: EquationsArea, drawer: DrawerView };
 
 /** What the chosen tab shows. The board stays mounted behind the others, so that it keeps its zoom and place. */
 export function ViewArea() {

@@ -11,6 +11,7 @@ interface ViewRow {
 export const VIEWS = [
   { id: "board", label: "Board", keywords: "sheet response drawing sliders view tab", chord: "Alt+Shift+B" },
   { id: "equations", label: "Equations", keywords: "laws formulas poles zeros loops margins account loss view tab", chord: "Alt+Shift+E" },
+  { id: "drawer", label: "Drawer", keywords: "parts library stock lines resistors capacitors inventory view tab", chord: "Alt+Shift+D" },
 ] as const satisfies readonly ViewRow[];
 
 export type ViewId = (typeof VIEWS)[number]["id"];

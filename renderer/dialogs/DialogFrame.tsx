@@ -7,7 +7,7 @@ interface DialogFrameProps {
   readonly foot?: ReactNode;
   /** Escape, or a click beside it. */
   readonly onDismiss: () => void;
-  readonly size?: "is-wide" | "is-top";
+  readonly size?: "is-wide" | "is-broad" | "is-top";
   /** What has the focus first; the first control where not given. */
   readonly focusRef?: RefObject<HTMLElement | null>;
   readonly isTitleHidden?: boolean;

@@ -1,5 +1,9 @@
 import { useUiState } from "../editor/hooks.ts";
 import type { Shown } from "../editor/ui.ts";
+import { AddLineDialog } from "../drawer/AddLineDialog.tsx";
+import { BuildDialog } from "../drawer/BuildDialog.tsx";
+import { ImportDialog } from "../drawer/ImportDialog.tsx";
+import { MoveDialog } from "../drawer/MoveDialog.tsx";
 import { AboutDialog } from "./AboutDialog.tsx";
 import { CommandsDialog } from "./CommandsDialog.tsx";
 import { KeysDialog } from "./KeysDialog.tsx";
@@ -29,6 +33,14 @@ function OneDialog({ shown }: { readonly shown: Shown }) {
       return <FaultsDialog ask={shown.ask} close={shown.close} />;
     case "failure":
       return <FailureDialog ask={shown.ask} close={shown.close} />;
+    case "drawerAdd":
+      return <AddLineDialog ask={shown.ask} close={shown.close} />;
+    case "drawerMove":
+      return <MoveDialog ask={shown.ask} close={shown.close} />;
+    case "drawerImport":
+      return <ImportDialog ask={shown.ask} close={shown.close} />;
+    case "drawerBuild":
+      return <BuildDialog ask={shown.ask} close={shown.close} />;
     case "commands":
       return <CommandsDialog ask={shown.ask} close={shown.close} />;
     case "keys":

@@ -1,5 +1,6 @@
 import { createStore, type StoreApi } from "zustand/vanilla";
 import type { Fault } from "../../core/errors.ts";
+import type { Project } from "../../core/model/project.ts";
 import type { ViewId } from "../views.ts";
 
 export type Theme = "paper" | "night";
@@ -13,6 +14,10 @@ export interface Dialogs {
   readonly changed: { readonly ask: { readonly path: string }; readonly answer: "replace" | "reload" | "saveAs" | "cancel" };
   readonly faults: { readonly ask: { readonly path: string; readonly faults: readonly Fault[] }; readonly answer: "open" | null };
   readonly failure: { readonly ask: { readonly title: string; readonly message: string; readonly advice: string }; readonly answer: null };
+  readonly drawerAdd: { readonly ask: null; readonly answer: null };
+  readonly drawerMove: { readonly ask: { readonly ids: readonly string[] }; readonly answer: null };
+  readonly drawerImport: { readonly ask: null; readonly answer: null };
+  readonly drawerBuild: { readonly ask: null; readonly answer: null };
   readonly commands: { readonly ask: null; readonly answer: null };
   readonly keys: { readonly ask: null; readonly answer: null };
   readonly about: { readonly ask: null; readonly answer: null };
@@ -39,6 +44,16 @@ export interface ContextMenuPlace {
   readonly frequency: number | null;
 }
 
+/** What the board would be with other parts in it: the sheet shows it dotted. */
+export interface GhostSource {
+  /** What it is with, such as `6n2 C0G 1 %`. */
+  readonly label: string;
+  readonly change: (project: Project) => Project;
+}
+
+/** Work on the whole board that takes the panel's place until it is taken or given up. */
+export type Task = "fill" | "match";
+
 /** The pages of the equations: the selected block, the divider of a single supply, or what belongs to the board as a whole. */
 export type EquationsPage = "block" | "reference" | "poles";
 
@@ -48,6 +63,8 @@ export interface UiState {
   readonly equationsPage: EquationsPage;
   /** Where numbers are put into equations, Hz; null for the place that the block itself suggests. */
   readonly equationsAt: number | null;
+  readonly ghost: GhostSource | null;
+  readonly task: Task | null;
   readonly isPanelOpen: boolean;
   readonly isPhaseShown: boolean;
   readonly cursor: Reading | null;
@@ -68,7 +85,7 @@ export interface Ui {
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
   setTheme(theme: Theme): void;
-  patch(change: Partial<Pick<UiState, "view" | "equationsPage" | "equationsAt" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
+  patch(change: Partial<Pick<UiState, "view" | "equationsPage" | "equationsAt" | "ghost" | "task" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -83,6 +100,8 @@ export function createUi(): Ui {
     view: "board",
     equationsPage: "block",
     equationsAt: null,
+    ghost: null,
+    task: null,
     isPanelOpen: window.innerWidth >= 900,
     isPhaseShown: false,
     cursor: null,

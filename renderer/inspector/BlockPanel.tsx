@@ -5,6 +5,7 @@ import { blockName, setLabel, setOpAmp, setPart, setPartDatum, setPartValue, TRA
 import { BUILT_IN_OP_AMPS, IDEAL, opAmpNames } from "../../core/model/op-amps.ts";
 import type { Block, Part, Project } from "../../core/model/project.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
+import { SwapSection } from "../drawer/SwapSection.tsx";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { roleLabel } from "../editor/part-text.ts";
 import { Choice, type Option } from "./Choice.tsx";
@@ -38,6 +39,7 @@ export function BlockPanel({ block }: { readonly block: Block }) {
       <BlockHead id={block.id} kind={block.kind} label={block.label} />
       <PartsSection id={block.id} kind={block.kind} name={blockName(block)} parts={block.parts} track={block.slider?.track} opAmp={block.opAmp} />
       {figures && <FiguresSection figures={figures} />}
+      <SwapSection block={block.id} />
       {block.slider && <SliderSection block={block} slider={block.slider} />}
     </>
   );

@@ -1,10 +1,12 @@
 import { Menu } from "@base-ui/react/menu";
 import { memo, useMemo } from "react";
 import { BAND_KINDS } from "../../core/blocks/index.ts";
+import { duplicateBands } from "../../core/model/edit-bands.ts";
 import { moveBlocks, setPosition } from "../../core/model/edit.ts";
 import { isPossible } from "../editor/actions/action.ts";
 import { ACTIONS, actionById, run } from "../editor/actions/actions.ts";
-import { namesOf } from "../editor/actions/edit-actions.ts";
+import { add, namesOf } from "../editor/actions/edit-actions.ts";
+import { ghostOf } from "../drawer/ghost.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { editPartText } from "../editor/part-text.ts";
 import { Sheet } from "../sheet/Sheet.tsx";
@@ -25,6 +27,10 @@ export function SheetArea() {
   const range = useEditorState((s) => s.range);
   const isPhaseShown = useUiState((s) => s.isPhaseShown);
   const theme = useUiState((s) => s.theme);
+  const source = useUiState((s) => s.ghost);
+  const ghost = useMemo(() => (source ? ghostOf(project, source, selection, range) : null), [project, source, selection, range]);
+  const { results } = analysis;
+  const shown = useMemo(() => (results && ghost ? { ...results, ghost } : results), [results, ghost]);
   const isEmpty = !project.blocks.some((block) => BAND_KINDS.includes(block.kind));
 
   const handlers = useMemo((): Handlers => {
@@ -36,6 +42,10 @@ export function SheetArea() {
       onKnobEnd: () => editor.commit(),
       onKnobCancel: () => editor.cancel(),
       onMove: (moves) => editor.apply(`move ${namesOf(blocks(moves.map((m) => m.id)))}`, moveBlocks(editor.store.getState().project, moves)),
+      onDuplicate: (copies) => {
+        const ids = copies.map((copy) => copy.id);
+        add(context, `duplicate ${namesOf(blocks(ids))}`, duplicateBands(editor.store.getState().project, ids, new Map(copies.map((copy) => [copy.id, copy.at]))));
+      },
       onEditValue: (id, role, text) => editPartText(editor, id, role, text),
       onContextMenu: (at) => {
         if (at.target !== null && !editor.store.getState().selection.includes(at.target)) editor.select([at.target]);
@@ -47,7 +57,7 @@ export function SheetArea() {
 
   return (
     <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
-      <Sheet ref={sheetRef} project={project} board={analysis.board} results={analysis.results} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} {...handlers} />
+      <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} {...handlers} />
       <UnstableBanner />
       {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}

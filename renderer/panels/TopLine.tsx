@@ -6,6 +6,7 @@ import type { Project } from "../../core/model/project.ts";
 import { chordsOf, isPossible, labelOf } from "../editor/actions/action.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
 import { chordText } from "../editor/actions/chords.ts";
+import { useDrawerState } from "../drawer/hooks.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { MenuBar } from "./MenuBar.tsx";
 import { ViewTabs } from "./ViewTabs.tsx";
@@ -88,6 +89,8 @@ function Tool({ id, path, text, isPressed }: ToolProps) {
   const action = actionById(id);
   // Followed so that Undo and Redo know when there is something to undo.
   useEditorState((s) => s.history);
+  useDrawerState((s) => s.steps);
+  useUiState((s) => s.view);
   const chord = chordsOf(action, context)[0];
   const label = labelOf(action, context);
   return (

@@ -1,10 +1,11 @@
 import type { Block } from "../../../core/model/project.ts";
+import type { Drawer } from "../../drawer/drawer-store.ts";
 import type { SheetHandle } from "../../sheet/sheet-props.ts";
 import type { Files } from "../files.ts";
 import type { Editor } from "../store.ts";
 import type { Ui } from "../ui.ts";
 
-export const MENUS = ["File", "Edit", "Bands", "View", "Help"] as const;
+export const MENUS = ["File", "Edit", "Bands", "Drawer", "View", "Help"] as const;
 export type MenuName = (typeof MENUS)[number];
 
 /** What actions work on. */
@@ -12,6 +13,7 @@ export interface ActionContext {
   readonly editor: Editor;
   readonly ui: Ui;
   readonly files: Files;
+  readonly drawer: Drawer;
   /** Null until the sheet is drawn. */
   readonly sheet: () => SheetHandle | null;
   /** Bands that were copied or cut last. */

@@ -1,13 +1,14 @@
 import { chordsOf, isPossible, type Action, type ActionContext } from "./action.ts";
 import { BAND_ACTIONS } from "./band-actions.ts";
 import { isChord, isQuietChord, type KeyPress } from "./chords.ts";
+import { DRAWER_ACTIONS } from "./drawer-actions.ts";
 import { EDIT_ACTIONS } from "./edit-actions.ts";
 import { EQUATION_ACTIONS } from "./equation-actions.ts";
 import { FILE_ACTIONS } from "./file-actions.ts";
 import { HELP_ACTIONS, VIEW_ACTIONS } from "./view-actions.ts";
 
 /** Everything that the screen does, in menu order: the one table behind menus, keys, command list and help. */
-export const ACTIONS: readonly Action[] = [...FILE_ACTIONS, ...EDIT_ACTIONS, ...EQUATION_ACTIONS, ...BAND_ACTIONS, ...VIEW_ACTIONS, ...HELP_ACTIONS];
+export const ACTIONS: readonly Action[] = [...FILE_ACTIONS, ...EDIT_ACTIONS, ...EQUATION_ACTIONS, ...BAND_ACTIONS, ...DRAWER_ACTIONS, ...VIEW_ACTIONS, ...HELP_ACTIONS];
 
 /** The action of an id. */
 export function actionById(id: string): Action {

@@ -22,12 +22,17 @@ export function add(c: ActionContext, label: string, addition: Addition): void {
   c.editor.select(addition.ids);
 }
 
+/** In the drawer Undo is the drawer's, and says so; commands about blocks wait for the board. */
+function isDrawer(c: ActionContext): boolean {
+  return c.ui.store.getState().view === "drawer";
+}
+
 function isBand(block: Block): boolean {
   return BAND_KINDS.includes(block.kind);
 }
 
 function hasBand(c: ActionContext): boolean {
-  return selectedBlocks(c).some(isBand);
+  return !isDrawer(c) && selectedBlocks(c).some(isBand);
 }
 
 function remove(c: ActionContext, verb: string): void {
@@ -40,18 +45,20 @@ function remove(c: ActionContext, verb: string): void {
 export const EDIT_ACTIONS: readonly Action[] = [
   {
     id: "undo", keywords: "back revert step", menu: "Edit", group: 1, chords: ["Mod+Z"], inFields: "untouched",
-    label: (c) => `Undo ${c.editor.store.getState().history.done.at(-1)?.label ?? ""}`.trim(),
-    when: (c) => c.editor.store.getState().history.done.length > 0 || c.editor.store.getState().gesture !== null,
-    perform: (c) => {
+    label: (c) => (isDrawer(c) ? `Undo in the drawer: ${c.drawer.undoLabel() ?? "nothing"}` : `Undo ${c.editor.store.getState().history.done.at(-1)?.label ?? ""}`.trim()),
+    when: (c) => (isDrawer(c) ? c.drawer.undoLabel() !== null : c.editor.store.getState().history.done.length > 0 || c.editor.store.getState().gesture !== null),
+    perform: async (c) => {
+      if (isDrawer(c)) return c.drawer.undo();
       const label = c.editor.undo();
       if (label !== null) c.ui.notify(`Undone: ${label}.`);
     },
   },
   {
     id: "redo", keywords: "again forward step", menu: "Edit", group: 1, chords: ["Mod+Shift+Z", "Mod+Y"], inFields: "untouched",
-    label: (c) => `Redo ${c.editor.store.getState().history.undone.at(-1)?.label ?? ""}`.trim(),
-    when: (c) => c.editor.store.getState().history.undone.length > 0,
-    perform: (c) => {
+    label: (c) => (isDrawer(c) ? `Redo in the drawer: ${c.drawer.redoLabel() ?? "nothing"}` : `Redo ${c.editor.store.getState().history.undone.at(-1)?.label ?? ""}`.trim()),
+    when: (c) => (isDrawer(c) ? c.drawer.redoLabel() !== null : c.editor.store.getState().history.undone.length > 0),
+    perform: async (c) => {
+      if (isDrawer(c)) return c.drawer.redo();
       const label = c.editor.redo();
       if (label !== null) c.ui.notify(`Done again: ${label}.`);
     },
@@ -72,7 +79,7 @@ export const EDIT_ACTIONS: readonly Action[] = [
     },
   },
   {
-    id: "paste", label: "Paste", keywords: "band clipboard insert", menu: "Edit", group: 2, chords: ["Mod+V"], when: (c) => c.clipboard.bands.length > 0,
+    id: "paste", label: "Paste", keywords: "band clipboard insert", menu: "Edit", group: 2, chords: ["Mod+V"], when: (c) => !isDrawer(c) && c.clipboard.bands.length > 0,
     perform: (c) => {
       const { project, selection } = c.editor.store.getState();
       const stage = selection.map((id) => stageOf(project, id)).find((id) => id !== undefined);
@@ -87,11 +94,12 @@ export const EDIT_ACTIONS: readonly Action[] = [
     },
   },
   {
-    id: "delete", label: "Delete", keywords: "remove erase band block", menu: "Edit", group: 2, chords: ["Delete", "Backspace"], when: (c) => selectedBlocks(c).length > 0,
+    id: "delete", label: "Delete", keywords: "remove erase band block", menu: "Edit", group: 2, chords: ["Delete", "Backspace"], when: (c) => !isDrawer(c) && selectedBlocks(c).length > 0,
     perform: (c) => remove(c, "delete"),
   },
   {
     id: "select-all", label: "Select all", keywords: "everything blocks", menu: "Edit", group: 3, chords: ["Mod+A"],
+    when: (c) => !isDrawer(c),
     perform: (c) => c.editor.select(c.editor.store.getState().project.blocks.map((b) => b.id)),
   },
   {

@@ -39,8 +39,8 @@ export const FILE_ACTIONS: readonly Action[] = [
 ];
 
 /** Hands a text to the browser's downloads; works without the machine's side. */
-export function download(name: string, text: string): void {
-  const url = URL.createObjectURL(new Blob([text], { type: "application/json" }));
+export function download(name: string, text: string, type = "application/json"): void {
+  const url = URL.createObjectURL(new Blob([text], { type }));
   const link = document.createElement("a");
   link.href = url;
   link.download = name;

@@ -26,6 +26,7 @@ function context(isMac = false): ActionContext {
   return {
     editor: createEditor(newProject()),
     ui: { store: unused, ask: unused, notify: unused, setTheme: unused, patch: unused } as unknown as ActionContext["ui"],
+    drawer: unused as unknown as ActionContext["drawer"],
     files: { launch: unused, createNew: unused, open: unused, openPath: unused, save: unused, saveAs: unused },
     sheet: () => null,
     clipboard: { bands: [] },

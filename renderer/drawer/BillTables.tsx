@@ -1,0 +1,150 @@
+import type { Bill } from "../../core/drawer/bill.ts";
+import { QUANTITY_OF } from "../../core/drawer/check-line.ts";
+import { RATING_CAUTION } from "../../core/drawer/stress.ts";
+import { formatValue } from "../../core/units.ts";
+import type { Finding } from "./findings.ts";
+import { KIND_NAMES, lineName } from "./line-text.ts";
+import { moneysText, moneyText } from "./swap-text.ts";
+
+/** The bill of a build: shopping list by supplier, what has no line, what is to be weighed, and every line that is taken. */
+export function BillTables({ bill, findings }: { readonly bill: Bill; readonly findings: readonly Finding[] }) {
+  return (
+    <>
+      {bill.shopping.length > 0 && <Shopping bill={bill} />}
+      {bill.unassigned.length > 0 && <Unassigned bill={bill} />}
+      {findings.length > 0 && <Findings findings={findings} />}
+      {bill.rows.length > 0 && <Rows bill={bill} />}
+    </>
+  );
+}
+
+function Shopping({ bill }: { readonly bill: Bill }) {
+  return (
+    <section aria-label="Shopping list">
+      <h3>Shopping list</h3>
+      {bill.shopping.map((group) => (
+        <table key={group.supplier} className="list-table">
+          <caption>
+            {group.supplier === "" ? "No supplier named" : group.supplier}: {moneysText(group.cost)}
+          </caption>
+          <thead>
+            <tr>
+              <th scope="col">line</th>
+              <th scope="col">order code</th>
+              <th scope="col" className="is-number">
+                missing
+              </th>
+              <th scope="col" className="is-number">
+                buy
+              </th>
+              <th scope="col" className="is-number">
+                cost
+              </th>
+            </tr>
+          </thead>
+          <tbody>
+            {group.items.map((item) => (
+              <tr key={item.line.id}>
+                <td>
+                  {item.line.id}
+                  <span className="list-note">{lineName(item.line)}</span>
+                </td>
+                <td>{item.line.orderCode}</td>
+                <td className="is-number">{item.short}</td>
+                <td className="is-number">
+                  {item.buy}
+                  {item.insteadOf !== null && <span className="list-note">cheaper than {item.short}: {moneyText(item.insteadOf)}</span>}
+                </td>
+                <td className="is-number">{moneyText(item.cost)}</td>
+              </tr>
+            ))}
+          </tbody>
+        </table>
+      ))}
+    </section>
+  );
+}
+
+function Unassigned({ bill }: { readonly bill: Bill }) {
+  return (
+    <section aria-label="Without a line">
+      <h3>Without a line of the drawer</h3>
+      <ul className="report-list">
+        {bill.unassigned.map((row) => {
+          const quantity = QUANTITY_OF[row.kind];
+          const what = quantity === null || row.value === null ? row.type : formatValue(row.value, quantity);
+          return (
+            <li key={`${row.kind} ${row.value} ${row.type} ${row.missing}`}>
+              <strong>
+                {row.total} × {what} {KIND_NAMES[row.kind].one}
+              </strong>
+              {row.missing === null ? "" : `, named ${row.missing}, which the drawer does not have`}
+              <span className="list-note">{row.roles.join(", ")}</span>
+            </li>
+          );
+        })}
+      </ul>
+    </section>
+  );
+}
+
+function Findings({ findings }: { readonly findings: readonly Finding[] }) {
+  return (
+    <section aria-label="Ratings and polarity">
+      <h3>Ratings and polarity</h3>
+      <ul className="report-list is-caution">
+        {findings.map(({ role, line, problem }) => (
+          <li key={`${role.name} ${line.id} ${problem.message}`}>
+            {problem.level === "fault" ? "✕" : "⚠"} <strong>{role.label}</strong>, {line.id}: {problem.message}
+          </li>
+        ))}
+      </ul>
+      <p className="caution">{RATING_CAUTION}</p>
+    </section>
+  );
+}
+
+function Rows({ bill }: { readonly bill: Bill }) {
+  return (
+    <section aria-label="Parts taken">
+      <h3>Parts taken</h3>
+      <table className="list-table">
+        <thead>
+          <tr>
+            <th scope="col">line</th>
+            <th scope="col" className="is-number">
+              a unit
+            </th>
+            <th scope="col" className="is-number">
+              all
+            </th>
+            <th scope="col" className="is-number">
+              free now
+            </th>
+            <th scope="col" className="is-number">
+              after
+            </th>
+            <th scope="col" className="is-number">
+              cost
+            </th>
+          </tr>
+        </thead>
+        <tbody>
+          {bill.rows.map((row) => (
+            <tr key={row.line.id} className={row.short > 0 ? "is-short" : undefined}>
+              <td title={row.roles.join(", ")}>
+                {row.line.id}
+                <span className="list-note">{lineName(row.line)}</span>
+              </td>
+              <td className="is-number">{row.perUnit}</td>
+              <td className="is-number">{row.total}</td>
+              <td className="is-number">{row.available}</td>
+              <td className="is-number">{row.short > 0 ? `${row.short} missing` : row.left}</td>
+              <td className="is-number">{moneyText(row.cost)}</td>
+            </tr>
+          ))}
+        </tbody>
+      </table>
+    </section>
+  );
+}
