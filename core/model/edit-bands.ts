@@ -7,7 +7,7 @@ import { formatValue } from "../units.ts";
 import { blockName, changeBlocks, isStage } from "./edit.ts";
 import { newBlock } from "./new-project.ts";
 import { patchBetween, type Patch } from "./patch.ts";
-import { partsOf, type Block, type Part, type Project, type Wire } from "./project.ts";
+import { partsOf, type Block, type Part, type Project, type SheetPoint, type Wire } from "./project.ts";
 
 /** An edit that brings blocks in, and their ids, to be selected. */
 export type Addition = { readonly ok: true; readonly patch: Patch; readonly ids: readonly string[] } | { readonly ok: false; readonly message: string };
@@ -171,7 +171,7 @@ function bandAmp(project: Project, id: string): string | undefined {
 }
 
 /** Copies of bands, each on the bus of its original (or, for bands from elsewhere, on the given stage's). */
-export function copyBands(project: Project, bands: readonly Block[], stage: string | undefined): Addition {
+export function copyBands(project: Project, bands: readonly Block[], stage: string | undefined, places?: ReadonlyMap<string, SheetPoint>): Addition {
   const able = bands.filter((b) => BAND_KINDS.includes(b.kind));
   if (able.length === 0) return { ok: false, message: "Only bands can be copied: the other blocks each have their one place in the chain." };
   const taken = new Set<string>();
@@ -184,14 +184,15 @@ export function copyBands(project: Project, bands: readonly Block[], stage: stri
     taken.add(id);
     // Without a place of its own the copy goes under its frequency, beside the original.
     const { at: _at, ...rest } = band;
-    blocks.push({ ...rest, id, label: blockName(band) });
+    const at = places?.get(band.id);
+    blocks.push({ ...rest, id, label: blockName(band), ...(at ? { at } : {}) });
     wires.push({ from: `${bus}.bus`, to: `${id}.bus` });
   }
   return { ok: true, ids: blocks.map((b) => b.id), patch: patchBetween(project, withBlocks(project, blocks, wires)) };
 }
 
-/** Copies of bands within their project. */
-export function duplicateBands(project: Project, ids: readonly string[]): Addition {
-  return copyBands(project, project.blocks.filter((b) => ids.includes(b.id)), undefined);
+/** Copies of bands within their project; `places`, by the original's id, for copies that a hand put somewhere. */
+export function duplicateBands(project: Project, ids: readonly string[], places?: ReadonlyMap<string, SheetPoint>): Addition {
+  return copyBands(project, project.blocks.filter((b) => ids.includes(b.id)), undefined, places);
 }
 

@@ -112,7 +112,7 @@ export function moveBlocks(project: Project, moves: readonly { readonly id: stri
   const places = new Map(moves.map((move) => [move.id, move.at]));
   return changeBlocks(project, places.keys(), (block) => {
     const at = places.get(block.id)!;
-    return block.at?.x === at.x && block.at.y === at.y ? block : { ...block, at };
+    return block.at?.x === at.x && block.at.y === at.y && block.at.byHand === at.byHand ? block : { ...block, at };
   });
 }
 

@@ -96,7 +96,7 @@ function blockSchema(kind: BlockKind): v.GenericSchema {
     id: name,
     kind: v.literal(kind),
     label: v.optional(text),
-    at: v.optional(object({ x: finite, y: finite })),
+    at: v.optional(object({ x: finite, y: finite, byHand: v.optional(v.boolean(expected("true or false"))) })),
     opAmp: hasOpAmp ? name : v.optional(v.unknown()),
     opAmpStock: v.optional(text),
     slider: hasSlider ? sliderSchema : v.optional(v.unknown()),

@@ -48,7 +48,7 @@ function block(value: Json): Json {
   const roles = BLOCKS[value.kind as BlockKind]?.roles ?? [];
   const parts = (p: Json): Json => ordered(everyEntry(p, part), roles.map((r) => r.role));
   return ordered(value, BLOCK_KEYS, {
-    at: (at) => ordered(at, ["x", "y"]),
+    at: (at) => ordered(at, ["x", "y", "byHand"]),
     slider: (slider) => ordered(slider, SLIDER_KEYS, { track: part }),
     parts,
   });
