@@ -1,8 +1,7 @@
 import { stat } from "node:fs/promises";
 import { resolve } from "node:path";
 import type { Command } from "commander";
-import { HostFailure } from "../../core/contract/failures.ts";
-import type { Money } from "../../core/drawer/candidates.ts";
+import type { Candidate, Money } from "../../core/drawer/candidates.ts";
 import type { StockedLine } from "../../core/drawer/stock.ts";
 import { formatValue, parseValue } from "../../core/units.ts";
 import { restoreProject } from "../../core/model/restore.ts";
@@ -11,8 +10,9 @@ import type { Project } from "../../core/model/project.ts";
 import { ownDrawerPath } from "../services/drawer-path.ts";
 import { writeFailure } from "../services/system-error.ts";
 import { writeWhole } from "../services/write-whole.ts";
-import { openDrawer, type DrawerStore } from "../store/drawer-store.ts";
+import type { DrawerStore } from "../store/drawer-store.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
+import { withDrawer as withOpenDrawer } from "./stock-drawer.ts";
 
 /** What the commands that choose parts have in common: which drawer, and JSON. */
 export interface ChooseOpts {
@@ -31,17 +31,8 @@ export function withDrawerOptions(command: Command): Command {
  */
 export async function withDrawer<T>(opts: ChooseOpts, work: (store: DrawerStore) => T | Promise<T>): Promise<T> {
   const path = opts.drawer === undefined ? ownDrawerPath() : resolve(opts.drawer);
-  if ((await stat(path).catch(() => null)) === null) throw new CommandFailure(`there is no drawer at ${path}${opts.drawer === undefined ? ": put parts into yours first, or name another with --drawer" : ""}`);
-  let store: DrawerStore | undefined;
-  try {
-    store = await openDrawer({ path, now: () => new Date() });
-    return await work(store);
-  } catch (error) {
-    if (error instanceof HostFailure) throw new CommandFailure(error.message, EXIT.failed);
-    throw error;
-  } finally {
-    store?.close();
-  }
+  if ((await stat(path).catch(() => null)) === null) throw new CommandFailure(`there is no drawer at ${path}: “bandwright stock import” makes one${opts.drawer === undefined ? ", or name another with --drawer" : ""}`);
+  return await withOpenDrawer(opts, work);
 }
 
 /** Writes a project whole or not at all. @throws CommandFailure (exit 1) where the system would not */
@@ -90,6 +81,11 @@ export function moneyText(money: Money | null): string {
 /** Sums in several currencies, side by side. */
 export function sumText(sums: readonly Money[]): string {
   return sums.length === 0 ? "no prices known" : sums.map((m) => `${m.amount.toFixed(2)} ${m.currency}`).join(" and ");
+}
+
+/** The lines of a candidate: `A + B` in series, `A ‖ B` in parallel. */
+export function linesText(candidate: Pick<Candidate, "lines" | "joined">): string {
+  return candidate.lines.map((l) => l.id).join(candidate.joined === "series" ? " + " : " ‖ ");
 }
 
 /** A part's value in the unit of its kind; op amps by type. */

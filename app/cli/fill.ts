@@ -2,7 +2,7 @@ import type { Command } from "commander";
 import { fillBoard, type FillResult } from "../../core/drawer/fill.ts";
 import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { percentText, readCount, readFraction, readMoney, stockText, sumText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
+import { linesText, percentText, readCount, readFraction, readMoney, stockText, sumText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 
 interface FillCommandOpts extends SliderOpts, ChooseOpts {
@@ -25,7 +25,7 @@ export function fillCommand(): Command {
   ).action(async (file: string, opts: FillCommandOpts) => {
     const units = readCount(opts.units, "--units");
     const window = readFraction(opts.window, "--window");
-    const { board, positions } = await loadBoard(file, opts);
+    const { board, run: { positions } } = await loadBoard(file, opts);
     const lines = await withDrawer(opts, (store) => store.allLines());
     const ceiling = opts.ceiling === undefined ? undefined : readMoney(opts.ceiling, "--ceiling", lines);
     const result = fillBoard(board, lines, { positions, units, window, keep: opts.keep === true, ...(ceiling === undefined ? {} : { ceiling }) });
@@ -40,7 +40,7 @@ export function fillCommand(): Command {
 function fillJson(r: FillResult): unknown {
   return {
     error: r.error, worst: r.worst, isExhaustive: r.isExhaustive, cost: r.cost,
-    placed: r.placed.map((p) => ({ role: p.role.name, line: p.line.id, wanted: p.role.value, value: p.line.value, type: p.line.type, deviation: p.candidate?.deviation ?? 0, problems: p.problems })),
+    placed: r.placed.map((p) => ({ role: p.role.name, lines: p.candidate?.lines.map((l) => l.id) ?? [p.line.id], joined: p.candidate?.joined ?? null, wanted: p.role.value, value: p.candidate?.value ?? p.role.value, type: p.line.type, deviation: p.candidate?.deviation ?? 0, problems: p.problems })),
     unplaced: r.unplaced.map((u) => ({ role: u.role.name, wanted: u.role.value, type: u.role.type, reason: u.reason })),
   };
 }
@@ -48,7 +48,7 @@ function fillJson(r: FillResult): unknown {
 function printFill(r: FillResult): void {
   printTable(
     ["role", "wanted", "line", "value", "off"],
-    r.placed.map(({ role, line, candidate }) => [role.name, stockText(role.kind, role.value, role.type), line.id, stockText(line.kind, line.value, line.type), candidate === null ? "–" : percentText(candidate.deviation)]),
+    r.placed.map(({ role, line, candidate }) => [role.name, stockText(role.kind, role.value, role.type), candidate === null ? line.id : linesText(candidate), stockText(line.kind, candidate === null ? role.value : candidate.value, line.type), candidate === null ? "–" : percentText(candidate.deviation)]),
   );
   const notes = r.placed.flatMap((p) => p.problems.map((q) => `${p.role.name}, ${p.line.id}: ${q.message}`));
   if (notes.length > 0) process.stdout.write(`\n${notes.join("\n")}\n${RATING_CAUTION}\n`);

@@ -18,7 +18,7 @@ export async function runCommandLine(args: readonly string[]): Promise<number> {
     .description("Design assistant for analogue graphic equalizers, on the command line.")
     .version(packageJson.version)
     .addHelpText("after", "\nExample:\n  bandwright check channel.bandwright\n\nExit codes: 0 done, 1 failed, 2 bad input.");
-  for (const command of [checkCommand(), respondCommand(), bandsCommand(), polesCommand(), equationsCommand(), stockCommand()]) program.addCommand(command);
+  for (const command of [checkCommand(), respondCommand(), bandsCommand(), polesCommand(), equationsCommand(), stockCommand(), swapCommand(), fillCommand(), matchCommand(), buildCommand()]) program.addCommand(command);
   for (const command of withSubcommands(program)) command.exitOverride().showHelpAfterError("(--help says what is understood)");
   try {
     await program.parseAsync(args, { from: "user" });

@@ -5,7 +5,7 @@ import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import { formatDb } from "../../core/units.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { moneyText, percentText, readCount, readFraction, stockText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
+import { linesText, moneyText, percentText, readCount, readFraction, stockText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
 import { CommandFailure } from "./failure.ts";
 
 interface SwapCommandOpts extends SliderOpts, ChooseOpts {
@@ -35,7 +35,7 @@ export function swapCommand(): Command {
     const most = readCount(opts.most, "--most", 10_000);
     const take = opts.take === undefined ? undefined : readCount(opts.take, "--take");
     if ((take === undefined) !== (opts.output === undefined)) throw new CommandFailure("--take and -o go together: which number of the list, and where to write the board");
-    const { board, positions } = await loadBoard(file, opts);
+    const { board, run: { positions } } = await loadBoard(file, opts);
     const role = findRole(board, opts.role);
     if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
     const lines = await withDrawer(opts, (store) => store.allLines());
@@ -75,7 +75,7 @@ function printSwap({ candidates, stress }: Swap, role: BoardRole): void {
   printTable(
     ["line", "no.", "value", "off", "tolerance", "peak", "centre", "Q", "as set", "full boost", "cost", "left"],
     candidates.map((c, i) => [
-      `${c.lines.map((l) => l.id).join(c.joined === "series" ? " + " : " ‖ ")}${c.isInPlace ? " (in place)" : ""}`, String(i + 1), stockText(role.kind, c.value, c.lines[0].type), c.value === null ? "–" : percentText(c.deviation), c.tolerance === null ? "–" : `${Number((c.tolerance * 100).toPrecision(3))} %`,
+      `${linesText(c)}${c.isInPlace ? " (in place)" : ""}`, String(i + 1), stockText(role.kind, c.value, c.lines[0].type), c.value === null ? "–" : percentText(c.deviation), c.tolerance === null ? "–" : `${Number((c.tolerance * 100).toPrecision(3))} %`,
       formatDb(c.change.peak, 2), percentText(c.change.centre), percentText(c.change.q), `${c.asItStands.toFixed(2)} dB`, `${c.atFullBoost.toFixed(2)} dB`, moneyText(c.cost), String(c.left),
     ]),
   );

@@ -1,6 +1,6 @@
 import { findOpAmp } from "../model/op-amps.ts";
 import type { Project } from "../model/project.ts";
-import { bestPairs, isSum, pairTolerance, type Joined, type Pair, type PairItem } from "./pairs.ts";
+import { bestPairs, isSum, lesserShare, pairTolerance, type Joined, type Pair, type PairItem } from "./pairs.ts";
 import { amplifiersIn, partFromStock, type BoardRole, type Filling } from "./roles.ts";
 import { polarityProblems, powerProblems, ratingProblems, type BoardStress, type Problem } from "./stress.ts";
 import { availableOf, isPolarised, unitCost, type StockedLine } from "./stock.ts";
@@ -45,6 +45,9 @@ export interface CandidateOpts {
   /** What the part has to bear; without it, ratings are not checked. */
   readonly stress?: BoardStress | undefined;
 }
+
+/** A half that makes less of the value than this is not worth soldering in. */
+const LEAST_SHARE = 0.01;
 
 /** Tolerates rounding of values such as 4.7e-9 read from text. */
 const SAME_VALUE = 1e-9;
@@ -100,10 +103,14 @@ function singleCandidates(role: BoardRole, lines: readonly StockedLine[], opts: 
 function pairCandidates(role: BoardRole, kind: "resistor" | "capacitor", lines: readonly StockedLine[], most: number, units: number, opts: CandidateOpts): Candidate[] {
   const { window = 0.2 } = opts;
   const wanted = role.value!;
-  const items = lines.flatMap((line) => (line.kind === kind && line.value !== null && line.value > 0 ? [{ line, value: line.value, available: availableOf(line) }] : []));
+  const items = lines.flatMap((line) => {
+    // What is barred alone is barred as a half.
+    if (line.kind !== kind || line.value === null || !(line.value > 0) || lineProblems(role, line, opts.stress).some((p) => p.level === "fault")) return [];
+    return [{ line, value: line.value, available: availableOf(line) }];
+  });
   return (["series", "parallel"] as const).flatMap((joined) => {
     const sums = isSum(kind, joined);
-    return bestPairs(wanted, items, sums, most, units).flatMap((pair): Candidate[] => {
+    return bestPairs(wanted, items, sums, most, units, (a, b) => lesserShare(a.value, b.value, sums) >= LEAST_SHARE).flatMap((pair): Candidate[] => {
       const deviation = pair.value / wanted - 1;
       return Math.abs(deviation) > window + SAME_VALUE ? [] : [pairCandidate(role, pair, joined, sums, deviation, units, opts.stress)];
     });

@@ -31,8 +31,11 @@ const MOST_SLOW_TRIALS = 500;
 
 /** dB²: leaving a role empty is worse than any response. */
 const EMPTY = 1e6;
+/** dB² per ln(value)²: keeps parts that hardly move the response near what was asked for. 10 % off weighs as much as 0.03 dB. */
+export const NEARNESS = 0.1;
 /** dB²: decides between parts that do the same to the response. Below what anyone could measure. */
 const WIDER_TOLERANCE = 1e-7;
+const CLASS_TWO = 1e-7;
 const PER_PLACE = 1e-10;
 
 /** Combinations of a block that are worth an exact look, and how far down a role's list they go. */
@@ -41,8 +44,8 @@ const DEPTH = 7;
 const MOST_PASSES = 12;
 
 /**
- * Chooses a candidate for each role so that the error of the response is least, each line serving no more roles than it
- * has pieces for. Few possibilities: all are simulated. Many: the error is taken as a quadratic form in ln(value), from
+ * Chooses a candidate for each role so that the error of the response is least, with NEARNESS·Σ ln(value/wanted)² on top,
+ * each line serving no more roles than it has pieces for. Few possibilities: all are simulated. Many: the error is taken as a quadratic form in ln(value), from
  * one simulation a role; block by block the best combination is picked until none gets better; then exact simulation
  * decides among the nearest combinations of every block, and exchanges between blocks that want the same line are tried.
  */
@@ -74,7 +77,11 @@ export class FillSearch {
     this.#extra = roles.map(({ role, candidates }) => {
       const wanted = role.part!.tolerance ?? 1;
       const order = candidates.map((_, i) => i).toSorted((a, b) => (candidates[a].cost?.amount ?? Infinity) - (candidates[b].cost?.amount ?? Infinity) || a - b);
-      return Float64Array.from(candidates, (c, i) => ((c.tolerance ?? 1) > wanted + 1e-12 ? WIDER_TOLERANCE * (c.tolerance ?? 1) : 0) + PER_PLACE * order.indexOf(i));
+      return Float64Array.from(candidates, (c, i) => {
+        const tolerance = c.tolerance ?? 1;
+        const isClassTwo = c.lines.some((l) => /\b(X[5-8][PRST]|Y5V|Z5U)\b/i.test(l.technology));
+        return NEARNESS * Math.log1p(c.deviation) ** 2 + (tolerance > wanted + 1e-12 ? WIDER_TOLERANCE * tolerance : 0) + (isClassTwo ? CLASS_TWO : 0) + PER_PLACE * order.indexOf(i);
+      });
     });
     this.#choice = roles.map(() => -1);
   }
@@ -96,8 +103,9 @@ export class FillSearch {
 
   #canTake(role: number, candidate: number): boolean {
     if (candidate < 0) return true;
-    const { id } = this.#roles[role].candidates[candidate].lines[0];
-    return (this.#used.get(id) ?? 0) < (this.#capacity.get(id) ?? 0);
+    const { lines } = this.#roles[role].candidates[candidate];
+    const need = lines.length > 1 && lines[0].id === lines[1].id ? 2 : 1;
+    return lines.every(({ id }) => (this.#used.get(id) ?? 0) + need <= (this.#capacity.get(id) ?? 0));
   }
 
   /** Books a role's choice without putting it on the board. */
@@ -105,8 +113,7 @@ export class FillSearch {
     const old = this.#choice[role];
     if (old === candidate) return;
     const count = (index: number, by: number): void => {
-      const { id } = this.#roles[role].candidates[index].lines[0];
-      this.#used.set(id, (this.#used.get(id) ?? 0) + by);
+      for (const { id } of this.#roles[role].candidates[index].lines) this.#used.set(id, (this.#used.get(id) ?? 0) + by);
       this.#spent += by * this.#cost[role][index];
     };
     if (old >= 0) count(old, -1);

@@ -20,6 +20,8 @@ export interface FillOpts {
   readonly ceiling?: Money;
   /** Roles that name a line of the drawer with enough pieces keep it. */
   readonly keep?: boolean;
+  /** False: never two pieces for one value. By default, where no single piece does. */
+  readonly pairs?: boolean;
   /** Only these roles, by name. */
   readonly only?: readonly string[];
   readonly positions?: Readonly<Record<string, number>>;
@@ -59,7 +61,7 @@ export interface FillResult {
 /**
  * Fills a board from the drawer: a line for every role, tracks and op amps too, so that the response departs least from
  * that of the board as it stands. Pieces have to be free for every unit; parts that ratings or polarity bar are not
- * taken; parts with a caution only where nothing else fits. Roles without a line keep their value and are named with
+ * taken; two pieces make a value where no single one does; parts with a caution come last. Roles without a line keep their value and are named with
  * the reason. Same input, same result.
  */
 export function fillBoard(board: Board, lines: readonly StockedLine[], opts: FillOpts = {}): FillResult {
@@ -79,10 +81,14 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
   const keptCost = placed.filter((p) => p.role.kind !== "op-amp").reduce((sum, p) => sum + (unitCost(p.line, units) ?? 0), 0);
 
   const offers = open.map((role): OpenRole => {
-    const all = candidatesFor(board.project, role, lines, { window: opts.window ?? 0.2, units, stress, most: MOST_CANDIDATES });
-    const sound = all.filter((c) => !hasFault(c) && isPriced(c.lines[0]) && (free.get(c.lines[0].id) ?? 0) > 0);
-    const quiet = sound.filter((c) => c.problems.length === 0);
-    return { role, candidates: quiet.length > 0 ? quiet : sound };
+    const soundOf = (pairs: boolean): Candidate[] =>
+      candidatesFor(board.project, role, lines, { window: opts.window ?? 0.2, units, stress, pairs, most: pairs ? MOST_PAIRS : Infinity }).filter((c) => !hasFault(c) && c.lines.every((l) => isPriced(l) && (free.get(l.id) ?? 0) > 0));
+    const single = soundOf(false);
+    const quiet = single.filter((c) => c.problems.length === 0);
+    if (quiet.length > 0) return { role, candidates: quiet.slice(0, MOST_CANDIDATES) };
+    // Two pieces where one that does is not there; a caution where neither is.
+    const pairs = opts.pairs === false ? [] : soundOf(true).filter((c) => c.joined !== null && c.problems.length === 0);
+    return { role, candidates: (pairs.length > 0 ? pairs : single).slice(0, MOST_CANDIDATES) };
   });
   const trial = new TrialBoard(board, values);
   const target = compileBoard(board, values);
@@ -120,6 +126,7 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
 
 /** Nearest first; further ones would hardly be taken. */
 const MOST_CANDIDATES = 16;
+const MOST_PAIRS = 64;
 
 /** Keeps a role's own line where it has one with a piece left, and takes that piece out of what is free. */
 function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: PlacedRole[]): boolean {
@@ -172,7 +179,7 @@ function reasonFor(board: Board, role: BoardRole, lines: readonly StockedLine[],
   const percent = `${Number((window * 100).toPrecision(3))} %`;
   const ofKind = lines.filter((l) => l.kind === role.kind && l.value !== null);
   if (ofKind.length === 0) return `the drawer has no ${role.kind === "potentiometer" ? "potentiometer or slider" : role.kind}`;
-  const within = candidatesFor(board.project, role, lines, { window, units, stress, most: MOST_CANDIDATES, withShort: true });
+  const within = candidatesFor(board.project, role, lines, { window, units, stress, withShort: true });
   if (within.length === 0) {
     const nearest = ofKind.toSorted((a, b) => Math.abs(Math.log(a.value! / role.value!)) - Math.abs(Math.log(b.value! / role.value!)))[0];
     return `no value within ${percent} (the nearest is ${nearest.id}, ${Number(((nearest.value! / role.value! - 1) * 100).toPrecision(3))} % off)`;

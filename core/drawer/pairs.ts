@@ -40,8 +40,9 @@ interface Run {
  * moves up, so one sweep with two fingers finds every item's best partner; on either side of it the errors grow. A heap
  * merges these runs: O(n log n) for the sort and O((n + count)·log n) for the rest, where trying all takes n².
  * @param need pieces of each half: as many as there are units to build
+ * @param isFit which pairs count at all
  */
-export function bestPairs<T extends PairItem>(target: number, items: readonly T[], sums: boolean, count: number, need = 1): Pair<T>[] {
+export function bestPairs<T extends PairItem>(target: number, items: readonly T[], sums: boolean, count: number, need = 1, isFit: (a: T, b: T) => boolean = () => true): Pair<T>[] {
   const order = items.filter((i) => i.available >= need && i.value > 0).toSorted((a, b) => (sums ? a.value - b.value : b.value - a.value));
   const n = order.length;
   const add = order.map((i) => (sums ? i.value : 1 / i.value));
@@ -62,7 +63,7 @@ export function bestPairs<T extends PairItem>(target: number, items: readonly T[
   while (found.length < count && heap.length > 0) {
     const run = heap[0];
     const { item, at } = run;
-    if (item !== at || order[item].available >= 2 * need) found.push({ first: order[item], second: order[at], value: pairValue(order[item].value, order[at].value, sums) });
+    if ((item !== at || order[item].available >= 2 * need) && isFit(order[item], order[at])) found.push({ first: order[item], second: order[at], value: pairValue(order[item].value, order[at].value, sums) });
     run.at += run.step;
     if (run.at >= item && run.at < n) {
       run.error = errorOf(item, run.at);
@@ -103,6 +104,11 @@ function sink(heap: Run[]): void {
     [heap[i], heap[least]] = [heap[least], heap[i]];
     i = least;
   }
+}
+
+/** How much of a pair's value its lesser half makes: 0.5 for two of the same, next to nothing where one alone would do. */
+export function lesserShare(a: number, b: number, sums: boolean): number {
+  return (sums ? Math.min(a, b) : 1 / Math.max(a, b)) / (sums ? a + b : 1 / a + 1 / b);
 }
 
 /** Worst-case tolerance of a pair: each half counts for as much as it moves the whole. */

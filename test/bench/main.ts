@@ -12,6 +12,8 @@ import { describeNetlist, nodalTransfer } from "../../core/net/nodal.ts";
 import { compileBoard, Sweep } from "../../core/net/star.ts";
 import { transferColumns } from "../../core/net/transfer.ts";
 import { gyratorBoard, tenBandTable } from "../helpers/handbook.ts";
+import { benchChoose } from "./choose.ts";
+import { benchDrawer } from "./drawer.ts";
 
 const POINTS = 481;
 const omega = angular(logFrequencies(10, 40_000, POINTS));
@@ -73,9 +75,11 @@ const slider = sliderMs(tenBands);
 const nodal = nodalMs(tenBands);
 const reference = mathjsMs(tenBands);
 const growth = [10, 20, 31, 62].map((bands) => ({ bands, starMs: starMs(resolveBoard(gyratorBoard(bands))) }));
+const choose = benchChoose(median);
+const drawer = await benchDrawer(median);
 
 if (values.json) {
-  process.stdout.write(`${JSON.stringify({ tenBands: { points: POINTS, starMs: star, sliderMs: slider, nodalMs: nodal, mathjsMs: reference.ms }, growth }, null, 2)}\n`);
+  process.stdout.write(`${JSON.stringify({ tenBands: { points: POINTS, starMs: star, sliderMs: slider, nodalMs: nodal, mathjsMs: reference.ms }, growth, choose, drawer }, null, 2)}\n`);
 } else {
   const row = (what: string, ms: number): string => `| ${what} | ${ms < 10 ? ms.toFixed(3) : ms.toFixed(0)} | ${(ms / star).toFixed(ms / star < 10 ? 2 : 0)} |`;
   const lines = [
@@ -93,6 +97,14 @@ if (values.json) {
     "| bands | ms | ms a band |",
     "| ---: | ---: | ---: |",
     ...growth.map(({ bands, starMs: ms }) => `| ${bands} | ${ms.toFixed(3)} | ${(ms / bands).toFixed(4)} |`),
+    "",
+    "| choosing parts | ms |",
+    "| --- | ---: |",
+    ...choose.map(({ what, ms }) => `| ${what} | ${ms.toFixed(1)} |`),
+    "",
+    "| the drawer with 100 000 lines | ms |",
+    "| --- | ---: |",
+    ...drawer.map(({ what, ms }) => `| ${what} | ${ms.toFixed(1)} |`),
   ];
   process.stdout.write(`${lines.join("\n")}\n`);
 }

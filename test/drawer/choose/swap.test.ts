@@ -52,7 +52,7 @@ describe("parts for a role, ranked by what they do to the board", () => {
       expect(c.change.peak).toBeCloseTo(after.peak - before.peak, isShelf ? 1 : 6);
       if (!isShelf) {
         expect(c.change.centre!).toBeCloseTo(after.frequency! / before.frequency! - 1, 6);
-        expect(c.change.q!).toBeCloseTo(after.q! / before.q! - 1, 6);
+        expect(c.change.q!).toBeCloseTo(after.q! / before.q - 1, 6);
       }
       expect(c.asItStands).toBeCloseTo(departure(gainOf(project), gainOf(board.project)), 9);
       expect(c.atFullBoost).toBeCloseTo(departure(gainOf(project, { [band]: 1 }), gainOf(board.project, { [band]: 1 })), 9);

@@ -1,0 +1,162 @@
+/** Choosing parts on the command line, on a drawer with the starter's parts in it. */
+import { copyFileSync, existsSync, mkdtempSync, readdirSync, readFileSync, rmSync } from "node:fs";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
+import { afterAll, beforeAll, describe, expect, test, vi } from "vitest";
+import type { Bill } from "../../core/drawer/bill.ts";
+import { openDrawer } from "../../app/store/drawer-store.ts";
+import { restoreProject } from "../../core/model/restore.ts";
+import { bandwright, type Ended } from "../fixtures/command-line.ts";
+
+vi.setConfig({ testTimeout: 60_000, hookTimeout: 60_000 });
+
+const DEMOS = readdirSync(new URL("../../assets/demo", import.meta.url)).filter((name) => name.endsWith(".bandwright"));
+const VOICE = "assets/demo/saltmarsh-voice-channel.bandwright";
+
+let folder = "";
+let drawer = "";
+/** The voice channel, filled. */
+let filled = "";
+beforeAll(async () => {
+  folder = mkdtempSync(join(tmpdir(), "bandwright-choose-"));
+  drawer = join(folder, "drawer.sqlite");
+  filled = join(folder, "filled.bandwright");
+  done(await bandwright("stock", "import", "assets/drawer/starter.csv", "--drawer", drawer));
+  // The starter drawer holds sliders for one small board; some of these tests build large ones, and several.
+  done(await bandwright("stock", "move", "P-10K-SL45", "bought", "40", "--drawer", drawer));
+  done(await bandwright("fill", VOICE, "-o", filled, "--drawer", drawer));
+});
+afterAll(() => rmSync(folder, { recursive: true, force: true }));
+
+function done(ended: Ended): string {
+  expect(ended.stderr).not.toMatch(/unexpectedly/);
+  expect(ended.code).toBe(0);
+  return ended.stdout;
+}
+
+function refused(ended: Ended, code: number, says: RegExp): void {
+  expect(ended.stderr).toMatch(says);
+  expect(ended.stderr).not.toMatch(/unexpectedly/);
+  expect(ended.stdout).toBe("");
+  expect(ended.code).toBe(code);
+}
+
+const projectAt = (path: string) => restoreProject(readFileSync(path, "utf8")).project;
+const partAt = (path: string, block: string, role: string) => projectAt(path).blocks.find((b) => b.id === block)!.parts![role];
+
+interface FillJson {
+  readonly error: number;
+  readonly placed: readonly { readonly role: string; readonly lines: readonly string[] }[];
+  readonly unplaced: readonly unknown[];
+}
+
+describe.concurrent("fill", () => {
+  test.each(DEMOS)("%s is filled from the starter drawer, close to its design", async (name) => {
+    const out = join(folder, `filled-${name}`);
+    const result = JSON.parse(done(await bandwright("fill", `assets/demo/${name}`, "-o", out, "--drawer", drawer, "--json"))) as FillJson;
+    expect(result.unplaced).toEqual([]);
+    expect(result.error).toBeLessThan(0.25);
+    expect(result.placed.length).toBeGreaterThan(40);
+    for (const block of projectAt(out).blocks) for (const part of Object.values(block.parts ?? {})) expect(part.stock).toBeDefined();
+    // A filled board is complete for its bill.
+    const bill = JSON.parse(done(await bandwright("build", out, "--units", "1", "--drawer", drawer, "--json"))) as Bill;
+    expect(bill.isReady).toBe(true);
+    expect(bill.unassigned).toEqual([]);
+  });
+
+  test("leaves what it cannot place and says so; a ceiling that cannot be kept writes nothing", async () => {
+    const out = join(folder, "ten-of-them.bandwright");
+    const ended = await bandwright("fill", VOICE, "-o", out, "--units", "20", "--drawer", drawer);
+    expect(ended.code).toBe(0);
+    expect(ended.stderr).toMatch(/b125\.slider keeps its value without a line: /);
+    const none = join(folder, "none.bandwright");
+    refused(await bandwright("fill", VOICE, "-o", none, "--ceiling", "2 EUR", "--drawer", drawer), 1, /more than the ceiling\. Nothing was written/);
+    expect(existsSync(none)).toBe(false);
+  });
+});
+
+describe.concurrent("swap", () => {
+  test("ranks, shows the voltages, and writes the choice", async () => {
+    const list = done(await bandwright("swap", VOICE, "--role", "b1k.seriesC", "--drawer", drawer));
+    expect(list).toMatch(/1 kHz: series C \(b1k\.seriesC\), now 180 nF/);
+    expect(list).toMatch(/V steady and up to \d+\.\d V of signal/);
+    const out = join(folder, "swapped.bandwright");
+    const result = JSON.parse(done(await bandwright("swap", VOICE, "--role", "b1k.seriesC", "--pairs", "--take", "2", "-o", out, "--drawer", drawer, "--json"))) as { readonly candidates: readonly { readonly lines: readonly string[]; readonly value: number; readonly worst: number; readonly problems: readonly unknown[] }[] };
+    const [, second] = result.candidates;
+    expect(result.candidates.map((c) => c.worst)).toEqual(result.candidates.map((c) => c.worst).toSorted((a, b) => a - b));
+    expect(partAt(out, "b1k", "seriesC")).toMatchObject({ value: second.value, stock: second.lines[0] });
+  });
+
+  test("may write over the input where -o names it", async () => {
+    const own = join(folder, "own.bandwright");
+    copyFileSync(VOICE, own);
+    done(await bandwright("swap", own, "--role", "b1k.gyratorR", "--take", "1", "-o", own, "--drawer", drawer));
+    expect(partAt(own, "b1k", "gyratorR").stock).toBeDefined();
+  });
+
+  test("refuses what makes no sense", async () => {
+    const swap = (...args: string[]) => bandwright("swap", VOICE, "--drawer", drawer, ...args);
+    refused(await swap("--role", "b1k.nothing"), 2, /has no part “b1k\.nothing”: it has .*b1k\.seriesC/);
+    refused(await swap("--role", "b1k.seriesC", "--take", "1"), 2, /--take and -o go together/);
+    refused(await swap("--role", "b1k.seriesC", "--take", "999", "-o", join(folder, "x.bandwright")), 2, /there is no number 999/);
+    refused(await swap("--role", "b1k.seriesC", "--units", "0"), 2, /--units: must be a whole number/);
+    refused(await bandwright("swap", VOICE, "--role", "b1k.seriesC", "--drawer", join(folder, "nowhere.sqlite")), 2, /there is no drawer at/);
+    refused(await swap("--role", "b1k.seriesC", "--take", "1", "-o", join(folder, "no", "such", "folder.bandwright")), 1, /could not be written/);
+    expect(existsSync(join(folder, "nowhere.sqlite"))).toBe(false);
+  });
+});
+
+describe.concurrent("build", () => {
+  test("holds the pieces, counts held ones for the same build, and books them as used", async () => {
+    const own = join(folder, "build.sqlite");
+    copyFileSync(drawer, own);
+    const build = async (...args: string[]) => JSON.parse(done(await bandwright("build", filled, "--drawer", own, "--json", ...args))) as { readonly rows: readonly { readonly line: string; readonly total: number; readonly available: number; readonly short: number }[] };
+    const before = await build("--units", "2");
+    await build("--units", "2", "--reserve");
+    const again = await build("--units", "2");
+    expect(again.rows.map((r) => r.available)).toEqual(before.rows.map((r) => r.available));
+    await build("--units", "2", "--use");
+    const after = await build("--units", "1");
+    for (const [i, row] of after.rows.entries()) expect(row.available).toBe(before.rows[i].available - before.rows[i].total);
+    refused(await bandwright("build", filled, "--units", "50", "--reserve", "--drawer", own), 1, /too few pieces, so nothing was booked/);
+    refused(await bandwright("build", VOICE, "--units", "1", "--reserve", "--drawer", own), 1, /fill it first/);
+    refused(await bandwright("build", filled, "--units", "1", "--reserve", "--use", "--drawer", own), 2, /one at a time/);
+  });
+
+  test("shops by supplier", async () => {
+    const out = done(await bandwright("build", filled, "--units", "12", "--drawer", drawer));
+    expect(out).toMatch(/To buy from Harbour Components/);
+    expect(out).toMatch(/12 units: \d+\.\d\d EUR, \d+\.\d\d EUR a unit/);
+  });
+});
+
+describe.concurrent("match", () => {
+  test("says where there is nothing measured", async () => {
+    const out = join(folder, "matched.bandwright");
+    refused(await bandwright("match", filled, "-o", out, "--drawer", drawer), 1, /have been measured\. Nothing was written/);
+    expect(existsSync(out)).toBe(false);
+  });
+
+  test("writes down which piece goes where, and how much better than blind picking that is", async () => {
+    const own = join(folder, "measured.sqlite");
+    copyFileSync(drawer, own);
+    const capacitors = projectAt(filled).blocks.flatMap((b) => ["seriesC", "gyratorC"].flatMap((role) => b.parts?.[role] ?? [])).filter((p) => p.second === undefined);
+    const store = await openDrawer({ path: own, now: () => new Date(0) });
+    store.putPieces([...new Set(capacitors.map((p) => p.stock!))].flatMap((line) => [-0.04, -0.02, 0.01, 0.03, 0.05].map((off, i) => ({ id: null, line, mark: `${line} ${i}`, value: capacitors.find((p) => p.stock === line)!.value * (1 + off), frequency: 1000 }))));
+    store.close();
+    const out = join(folder, "dealt.bandwright");
+    const result = JSON.parse(done(await bandwright("match", filled, "-o", out, "--drawer", own, "--json"))) as { readonly error: number; readonly random: { readonly median: number; readonly best: number }; readonly matched: readonly { readonly role: string; readonly piece: number; readonly measured: number }[] };
+    expect(result.matched).toHaveLength(capacitors.length);
+    expect(result.error).toBeLessThan(result.random.best);
+    for (const { role, piece, measured } of result.matched) {
+      const [block, name] = role.split(".");
+      expect(partAt(out, block, name)).toMatchObject({ piece, measured });
+    }
+  });
+});
+
+test.each(["swap", "fill", "match", "build"])("%s explains itself with an example", async (name) => {
+  const out = done(await bandwright(name, "--help"));
+  expect(out).toContain(`bandwright ${name} `);
+  expect(out).toMatch(/--drawer/);
+});
