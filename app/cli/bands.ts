@@ -8,8 +8,8 @@ export function bandsCommand(): Command {
   return boardCommand("bands", "band figures, one row a band: each with its own slider at an end and all others at 0.5, whatever the positions of the file or of --set and --all", "bands channel.bandwright --json")
     .option("--json", "as JSON")
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
-      const { board } = await loadBoard(file, opts);
-      const bands = bandFigures(board);
+      const { board, run } = await loadBoard(file, opts);
+      const bands = bandFigures(board, run);
       if (opts.json) {
         printJson({ bands });
         return;

@@ -5,19 +5,21 @@ import { unstablePoles, unstableText } from "../../core/analysis/poles.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
+import type { ValueOpts } from "../../core/net/values.ts";
 import { parseValue } from "../../core/units.ts";
 import { CommandFailure } from "./failure.ts";
 
 export interface SliderOpts {
   readonly set?: readonly string[];
   readonly all?: string;
+  readonly measured?: true;
 }
 
 export interface LoadedBoard {
   readonly board: Board;
   readonly compiled: CompiledBoard;
-  /** Positions of this run by band id. */
-  readonly positions: Readonly<Record<string, number>>;
+  /** Slider positions and kind of values of this run, as every analysis takes them. */
+  readonly run: Required<Pick<ValueOpts, "positions" | "isMeasured">>;
 }
 
 /** A command on a project file, with the slider options that every analysis takes. */
@@ -27,6 +29,7 @@ export function boardCommand(name: string, about: string, example: string): Comm
     .argument("<FILE>", "project file (.bandwright)")
     .option("--set <ID=POS...>", "slider positions for this run: 0 is full cut, 0.5 centre, 1 full boost (repeatable)")
     .option("--all <POS>", "the position of every other slider for this run")
+    .option("--measured", "take the measured value of a part where it has one")
     .addHelpText("after", `\nExample:\n  bandwright ${example}`);
 }
 
@@ -45,10 +48,10 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
     const { project, warnings } = restoreProject(text);
     const board = resolveBoard(project);
     for (const warning of [...warnings, ...board.warnings]) process.stderr.write(`${file}: warning: ${faultText(warning)}\n`);
-    const positions = sliderPositions(board, opts);
-    const unstable = unstablePoles(board, { positions });
+    const run = { positions: sliderPositions(board, opts), isMeasured: opts.measured === true };
+    const unstable = unstablePoles(board, run);
     if (unstable.length > 0) process.stderr.write(`${file}: ${unstableText(unstable)}\n`);
-    return { board, positions, compiled: compileBoard(board, { positions }) };
+    return { board, run, compiled: compileBoard(board, run) };
   } catch (error) {
     if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));
     throw error;

@@ -19,10 +19,10 @@ export function equationsCommand(): Command {
     .option("--json", "as JSON")
     .action(async (file: string, opts: EquationsOpts) => {
       const at = opts.at === undefined ? undefined : readFrequency(opts.at, "--at");
-      const { board, positions } = await loadBoard(file, opts);
+      const { board, run } = await loadBoard(file, opts);
       const ids = blockIds(board);
       if (opts.block !== undefined && !ids.includes(opts.block)) throw new CommandFailure(`--block: there is no block “${opts.block}” with a part in this board: it has ${ids.join(", ")}`);
-      const report = boardReport(board, { positions, style: opts.tex ? "tex" : "text", frequency: at, blocks: opts.block === undefined ? ids : [opts.block] });
+      const report = boardReport(board, { ...run, style: opts.tex ? "tex" : "text", frequency: at, blocks: opts.block === undefined ? ids : [opts.block] });
       if (opts.json) printJson(report);
       else process.stdout.write(`${report.blocks.map((block) => blockReportText(block, opts.tex ? "tex" : "text")).join("\n\n")}\n`);
     });

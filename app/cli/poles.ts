@@ -8,8 +8,8 @@ export function polesCommand(): Command {
   return boardCommand("poles", "poles and zeros of the whole board, inductors and op amps included", "poles channel.bandwright --set b1k=1 --json")
     .option("--json", "as JSON: poles and zeros as { re, im } in rad/s")
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
-      const { board, positions } = await loadBoard(file, opts);
-      const { poles, zeros, reproducedWithin } = polesAndZeros(board, { positions });
+      const { board, run } = await loadBoard(file, opts);
+      const { poles, zeros, reproducedWithin } = polesAndZeros(board, run);
       if (opts.json) {
         const root = ({ re, im }: Root): Root => ({ re, im });
         printJson({ poles: poles.map(root), zeros: zeros.map(root) });

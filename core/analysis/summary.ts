@@ -14,8 +14,8 @@ export interface Flatness {
 }
 
 /** How flat the board is with every slider centred, against its gain at 1 kHz. 20 Hz to 20 kHz unless said otherwise. */
-export function flatness(board: Board, from = 20, to = 20e3): Flatness {
-  const compiled = compileBoard(board);
+export function flatness(board: Board, opts: ValueOpts = {}, from = 20, to = 20e3): Flatness {
+  const compiled = compileBoard(board, opts);
   const centred = new Float64Array(compiled.bands.length).fill(0.5);
   const reference = new ResponseSweep(compiled, new Float64Array([1000])).run(centred).gain[0];
   const { gain } = new ResponseSweep(compiled, logFrequencies(from, to, 241)).run(centred);
@@ -34,9 +34,9 @@ export function boardSize(board: Board): string {
 
 /** One line that says what a board does: size, boost in circuit, flatness, and whether its loops are at peace. */
 export function boardSummary(board: Board, opts: ValueOpts = {}): string {
-  const peaks = bandFigures(board).map((f) => f.boost.peak);
+  const peaks = bandFigures(board, opts).map((f) => f.boost.peak);
   const boosts = peaks.length === 0 ? "" : `; boost in circuit ${Math.min(...peaks).toFixed(1)} to ${Math.max(...peaks).toFixed(1)} dB`;
-  const flat = flatness(board);
+  const flat = flatness(board, opts);
   return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred; ${stabilityText(board, opts)}`;
 }
 
