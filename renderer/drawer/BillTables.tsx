@@ -4,7 +4,7 @@ import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import { formatValue } from "../../core/units.ts";
 import type { Finding } from "./findings.ts";
 import { KIND_NAMES, lineName } from "./line-text.ts";
-import { moneysText, moneyText } from "./swap-text.ts";
+import { moneysText, sumText } from "./swap-text.ts";
 
 /** The bill of a build: shopping list by supplier, what has no line, what is to be weighed, and every line that is taken. */
 export function BillTables({ bill, findings }: { readonly bill: Bill; readonly findings: readonly Finding[] }) {
@@ -53,9 +53,9 @@ function Shopping({ bill }: { readonly bill: Bill }) {
                 <td className="is-number">{item.short}</td>
                 <td className="is-number">
                   {item.buy}
-                  {item.insteadOf !== null && <span className="list-note">cheaper than {item.short}: {moneyText(item.insteadOf)}</span>}
+                  {item.insteadOf !== null && <span className="list-note">cheaper than {item.short}: {sumText(item.insteadOf)}</span>}
                 </td>
-                <td className="is-number">{moneyText(item.cost)}</td>
+                <td className="is-number">{item.cost === null ? "no price" : sumText(item.cost)}</td>
               </tr>
             ))}
           </tbody>
@@ -140,7 +140,7 @@ function Rows({ bill }: { readonly bill: Bill }) {
               <td className="is-number">{row.total}</td>
               <td className="is-number">{row.available}</td>
               <td className="is-number">{row.short > 0 ? `${row.short} missing` : row.left}</td>
-              <td className="is-number">{moneyText(row.cost)}</td>
+              <td className="is-number">{row.cost === null ? "no price" : sumText(row.cost)}</td>
             </tr>
           ))}
         </tbody>

@@ -38,6 +38,7 @@ export function LinePanel() {
 function ManyLines({ count }: { readonly count: number }) {
   const { context } = useShell();
   const drawer = useDrawer();
+  const kinds = useDrawerState((s) => s.filter.kind);
   return (
     <>
       <header className="panel-head">
@@ -45,7 +46,7 @@ function ManyLines({ count }: { readonly count: number }) {
         <p className="quiet">What is filled in here is set on all of them at once, as one step. Empty fields stay as they are.</p>
       </header>
       <FieldForm
-        kind={null}
+        kind={kinds.length === 1 ? kinds[0] : null}
         action={`Set on ${counted(count, "line")}`}
         onTake={async (fields) => {
           await drawer.editLines(await drawer.chosenIds(), fields);

@@ -115,10 +115,10 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
                 <span className="swap-name">{name}</span>
                 <span className="swap-left">{candidate.isInPlace ? "in place" : candidate.joined === null ? `${candidate.left + 1} left` : joinedText(candidate)}</span>
                 <span className="swap-effect">{effectText(candidate)}</span>
-                <span className="swap-cost">{moneyText(candidate.cost)}</span>
                 <span className="swap-worst">
                   {worstText(candidate.worst)} · {candidate.lines.map((line) => line.id).join(" + ")}
                 </span>
+                <span className="swap-cost">{moneyText(candidate.cost)}</span>
                 {candidate.problems.map((problem) => (
                   <span key={problem.message} className={`swap-problem is-${problem.level}`}>
                     {problem.level === "fault" ? "✕ " : "⚠ "}

@@ -9,9 +9,9 @@ import { counted, KIND_NAMES } from "./line-text.ts";
 import { axisOf, axisText, neighbourhood, placeOn, type Axis, type AxisMark } from "./value-axis.ts";
 
 const KINDS: readonly AxisKind[] = ["resistor", "capacitor", "inductor"];
-const HEIGHT = 92;
-const BASE = 64;
-const SIDE = 18;
+const HEIGHT = 112;
+const BASE = 74;
+const SIDE = 30;
 
 /** What one owns across the decades, and where the gaps are: bars by quantity, gaps of E12 and E24 marked by shape. */
 export function ValueAxis() {
@@ -102,7 +102,7 @@ function AxisDrawing({ axis, kind }: { readonly axis: Axis; readonly kind: AxisK
     setPointed(null);
     event.preventDefault();
   };
-  const height = (pieces: number): number => (pieces === 0 ? 0 : 8 + (36 * Math.log1p(pieces)) / Math.log1p(axis.most));
+  const height = (pieces: number): number => (pieces === 0 ? 0 : 6 + 42 * Math.sqrt(pieces / axis.most));
   return (
     <>
       <div
@@ -126,10 +126,10 @@ function AxisDrawing({ axis, kind }: { readonly axis: Axis; readonly kind: AxisK
         }}
       >
         <svg width={width} height={HEIGHT} aria-hidden="true">
-          {valueFrom !== null && valueTo !== null && <rect x={x(Math.max(valueFrom, axis.from))} y={4} width={Math.max(2, x(Math.min(valueTo, axis.to)) - x(Math.max(valueFrom, axis.from)))} height={BASE} className="axis-range" />}
+          {valueFrom !== null && valueTo !== null && <rect x={x(Math.max(valueFrom, axis.from))} y={22} width={Math.max(2, x(Math.min(valueTo, axis.to)) - x(Math.max(valueFrom, axis.from)))} height={BASE - 20} className="axis-range" />}
           {axis.decades.map((decade) => (
             <g key={decade}>
-              <path d={`M${x(decade)} 6V${BASE + 6}`} className="axis-decade" />
+              <path d={`M${x(decade)} 22V${BASE + 20}`} className="axis-decade" />
               <text x={x(decade)} y={HEIGHT - 6} className="axis-label" textAnchor="middle">
                 {formatValue(decade, quantity)}
               </text>
@@ -139,13 +139,13 @@ function AxisDrawing({ axis, kind }: { readonly axis: Axis; readonly kind: AxisK
           {marks.map((one, index) => (
             <g key={one.value} transform={`translate(${x(one.value)} ${BASE - height(one.quantity)})`} className={index === shown ? "is-pointed" : undefined}>
               {one.quantity > 0 && <path d={`M0 0V${height(one.quantity)}`} className="axis-bar" />}
-              <path d={SHAPES[String(one.series)]} className={one.quantity > 0 ? "axis-sign is-owned" : "axis-sign"} transform={one.quantity > 0 ? undefined : `translate(0 ${one.series === 12 ? 7 : 12}) scale(0.75)`} />
+              <path d={SHAPES[String(one.series)]} className={one.quantity > 0 ? "axis-sign is-owned" : "axis-sign"} transform={one.quantity > 0 ? undefined : `translate(0 ${one.series === 12 ? 8 : 15}) scale(0.8)`} />
             </g>
           ))}
-          {mark && <path d={`M${x(mark.value)} 4V${BASE + 4}`} className="axis-pointer" />}
+          {mark && <path d={`M${x(mark.value)} 18V${BASE + 4}`} className="axis-pointer" />}
         </svg>
         {mark && (
-          <p className="axis-reading" style={{ left: Math.max(SIDE, Math.min(width - 250, x(mark.value) + 8)) }}>
+          <p className="axis-reading" style={{ left: Math.max(SIDE, Math.min(width - 290, x(mark.value) - 8)) }}>
             {markText(mark, quantity)}
           </p>
         )}

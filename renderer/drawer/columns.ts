@@ -80,7 +80,7 @@ export function readCount(text: string): { readonly ok: true; readonly count: nu
 /** The table's columns, in order. */
 export const COLUMNS: readonly Column[] = [
   { key: "id", label: "id", width: 168, isNumber: false, text: (line) => line.id },
-  { key: "kind", label: "kind", width: 104, isNumber: false, text: (line) => KIND_NAMES[line.kind].one },
+  { key: "kind", label: "kind", width: 100, isNumber: false, text: (line) => KIND_NAMES[line.kind].one },
   {
     key: "value", label: "value", width: 84, isNumber: true, text: valueCode,
     edit: {
@@ -93,8 +93,8 @@ export const COLUMNS: readonly Column[] = [
   },
   { key: "tolerance", label: "tol.", width: 60, isNumber: true, text: (line) => toleranceText(line.tolerance), edit: { text: (line) => (line.tolerance === null ? "" : toleranceText(line.tolerance)), read: readToleranceField } },
   { key: "rating", label: "rating", width: 74, isNumber: true, text: ratingText, edit: { text: (line) => (ratingText(line) === NONE ? "" : ratingText(line)), read: (text, line) => readRating(text, line.kind) } },
-  { key: "technology", label: "technology", width: 116, isNumber: false, text: (line) => line.technology, edit: plainText("technology") },
-  { key: "package", label: "package", width: 92, isNumber: false, text: (line) => line.package, edit: plainText("package") },
+  { key: "technology", label: "technology", width: 128, isNumber: false, text: (line) => line.technology, edit: plainText("technology") },
+  { key: "package", label: "package", width: 116, isNumber: false, text: (line) => line.package, edit: plainText("package") },
   {
     key: "quantity", label: "quantity", width: 82, isNumber: true, text: (line) => String(line.quantity),
     edit: {

@@ -90,7 +90,7 @@ export function createDrawer(host: HostClient, ui: Pick<Ui, "notify">): Drawer {
   const { getState: state } = store;
   const windows = new LineWindows(
     (offset, limit) => host.call("drawer.lines", { filter: state().filter, sort: state().sort, offset, limit }),
-    () => store.setState(({ seen, at }) => ({ seen: seen + 1, total: windows.total, at: { ...at, row: Math.min(at.row, (windows.total ?? 1) - 1) } })),
+    () => store.setState(({ seen, at }) => ({ seen: seen + 1, total: windows.total, at: { ...at, row: Math.min(at.row, Math.max(0, (windows.total ?? 1) - 1)) } })),
     fail,
   );
 

@@ -21,15 +21,20 @@ export function moneyText(money: Money | null): string {
   return money === null ? "no price" : costText(money.amount, money.currency);
 }
 
+/** A sum, to the cent where it is more than one unit of money. */
+export function sumText({ amount, currency }: Money): string {
+  return amount >= 1 ? costText(Number(amount.toFixed(2)), currency) : costText(amount, currency);
+}
+
 /** Sums in several currencies stay apart. */
 export function moneysText(sums: readonly Money[]): string {
-  return sums.length === 0 ? "no price" : sums.map(moneyText).join(" + ");
+  return sums.length === 0 ? "no price" : sums.map(sumText).join(" + ");
 }
 
 /** What a candidate does to its band, in the figures that matter: `+0.1 dB · centre +4.1 % · Q −2.0 %`. */
 export function effectText(candidate: Pick<RankedCandidate, "change">): string {
   const { peak, centre, q } = candidate.change;
-  return [`peak ${formatDb(peak, 2) === "0.00 dB" ? "±0 dB" : formatDb(peak, 2)}`, centre === null ? "" : `centre ${percentText(centre)}`, q === null ? "" : `Q ${percentText(q)}`].filter((part) => part !== "").join(" · ");
+  return [`peak ${formatDb(peak, 2) === "0.00 dB" ? "±0 dB" : formatDb(peak, 2)}`, centre === null ? "" : `centre ${percentText(centre)}`, q === null ? "" : `Q ${percentText(q)}`].filter((part) => part !== "").map((part) => part.replaceAll(" ", "\u00a0")).join(" · ");
 }
 
 /** `0.14 dB at most`: the largest change anywhere from 20 Hz to 20 kHz. */

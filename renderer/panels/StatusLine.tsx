@@ -1,6 +1,8 @@
 import { Popover } from "@base-ui/react/popover";
 import { formatDb, formatValue } from "../../core/units.ts";
-import { useEditorState, useUiState } from "../editor/hooks.ts";
+import { chordText } from "../editor/actions/chords.ts";
+import { useDrawer, useDrawerState } from "../drawer/hooks.ts";
+import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { StabilityStatus } from "./Stability.tsx";
 import { FaultList } from "./WiringFaults.tsx";
 
@@ -9,9 +11,10 @@ export function StatusLine() {
   const isSingle = useEditorState((s) => s.project.supply.kind === "single");
   const flatness = useEditorState((s) => s.analysis.flatness);
   const notice = useUiState((s) => s.notice);
+  const isDrawer = useUiState((s) => s.view === "drawer");
   return (
     <footer className="status-line">
-      <CursorReading />
+      {isDrawer ? <DrawerReading /> : <CursorReading />}
       <p key={notice?.key} className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
         {notice?.text}
       </p>
@@ -38,6 +41,15 @@ function CursorReading() {
       {cursor ? `${formatValue(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
     </span>
   );
+}
+
+/** In the drawer Undo is the drawer's own: what it would take back stands here. */
+function DrawerReading() {
+  const { context } = useShell();
+  const drawer = useDrawer();
+  useDrawerState((s) => s.steps);
+  const label = drawer.undoLabel();
+  return <span className="status-reading quiet">{label === null ? "Nothing to undo in the drawer" : `${chordText("Mod+Z", context.isMac)} in the drawer takes back: ${label}`}</span>;
 }
 
 function formatDegrees(degrees: number): string {
