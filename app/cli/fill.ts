@@ -25,7 +25,8 @@ export function fillCommand(): Command {
   ).action(async (file: string, opts: FillCommandOpts) => {
     const units = readCount(opts.units, "--units");
     const window = readFraction(opts.window, "--window");
-    const { board, run: { positions } } = await loadBoard(file, opts);
+    const { board, run: { positions, isMeasured } } = await loadBoard(file, opts);
+    if (isMeasured) throw new CommandFailure("--measured: filling aims at the board's design values, and puts other pieces in");
     const lines = await withDrawer(opts, (store) => store.allLines());
     const ceiling = opts.ceiling === undefined ? undefined : readMoney(opts.ceiling, "--ceiling", lines);
     const result = fillBoard(board, lines, { positions, units, window, keep: opts.keep === true, ...(ceiling === undefined ? {} : { ceiling }) });

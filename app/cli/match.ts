@@ -20,7 +20,8 @@ export function matchCommand(): Command {
   ).action(async (file: string, opts: MatchCommandOpts) => {
     const deals = readCount(opts.deals, "--deals", 10_000);
     const seed = readCount(opts.seed, "--seed", 2 ** 32 - 1);
-    const { board, run: { positions } } = await loadBoard(file, opts);
+    const { board, run: { positions, isMeasured } } = await loadBoard(file, opts);
+    if (isMeasured) throw new CommandFailure("--measured: matching aims at the board's design values, and writes measured ones");
     const pieces = await withDrawer(opts, (store) => store.allPieces());
     const result = matchPieces(board, pieces, { positions, deals, seed });
     if (result.matched.length === 0) throw new CommandFailure("no part of the board names a stock line of which pieces have been measured. Nothing was written", EXIT.failed);

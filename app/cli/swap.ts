@@ -35,11 +35,11 @@ export function swapCommand(): Command {
     const most = readCount(opts.most, "--most", 10_000);
     const take = opts.take === undefined ? undefined : readCount(opts.take, "--take");
     if ((take === undefined) !== (opts.output === undefined)) throw new CommandFailure("--take and -o go together: which number of the list, and where to write the board");
-    const { board, run: { positions } } = await loadBoard(file, opts);
+    const { board, run } = await loadBoard(file, opts);
     const role = findRole(board, opts.role);
     if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
     const lines = await withDrawer(opts, (store) => store.allLines());
-    const swap = rankSwaps(board, role, lines, { positions, units, window, most, pairs: opts.pairs === true });
+    const swap = rankSwaps(board, role, lines, { ...run, units, window, most, pairs: opts.pairs === true });
     const taken = take === undefined ? undefined : swap.candidates[take - 1];
     if (take !== undefined && !taken) throw new CommandFailure(`--take: the list has ${swap.candidates.length} entries, so there is no number ${take}`);
     if (taken && opts.output !== undefined) await writeProject(opts.output, applyPatch(board.project, taken.patch));

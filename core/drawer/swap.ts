@@ -46,6 +46,8 @@ export interface RankedCandidate extends Candidate {
 export interface SwapOpts extends CandidateOpts {
   /** Slider positions for this run by band id. */
   readonly positions?: Readonly<Record<string, number>>;
+  /** Take the other parts' measured values where they have one. */
+  readonly isMeasured?: boolean;
 }
 
 export interface Swap {
@@ -66,10 +68,10 @@ const POINTS = 121;
  * are checked unless `stress` is given (which saves working it out again) or the role bears no voltage to speak of.
  */
 export function rankSwaps(board: Board, role: BoardRole, lines: readonly StockedLine[], opts: SwapOpts = {}): Swap {
-  const values: ValueOpts = opts.positions ? { positions: opts.positions } : {};
+  const values: ValueOpts = { ...(opts.positions ? { positions: opts.positions } : {}), isMeasured: opts.isMeasured ?? false };
   const stress = opts.stress ?? (role.kind === "op-amp" || role.kind === "inductor" ? undefined : boardStress(board, values));
   const trial = new TrialBoard(board, values);
-  const compare = new Comparison(board, role, trial.compiled);
+  const compare = new Comparison(board, role, trial.compiled, values);
   const candidates = candidatesFor(board.project, role, lines, { ...opts, stress }).map((candidate): RankedCandidate => {
     const filling = [{ role, filling: candidate.filling }];
     const patch = fillingPatch(board.project, filling);
@@ -111,6 +113,7 @@ export function ghostGain(board: Board, role: BoardRole, candidate: Pick<Candida
 /** Holds a board against versions of itself. */
 class Comparison {
   readonly before: readonly { readonly band: string; readonly boost: BandPeak }[];
+  readonly #values: ValueOpts;
   /** The bands that the role can move: index and block, with the stage. */
   readonly #bands: readonly { readonly index: number; readonly band: Block; readonly stage: Block; readonly scan: Scan }[];
   readonly #sweep: Sweep;
@@ -118,13 +121,14 @@ class Comparison {
   readonly #settings: readonly Float64Array[];
   readonly #gains: readonly Float64Array[];
 
-  constructor(board: Board, role: BoardRole, compiled: CompiledBoard) {
+  constructor(board: Board, role: BoardRole, compiled: CompiledBoard, values: ValueOpts) {
+    this.#values = values;
     const all = board.chain.flatMap((item) => item.bands.map((band) => ({ band, stage: item.block }))).map((b, index) => ({ ...b, index }));
-    this.#bands = all.filter((b) => role.band === null || b.band.id === role.band).map((b) => ({ ...b, scan: scanNear(compiled, lawResults(b.band, b.stage)) }));
+    this.#bands = all.filter((b) => role.band === null || b.band.id === role.band).map((b) => ({ ...b, scan: scanNear(compiled, lawResults(b.band, b.stage, values)) }));
     this.#sweep = new Sweep(compiled, angular(logFrequencies(20, 20_000, POINTS)));
     this.#settings = [compiled.positions, ...this.#bands.map(({ index }) => compiled.positions.with(index, 1))];
     this.#gains = this.#settings.map((positions) => this.#gain(positions));
-    this.before = this.#bands.map(({ band, stage, index, scan }) => ({ band: band.id, boost: endFigure(scan, index, band, lawResults(band, stage), 1) }));
+    this.before = this.#bands.map(({ band, stage, index, scan }) => ({ band: band.id, boost: endFigure(scan, index, band, lawResults(band, stage, values), 1) }));
   }
 
   #gain(positions: Float64Array): Float64Array {
@@ -144,7 +148,7 @@ class Comparison {
     });
     const changes = this.#bands.map(({ band, stage, index, scan }, place): BandChange => {
       scan.replace(compiled);
-      const [now, then] = [endFigure(scan, index, changed(band), lawResults(changed(band), changed(stage)), 1), this.before[place].boost];
+      const [now, then] = [endFigure(scan, index, changed(band), lawResults(changed(band), changed(stage), this.#values), 1), this.before[place].boost];
       return { band: band.id, peak: now.peak - then.peak, centre: ratio(now.frequency, then.frequency), q: ratio(now.q, then.q) };
     });
     const atFullBoost = Math.max(0, ...departures.slice(1));
