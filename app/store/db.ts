@@ -66,7 +66,8 @@ export class Db {
     try {
       return work();
     } finally {
-      this.rollback();
+      // Not a rollback: what was put into temporary tables is to stay.
+      if (this.raw.inTransaction) this.raw.exec("COMMIT");
     }
   }
 
@@ -176,4 +177,5 @@ function prepareConnection(raw: Database.Database): void {
   raw.pragma("synchronous = FULL");
   raw.pragma("foreign_keys = ON");
   raw.pragma("trusted_schema = OFF");
+  raw.pragma("temp_store = MEMORY");
 }

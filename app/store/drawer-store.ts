@@ -11,6 +11,7 @@ import { eachLine, findLine, insertLine, namesOf, requireLine, requireSoundLine,
 import { allPieces, pieceById, piecesOf, putPiece, removePiece } from "./pieces.ts";
 import { candidatesOf, countOf, facetsOf, valuesOf, windowOf } from "./query.ts";
 import { asStep, latestSteps } from "./steps.ts";
+import { TextHits } from "./text-hits.ts";
 import { undoStep } from "./undo.ts";
 import { wordProblems } from "./words.ts";
 
@@ -50,6 +51,7 @@ export class DrawerStore {
   readonly path: string;
   private readonly db: Db;
   private readonly now: () => Date;
+  private readonly hits: TextHits;
   private readonly totals = new Map<string, number>();
   private totalsStamp = "";
 
@@ -57,6 +59,7 @@ export class DrawerStore {
     this.db = db;
     this.path = db.path;
     this.now = now;
+    this.hits = new TextHits(db);
   }
 
   info(): { path: string; lines: number; retired: number; pieces: number; version: number } {
@@ -72,7 +75,7 @@ export class DrawerStore {
 
   /** A window on the lines that fit, and how many there are. */
   lines(filter: LineFilter, sort: LineSort, offset: number, limit: number): { total: number; lines: DrawerLine[] } {
-    return this.db.snapshot(() => ({ total: this.totalOf(filter), lines: windowOf(this.db, filter, sort, offset, limit) }));
+    return this.db.snapshot(() => ({ total: this.totalOf(filter), lines: windowOf(this.db, this.hits, filter, sort, offset, limit) }));
   }
 
   /** All lines in use, by id. */
@@ -86,11 +89,11 @@ export class DrawerStore {
   }
 
   facets(filter: LineFilter): Facets {
-    return this.db.snapshot(() => facetsOf(this.db, filter));
+    return this.db.snapshot(() => facetsOf(this.db, this.hits, filter));
   }
 
   values(filter: LineFilter): OwnedValue[] {
-    return valuesOf(this.db, filter);
+    return this.db.snapshot(() => valuesOf(this.db, this.hits, filter));
   }
 
   candidates(query: CandidateQuery): DrawerLine[] {
@@ -264,7 +267,7 @@ export class DrawerStore {
     const key = JSON.stringify(filter);
     const known = this.totals.get(key);
     if (known !== undefined) return known;
-    const total = countOf(this.db, filter);
+    const total = countOf(this.db, this.hits, filter);
     this.totals.set(key, total);
     return total;
   }

@@ -7,7 +7,7 @@ import type { Step } from "./steps.ts";
 import { TEXT_FIELDS } from "./words.ts";
 
 /** A line's row with the names of its fields. */
-export const LINE_COLUMNS =
+const LINE_COLUMNS =
   "l.key, l.id, l.retired, l.kind, l.value, l.type, l.tolerance, l.rating, l.technology, l.temperature_coefficient AS temperatureCoefficient, l.package, l.location, l.quantity, l.reserved, l.supplier, l.order_code AS orderCode, l.currency, l.prices, l.notes";
 
 /** Of a field that can be edited, its column. */
@@ -36,14 +36,19 @@ export interface KeyedLine {
 
 const NO_PRICES: DrawerLine["prices"] = [];
 
-export function lineOfRow(row: LineRow): KeyedLine {
+function lineOfRow(row: LineRow): KeyedLine {
   const { key, prices, retired, ...fields } = row;
   return { key, line: { ...fields, prices: prices === "[]" ? NO_PRICES : (JSON.parse(prices) as DrawerLine["prices"]), retired: retired === 1 } };
 }
 
-/** All rows of a query over `lines l` as lines. */
+/** All rows of a query over `lines l` as lines with their keys. */
+export function selectKeyed(db: Db, rest: string, ...values: (string | number | null)[]): KeyedLine[] {
+  return db.all<LineRow>(`SELECT ${LINE_COLUMNS} FROM lines l ${rest}`, ...values).map(lineOfRow);
+}
+
+/** The same, without the keys. */
 export function selectLines(db: Db, rest: string, ...values: (string | number | null)[]): DrawerLine[] {
-  return db.all<LineRow>(`SELECT ${LINE_COLUMNS} FROM lines l ${rest}`, ...values).map((row) => lineOfRow(row).line);
+  return selectKeyed(db, rest, ...values).map(({ line }) => line);
 }
 
 /** Every line by id, retired ones too, without holding them all. */

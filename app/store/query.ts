@@ -1,8 +1,8 @@
 import { FACETS, type CandidateQuery, type DrawerLine, type Facet, type Facets, type LineFilter, type LineSort, type OwnedValue } from "../../core/contract/drawer-schemas.ts";
-import { searchTerms, type SearchTerm, type ValueRange } from "../../core/drawer/search-terms.ts";
 import type { StockKind } from "../../core/drawer/stock.ts";
 import type { Db } from "./db.ts";
-import { selectLines } from "./lines.ts";
+import { selectKeyed, selectLines } from "./lines.ts";
+import type { TextHits } from "./text-hits.ts";
 
 type Value = string | number | null;
 
@@ -34,36 +34,55 @@ const SORT: Record<LineSort["by"], readonly string[]> = {
 };
 const MAY_BE_NULL = new Set(["value", "type", "tolerance", "rating", "temperature_coefficient", "unit_cost"]);
 
-const RANGE_COLUMN: Record<ValueRange["column"], string> = { value: "value", rating: "rating", tolerance: "tolerance", temperatureCoefficient: "temperature_coefficient" };
+/** Fewer hits than this are fetched and sorted; more are met on the way through an index. */
+const FEW = 2000;
+
+/** The lines to look at, and their conditions. */
+interface Source {
+  readonly from: string;
+  readonly where: string;
+  readonly values: readonly Value[];
+}
+
+function sourceOf(hits: TextHits, filter: LineFilter, few = FEW): Source {
+  const { sql, values } = whereOf(filter);
+  const count = hits.fill(filter.text);
+  if (count === null) return { from: "lines l", where: sql, values };
+  if (count <= few) return { from: "temp.hits h CROSS JOIN lines l ON l.key = h.key", where: sql, values };
+  return { from: "lines l", where: `${sql} AND +l.key IN (SELECT key FROM temp.hits)`, values };
+}
 
 /** A window on the lines that fit a filter. */
-export function windowOf(db: Db, filter: LineFilter, sort: LineSort, offset: number, limit: number): DrawerLine[] {
-  const { sql, values } = whereOf(filter);
+export function windowOf(db: Db, hits: TextHits, filter: LineFilter, sort: LineSort, offset: number, limit: number): DrawerLine[] {
+  const { from, where, values } = sourceOf(hits, filter);
   const direction = sort.descending ? "DESC" : "ASC";
   const order = [...SORT[sort.by].map((column) => `l.${column} ${direction}${MAY_BE_NULL.has(column) ? " NULLS LAST" : ""}`), `l.key ${direction}`].join(", ");
   // The keys first, from an index where there is one: rows are fetched for the window alone.
-  const keys = db.all<{ key: number }>(`SELECT l.key FROM lines l WHERE ${sql} ORDER BY ${order} LIMIT ? OFFSET ?`, ...values, limit, offset).map((row) => row.key);
-  const lines = new Map(selectLines(db, "WHERE l.key IN (SELECT value FROM json_each(?))", JSON.stringify(keys)).map((line) => [line.id, line]));
-  const ids = new Map(db.all<{ key: number; id: string }>("SELECT l.key, l.id FROM lines l WHERE l.key IN (SELECT value FROM json_each(?))", JSON.stringify(keys)).map((row) => [row.key, row.id]));
-  return keys.map((key) => lines.get(ids.get(key) ?? "")).filter((line) => line !== undefined);
+  const keys = db.all<{ key: number }>(`SELECT l.key FROM ${from} WHERE ${where} ORDER BY ${order} LIMIT ? OFFSET ?`, ...values, limit, offset).map((row) => row.key);
+  const rows = new Map(selectKeyed(db, "WHERE l.key IN (SELECT value FROM json_each(?))", JSON.stringify(keys)).map(({ key, line }) => [key, line]));
+  return keys.map((key) => rows.get(key)).filter((line) => line !== undefined);
 }
 
 /** How many lines fit a filter. */
-export function countOf(db: Db, filter: LineFilter): number {
-  const { sql, values } = whereOf(filter);
-  return db.value<number>(`SELECT count(*) FROM lines l WHERE ${sql}`, ...values) ?? 0;
+export function countOf(db: Db, hits: TextHits, filter: LineFilter): number {
+  const found = hits.fill(filter.text);
+  if (found !== null && isEveryLine({ ...filter, text: "" })) {
+    const retired = db.value<number>("SELECT count(*) FROM lines l WHERE l.retired = 1 AND +l.key IN (SELECT key FROM temp.hits)") ?? 0;
+    return found - retired;
+  }
+  const { from, where, values } = sourceOf(hits, filter);
+  return db.value<number>(`SELECT count(*) FROM ${from} WHERE ${where}`, ...values) ?? 0;
 }
 
 /** Counts each facet's values among the lines that fit the filter; a facet's own choices do not count against it. */
-export function facetsOf(db: Db, filter: LineFilter): Facets {
+export function facetsOf(db: Db, hits: TextHits, filter: LineFilter): Facets {
   const counts = Object.fromEntries(FACETS.map((facet) => [facet, new Map<Value, number>()])) as Record<Facet, Map<Value, number>>;
-  const isUnfiltered = whereOf({ ...filter, withRetired: false }).values.length === 0 && !filter.onlyAvailable && !filter.withRetired;
-  if (isUnfiltered) {
+  if (isEveryLine(filter)) {
     for (const facet of FACETS) {
       for (const row of db.all<{ value: Value; count: number }>(`SELECT ${facet} AS value, count(*) AS count FROM lines l WHERE l.retired = 0 GROUP BY ${facet}`)) counts[facet].set(row.value, row.count);
     }
   } else {
-    countInOnePass(db, filter, counts);
+    countInOnePass(db, hits, filter, counts);
   }
   const sorted = <T extends Value>(facet: Facet): { value: T; count: number }[] =>
     [...counts[facet]].map(([value, count]) => ({ value: value as T, count })).sort((a, b) => b.count - a.count || String(a.value).localeCompare(String(b.value), "en", { numeric: true }));
@@ -71,11 +90,11 @@ export function facetsOf(db: Db, filter: LineFilter): Facets {
 }
 
 /** One pass over the rows that fit all but the choices, which are looked at here: a row that fails one facet alone counts for that facet. */
-function countInOnePass(db: Db, filter: LineFilter, counts: Record<Facet, Map<Value, number>>): void {
-  const { sql, values } = whereOf({ ...filter, kind: [], technology: [], package: [], supplier: [], location: [], tolerance: [] });
+function countInOnePass(db: Db, hits: TextHits, filter: LineFilter, counts: Record<Facet, Map<Value, number>>): void {
+  const { from, where, values } = sourceOf(hits, { ...filter, kind: [], technology: [], package: [], supplier: [], location: [], tolerance: [] }, Infinity);
   const chosen = FACETS.map((facet) => ({ facet, values: new Set<Value>(filter[facet].map(folded)), counts: counts[facet], names: new Map<Value, Value>() }));
   // Groups first: there are far fewer of them than lines.
-  for (const row of db.all<Record<Facet, Value> & { count: number }>(`SELECT ${FACETS.join(", ")}, count(*) AS count FROM lines l WHERE ${sql} GROUP BY ${FACETS.join(", ")}`, ...values)) {
+  for (const row of db.all<Record<Facet, Value> & { count: number }>(`SELECT ${FACETS.join(", ")}, count(*) AS count FROM ${from} WHERE ${where} GROUP BY ${FACETS.join(", ")}`, ...values)) {
     const failing = chosen.filter((one) => one.values.size > 0 && !one.values.has(folded(row[one.facet])));
     if (failing.length > 1) continue;
     for (const one of failing.length === 1 ? failing : chosen) {
@@ -93,9 +112,9 @@ function folded(value: Value): Value {
 }
 
 /** The values among the lines that fit, ascending, with what there is of each. */
-export function valuesOf(db: Db, filter: LineFilter): OwnedValue[] {
-  const { sql, values } = whereOf(filter);
-  return db.all<OwnedValue>(`SELECT l.value, count(*) AS lines, sum(l.quantity) AS quantity FROM lines l WHERE ${sql} AND l.value IS NOT NULL GROUP BY l.value ORDER BY l.value`, ...values);
+export function valuesOf(db: Db, hits: TextHits, filter: LineFilter): OwnedValue[] {
+  const { from, where, values } = sourceOf(hits, filter);
+  return db.all<OwnedValue>(`SELECT l.value, count(*) AS lines, sum(l.quantity) AS quantity FROM ${from} WHERE ${where} AND l.value IS NOT NULL GROUP BY l.value ORDER BY l.value`, ...values);
 }
 
 /** Lines in use of about a value, the nearest by ratio first. */
@@ -118,6 +137,12 @@ export function candidatesOf(db: Db, query: CandidateQuery): DrawerLine[] {
   return selectLines(db, `WHERE ${where.join(" AND ")} ORDER BY ${order} LIMIT ?`, ...values, ...nearness, query.limit);
 }
 
+/** Whether a filter lets every line through that is not retired. */
+function isEveryLine(filter: LineFilter): boolean {
+  return !filter.withRetired && !filter.onlyAvailable && filter.text.trim() === "" && whereOf(filter).values.length === 0 && !filter.tolerance.includes(null);
+}
+
+/** All conditions but those of the text. */
 function whereOf(filter: LineFilter): Where {
   const where: string[] = [];
   const values: Value[] = [];
@@ -140,26 +165,5 @@ function whereOf(filter: LineFilter): Where {
   if (filter.valueTo !== null) add("l.value <= ?", filter.valueTo);
   if (filter.onlyAvailable) where.push("l.available > 0");
   if (filter.heldBy !== null) add("l.key IN (SELECT line FROM holdings WHERE reference = ?)", filter.heldBy);
-  addTerms(searchTerms(filter.text), add);
   return { sql: where.join(" AND "), values };
-}
-
-/** Words are looked up together where no value is in play; otherwise each term is a set of its own. */
-function addTerms(terms: readonly SearchTerm[], add: (condition: string, ...values: Value[]) => void): void {
-  const plain = terms.filter((term) => term.ranges.length === 0).flatMap((term) => term.words);
-  if (plain.length > 0) add("l.key IN (SELECT rowid FROM line_words WHERE line_words MATCH ?)", matchOf(plain));
-  for (const term of terms.filter((one) => one.ranges.length > 0)) {
-    const sets = term.ranges.map(({ column, kinds }) => `SELECT key FROM lines WHERE retired IN (0, 1) AND kind IN (${kinds.map(() => "?").join(", ")}) AND ${RANGE_COLUMN[column]} BETWEEN ? AND ?`);
-    const values: Value[] = term.ranges.flatMap(({ kinds, from, to }) => [...kinds, from, to]);
-    if (term.words.length > 0) {
-      sets.push("SELECT rowid FROM line_words WHERE line_words MATCH ?");
-      values.push(matchOf(term.words));
-    }
-    add(`l.key IN (${sets.join(" UNION ALL ")})`, ...values);
-  }
-}
-
-/** Beginnings of words, all of them; quoted, so that none is taken for an operator. */
-function matchOf(words: readonly string[]): string {
-  return words.map((word) => `"${word}"*`).join(" AND ");
 }

@@ -79,7 +79,7 @@ function takeBackChange(db: Db, step: Step, change: ChangeRow, problems: string[
     // A line is never deleted: what the step made is taken out of use.
     const [wanted, expected] = before === null ? [{ retired: true }, { retired: line.retired }] : [before, after ?? {}];
     const current = Object.fromEntries(Object.keys(wanted).map((field) => [field, line[field as keyof typeof line]]));
-    const moved = Object.keys(wanted).filter((field) => !isSame(current[field], (expected as Fields)[field]));
+    const moved = Object.keys(wanted).filter((field) => !isSame(current[field], expected[field]));
     if (moved.length > 0) {
       problems.push(`${line.id}: its ${moved.join(", ")} ${moved.length === 1 ? "has" : "have"} been changed since.`);
       return;

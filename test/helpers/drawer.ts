@@ -57,7 +57,7 @@ export async function importText(store: DrawerStore, source: string | Uint8Array
 }
 
 /** Any text that a field may hold: no spaces around it, which an import would take off. */
-const TEXT = fc.string({ unit: "grapheme", maxLength: 20 }).map((text) => text.normalize("NFC").replaceAll(/[\u0000-\u0008\u000b\u000c\u000e-\u001f]/g, "").trim());
+const TEXT = fc.string({ unit: "grapheme", maxLength: 20 }).map((text) => text.normalize("NFC").replaceAll(/(?![\n\r\t])\p{Cc}/gu, "").trim());
 const POSITIVE = fc.oneof(fc.double({ min: 1e-15, max: 1e12, noNaN: true }), fc.tuple(fc.integer({ min: 1, max: 999 }), fc.integer({ min: -12, max: 6 })).map(([digits, power]) => Number(`${digits}e${power}`)));
 const FRACTION = fc.oneof(fc.double({ min: 0, max: 1, noNaN: true }).map((x) => x + 0), fc.constantFrom(0.001, 0.01, 0.025, 0.05, 0.1, 0.2));
 const ID = fc.string({ unit: "grapheme", minLength: 1, maxLength: 30 }).map((text) => text.replaceAll(/\p{Cc}/gu, "").trim()).filter((text) => text.length > 0);

@@ -106,7 +106,7 @@ function fits(line: DrawerLine, filter: LineFilter, leaveOut?: (typeof FACETS)[n
 }
 
 test("filters, facets and values agree with the same done by hand", () => {
-  const choice = <T extends string>(...values: T[]): fc.Arbitrary<T[]> => fc.oneof({ weight: 3, arbitrary: fc.constant([]) }, { weight: 2, arbitrary: fc.subarray(values) });
+  const choice = <T extends string>(...values: T[]): fc.Arbitrary<T[]> => fc.oneof({ weight: 3, arbitrary: fc.constant<T[]>([]) }, { weight: 2, arbitrary: fc.subarray(values) });
   const filters: fc.Arbitrary<LineFilter> = fc.record({
     text: fc.constant(""),
     kind: choice("resistor", "capacitor", "inductor", "op-amp", "potentiometer"),
@@ -114,7 +114,7 @@ test("filters, facets and values agree with the same done by hand", () => {
     package: choice("DIP-8", "pitch 5 mm", "axial 2.5 x 6.8"),
     supplier: choice("Bench box", "Harbour Components (invented)"),
     location: choice("film", "ceramic", "resistors 3"),
-    tolerance: fc.oneof({ weight: 2, arbitrary: fc.constant([]) }, fc.subarray([0.01, 0.05, 0.1, null])),
+    tolerance: fc.oneof({ weight: 2, arbitrary: fc.constant<(number | null)[]>([]) }, fc.subarray([0.01, 0.05, 0.1, null])),
     valueFrom: fc.option(fc.constantFrom(1e-8, 100, 4700)),
     valueTo: fc.option(fc.constantFrom(1e-7, 1000, 1e5)),
     onlyAvailable: fc.boolean(),

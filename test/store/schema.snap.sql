@@ -16,13 +16,21 @@ CREATE INDEX lines_by_id ON lines (retired, id COLLATE NOCASE);
 
 CREATE INDEX lines_by_location ON lines (retired, location);
 
+CREATE INDEX lines_by_order_code ON lines (retired, order_code);
+
 CREATE INDEX lines_by_package ON lines (retired, package);
 
+CREATE INDEX lines_by_quantity ON lines (retired, quantity);
+
 CREATE INDEX lines_by_rating ON lines (retired, rating);
+
+CREATE INDEX lines_by_reserved ON lines (retired, reserved);
 
 CREATE INDEX lines_by_supplier ON lines (retired, supplier);
 
 CREATE INDEX lines_by_technology ON lines (retired, technology);
+
+CREATE INDEX lines_by_temperature_coefficient ON lines (retired, temperature_coefficient);
 
 CREATE INDEX lines_by_tolerance ON lines (retired, tolerance);
 

@@ -42,6 +42,10 @@ CREATE INDEX lines_by_location ON lines (retired, location);
 CREATE INDEX lines_by_supplier ON lines (retired, supplier);
 CREATE INDEX lines_by_tolerance ON lines (retired, tolerance);
 CREATE INDEX lines_by_rating ON lines (retired, rating);
+CREATE INDEX lines_by_temperature_coefficient ON lines (retired, temperature_coefficient);
+CREATE INDEX lines_by_order_code ON lines (retired, order_code);
+CREATE INDEX lines_by_quantity ON lines (retired, quantity);
+CREATE INDEX lines_by_reserved ON lines (retired, reserved);
 CREATE INDEX lines_by_available ON lines (retired, available);
 CREATE INDEX lines_by_unit_cost ON lines (retired, unit_cost);
 

@@ -1,0 +1,114 @@
+/** `stock …` as a program of its own, on drawers in real files. */
+import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
+import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
+import { bandwright, type Ended } from "../fixtures/command-line.ts";
+
+vi.setConfig({ testTimeout: 30_000 });
+
+let folder = "";
+let drawer = "";
+beforeEach(() => {
+  folder = mkdtempSync(join(tmpdir(), "bandwright-stock-"));
+  drawer = join(folder, "drawer.sqlite");
+});
+afterEach(() => rmSync(folder, { recursive: true, force: true }));
+
+function stock(command: string, ...args: readonly string[]): Promise<Ended> {
+  return bandwright("stock", command, ...args, "--drawer", drawer);
+}
+
+function write(name: string, text: string): string {
+  const path = join(folder, name);
+  writeFileSync(path, text);
+  return path;
+}
+
+test("from an empty drawer to the starter, a movement, a count, and back", async () => {
+  const empty = await stock("list");
+  expect(empty).toMatchObject({ code: 0, stdout: "" });
+  expect(empty.stderr).toContain("`stock import --starter`");
+
+  expect(await stock("import", "--starter")).toEqual({ code: 0, stdout: "429 rows: 429 lines added, 0 updated, 0 unchanged, 429 counted, 0 refused\n", stderr: "" });
+  const listed = await stock("list", "4k7", "metal", "film");
+  expect(listed.stdout.split("\n").map((row) => row.split(/\s{2,}/)[0])).toEqual(["line", "R-4K7-MF25", "R-4K7-MF60", ""]);
+  const { total, lines } = JSON.parse((await stock("list", "--kind", "op-amp", "--sort", "unitCost", "--descending", "--limit", "2", "--json")).stdout) as { total: number; lines: { id: string; type: string }[] };
+  expect([total, ...lines.map((line) => line.type)]).toEqual([12, "LME49720", "OPA2134"]);
+
+  const moved = await stock("move", "R-4K7-MF25", "reserved", "30", "--for", "Voice channel", "--json");
+  const { step, lines: [line] } = JSON.parse(moved.stdout) as { step: number; lines: { quantity: number; reserved: number }[] };
+  expect(line.reserved).toBe(30);
+  const refused = await stock("move", "R-4K7-MF25", "used", String(line.quantity));
+  expect(refused).toMatchObject({ code: 2, stdout: "" });
+  expect(refused.stderr).toBe(`R-4K7-MF25: ${line.quantity} wanted, but only ${line.quantity - 30} of ${line.quantity} are free; held by Voice channel (30).\n`);
+  expect((await stock("count", "R-4K7-MF25", "90", "--note", "two were bent")).stdout).toMatch(/R-4K7-MF25\s.*\s90\s+30\s/);
+  expect(await stock("undo")).toMatchObject({ code: 0, stdout: "Undo: Counted: R-4K7-MF25\n" });
+  expect(await stock("undo", String(step))).toMatchObject({ code: 0, stdout: "Undo: Reserved: R-4K7-MF25\n" });
+  expect(readdirSync(folder)).toEqual(["drawer.sqlite"]);
+});
+
+test("a line is added in trade notation", async () => {
+  const added = await stock("add", "C-100N", "--kind", "capacitor", "--value", "100n", "--tolerance", "5", "--rating", "63", "--technology", "film", "--quantity", "40", "--prices", "1:0,10;100:€0,06", "--json");
+  expect(JSON.parse(added.stdout)).toMatchObject({
+    step: 1,
+    line: { id: "C-100N", kind: "capacitor", value: 1e-7, tolerance: 0.05, rating: 63, technology: "film", quantity: 40, prices: [{ from: 1, unitCost: 0.1 }, { from: 100, unitCost: 0.06 }], currency: "EUR" },
+  });
+  expect((await stock("add", "C-100N", "--kind", "capacitor", "--value", "100n")).stderr).toBe("C-100N: there is a line of that name already.\n");
+  expect(await stock("add", "X", "--kind", "capacitor", "--value", "many")).toMatchObject({ code: 2, stderr: expect.stringContaining("--value: “many” is not understood") });
+  expect(await stock("add", "U", "--kind", "op-amp", "--value", "4k7")).toMatchObject({ code: 2, stderr: "--value: an op amp has a --type, and no value\n" });
+});
+
+test("a table is taken in by its headers and by what one says of them, and given back", async () => {
+  const table = write("shelf.csv", "Bauteil;Wert (nF);Fach;Bestand;Preis\nC-1;100;A 3;12;0,14\nC-2;4,7;A 4;zwei;0,10\n");
+  const map = ["--map", "Bauteil=id", "Wert (nF)=value:nF", "Fach=location", "Bestand=quantity", "Preis=price"];
+  const refused = await stock("import", table, ...map);
+  expect(refused).toMatchObject({ code: 2, stdout: "" });
+  expect(refused.stderr).toContain("1 of 2 rows cannot be taken, so nothing was imported:\nrow 3: “zwei” is no number of pieces");
+  expect(JSON.parse((await stock("import", table, "--dry-run", "--json", ...map)).stdout)).toMatchObject({ step: null, added: 1, refused: 1 });
+  const taken = await stock("import", table, "--skip-bad-rows", ...map);
+  expect(taken).toEqual({ code: 0, stdout: "2 rows: 1 lines added, 0 updated, 0 unchanged, 1 counted, 1 refused\n", stderr: "row 3: “zwei” is no number of pieces\n" });
+
+  const { stdout: text } = await stock("export");
+  expect(text.split("\n")[1]).toBe("C-1,capacitor,100n,,,,,,,A 3,12,1:0.14,,,,,");
+  const file = join(folder, "out.csv");
+  expect(await stock("export", file)).toMatchObject({ code: 0, stdout: "" });
+  expect(readFileSync(file, "utf8")).toBe(text);
+  expect(await stock("export", file)).toMatchObject({ code: 2, stderr: `There is already a file ${file}.\n` });
+  expect((await stock("export", file, "--replace")).code).toBe(0);
+  expect(JSON.parse((await stock("export", "--json")).stdout)).toMatchObject({ lines: [{ id: "C-1", value: 1e-7 }] });
+});
+
+describe("what cannot be done", () => {
+  test.each([
+    [["import"], 2, "give a FILE or --starter"],
+    [["import", "/no/such/file.csv"], 2, "There is no file /no/such/file.csv."],
+    [["move", "R-1", "burnt", "1"], 2, "there is no movement “burnt”"],
+    [["move", "R-1", "counted", "1"], 2, "or stock count"],
+    [["count", "R-1", "few"], 2, "COUNT: “few” is no number of pieces"],
+    [["count", "R-1", "3"], 2, "There is no line “R-1” in the drawer."],
+    [["undo"], 2, "there is nothing to undo"],
+    [["list", "--sort", "colour"], 2, "Allowed choices are"],
+    [["list", "--limit", "0"], 2, "whole number above 0"],
+    [["add", "R-1"], 2, "required option '--kind <KIND>'"],
+  ] as const)("%j", async ([command, ...args], code, complaint) => {
+    const ended = await stock(command, ...args);
+    expect(ended.code).toBe(code);
+    expect(ended.stderr).toContain(complaint);
+    expect(ended.stdout).toBe("");
+  });
+
+  test("with a file that is no drawer: exit 1, a sentence, and the file stays", async () => {
+    drawer = write("letter.txt", "Dear all, ".repeat(50));
+    const ended = await stock("list");
+    expect(ended.code).toBe(1);
+    expect(ended.stderr).toMatch(/letter\.txt is not a drawer .*a copy was made at .*letter\.damaged-[0-9a-f]{8}\.txt/);
+    expect(readFileSync(drawer, "utf8")).toBe("Dear all, ".repeat(50));
+  });
+});
+
+test.concurrent.each(["import", "export", "list", "add", "move", "count", "undo"])("%s --help shows an example", async (command) => {
+  const { code, stdout } = await bandwright("stock", command, "--help");
+  expect(code).toBe(0);
+  expect(stdout).toContain(`Example:\n  bandwright stock ${command}`);
+});
