@@ -3,7 +3,8 @@ import type { BandFigures } from "../../core/analysis/bands.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
 import { formatDb, formatFigure } from "../../core/units.ts";
 import { useShell } from "../editor/hooks.ts";
-import { useAccount } from "../worker/hooks.ts";
+import { WarningSign } from "../panels/Stability.tsx";
+import { useAccount, useUnstableEnds } from "../worker/hooks.ts";
 import { accountModel, lossText, type AccountRow } from "./account-model.ts";
 
 /** Where a band's boost goes: from the sum on paper to the peak in circuit, share by share. */
@@ -11,6 +12,7 @@ export function AccountSection({ figure }: { readonly figure: BandFigures }) {
   const { editor } = useShell().context;
   const { value, isCurrent, failure } = useAccount(figure.id);
   const model = useMemo(() => (value ? accountModel(value) : null), [value]);
+  const isVoid = useUnstableEnds().some(({ id, end }) => id === figure.id && end === "boost");
   const { frequency, q, peak } = figure.boost;
   return (
     <section className={isCurrent ? "equations-section" : "equations-section is-stale"} aria-label="In circuit" aria-busy={!isCurrent && failure === null}>
@@ -18,7 +20,12 @@ export function AccountSection({ figure }: { readonly figure: BandFigures }) {
         In circuit, the other sliders centred
         {!isCurrent && failure === null && <span className="computing"> computing…</span>}
       </h3>
-      <p className="is-circuit-figure" data-testid="in-circuit">
+      {isVoid && (
+        <p className="void-note">
+          <WarningSign /> Unstable at full boost: what is struck means nothing.
+        </p>
+      )}
+      <p className={isVoid ? "is-circuit-figure is-void" : "is-circuit-figure"} data-testid="in-circuit">
         Full boost {formatDb(peak, 2)}
         {frequency === null ? "" : BLOCKS[figure.kind].shape === "resonance" ? ` at ${formatFigure(frequency, "frequency")}` : `, half-gain corner ${formatFigure(frequency, "frequency")}`}
         {q === null ? "" : `, Q ${formatFigure(q, "plain")}`}; on paper {formatDb(figure.isolatedBoost, 2)}.
@@ -32,7 +39,8 @@ export function AccountSection({ figure }: { readonly figure: BandFigures }) {
               <AccountBar key={row.id} row={row} isOwn={index === model.rows.length - 1} onShow={() => editor.select([row.id])} />
             ))}
           </ol>
-          <p className="account-total is-circuit-figure" data-testid="account-total">
+          {model.rest !== "" && <p className="hint">{model.rest}</p>}
+          <p className={isVoid ? "account-total is-circuit-figure is-void" : "account-total is-circuit-figure"} data-testid="account-total">
             <span>isolated − lost = in circuit</span>
             <strong>{model.total}</strong>
           </p>

@@ -1,8 +1,8 @@
 import { useCallback, useMemo } from "react";
 import type { Board } from "../../core/net/board.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
-import { nameOfBlock } from "../panels/Stability.tsx";
-import { useStability } from "../worker/hooks.ts";
+import { endText, nameOfBlock, WarningSign } from "../panels/Stability.tsx";
+import { useStability, useUnstableEnds } from "../worker/hooks.ts";
 import type { Stability } from "../worker/protocol.ts";
 import { PolePlane } from "./PolePlane.tsx";
 import { loopRows, rootRows, withinText, type RootRow } from "./roots-model.ts";
@@ -41,6 +41,7 @@ interface RootsProps {
 function Roots({ board, stability }: RootsProps) {
   const { editor } = useShell().context;
   const selection = useEditorState((s) => s.selection);
+  const ends = useUnstableEnds();
   const { project } = board;
   const nameOf = useCallback((id: string) => nameOfBlock(project, id), [project]);
   const rows = useMemo(() => rootRows(stability), [stability]);
@@ -67,6 +68,11 @@ function Roots({ board, stability }: RootsProps) {
       </section>
       <section className="equations-section" aria-label="Loops">
         <h3>Loops</h3>
+        {ends.length > 0 && (
+          <p className="void-note">
+            <WarningSign /> The board oscillates with {ends.map((end) => endText(project, end)).join(", ")}, other sliders centred.
+          </p>
+        )}
         {loops.length === 0 ? <p className="quiet">Every op amp here is ideal: there is no loop to judge.</p> : <LoopsTable stability={stability} nameOf={nameOf} selected={selection} />}
       </section>
       <section className="equations-section" aria-label="Table of poles and zeros">

@@ -2,6 +2,8 @@ import { memo } from "react";
 import type { BandFigures, BandPeak } from "../../core/analysis/bands.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
 import { formatDb, formatValue } from "../../core/units.ts";
+import { WarningSign } from "../panels/Stability.tsx";
+import { useUnstableEnds } from "../worker/hooks.ts";
 
 const NONE = "–";
 const hertz = (value: number | null): string => (value === null ? NONE : formatValue(value, "frequency"));
@@ -44,9 +46,16 @@ export const FiguresSection = memo(function FiguresSection({ figures }: { readon
     ["f₀", figures.resonance === null ? null : formatValue(figures.resonance, "frequency")],
     ["Q", figures.legQ === null ? null : formatValue(figures.legQ, "plain")],
   ].filter((entry) => entry[1] !== null);
+  const ends = useUnstableEnds().filter(({ id }) => id === figures.id).map(({ end }) => end);
+  const mark = (end: "boost" | "cut"): string | undefined => (ends.includes(end) ? "is-void" : undefined);
   return (
     <section className="panel-section" aria-label="In circuit">
       <h3>In circuit, others centred</h3>
+      {ends.length > 0 && (
+        <p className="void-note">
+          <WarningSign /> Unstable at full {ends.join(" and full ")}: what is struck means nothing.
+        </p>
+      )}
       <table className="figure-table is-circuit-figure">
         <thead>
           <tr>
@@ -65,8 +74,8 @@ export const FiguresSection = memo(function FiguresSection({ figures }: { readon
           {rowsFor(figures).map((row) => (
             <tr key={row.label} className={row.isKey ? "is-key" : undefined} data-figure={row.label}>
               <th scope="row">{row.label}</th>
-              <td>{row.cell(figures.boost, figures.isolatedBoost)}</td>
-              <td>{row.cell(figures.cut, -figures.isolatedBoost)}</td>
+              <td className={mark("boost")}>{row.cell(figures.boost, figures.isolatedBoost)}</td>
+              <td className={mark("cut")}>{row.cell(figures.cut, -figures.isolatedBoost)}</td>
             </tr>
           ))}
         </tbody>

@@ -4,7 +4,8 @@ import { blockName } from "../../core/model/edit.ts";
 import type { Project } from "../../core/model/project.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
-import { useIsUnstable, useStability } from "../worker/hooks.ts";
+import { useIsUnstable, useStability, useUnstableEnds } from "../worker/hooks.ts";
+import type { Ends } from "../worker/protocol.ts";
 
 /** What people call a block of the analysis; the divider of a single supply is no block of the file. */
 export function nameOfBlock(project: Project, id: string): string {
@@ -20,6 +21,7 @@ export function StabilityStatus() {
   const { context } = useShell();
   const project = useEditorState((s) => s.project);
   const { value, isCurrent, failure } = useStability();
+  const ends = useUnstableEnds();
   if (failure !== null) {
     return (
       <span className="status-caution is-kept" data-testid="stability" title={failure}>
@@ -45,12 +47,26 @@ export function StabilityStatus() {
     );
   }
   const least = smallestMargin(value.loops);
+  if (ends.length > 0) {
+    return (
+      <button type="button" className="status-button is-warning is-unstable" data-testid="stability" aria-busy={!isCurrent} onClick={() => run(actionById("show-poles"), context)}>
+        <WarningSign />
+        {`unstable with ${endText(project, ends[0])}${ends.length > 1 ? ` and ${ends.length - 1} more` : ""}`}
+        {!isCurrent && " · computing…"}
+      </button>
+    );
+  }
   return (
     <span className={className} data-testid="stability" aria-busy={!isCurrent} title={least ? `Where the loop gain of the op amp in “${nameOfBlock(project, least.block)}” passes 1` : undefined}>
       {least ? `smallest phase margin ${least.phaseMargin.toFixed(0)}° (${nameOfBlock(project, least.block)})` : "ideal op amps: no loop to judge"}
       {!isCurrent && " · computing…"}
     </span>
   );
+}
+
+/** “4 kHz” at full boost */
+export function endText(project: Project, { id, end }: Ends[number]): string {
+  return `“${nameOfBlock(project, id)}” at full ${end}`;
 }
 
 /** “Octave bus” and “4 kHz”: the blocks whose loops oscillate. */

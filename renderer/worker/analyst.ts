@@ -3,7 +3,7 @@ import { createStore, type StoreApi } from "zustand/vanilla";
 import type { Project } from "../../core/model/project.ts";
 import { isSameModel } from "../editor/results.ts";
 import type { Editor } from "../editor/store.ts";
-import { ANSWER, type Account, type Request, type Stability } from "./protocol.ts";
+import { ANSWER, type Account, type Ends, type Request, type Stability } from "./protocol.ts";
 
 /** A result with the document that it was computed from. */
 export interface Tagged<T> {
@@ -22,6 +22,8 @@ export interface AnalystState {
   readonly stabilityFailure: Failure | null;
   readonly account: Tagged<Account> | null;
   readonly accountFailure: Failure | null;
+  readonly ends: Tagged<Ends> | null;
+  readonly endsFailure: Failure | null;
   /** The worker itself is gone: nothing more will come. */
   readonly isGone: boolean;
 }
@@ -40,6 +42,8 @@ export interface Analyst {
   watchAccount(id: string | null): void;
 }
 
+const NOTHING: Omit<AnalystState, "isGone"> = { stability: null, stabilityFailure: null, account: null, accountFailure: null, ends: null, endsFailure: null };
+
 /** How long a moving knob has to rest before the worker is asked, ms. */
 const REST = 120;
 
@@ -48,7 +52,7 @@ const REST = 120;
  * next asks for the newest document: whatever came in between is never computed.
  */
 export function createAnalyst(editor: Editor, spawn: () => WorkerLike): Analyst {
-  const store = createStore<AnalystState>(() => ({ stability: null, stabilityFailure: null, account: null, accountFailure: null, isGone: false }));
+  const store = createStore<AnalystState>(() => ({ ...NOTHING, isGone: false }));
   let accountOf: string | null = null;
   let underWay: Request | null = null;
   let timer: ReturnType<typeof setTimeout> | undefined;
@@ -60,13 +64,14 @@ export function createAnalyst(editor: Editor, spawn: () => WorkerLike): Analyst 
     if (underWay || store.getState().isGone) return;
     const { project, analysis } = editor.store.getState();
     if (!analysis.board) return;
-    const { stability, stabilityFailure, account, accountFailure } = store.getState();
+    const { stability, stabilityFailure, account, accountFailure, ends, endsFailure } = store.getState();
     const isStabilityWanted = !isFor(stability, project, isSameCircuit) && !isFor(stabilityFailure, project, isSameCircuit);
     const isAccountThere = (account?.value.id === accountOf && isFor(account, project, isSameModel)) || isFor(accountFailure, project, isSameModel);
     const hasBand = accountOf !== null && (analysis.results?.figures.has(accountOf) ?? false);
     const wanted = hasBand && !isAccountThere ? accountOf : null;
-    if (!isStabilityWanted && wanted === null) return;
-    underWay = { key: nextKey++, project, isStabilityWanted, accountOf: wanted };
+    const areEndsWanted = !isFor(ends, project, isSameModel) && !isFor(endsFailure, project, isSameModel);
+    if (!isStabilityWanted && wanted === null && !areEndsWanted) return;
+    underWay = { key: nextKey++, project, isStabilityWanted, accountOf: wanted, areEndsWanted };
     try {
       worker ??= start();
       // A worker has no origin to aim at.
@@ -96,9 +101,11 @@ export function createAnalyst(editor: Editor, spawn: () => WorkerLike): Analyst 
     const { project } = underWay;
     if (answer.type === "stability") store.setState({ stability: { project, value: answer.stability }, stabilityFailure: null });
     else if (answer.type === "account") store.setState({ account: { project, value: answer.account }, accountFailure: null });
+    else if (answer.type === "ends") store.setState({ ends: { project, value: answer.ends }, endsFailure: null });
     else if (answer.type === "failed") {
       const failure = { project, message: answer.message };
       if (answer.what === "stability") store.setState({ stabilityFailure: failure });
+      else if (answer.what === "ends") store.setState({ endsFailure: failure });
       else if (underWay.accountOf === accountOf) store.setState({ accountFailure: failure });
     } else {
       underWay = null;
@@ -112,6 +119,8 @@ export function createAnalyst(editor: Editor, spawn: () => WorkerLike): Analyst 
   }
 
   editor.store.subscribe((now, before) => {
+    // Another document was opened: what is known of the last one says nothing of it.
+    if (now.saved !== before.saved && now.project === now.saved && now.project !== before.project) store.setState(NOTHING);
     if (now.project !== before.project || now.gesture !== before.gesture) soon();
   });
   soon();

@@ -1,11 +1,12 @@
 import { lossAccount } from "../../core/analysis/interaction.ts";
 import { polesAndZeros } from "../../core/analysis/poles.ts";
 import { loopMargins } from "../../core/analysis/stability.ts";
+import { unstableEnds } from "../../core/analysis/unstable-ends.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import type { Account, Answer, Request, Stability } from "./protocol.ts";
 
 /** Computes what a request asks for and hands out each result as soon as it is there. A failure of one leaves the other. */
-export function answerRequest({ key, project, isStabilityWanted, accountOf }: Request, send: (answer: Answer) => void): void {
+export function answerRequest({ key, project, isStabilityWanted, accountOf, areEndsWanted }: Request, send: (answer: Answer) => void): void {
   if (isStabilityWanted) {
     attempt("stability", () => {
       const board = resolveBoard(project);
@@ -20,9 +21,10 @@ export function answerRequest({ key, project, isStabilityWanted, accountOf }: Re
       send({ type: "account", key, account: { ...account, shares: [...account.shares] } satisfies Account });
     });
   }
+  if (areEndsWanted) attempt("ends", () => send({ type: "ends", key, ends: unstableEnds(resolveBoard(project)) }));
   send({ type: "done", key });
 
-  function attempt(what: "stability" | "account", compute: () => void): void {
+  function attempt(what: "stability" | "account" | "ends", compute: () => void): void {
     try {
       compute();
     } catch (error) {

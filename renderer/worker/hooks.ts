@@ -3,7 +3,7 @@ import { useStore } from "zustand";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { isSameModel } from "../editor/results.ts";
 import { isSameCircuit } from "./analyst.ts";
-import type { Account, Stability } from "./protocol.ts";
+import type { Account, Ends, Stability } from "./protocol.ts";
 
 /** A slow result as it may be shown: `value` is of an earlier document while `isCurrent` is false. */
 export interface Slow<T> {
@@ -32,6 +32,16 @@ export function useIsUnstable(): boolean {
   const { analyst } = useShell();
   const hasBoard = useEditorState((s) => s.analysis.board !== null);
   return useStore(analyst.store, (s) => (s.stability?.value.unstable.length ?? 0) > 0) && hasBoard;
+}
+
+const NO_ENDS: Ends = [];
+
+/** The slider ends at which the board oscillates, other sliders centred; an older answer counts until the next is there. */
+export function useUnstableEnds(): Ends {
+  const { analyst } = useShell();
+  const hasBoard = useEditorState((s) => s.analysis.board !== null);
+  const ends = useStore(analyst.store, (s) => s.ends?.value ?? NO_ENDS);
+  return hasBoard ? ends : NO_ENDS;
 }
 
 /** The loss account of one band, asked for while the component is on the screen. */

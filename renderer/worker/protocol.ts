@@ -34,11 +34,14 @@ const account = v.object({
   shares: v.array(v.object({ id: v.string(), label: v.string(), loss: v.number() })),
 });
 
+const ends = v.array(v.object({ id: v.string(), end: v.picklist(["boost", "cut"]) }));
+
 /** What the screen asks: everything that it wants of one document. `key` comes back with every answer. */
 export const REQUEST = v.object({
   key: v.number(),
   project,
   isStabilityWanted: v.boolean(),
+  areEndsWanted: v.boolean(),
   /** The band whose loss account is wanted, or null. */
   accountOf: v.nullable(v.string()),
 });
@@ -47,7 +50,8 @@ export const REQUEST = v.object({
 export const ANSWER = v.variant("type", [
   v.object({ type: v.literal("stability"), key: v.number(), stability }),
   v.object({ type: v.literal("account"), key: v.number(), account }),
-  v.object({ type: v.literal("failed"), key: v.number(), what: v.picklist(["stability", "account"]), message: v.string() }),
+  v.object({ type: v.literal("ends"), key: v.number(), ends }),
+  v.object({ type: v.literal("failed"), key: v.number(), what: v.picklist(["stability", "account", "ends"]), message: v.string() }),
   v.object({ type: v.literal("done"), key: v.number() }),
 ]);
 
@@ -55,5 +59,7 @@ export type Request = v.InferOutput<typeof REQUEST>;
 export type Answer = v.InferOutput<typeof ANSWER>;
 /** Natural frequencies and loops of a document with its sliders as they stand. */
 export type Stability = v.InferOutput<typeof stability>;
+/** The slider ends at which the board oscillates, other sliders centred. */
+export type Ends = v.InferOutput<typeof ends>;
 /** How a band's isolated boost becomes its boost in circuit, dB. */
 export type Account = v.InferOutput<typeof account>;

@@ -98,6 +98,10 @@ describe("the account", () => {
     expect(model.rows).toHaveLength(1);
     expect(model.total).toBe("+10.00 dB + 0.50 dB = +10.50 dB");
     expect(model.summary).not.toContain("share");
+    expect(model.rest).toBe("");
+    const far = accountModel({ id: "a", isolatedBoost: 10, peak: 9, whole: 1, own: 0.997, shares: [{ id: "b", label: "b", loss: 0.002 }, { id: "c", label: "c", loss: 0.001 }] });
+    expect(far.rows.map((row) => row.id)).toEqual(["a"]);
+    expect(far.rest).toBe("2 other bands take less than 0.01 dB each.");
     expect(lossText(-0.5)).toBe("−0.50 dB");
     expect(lossText(-0.001)).toBe("0.00 dB");
   });

@@ -51,9 +51,10 @@ afterEach(() => {
 describe("what is asked", () => {
   test("the open document at once, and nothing again while it stays", () => {
     expect(worker.asked).toHaveLength(1);
-    expect(worker.asked[0]).toMatchObject({ project: now(), isStabilityWanted: true, accountOf: null });
+    expect(worker.asked[0]).toMatchObject({ project: now(), isStabilityWanted: true, areEndsWanted: true, accountOf: null });
     worker.answer();
     expect(state().stability?.project).toBe(now());
+    expect(state().ends).toEqual({ project: now(), value: [] });
     editor.select(["b1k"]);
     pass(1000);
     expect(worker.asked).toHaveLength(1);
@@ -111,17 +112,28 @@ describe("what is asked", () => {
     expect(state().account?.value.id).toBe("b1k");
     editor.apply("slide", setPosition(now(), "b500", 0.9));
     pass(0);
-    expect(worker.asked.at(-1)).toMatchObject({ accountOf: null, isStabilityWanted: true });
+    expect(worker.asked.at(-1)).toMatchObject({ accountOf: null, isStabilityWanted: true, areEndsWanted: false });
     worker.answer();
     editor.apply("value", setPartValue(now(), "b500", "seriesR", 1000));
     pass(0);
-    expect(worker.asked.at(-1)).toMatchObject({ accountOf: "b1k", isStabilityWanted: true });
+    expect(worker.asked.at(-1)).toMatchObject({ accountOf: "b1k", isStabilityWanted: true, areEndsWanted: true });
     worker.answer();
     analyst.watchAccount("b500");
     pass(0);
     worker.answer();
     expect(state().account?.value.id).toBe("b500");
   });
+});
+
+test("what is known of one document is not kept for the next, though saving keeps it", () => {
+  worker.answer();
+  editor.markSaved(now(), { path: "/a", isWritable: true, isDemo: false, fingerprint: "0" });
+  expect(state().stability?.project).toBe(now());
+  editor.load(newProject(), null, []);
+  expect(state()).toMatchObject({ stability: null, account: null, ends: null });
+  pass(0);
+  worker.answer();
+  expect(state().stability?.project).toBe(now());
 });
 
 describe("what comes back", () => {
@@ -136,6 +148,7 @@ describe("what comes back", () => {
 
   test("a failure stands until the document is another, and is not asked for again", () => {
     worker.emit("message", { type: "failed", key: worker.asked[0].key, what: "stability", message: "no unique solution" });
+    worker.emit("message", { type: "failed", key: worker.asked[0]!.key, what: "ends", message: "no unique solution" });
     worker.emit("message", { type: "done", key: worker.asked[0].key });
     expect(state().stabilityFailure).toEqual({ project: now(), message: "no unique solution" });
     pass(1000);
