@@ -20,7 +20,7 @@ export function buildCommand(): Command {
       .requiredOption("--units <N>", "units to build")
       .option("--reserve", "hold the pieces for this project")
       .option("--use", "book the pieces as used, held ones first")
-      .addHelpText("after", "\nExample:\n  bandwright build built.bandwright --units 5 --reserve"),
+      .addHelpText("after", "\nExample:\n  bandwright build channel.bandwright --units 2 --reserve"),
   ).action(async (file: string, opts: BuildCommandOpts) => {
     const units = readCount(opts.units, "--units", 10_000);
     if (opts.reserve && opts.use) throw new CommandFailure("--reserve and --use: one at a time");

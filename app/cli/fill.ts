@@ -16,7 +16,7 @@ interface FillCommandOpts extends SliderOpts, ChooseOpts {
 /** `fill FILE -o OUT`: a stock line for every part, so that the response changes least. */
 export function fillCommand(): Command {
   return withDrawerOptions(
-    boardCommand("fill", "fill the whole board from the drawer, so that its response changes least", "fill channel.bandwright --units 5 --ceiling “30 EUR” -o built.bandwright".replaceAll(/[“”]/g, '"'))
+    boardCommand("fill", "fill the whole board from the drawer, so that its response changes least", "fill channel.bandwright --units 2 --ceiling 30EUR -o built.bandwright")
       .requiredOption("-o, --output <FILE>", "where to write the board")
       .option("--units <N>", "units to build: pieces have to be there for each", "1")
       .option("--window <FRACTION>", "how far a value may be off", "20%")

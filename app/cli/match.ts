@@ -13,7 +13,7 @@ interface MatchCommandOpts extends SliderOpts, ChooseOpts {
 /** `match FILE -o OUT`: measured pieces, dealt to the roles where they do most good. */
 export function matchCommand(): Command {
   return withDrawerOptions(
-    boardCommand("match", "deal the measured pieces of the drawer to the roles that name their line, so that the board comes nearest its design", "match built.bandwright -o matched.bandwright")
+    boardCommand("match", "deal the measured pieces of the drawer to the roles that name their line, so that the board comes nearest its design", "match channel.bandwright -o matched.bandwright")
       .requiredOption("-o, --output <FILE>", "where to write the board")
       .option("--deals <N>", "random deals to compare with", "200")
       .option("--seed <N>", "seed of the random deals", "1"),

@@ -155,8 +155,12 @@ describe.concurrent("match", () => {
   });
 });
 
-test.each(["swap", "fill", "match", "build"])("%s explains itself with an example", async (name) => {
-  const out = done(await bandwright(name, "--help"));
-  expect(out).toContain(`bandwright ${name} `);
-  expect(out).toMatch(/--drawer/);
+test.each(["swap", "fill", "build"])("%s explains itself with an example that works", async (name) => {
+  const own = join(folder, `${name}-example.sqlite`);
+  copyFileSync(drawer, own);
+  const help = done(await bandwright(name, "--help"));
+  const example = /Example:\n {2}bandwright (.+)/.exec(help)![1];
+  const args = example.replace("channel.bandwright", filled).replace(/-o (\S+)/, `-o ${join(folder, `${name}-example.bandwright`)}`).split(" ");
+  expect(args[0]).toBe(name);
+  expect(done(await bandwright(...args, "--drawer", own))).not.toBe("");
 });
