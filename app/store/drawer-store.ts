@@ -6,8 +6,8 @@ import type { StockLine, StockPiece } from "../../core/drawer/stock.ts";
 import { allBuilds, releaseBuild, requireBuild, reserveBuild, useBuild } from "./builds.ts";
 import { openBeside, openDb, type Db } from "./db.ts";
 import { importRows, type ImportCounts, type ImportRow } from "./import-lines.ts";
-import { bookMove, holdersOf, readLedger } from "./ledger.ts";
-import { eachLine, findLine, insertLine, namesOf, requireLine, requireSoundLine, selectLines, updateLine } from "./lines.ts";
+import { bookMove, readLedger } from "./ledger.ts";
+import { eachLine, findLine, holdersOf, insertLine, namesOf, requireLine, requireSoundLine, selectLines, updateLine } from "./lines.ts";
 import { allPieces, pieceById, piecesOf, putPiece, removePiece } from "./pieces.ts";
 import { candidatesOf, countOf, facetsOf, valuesOf, windowOf } from "./query.ts";
 import { asStep, latestSteps } from "./steps.ts";
@@ -143,10 +143,6 @@ export class DrawerStore {
       let changed = 0;
       for (const id of ids) {
         const found = requireLine(this.db, id);
-        if (fields.retired === true && found.line.reserved > 0) {
-          const holders = holdersOf(this.db, found.key).map((holder) => `${holder.reference} (${holder.count})`).join(", ");
-          throw new HostFailure("drawer-refused", { problems: [`${id}: ${found.line.reserved} pieces are spoken for, by ${holders}. Release them first.`] });
-        }
         if (updateLine(this.db, one, found, fields)) changed += 1;
       }
       return changed;

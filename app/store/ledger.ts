@@ -1,13 +1,8 @@
-import type { Holder, LedgerEntry, Move } from "../../core/contract/drawer-schemas.ts";
+import type { LedgerEntry, Move } from "../../core/contract/drawer-schemas.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
 import type { Db } from "./db.ts";
-import { requireLine, type KeyedLine } from "./lines.ts";
+import { holdersOf, requireLine, type KeyedLine } from "./lines.ts";
 import type { Step } from "./steps.ts";
-
-/** Who holds pieces of a line, the largest share first. */
-export function holdersOf(db: Db, key: number): Holder[] {
-  return db.all<Holder>("SELECT reference, count FROM holdings WHERE line = ? ORDER BY count DESC, reference", key);
-}
 
 /** What one reference holds of a line. */
 export function heldBy(db: Db, reference: string, key: number): number {

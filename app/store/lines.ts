@@ -1,4 +1,4 @@
-import type { DrawerLine, LineFields } from "../../core/contract/drawer-schemas.ts";
+import type { DrawerLine, Holder, LineFields } from "../../core/contract/drawer-schemas.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
 import { lineProblems } from "../../core/drawer/check-line.ts";
 import type { StockLine } from "../../core/drawer/stock.ts";
@@ -93,11 +93,20 @@ export function insertLine(db: Db, step: Step, line: StockLine, isRetired = fals
   return key;
 }
 
+/** Who holds pieces of a line, the largest share first. */
+export function holdersOf(db: Db, key: number): Holder[] {
+  return db.all<Holder>("SELECT reference, count FROM holdings WHERE line = ? ORDER BY count DESC, reference", key);
+}
+
 /** Sets what differs, with its trace; says whether anything did. */
 export function updateLine(db: Db, step: Step, { key, line }: KeyedLine, edit: LineEdit): boolean {
   const changed = FIELDS.filter((field) => edit[field] !== undefined && !isSame(edit[field], line[field]));
   if (changed.length === 0) return false;
   requireSoundLine(withEdit(line, edit));
+  if (edit.retired === true && line.reserved > 0) {
+    const holders = holdersOf(db, key).map((holder) => `${holder.reference} (${holder.count})`).join(", ");
+    throw new HostFailure("drawer-refused", { problems: [`${line.id}: ${line.reserved} pieces are spoken for, by ${holders}. Release them before retiring it.`] });
+  }
   const before = Object.fromEntries(changed.map((field) => [field, line[field]]));
   const after = Object.fromEntries(changed.map((field) => [field, edit[field]]));
   writeFields(db, step, { key, line }, after);

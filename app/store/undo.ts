@@ -84,6 +84,9 @@ function takeBackChange(db: Db, step: Step, change: ChangeRow, problems: string[
       problems.push(`${line.id}: its ${moved.join(", ")} ${moved.length === 1 ? "has" : "have"} been changed since.`);
       return;
     }
+    // Its own pieces have been booked out by now: what is left came later.
+    if (before === null && line.quantity > 0) problems.push(`${line.id}: it has got ${line.quantity} pieces since.`);
+    else if (Object.hasOwn(wanted, "retired") && wanted.retired === true && line.reserved > 0) problems.push(`${line.id}: ${line.reserved} of its pieces are spoken for.`);
     writeFields(db, step, { key, line }, wanted);
     step.change("line", key, current, wanted);
     return;

@@ -1,11 +1,14 @@
 import { readFileSync } from "node:fs";
 import fc from "fast-check";
-import { beforeEach, describe, expect, test } from "vitest";
+import { beforeEach, describe, expect, test, vi } from "vitest";
 import { exportTable } from "../../app/services/drawer-tables.ts";
 import { decodeTable, openTable } from "../../app/services/csv-table.ts";
 import type { DrawerStore } from "../../app/store/drawer-store.ts";
 import { isHostFailure } from "../../core/contract/failures.ts";
 import { anyLine, capacitor, importText, openScratch, resistor, withScratch } from "../helpers/drawer.ts";
+
+// Real files, flushed: a busy disk takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 const STARTER = readFileSync(new URL("../../assets/drawer/starter.csv", import.meta.url), "utf8");
 
@@ -169,7 +172,7 @@ describe("an export", () => {
       }),
       { numRuns: 30 },
     );
-  }, 60_000);
+  });
 
   test("writes values as the trade does, and exactly where that would round", () => {
     drawer.addLine(capacitor("C-1", { value: 4.7e-8, tolerance: 0.025, rating: 63, temperatureCoefficient: -200e-6 }), 3);

@@ -1,11 +1,14 @@
 import { existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from "node:fs";
 import { dirname, join } from "node:path";
 import Database from "better-sqlite3";
-import { beforeEach, describe, expect, test } from "vitest";
+import { beforeEach, describe, expect, test, vi } from "vitest";
 import { isHostFailure } from "../../core/contract/failures.ts";
 import { openDrawer } from "../../app/store/drawer-store.ts";
 import { asOrdinaryUser } from "../helpers/ordinary-user.ts";
 import { importText, openScratch, scratchFolder } from "../helpers/drawer.ts";
+
+// Real files, flushed: a busy disk takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 const STARTER = readFileSync(new URL("../../assets/drawer/starter.csv", import.meta.url));
 const PAGE = 4096;

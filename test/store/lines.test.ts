@@ -1,7 +1,10 @@
-import { beforeEach, describe, expect, test } from "vitest";
+import { beforeEach, describe, expect, test, vi } from "vitest";
 import type { DrawerStore } from "../../app/store/drawer-store.ts";
 import { EVERY_LINE } from "../../core/contract/drawer-schemas.ts";
 import { capacitor, openScratch, resistor } from "../helpers/drawer.ts";
+
+// Real files, flushed: a busy disk takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 let drawer: DrawerStore;
 beforeEach(async () => {
@@ -96,6 +99,18 @@ describe("undo", () => {
     expect(drawer.find("R-1")).toMatchObject({ quantity: 0, retired: true });
     await drawer.undo(undone.step);
     expect(drawer.find("R-1")).toMatchObject({ quantity: 12, retired: false });
+  });
+
+  test("of an added line is refused once pieces have come to it, and so is retiring it while somebody holds some", async () => {
+    const { step } = drawer.addLine(resistor("R-1"), 3);
+    drawer.move([{ line: "R-1", kind: "bought", count: 5, reference: "", note: "" }]);
+    await expect(drawer.undo(step)).rejects.toThrow("R-1: it has got 5 pieces since.");
+    drawer.retireLines(["R-1"], true);
+    const back = drawer.retireLines(["R-1"], false);
+    drawer.reserve("Channel", 1, [{ line: "R-1", count: 2 }]);
+    await expect(drawer.undo(back.step ?? 0)).rejects.toThrow("R-1: 2 of its pieces are spoken for.");
+    expect(() => drawer.retireLines(["R-1"], true)).toThrow("R-1: 2 pieces are spoken for, by Channel (2). Release them before retiring it.");
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 8, reserved: 2, retired: false });
   });
 
   test("of a purchase is refused where the pieces have gone", async () => {

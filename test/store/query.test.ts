@@ -2,11 +2,14 @@ import { mkdtempSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import fc from "fast-check";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { afterAll, beforeAll, describe, expect, test, vi } from "vitest";
 import { openDrawer, type DrawerStore } from "../../app/store/drawer-store.ts";
 import { EVERY_LINE, FACETS, SORT_COLUMNS, type CandidateQuery, type DrawerLine, type LineFilter } from "../../core/contract/drawer-schemas.ts";
 import { unitCost } from "../../core/drawer/stock.ts";
 import { importText } from "../helpers/drawer.ts";
+
+// Real files, flushed: a busy disk takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 const STARTER = readFileSync(new URL("../../assets/drawer/starter.csv", import.meta.url));
 const BY_ID = { by: "id", descending: false } as const;

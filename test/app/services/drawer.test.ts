@@ -2,7 +2,7 @@ import { mkdir, mkdtemp, readFile, rm, stat, writeFile } from "node:fs/promises"
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { fileURLToPath } from "node:url";
-import { afterEach, beforeEach, describe, expect, test } from "vitest";
+import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
 import { createHost, type Host } from "../../../app/host.ts";
 import { createDrawer, type Drawer } from "../../../app/services/drawer.ts";
 import { createPathGuard } from "../../../app/services/path-guard.ts";
@@ -12,6 +12,9 @@ import { createHostClient, type HostClient } from "../../../renderer/host/client
 import { createFakeChannel } from "../../helpers/fake-channel.ts";
 import { fakeHandlers } from "../../helpers/fake-handlers.ts";
 import { capacitor, resistor } from "../../helpers/drawer.ts";
+
+// Real files, flushed: a busy disk takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 const STARTER = fileURLToPath(new URL("../../../assets/drawer/starter.csv", import.meta.url));
 const BY_ID = { by: "id", descending: false } as const;
