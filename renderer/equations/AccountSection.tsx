@@ -34,7 +34,7 @@ export function AccountSection({ figure }: { readonly figure: BandFigures }) {
       {model && failure === null && (
         <>
           <p className="visually-hidden">{model.summary}</p>
-          <ol className="account is-circuit-figure" aria-label="What takes from the boost">
+          <ol className={isVoid ? "account is-circuit-figure is-void" : "account is-circuit-figure"} aria-label="What takes from the boost">
             {model.rows.map((row, index) => (
               <AccountBar key={row.id} row={row} isOwn={index === model.rows.length - 1} onShow={() => editor.select([row.id])} />
             ))}

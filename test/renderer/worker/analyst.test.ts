@@ -148,7 +148,7 @@ describe("what comes back", () => {
 
   test("a failure stands until the document is another, and is not asked for again", () => {
     worker.emit("message", { type: "failed", key: worker.asked[0].key, what: "stability", message: "no unique solution" });
-    worker.emit("message", { type: "failed", key: worker.asked[0]!.key, what: "ends", message: "no unique solution" });
+    worker.emit("message", { type: "failed", key: worker.asked[0].key, what: "ends", message: "no unique solution" });
     worker.emit("message", { type: "done", key: worker.asked[0].key });
     expect(state().stabilityFailure).toEqual({ project: now(), message: "no unique solution" });
     pass(1000);
