@@ -1,5 +1,7 @@
 import { Command } from "commander";
+import { boardProblems, type RoleProblems } from "../../core/drawer/board-problems.ts";
 import { buildBill, buildReference, type Bill } from "../../core/drawer/bill.ts";
+import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import type { DrawerStore } from "../store/drawer-store.ts";
 import { loadBoard, printJson, printTable } from "./board-command.ts";
 import { moneyText, readCount, stockText, sumText, withDrawer, withDrawerOptions, type ChooseOpts } from "./choose-command.ts";
@@ -26,14 +28,18 @@ export function buildCommand(): Command {
     if (opts.reserve && opts.use) throw new CommandFailure("--reserve and --use: one at a time");
     const { board } = await loadBoard(file, {});
     const reference = buildReference(board.project);
-    const bill = await withDrawer(opts, (store) => {
+    const { bill, problems } = await withDrawer(opts, (store) => {
       const held = new Map(store.builds().find((b) => b.reference === reference)?.bill.map((entry) => [entry.line, entry.held]));
-      const before = buildBill(board, store.allLines(), units, { held });
+      const lines = store.allLines();
+      const before = buildBill(board, lines, units, { held });
       if (opts.reserve || opts.use) book(store, reference, before, opts.use === true);
-      return before;
+      return { bill: before, problems: boardProblems(board, lines) };
     });
-    if (opts.json) printJson({ reference, ...billJson(bill) });
-    else printBill(bill);
+    if (opts.json) printJson({ reference, ...billJson(bill), problems: problems.map((p) => ({ role: p.role.name, line: p.line.id, problems: p.problems })) });
+    else {
+      printBill(bill);
+      printProblems(problems);
+    }
     if (opts.reserve) process.stderr.write(`pieces for ${units} held for “${reference}”\n`);
     if (opts.use) process.stderr.write(`pieces of ${units} booked as used for “${reference}”\n`);
   });
@@ -87,4 +93,10 @@ function printBill(bill: Bill): void {
     process.stdout.write(`  ${sumText(group.cost)}\n`);
   }
   process.stdout.write(`\n${units} ${units === 1 ? "unit" : "units"}: ${sumText(bill.cost)}, ${sumText(bill.costPerUnit)} a unit${bill.unpriced.length > 0 ? `; without a price: ${bill.unpriced.join(", ")}` : ""}\n`);
+}
+
+function printProblems(problems: readonly RoleProblems[]): void {
+  if (problems.length === 0) return;
+  const lines = problems.flatMap(({ role, line, problems: own }) => own.map((p) => `${role.name}, ${line.id}: ${p.level === "fault" ? "does not do: " : ""}${p.message}`));
+  process.stdout.write(`\n${lines.join("\n")}\n${RATING_CAUTION}\n`);
 }

@@ -62,7 +62,7 @@ export const RATING_CAUTION = "Worked out for the board as drawn, at rest and ju
 export interface Problem {
   /** A fault bars the part from this place; a caution is for a person to weigh. */
   readonly level: "fault" | "caution";
-  readonly about: "rating" | "polarity" | "power" | "stock" | "model" | "window";
+  readonly about: "rating" | "polarity" | "power" | "stock" | "model" | "kind" | "value";
   readonly message: string;
 }
 
