@@ -6,6 +6,7 @@ import { BlockList } from "./BlockList.tsx";
 import { BlockPage } from "./BlockPage.tsx";
 import "./equations.css";
 import { PolesPage } from "./PolesPage.tsx";
+import "./roots.css";
 import { shownBlock } from "./shown.ts";
 
 /** The mathematics behind the board: each block's equations, and the poles, zeros and loops of the whole. */
