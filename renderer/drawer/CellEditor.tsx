@@ -1,5 +1,7 @@
 import { useId, useRef, useState } from "react";
 import type { DrawerLine } from "../../core/contract/drawer-schemas.ts";
+import { lineProblems } from "../../core/drawer/check-line.ts";
+import { useShell } from "../editor/hooks.ts";
 import { useDrawer } from "./hooks.ts";
 import { reasonOf } from "./drawer-store.ts";
 import type { Column } from "./columns.ts";
@@ -12,6 +14,7 @@ interface CellEditorProps {
 
 /** A cell as a field: Enter takes it and goes down, Tab to the next cell that can be edited, Esc gives it up. */
 export function CellEditor({ line, column, onLeave }: CellEditorProps) {
+  const { context } = useShell();
   const drawer = useDrawer();
   const id = useId();
   const before = column.edit!.text(line);
@@ -19,27 +22,21 @@ export function CellEditor({ line, column, onLeave }: CellEditorProps) {
   const [error, setError] = useState<string | null>(null);
   const isDone = useRef(false);
 
-  const take = async (move: "stay" | "down" | "next" | "back"): Promise<void> => {
+  /** What can be wrong is looked at here, so that the hands need not wait: the next cell is open before this one is on disk. */
+  const take = (move: "stay" | "down" | "next" | "back"): void => {
     if (isDone.current) return;
-    if (text.trim() === before.trim()) {
-      isDone.current = true;
-      onLeave(move);
-      return;
-    }
     const edit = column.edit!.read(text, line);
-    if (!edit.ok) {
-      setError(edit.message);
+    const isChanged = text.trim() !== before.trim();
+    const problem = !isChanged ? undefined : !edit.ok ? edit.message : "fields" in edit ? lineProblems({ ...line, ...edit.fields })[0] : undefined;
+    if (problem !== undefined) {
+      setError(problem);
       return;
     }
     isDone.current = true;
-    try {
-      if ("found" in edit) await drawer.move([{ line: line.id, kind: "counted", count: edit.found, reference: "", note: "" }]);
-      else await drawer.editLines([line.id], edit.fields);
-      onLeave(move);
-    } catch (failure) {
-      isDone.current = false;
-      setError(reasonOf(failure));
-    }
+    onLeave(move);
+    if (!isChanged || !edit.ok) return;
+    const work = "found" in edit ? drawer.move([{ line: line.id, kind: "counted", count: edit.found, reference: "", note: "" }]) : drawer.editLines([line.id], edit.fields);
+    work.catch((failure: unknown) => context.ui.notify(`${line.id} stays as it was. ${reasonOf(failure)}`, true));
   };
 
   return (
@@ -63,15 +60,15 @@ export function CellEditor({ line, column, onLeave }: CellEditorProps) {
         onBlur={() => {
           // A text that is not understood is given up with the focus; the cell shows what it was.
           if (error !== null || !column.edit!.read(text, line).ok) onLeave("stay");
-          else void take("stay");
+          else take("stay");
         }}
         onKeyDown={(event) => {
           event.stopPropagation();
           if (event.key === "Escape") {
             isDone.current = true;
             onLeave("stay");
-          } else if (event.key === "Enter") void take("down");
-          else if (event.key === "Tab") void take(event.shiftKey ? "back" : "next");
+          } else if (event.key === "Enter") take("down");
+          else if (event.key === "Tab") take(event.shiftKey ? "back" : "next");
           else return;
           event.preventDefault();
         }}

@@ -13,7 +13,7 @@ export function DrawerView() {
   const drawer = useDrawer();
   const info = useDrawerState((s) => s.info);
   const unusable = useDrawerState((s) => s.unusable);
-  const total = useDrawerState((s) => s.total);
+  const isNothing = useDrawerState((s) => s.total === 0 && !s.isLooking);
   useEffect(() => drawer.open(), [drawer]);
   return (
     <main className="drawer-view" aria-label="Drawer" tabIndex={-1}>
@@ -30,7 +30,7 @@ export function DrawerView() {
           <ValueAxis />
           <FilterBar />
           <LineTable />
-          {total === 0 && <p className="drawer-none">No line fits this filter. Take a word or a choice away, or show all.</p>}
+          {isNothing && <p className="drawer-none">No line fits this filter. Take a word or a choice away, or show all.</p>}
         </>
       )}
     </main>

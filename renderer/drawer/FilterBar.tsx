@@ -15,6 +15,7 @@ export function FilterBar() {
   const drawer = useDrawer();
   const filter = useDrawerState((s) => s.filter);
   const total = useDrawerState((s) => s.total);
+  const isLooking = useDrawerState((s) => s.isLooking);
   const all = useDrawerState((s) => s.info?.lines);
   const isFiltered = Object.keys(EVERY_LINE).some((key) => JSON.stringify(filter[key as keyof LineFilter]) !== JSON.stringify(EVERY_LINE[key as keyof LineFilter]));
   return (
@@ -40,7 +41,7 @@ export function FilterBar() {
         </button>
       )}
       <p className="filter-count" role="status">
-        {total === null ? "…" : isFiltered && all !== undefined ? `${counted(total, "line")} of ${all.toLocaleString("en").replaceAll(",", " ")}` : counted(total, "line")}
+        {total === null || isLooking ? "…" : isFiltered && all !== undefined ? `${counted(total, "line")} of ${all.toLocaleString("en").replaceAll(",", " ")}` : counted(total, "line")}
       </p>
     </div>
   );

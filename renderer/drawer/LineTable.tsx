@@ -11,6 +11,7 @@ import { valueText } from "./line-text.ts";
 import { isChosen, NOTHING_CHOSEN, toggled } from "./selection.ts";
 
 const ROW = 30;
+const AHEAD = 150;
 const TEMPLATE = COLUMNS.map((column, index) => (index === COLUMNS.length - 1 ? `minmax(${column.width}px, 1fr)` : `${column.width}px`)).join(" ");
 const WIDTH = COLUMNS.reduce((sum, column) => sum + column.width, 0);
 
@@ -29,12 +30,13 @@ export function LineTable() {
   const [editing, setEditing] = useState<number | null>(null);
   // Only this component asks it anything, and anew in every render.
   // oxlint-disable-next-line react/incompatible-library
-  const rows = useVirtualizer({ count: total, getScrollElement: () => scroller.current, estimateSize: () => ROW, overscan: 12, paddingStart: ROW, scrollPaddingStart: ROW });
+  const rows = useVirtualizer({ count: total, getScrollElement: () => scroller.current, estimateSize: () => ROW, overscan: 8, paddingStart: ROW, scrollPaddingStart: ROW });
   const items = rows.getVirtualItems();
   const [first, last] = [items[0]?.index ?? 0, items.at(-1)?.index ?? 0];
 
   useEffect(() => {
-    drawer.windows.want(first, last);
+    // A little beyond what is in sight, so that a fling finds most of it there.
+    drawer.windows.want(first - AHEAD, last + AHEAD);
   }, [drawer, first, last, seen]);
 
   const go = (row: number, column: number): void => {

@@ -30,6 +30,8 @@ export interface DrawerState {
   /** Goes up whenever the windows hold something else. */
   readonly seen: number;
   readonly total: number | null;
+  /** What is shown belongs to the filter before. */
+  readonly isLooking: boolean;
   readonly facets: Facets | null;
   readonly axisKind: AxisKind;
   readonly values: readonly OwnedValue[];
@@ -76,6 +78,8 @@ export interface Drawer {
 const STEPS_KEPT = 100;
 const AXIS_KINDS: readonly StockKind[] = ["resistor", "capacitor", "inductor"];
 const PAUSE = 120;
+/** From here on a change takes long enough to be told of before it is done. */
+const MANY = 1000;
 
 function isAxisKind(kind: StockKind | undefined): kind is AxisKind {
   return kind !== undefined && AXIS_KINDS.includes(kind);
@@ -84,13 +88,13 @@ function isAxisKind(kind: StockKind | undefined): kind is AxisKind {
 /** Builds the drawer's state over a connection. */
 export function createDrawer(host: HostClient, ui: Pick<Ui, "notify">): Drawer {
   const store = createStore<DrawerState>(() => ({
-    info: null, unusable: null, filter: EVERY_LINE, sort: { by: "value", descending: false }, seen: 0, total: null, facets: null, axisKind: "resistor", values: [],
+    info: null, unusable: null, filter: EVERY_LINE, sort: { by: "value", descending: false }, seen: 0, total: null, isLooking: false, facets: null, axisKind: "resistor", values: [],
     chosen: NOTHING_CHOSEN, at: { row: 0, column: 0 }, steps: [],
   }));
   const { getState: state } = store;
   const windows = new LineWindows(
     (offset, limit) => host.call("drawer.lines", { filter: state().filter, sort: state().sort, offset, limit }),
-    () => store.setState(({ seen, at }) => ({ seen: seen + 1, total: windows.total, at: { ...at, row: Math.min(at.row, Math.max(0, (windows.total ?? 1) - 1)) } })),
+    () => store.setState(({ seen, at }) => ({ seen: seen + 1, total: windows.total, isLooking: false, at: { ...at, row: Math.min(at.row, Math.max(0, (windows.total ?? 1) - 1)) } })),
     fail,
   );
 
@@ -139,13 +143,14 @@ export function createDrawer(host: HostClient, ui: Pick<Ui, "notify">): Drawer {
   function refresh(): void {
     if (state().info === null && state().unusable === null) return;
     windows.refresh();
-    store.setState(({ seen }) => ({ seen: seen + 1 }));
+    // Of an empty list nothing can stay on the screen meanwhile.
+    store.setState(({ seen, total }) => ({ seen: seen + 1, isLooking: total === 0 }));
     readInfo();
     readCountsSoon();
   }
 
   function restart(change: Partial<DrawerState>): void {
-    store.setState({ ...change, chosen: NOTHING_CHOSEN, at: { row: 0, column: state().at.column } });
+    store.setState({ ...change, isLooking: true, chosen: NOTHING_CHOSEN, at: { row: 0, column: state().at.column } });
     windows.restart();
     windows.want(0, 0);
     readCountsSoon();
@@ -154,9 +159,10 @@ export function createDrawer(host: HostClient, ui: Pick<Ui, "notify">): Drawer {
   host.on("drawer.changed", refresh);
 
   const way = (): ReturnType<typeof wayOf> => wayOf(state().steps);
-  async function travel(step: DrawerStep | null, word: string): Promise<void> {
+  async function travel(step: DrawerStep | null, word: "Undone" | "Done again"): Promise<void> {
     if (step === null) return;
     const label = stepLabel(step, state().steps);
+    ui.notify(`${word === "Undone" ? "Undoing" : "Doing again"} in the drawer: ${label}…`);
     await host.call("drawer.undo", { step: step.id });
     ui.notify(`${word} in the drawer: ${label}.`);
     refresh();
@@ -220,6 +226,7 @@ export function createDrawer(host: HostClient, ui: Pick<Ui, "notify">): Drawer {
       refresh();
     },
     async editLines(ids, fields) {
+      if (ids.length > MANY) ui.notify(`Changing ${counted(ids.length, "line")}…`);
       const { changed } = await host.call("drawer.editLines", { ids: [...ids], fields });
       ui.notify(changed === 0 ? "Nothing had to be changed." : changed === 1 && ids.length === 1 ? `Changed ${ids[0]}.` : `Changed ${counted(changed, "line")}.`);
       refresh();

@@ -47,7 +47,8 @@ export class LineWindows {
   /** Sees to it that a range of places is there, or will be. */
   want(from: number, to: number): void {
     const first = Math.max(0, Math.floor(from / WINDOW));
-    const last = Math.max(first, Math.floor(Math.max(0, to) / WINDOW));
+    const end = this.#total === null || this.#isOther ? to : Math.min(to, this.#total - 1);
+    const last = Math.max(first, Math.floor(Math.max(0, end) / WINDOW));
     for (let window = first; window <= last; window++) if (!this.#fresh.has(window) && !this.#asked.has(window)) void this.#ask(window);
   }
 
