@@ -105,9 +105,13 @@ function LoopsTable({ stability, nameOf, selected }: LoopsTableProps) {
               type
             </th>
             <th scope="col">phase margin</th>
-            <th scope="col">where its loop gain is 1</th>
+            <th scope="col" title="Where the loop gain passes 1">
+              crossover
+            </th>
             <th scope="col">gain margin</th>
-            <th scope="col">where its angle is 180°</th>
+            <th scope="col" title="Where the loop gain turns by 180°">
+              at 180°
+            </th>
           </tr>
         </thead>
         <tbody>
