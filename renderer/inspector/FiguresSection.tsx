@@ -18,7 +18,7 @@ interface Row {
 
 const RESONANCE: readonly Row[] = [
   { label: "isolated", cell: (_peak, isolated) => formatDb(isolated) },
-  { label: "taken by neighbours", cell: (peak, isolated) => formatDb(peak.peak - isolated) },
+  { label: "lost in circuit", cell: (peak, isolated) => formatDb(peak.peak - isolated) },
   { label: "peak", cell: (peak) => formatDb(peak.peak), isKey: true },
   { label: "centre", cell: (peak) => hertz(peak.frequency), isKey: true },
   { label: "Q", cell: (peak) => plain(peak.q), isKey: true },

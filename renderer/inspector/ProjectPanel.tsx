@@ -71,7 +71,7 @@ function Summary() {
             <span className="is-circuit-figure">{range(peaks.map((f) => f.boost.peak), (v) => formatDb(v))}</span>
           </div>
           <div className="row">
-            <span className="row-label">taken by neighbours</span>
+            <span className="row-label">lost in circuit</span>
             <span className="is-circuit-figure">{range(peaks.map((f) => f.interactionLoss), (v) => `${v.toFixed(1)} dB`)}</span>
           </div>
         </>

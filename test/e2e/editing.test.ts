@@ -43,7 +43,7 @@ describe("what the screen says is what the core computes", () => {
       expect(await session.panel.figure("centre")).toEqual([formatValue(wanted.boost.frequency!, "frequency"), formatValue(wanted.cut.frequency!, "frequency")]);
       expect(await session.panel.figure("Q")).toEqual([formatValue(wanted.boost.q!, "plain"), formatValue(wanted.cut.q!, "plain")]);
       expect(await session.panel.figure("isolated")).toEqual([formatDb(wanted.isolatedBoost), formatDb(-wanted.isolatedBoost)]);
-      expect((await session.panel.figure("taken by neighbours"))[0]).toBe(formatDb(-wanted.interactionLoss));
+      expect((await session.panel.figure("lost in circuit"))[0]).toBe(formatDb(-wanted.interactionLoss));
       expect(await session.panel.liveGain()).toBe(`${formatDb(gainAt(demo, id, demo.blocks.find((b) => b.id === id)!.slider!.position), 2)} now`);
     }
     expect(await session.page.title()).toContain(demo.name);

@@ -147,6 +147,6 @@ export function figuresText(figures: readonly BandFigures[]): string {
     f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q),
     formatDb(f.cut.peak), hertz(f.cut.frequency), plain(f.cut.q),
   ]);
-  const head = ["band", "kind", "isolated boost", "boost in circuit", "taken by neighbours", "boost centre", "boost Q", "cut in circuit", "cut centre", "cut Q"];
+  const head = ["band", "kind", "isolated boost", "boost in circuit", "lost in circuit", "boost centre", "boost Q", "cut in circuit", "cut centre", "cut Q"];
   return [head, ...rows].map((row) => row.join("\t")).join("\n");
 }
