@@ -53,7 +53,7 @@ export function SheetArea() {
       },
       onCursor: (cursor) => ui.patch({ cursor }),
     };
-  }, [editor, ui]);
+  }, [context, editor, ui]);
 
   return (
     <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
