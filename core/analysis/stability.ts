@@ -6,6 +6,7 @@ import type { Netlist } from "../net/netlist.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { ComplexLu } from "../num/complex-lu.ts";
 import { findRoot } from "../num/roots.ts";
+import { lawResults } from "./laws.ts";
 
 /** The loop of one op amp, closed by the board as loaded. Null where the loop gain never crosses. */
 export interface LoopMargin {
@@ -34,55 +35,84 @@ const [FROM, TO, PER_DECADE] = [100, 10e9, 10];
  */
 export function loopMargins(board: Board, opts: ValueOpts = {}): LoopMargin[] {
   const loops = new Loops(expandBoard(board, opts));
-  const count = loops.sources.length;
-  if (count === 0) return [];
-  const points = Math.round(Math.log10(TO / FROM) * PER_DECADE) + 1;
-  const ln = Float64Array.from({ length: points }, (_, i) => Math.log(FROM) + (i / PER_DECADE) * Math.LN10);
-  const gain = Array.from({ length: count }, () => ({ re: new Float64Array(points), im: new Float64Array(points) }));
-  for (let i = 0; i < points; i++) {
-    loops.tune(Math.exp(ln[i]));
-    for (let k = 0; k < count; k++) [gain[k].re[i], gain[k].im[i]] = loops.gain(k);
-  }
+  if (loops.sources.length === 0) return [];
+  const grid = scanGrid(board, opts);
+  const samples = grid.map((ln): Sample[] => {
+    loops.tune(Math.exp(ln));
+    return loops.sources.map((_, k) => sampleAt(ln, loops.gain(k)));
+  });
   return loops.sources.map((source, k): LoopMargin => {
-    const { re, im } = gain[k];
-    const at = (x: number): readonly [number, number] => {
-      loops.tune(Math.exp(x));
-      return loops.gain(k);
+    const at = (ln: number): Sample => {
+      loops.tune(Math.exp(ln));
+      return sampleAt(ln, loops.gain(k));
     };
-    const lnSize = (x: number): number => Math.log(Math.hypot(...at(x)));
-    let angle = Math.atan2(im[0], re[0]);
-    let phaseMargin: number | null = null;
-    let crossover: number | null = null;
-    let gainMargin: number | null = null;
-    let phaseCrossing: number | null = null;
-    for (let i = 1; i < points; i++) {
-      const before = Math.log(Math.hypot(re[i - 1], im[i - 1]));
-      const after = Math.log(Math.hypot(re[i], im[i]));
-      if (before > 0 !== after > 0) {
-        const x = findRoot(lnSize, ln[i - 1], ln[i], 1e-9, before, after);
-        const [tr, ti] = at(x);
-        const margin = 180 - Math.abs(angle + turnBetween(at, ln[i - 1], x, [re[i - 1], im[i - 1]], [tr, ti])) * (180 / Math.PI);
-        if (phaseMargin === null || margin < phaseMargin) [phaseMargin, crossover] = [margin, Math.exp(x)];
-      }
-      if (im[i - 1] > 0 !== im[i] > 0 && (re[i - 1] < 0 || re[i] < 0)) {
-        const x = findRoot((y) => at(y)[1], ln[i - 1], ln[i], 1e-9, im[i - 1], im[i]);
-        const [tr] = at(x);
-        const margin = -20 * Math.log10(Math.abs(tr));
-        if (tr < 0 && (gainMargin === null || Math.abs(margin) < Math.abs(gainMargin))) [gainMargin, phaseCrossing] = [margin, Math.exp(x)];
-      }
-      angle += turnBetween(at, ln[i - 1], ln[i], [re[i - 1], im[i - 1]], [re[i], im[i]]);
-    }
+    const margins = new Margins(at);
+    for (let i = 1; i < samples.length; i++) margins.step(samples[i - 1][k], samples[i][k], 0);
+    const { phaseMargin, crossover, gainMargin, phaseCrossing } = margins;
     return { source, block: source.slice(0, source.lastIndexOf(".")), phaseMargin, crossover, gainMargin, phaseCrossing };
   });
 }
 
-/** How far a curve's angle turns between two of its points, radians; halved until no step leaves doubt about the way round. */
-function turnBetween(at: (x: number) => readonly [number, number], from: number, to: number, start: readonly [number, number], end: readonly [number, number], depth = 0): number {
-  const turn = Math.atan2(end[1] * start[0] - end[0] * start[1], end[0] * start[0] + end[1] * start[1]);
-  if (Math.abs(turn) < 1 || depth === 12) return turn;
-  const middle = (from + to) / 2;
-  const between = at(middle);
-  return turnBetween(at, from, middle, start, between, depth + 1) + turnBetween(at, middle, to, between, end, depth + 1);
+/** ln f of the scan: even steps, and the resonances of the legs, where a loop gain can dip and be back within a step. */
+function scanGrid(board: Board, opts: ValueOpts): number[] {
+  const points = Math.round(Math.log10(TO / FROM) * PER_DECADE) + 1;
+  const even = Array.from({ length: points }, (_, i) => Math.log(FROM) + (i / PER_DECADE) * Math.LN10);
+  const resonances = board.chain.flatMap((item) => item.bands.map((band) => lawResults(band, item.block, opts).f0)).filter((f0) => f0 > FROM && f0 < TO);
+  return [...even, ...resonances.map(Math.log)].sort((a, b) => a - b);
+}
+
+/** The loop gain at a frequency: ln f, ln |T|, and T. */
+interface Sample {
+  readonly ln: number;
+  readonly size: number;
+  readonly re: number;
+  readonly im: number;
+}
+
+function sampleAt(ln: number, [re, im]: readonly [number, number]): Sample {
+  return { ln, size: Math.log(Math.hypot(re, im)), re, im };
+}
+
+/** Angle from one sample to the next, radians. */
+function turnOf(from: Sample, to: Sample): number {
+  return Math.atan2(to.im * from.re - to.re * from.im, to.re * from.re + to.im * from.im);
+}
+
+/** Walks along a loop gain from low frequencies up, follows its angle and keeps the smallest margins. */
+class Margins {
+  phaseMargin: number | null = null;
+  crossover: number | null = null;
+  gainMargin: number | null = null;
+  phaseCrossing: number | null = null;
+  readonly #at: (ln: number) => Sample;
+  #angle: number | undefined;
+
+  constructor(at: (ln: number) => Sample) {
+    this.#at = at;
+  }
+
+  step(from: Sample, to: Sample, depth: number): void {
+    this.#angle ??= Math.atan2(from.im, from.re);
+    const turn = turnOf(from, to);
+    // Steps that leave doubt about the way round, or about a dip in between, are halved.
+    if (depth < 14 && to.ln > from.ln && (Math.abs(turn) > 0.7 || Math.abs(to.size - from.size) > 1.5)) {
+      const middle = this.#at((from.ln + to.ln) / 2);
+      this.step(from, middle, depth + 1);
+      this.step(middle, to, depth + 1);
+      return;
+    }
+    if (from.size > 0 !== to.size > 0) {
+      const sample = this.#at(findRoot((ln) => this.#at(ln).size, from.ln, to.ln, 1e-9, from.size, to.size));
+      const margin = 180 - Math.abs(this.#angle + turnOf(from, sample)) * (180 / Math.PI);
+      if (this.phaseMargin === null || margin < this.phaseMargin) [this.phaseMargin, this.crossover] = [margin, Math.exp(sample.ln)];
+    }
+    if (from.im > 0 !== to.im > 0 && (from.re < 0 || to.re < 0)) {
+      const sample = this.#at(findRoot((ln) => this.#at(ln).im, from.ln, to.ln, 1e-9, from.im, to.im));
+      const margin = -20 * Math.log10(Math.abs(sample.re));
+      if (sample.re < 0 && (this.gainMargin === null || Math.abs(margin) < Math.abs(this.gainMargin))) [this.gainMargin, this.phaseCrossing] = [margin, Math.exp(sample.ln)];
+    }
+    this.#angle += turn;
+  }
 }
 
 /** The smallest phase margin of a board; undefined where no loop crosses. */
