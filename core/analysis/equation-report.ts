@@ -137,7 +137,8 @@ function stageLines(stage: Block, ideal: IdealTransfer | undefined, gain: number
 }
 
 function nodeLines(id: string, equations: BoardEquations, solved: SolvedEquations | undefined, style: EquationStyle): ReportLine[] {
-  const isOf = (name: string): boolean => name.startsWith(`${id}.`);
+  // Ids may have dots in them; the names of nodes and parts within a block have none.
+  const isOf = (name: string): boolean => name.slice(0, name.lastIndexOf(".")) === id;
   const lines: ReportLine[] = [];
   for (const equation of equations.nodes.filter((e) => isOf(e.node))) {
     lines.push({ text: nodeEquationText(equation, style) });

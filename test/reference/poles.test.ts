@@ -11,7 +11,7 @@ type Polynomial = readonly number[];
 
 /** Coefficients from the constant up. */
 function times(a: Polynomial, b: Polynomial): number[] {
-  const product = new Array<number>(a.length + b.length - 1).fill(0);
+  const product = Array.from({ length: a.length + b.length - 1 }, () => 0);
   a.forEach((x, i) => b.forEach((y, j) => (product[i + j] += x * y)));
   return product;
 }
