@@ -23,6 +23,22 @@ const GESTURES: readonly (readonly [what: string, keys: readonly string[]])[] = 
   ["Edit a value in place", ["double-click"]],
 ];
 
+/** The same in the drawer. */
+const DRAWER_KEYS: readonly (readonly [what: string, keys: readonly string[]])[] = [
+  ["Walk through the table", ["← ↑ → ↓"]],
+  ["A page on or back", ["PgUp", "PgDn"]],
+  ["First and last column", ["Home", "End"]],
+  ["First and last line", ["Ctrl + Home", "Ctrl + End"]],
+  ["Choose a line, or not", ["Space"]],
+  ["Choose a range", ["Shift + ↑", "Shift + ↓"]],
+  ["Choose all that fit the filter", ["Ctrl + A"]],
+  ["Edit the cell, or sort by the head", ["Enter", "F2"]],
+  ["Take the cell and go down, or on", ["Enter", "Tab"]],
+  ["Give an edit up; choose none", ["Esc"]],
+  ["Take lines out of use", ["Del"]],
+  ["Show the lines about a value of the axis", ["← →", "Enter"]],
+];
+
 /** All keys, from the same table that makes them work. */
 export function KeysDialog({ close }: DialogProps<"keys">) {
   return (
@@ -47,6 +63,14 @@ export function KeysDialog({ close }: DialogProps<"keys">) {
           <h3>Hands</h3>
           <dl>
             {GESTURES.map(([what, keys]) => (
+              <KeyRow key={what} what={what} keys={keys} />
+            ))}
+          </dl>
+        </section>
+        <section className="keys-group">
+          <h3>In the drawer</h3>
+          <dl>
+            {DRAWER_KEYS.map(([what, keys]) => (
               <KeyRow key={what} what={what} keys={keys} />
             ))}
           </dl>

@@ -43,14 +43,25 @@ export function ImportDialog({ close }: DialogProps<"drawerImport">) {
   const [problem, setProblem] = useState<string | null>(null);
   const picker = useRef<HTMLInputElement>(null);
   const turn = useRef(0);
+  /** The trial that is under way; a later one, or the dialog's end, stops it. */
+  const trial = useRef<string | null>(null);
+  const [trialProgress, setTrialProgress] = useState<Progress | null>(null);
   const { host } = drawer;
 
-  useEffect(() => {
-    if (job === null) return undefined;
-    return host.on("drawer.importProgress", (now) => {
-      if (now.job === job) setProgress(now);
-    });
-  }, [host, job]);
+  useEffect(
+    () =>
+      host.on("drawer.importProgress", (now) => {
+        if (now.job === job) setProgress(now);
+        if (now.job === trial.current) setTrialProgress(now);
+      }),
+    [host, job],
+  );
+  useEffect(
+    () => () => {
+      if (trial.current !== null) void host.call("drawer.cancelImport", { job: trial.current }).catch(() => undefined);
+    },
+    [host],
+  );
 
   /** Looks at the table again, and tries the whole of it without keeping anything. */
   const look = async (chosen: Chosen, reading: TableReading | null, mapping: ImportMapping | null): Promise<void> => {
@@ -58,14 +69,20 @@ export function ImportDialog({ close }: DialogProps<"drawerImport">) {
     setProblem(null);
     setRefusal(null);
     setCheck(null);
+    setTrialProgress(null);
+    const earlier = trial.current;
+    trial.current = `trial-${nextJob++}`;
     try {
+      if (earlier !== null) await host.call("drawer.cancelImport", { job: earlier });
       const next = await host.call("drawer.importPreview", { source: { text: chosen.text }, reading, mapping });
       if (mine !== turn.current) return;
       setPreview(next);
-      const tried = await host.call("drawer.import", { job: `check-${nextJob++}`, source: { text: chosen.text }, reading: next.reading, mapping: next.mapping, skipBadRows: true, dryRun: true });
+      const tried = await host.call("drawer.import", { job: trial.current, source: { text: chosen.text }, reading: next.reading, mapping: next.mapping, skipBadRows: true, dryRun: true });
       if (mine === turn.current) setCheck(tried);
     } catch (error) {
       if (mine === turn.current) setProblem(reasonOf(error));
+    } finally {
+      if (mine === turn.current) trial.current = null;
     }
   };
 
@@ -165,7 +182,7 @@ export function ImportDialog({ close }: DialogProps<"drawerImport">) {
             <>
               <ImportMappingTable preview={preview} name={file.name} onReading={changeReading} onMapping={(mapping) => void look(file, preview.reading, mapping)} />
               <p className="import-verdict" role="status">
-                {check === null ? "Trying every row…" : `${counted(check.rows, "row")}: ${check.added} new, ${check.updated} updated, ${check.unchanged} as they are, ${bad} refused.`}
+                {check === null ? `Trying every row${trialProgress?.phase === "writing" ? `: ${trialProgress.done} of ${trialProgress.total}` : ""}…` : `${counted(check.rows, "row")}: ${check.added} new, ${check.updated} updated, ${check.unchanged} as they are, ${bad} refused.`}
               </p>
               {check !== null && bad > 0 && (
                 <>

@@ -1,4 +1,4 @@
-import { useVirtualizer } from "@tanstack/react-virtual";
+import { defaultRangeExtractor, useVirtualizer } from "@tanstack/react-virtual";
 import { memo, useCallback, useEffect, useId, useLayoutEffect, useRef, useState, type KeyboardEvent, type MouseEvent, type ReactNode } from "react";
 import type { DrawerLine, LineSort } from "../../core/contract/drawer-schemas.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
@@ -12,6 +12,7 @@ import { isChosen, NOTHING_CHOSEN, toggled } from "./selection.ts";
 
 const ROW = 30;
 const AHEAD = 150;
+const TICK_REACH = 30;
 const TEMPLATE = COLUMNS.map((column, index) => (index === COLUMNS.length - 1 ? `minmax(${column.width}px, 1fr)` : `${column.width}px`)).join(" ");
 const WIDTH = COLUMNS.reduce((sum, column) => sum + column.width, 0);
 
@@ -30,9 +31,13 @@ export function LineTable() {
   const [editing, setEditing] = useState<number | null>(null);
   // Only this component asks it anything, and anew in every render.
   // oxlint-disable-next-line react/incompatible-library
-  const rows = useVirtualizer({ count: total, getScrollElement: () => scroller.current, estimateSize: () => ROW, overscan: 8, paddingStart: ROW, scrollPaddingStart: ROW });
+  const rows = useVirtualizer({
+    count: total, getScrollElement: () => scroller.current, estimateSize: () => ROW, overscan: 8, paddingStart: ROW, scrollPaddingStart: ROW,
+    // The cell in hand stays in the page, wherever the wheel has gone: screen readers follow it there.
+    rangeExtractor: (range) => [...new Set([...defaultRangeExtractor(range), ...(at.row >= 0 && at.row < total ? [at.row] : [])])].sort((a, b) => a - b),
+  });
   const items = rows.getVirtualItems();
-  const [first, last] = [items[0]?.index ?? 0, items.at(-1)?.index ?? 0];
+  const [first, last] = [rows.range?.startIndex ?? 0, rows.range?.endIndex ?? 0];
 
   useEffect(() => {
     // A little beyond what is in sight, so that a fling finds most of it there.
@@ -100,7 +105,8 @@ export function LineTable() {
     (event: MouseEvent, row: number, column: number, line: DrawerLine): void => {
       scroller.current?.focus({ preventScroll: true });
       drawer.setPlace({ row, column });
-      const isOnTick = event.target instanceof Element && event.target.closest(".line-tick") !== null;
+      // The tick and the room about it: it is small.
+      const isOnTick = column === 0 && event.clientX - event.currentTarget.getBoundingClientRect().left < TICK_REACH;
       if (event.shiftKey) {
         void drawer.chooseRange(anchor.current, row);
         return;

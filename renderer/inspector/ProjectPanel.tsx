@@ -2,6 +2,8 @@ import { useState } from "react";
 import { formatDb, formatValue, parseValue } from "../../core/units.ts";
 import { setField } from "../../core/model/edit.ts";
 import type { Project } from "../../core/model/project.ts";
+import { DIVIDER } from "../../core/drawer/roles.ts";
+import { SwapSection } from "../drawer/SwapSection.tsx";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { sizeText } from "../panels/TopLine.tsx";
 import { SupplySection } from "./SupplySection.tsx";
@@ -23,6 +25,7 @@ export function ProjectPanel() {
       <Summary />
       <Notes notes={notes} />
       <SupplySection supply={supply} />
+      {supply.kind === "single" && <SwapSection block={DIVIDER} />}
       <section className="panel-section" aria-label="Surroundings">
         <div className="row">
           <span className="row-label">temperature</span>

@@ -1,6 +1,8 @@
-import { readFile } from "node:fs/promises";
+import { readFile, rm, writeFile } from "node:fs/promises";
+import { join } from "node:path";
 import type { Browser, Locator } from "playwright-core";
 import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test } from "vitest";
+import { openDrawer } from "../../app/store/drawer-store.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { launchBrowser } from "../helpers/browser.ts";
 import { DEMO, Session } from "./session.ts";
@@ -216,5 +218,42 @@ describe("the drawer", () => {
     await session.keyboard.undo();
     await session.keyboard.undo();
     expect(await session.subtitle()).toContain("read-only demo");
+  });
+});
+
+describe("a drawer that cannot be used", () => {
+  test("damaged: the copy is named, the file stays, and the next try goes on once it is mended", async () => {
+    const file = join(session.home, "drawer.sqlite");
+    await writeFile(file, "SQLite format 3\0 cut short");
+    await session.keyboard.press("Alt+Shift+D");
+    const alert = session.page.getByRole("alert", { name: "The drawer cannot be used" });
+    await alert.waitFor();
+    const text = await alert.innerText();
+    expect(text).toContain("is damaged");
+    const copy = /The copy: (.*)/.exec(text)![1];
+    expect(await readFile(copy, "utf8")).toBe("SQLite format 3\0 cut short");
+    await alert.getByRole("button", { name: "Try again" }).click();
+    await alert.waitFor();
+    await rm(file);
+    await alert.getByRole("button", { name: "Try again" }).click();
+    await session.page.getByRole("heading", { name: "Nothing in the drawer yet" }).waitFor();
+  });
+
+  test("newer than the program: both versions are named", async () => {
+    const file = join(session.home, "drawer.sqlite");
+    (await openDrawer({ path: file, now: () => new Date() })).close();
+    const bytes = await readFile(file);
+    // Where the format keeps the version that its user gave it.
+    bytes.writeUInt32BE(99, 60);
+    await writeFile(file, bytes);
+    await session.keyboard.press("Alt+Shift+D");
+    const alert = session.page.getByRole("alert", { name: "The drawer cannot be used" });
+    await alert.waitFor();
+    expect(await alert.innerText()).toMatch(/version 99, this program knows versions up to \d/);
+    expect((await readFile(file)).equals(bytes)).toBe(true);
+    // The board does not mind.
+    await session.keyboard.press("Alt+Shift+B");
+    await session.sheet.pick("b1k");
+    expect(await session.panel.value("series C")).toBe("180 nF");
   });
 });

@@ -67,7 +67,7 @@ describe("a board and the starter drawer", () => {
     const fillings = [{ role, filling: other.filling }];
     const ghost = ghostOf(moved, { label: candidateName(other), change: (p) => filledProject(p, fillings) }, ["b1k"], RANGE)!;
     const wanted = respond(compileBoard(resolveBoard(filledProject(moved, fillings))), ghost.total.frequency);
-    for (const i of [0, 120, 240, 360, 480]) expect(ghost.total.gain[i]).toBeCloseTo(wanted.gain[i]!, 9);
+    for (const i of [0, 120, 240, 360, 480]) expect(ghost.total.gain[i]).toBeCloseTo(wanted.gain[i], 9);
     expect(Math.max(...ghost.alone!.gain)).toBeGreaterThan(6);
     expect(ghostOf({ ...moved, wires: [] }, { label: "", change: (p) => p }, [], RANGE)).toBeNull();
     expect(effectText(other)).toMatch(/^peak.*centre.*Q/);
@@ -86,7 +86,7 @@ describe("a board and the starter drawer", () => {
 
   test("lines that the drawer does not have are left out, and the rest is billed", async () => {
     const filled = fillBoard(resolveBoard(project), await linesForBoard(host, resolveBoard(project))).project;
-    const strange = { ...filled, blocks: filled.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, seriesR: { ...b.parts!.seriesR!, stock: "R-NOWHERE" } } } : b)) };
+    const strange = { ...filled, blocks: filled.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, seriesR: { ...b.parts!.seriesR, stock: "R-NOWHERE" } } } : b)) };
     const board = resolveBoard(strange);
     const lines = await namedLines(host, board);
     expect(lines.map((l) => l.id)).not.toContain("R-NOWHERE");
@@ -103,7 +103,7 @@ describe("a board and the starter drawer", () => {
   });
 
   test("an underrated capacitor is found out", async () => {
-    const weak = (await host.call("drawer.candidates", { kind: "capacitor", value: 1e-5, within: 0.5, type: null, technology: [], ratingFrom: null, toleranceTo: null, availableFrom: 0, limit: 50 })).lines[0]!;
+    const weak = (await host.call("drawer.candidates", { kind: "capacitor", value: 1e-5, within: 0.5, type: null, technology: [], ratingFrom: null, toleranceTo: null, availableFrom: 0, limit: 50 })).lines[0];
     const line = { ...weak, technology: "film", rating: 1 };
     const blocks = project.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, seriesC: { ...b.parts!.seriesC, stock: line.id } } } : b));
     const [first] = findingsOf(resolveBoard({ ...project, blocks }), [line]);
