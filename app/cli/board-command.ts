@@ -108,9 +108,10 @@ export function printJson(value: unknown): void {
   process.stdout.write(`${text}\n`);
 }
 
-/** Columns of text, numbers to the right; the first column to the left. */
+/** Columns of text: those that hold figures to the right, words and the first column to the left. */
 export function printTable(head: readonly string[], rows: readonly (readonly string[])[]): void {
   const widths = head.map((title, column) => Math.max(title.length, ...rows.map((row) => row[column].length)));
-  const line = (cells: readonly string[]): string => cells.map((cell, column) => (column === 0 ? cell.padEnd(widths[0]) : cell.padStart(widths[column]))).join("  ").trimEnd();
+  const isFigures = head.map((_, column) => column > 0 && rows.every((row) => /^([+−-]?[\d.]|–|$)/.test(row[column])));
+  const line = (cells: readonly string[]): string => cells.map((cell, column) => (isFigures[column] ? cell.padStart(widths[column]) : cell.padEnd(widths[column]))).join("  ").trimEnd();
   process.stdout.write(`${[head, ...rows].map(line).join("\n")}\n`);
 }
