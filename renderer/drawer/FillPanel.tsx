@@ -71,7 +71,7 @@ export function FillPanel() {
           Take {counted(fillings.length, "part")}
         </button>
         <button type="button" className="button" onClick={close}>
-          Leave the board as it is
+          Leave it as it is
         </button>
       </div>
     </>
@@ -125,7 +125,7 @@ function WishForm({ wish, onChange }: { readonly wish: Wish; readonly onChange: 
       </label>
       <label>
         at most a unit
-        <input className="text-input is-small" placeholder="25 EUR" value={texts.ceiling} onChange={(event) => read({ ...texts, ceiling: event.target.value })} />
+        <input className="text-input is-small" placeholder="any" aria-label="Most that a unit may cost, such as 25 EUR" value={texts.ceiling} onChange={(event) => read({ ...texts, ceiling: event.target.value })} />
       </label>
       <label className="check">
         <input type="checkbox" checked={wish.keep} onChange={(event) => onChange({ ...wish, keep: event.target.checked })} />

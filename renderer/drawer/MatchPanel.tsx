@@ -78,7 +78,7 @@ export function MatchPanel() {
           Take {counted(result?.matched.length ?? 0, "piece")}
         </button>
         <button type="button" className="button" onClick={close}>
-          Leave the board as it is
+          Leave it as it is
         </button>
       </div>
     </>
