@@ -5,7 +5,10 @@
 import { cpus } from "node:os";
 import { parseArgs } from "node:util";
 import { complex, lusolve, type Complex } from "mathjs";
+import { lossAccount } from "../../core/analysis/interaction.ts";
+import { polesAndZeros } from "../../core/analysis/poles.ts";
 import { angular, logFrequencies } from "../../core/analysis/response.ts";
+import { loopMargins } from "../../core/analysis/stability.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { expandBoard } from "../../core/net/expand.ts";
 import { describeNetlist, nodalTransfer } from "../../core/net/nodal.ts";
@@ -74,12 +77,16 @@ const star = starMs(tenBands);
 const slider = sliderMs(tenBands);
 const nodal = nodalMs(tenBands);
 const reference = mathjsMs(tenBands);
+const thirtyOneBands = resolveBoard(gyratorBoard(31));
+const poles = { tenMs: median(60, 10, () => polesAndZeros(tenBands)), thirtyOneMs: median(9, 2, () => polesAndZeros(thirtyOneBands)) };
+const margins = { tenMs: median(60, 10, () => loopMargins(tenBands)), thirtyOneMs: median(9, 2, () => loopMargins(thirtyOneBands)) };
+const account = { tenMs: median(30, 5, () => lossAccount(tenBands, "b1000")), thirtyOneMs: median(9, 2, () => lossAccount(thirtyOneBands, "b16")) };
 const growth = [10, 20, 31, 62].map((bands) => ({ bands, starMs: starMs(resolveBoard(gyratorBoard(bands))) }));
 const choose = benchChoose(median);
 const drawer = await benchDrawer(median);
 
 if (values.json) {
-  process.stdout.write(`${JSON.stringify({ tenBands: { points: POINTS, starMs: star, sliderMs: slider, nodalMs: nodal, mathjsMs: reference.ms }, growth, choose, drawer }, null, 2)}\n`);
+  process.stdout.write(`${JSON.stringify({ tenBands: { points: POINTS, starMs: star, sliderMs: slider, nodalMs: nodal, mathjsMs: reference.ms }, growth, poles, margins, account, choose, drawer }, null, 2)}\n`);
 } else {
   const row = (what: string, ms: number): string => `| ${what} | ${ms < 10 ? ms.toFixed(3) : ms.toFixed(0)} | ${(ms / star).toFixed(ms / star < 10 ? 2 : 0)} |`;
   const lines = [
@@ -97,6 +104,10 @@ if (values.json) {
     "| bands | ms | ms a band |",
     "| ---: | ---: | ---: |",
     ...growth.map(({ bands, starMs: ms }) => `| ${bands} | ${ms.toFixed(3)} | ${(ms / bands).toFixed(4)} |`),
+    "",
+    "| analysis | ten bands, ms | 31 bands, ms |",
+    "| --- | ---: | ---: |",
+    ...([["poles and zeros", poles], ["loop margins", margins], ["account of one band's loss", account]] as const).map(([what, { tenMs, thirtyOneMs }]) => `| ${what} | ${tenMs.toFixed(1)} | ${thirtyOneMs.toFixed(0)} |`),
     "",
     "| choosing parts | ms |",
     "| --- | ---: |",
