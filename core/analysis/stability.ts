@@ -7,6 +7,7 @@ import type { ValueOpts } from "../net/values.ts";
 import { ComplexLu } from "../num/complex-lu.ts";
 import { findRoot } from "../num/roots.ts";
 import { lawResults } from "./laws.ts";
+import { unstablePoles } from "./poles.ts";
 
 /** The loop of one op amp, closed by the board as loaded. Null where the loop gain never crosses. */
 export interface LoopMargin {
@@ -15,7 +16,7 @@ export interface LoopMargin {
   readonly block: string;
   /**
    * Degrees that the loop gain's angle stays short of ±180° where its size is 1; the smallest, if it crosses more than once.
-   * Negative where the angle, followed from low frequencies, has gone past.
+   * Negative on a board that oscillates where the angle, followed from low frequencies, has gone past.
    */
   readonly phaseMargin: number | null;
   /** Hz, where the phase margin is taken. */
@@ -25,7 +26,9 @@ export interface LoopMargin {
   readonly phaseCrossing: number | null;
 }
 
-const [FROM, TO, PER_DECADE] = [100, 10e9, 10];
+/** Hz. Crossings lie in the upper range; the lower one is there to count the angle from where no leg has turned it yet. */
+const [LOWEST, FROM, TO] = [1e-4, 100, 10e9];
+const [PER_DECADE_BELOW, PER_DECADE] = [2, 10];
 
 /**
  * Loop gain of every real op amp as its return ratio T (H. W. Bode, "Network Analysis and Feedback Amplifier Design", 1945,
@@ -41,24 +44,29 @@ export function loopMargins(board: Board, opts: ValueOpts = {}): LoopMargin[] {
     loops.tune(Math.exp(ln));
     return loops.sources.map((_, k) => sampleAt(ln, loops.gain(k)));
   });
-  return loops.sources.map((source, k): LoopMargin => {
+  const marginOf = (k: number, isSigned: boolean): LoopMargin => {
+    const source = loops.sources[k];
     const at = (ln: number): Sample => {
       loops.tune(Math.exp(ln));
       return sampleAt(ln, loops.gain(k));
     };
-    const margins = new Margins(at);
+    const margins = new Margins(at, isSigned);
     for (let i = 1; i < samples.length; i++) margins.step(samples[i - 1][k], samples[i][k], 0);
     const { phaseMargin, crossover, gainMargin, phaseCrossing } = margins;
     return { source, block: source.slice(0, source.lastIndexOf(".")), phaseMargin, crossover, gainMargin, phaseCrossing };
-  });
+  };
+  const signed = loops.sources.map((_, k) => marginOf(k, true));
+  const isStable = signed.every((m) => (m.phaseMargin ?? 1) > 0) || unstablePoles(board, opts).length === 0;
+  // A loop that keeps a board stable may turn past the half circle with others in it: what is left is then its distance.
+  return isStable ? signed.map((m, k) => ((m.phaseMargin ?? 1) > 0 ? m : marginOf(k, false))) : signed;
 }
 
 /** ln f of the scan: even steps, and the resonances of the legs, where a loop gain can dip and be back within a step. */
 function scanGrid(board: Board, opts: ValueOpts): number[] {
-  const points = Math.round(Math.log10(TO / FROM) * PER_DECADE) + 1;
-  const even = Array.from({ length: points }, (_, i) => Math.log(FROM) + (i / PER_DECADE) * Math.LN10);
-  const resonances = board.chain.flatMap((item) => item.bands.map((band) => lawResults(band, item.block, opts).f0)).filter((f0) => f0 > FROM && f0 < TO);
-  return [...even, ...resonances.map(Math.log)].sort((a, b) => a - b);
+  const even = (from: number, to: number, perDecade: number): number[] =>
+    Array.from({ length: Math.round(Math.log10(to / from) * perDecade) }, (_, i) => Math.log(from) + (i / perDecade) * Math.LN10);
+  const resonances = board.chain.flatMap((item) => item.bands.map((band) => lawResults(band, item.block, opts).f0)).filter((f0) => f0 > LOWEST && f0 < TO);
+  return [...even(LOWEST, FROM, PER_DECADE_BELOW), ...even(FROM, TO, PER_DECADE), Math.log(TO), ...resonances.map(Math.log)].sort((a, b) => a - b);
 }
 
 /** The loop gain at a frequency: ln f, ln |T|, and T. */
@@ -85,10 +93,12 @@ class Margins {
   gainMargin: number | null = null;
   phaseCrossing: number | null = null;
   readonly #at: (ln: number) => Sample;
+  readonly #isSigned: boolean;
   #angle: number | undefined;
 
-  constructor(at: (ln: number) => Sample) {
+  constructor(at: (ln: number) => Sample, isSigned: boolean) {
     this.#at = at;
+    this.#isSigned = isSigned;
   }
 
   step(from: Sample, to: Sample, depth: number): void {
@@ -103,7 +113,8 @@ class Margins {
     }
     if (from.size > 0 !== to.size > 0) {
       const sample = this.#at(findRoot((ln) => this.#at(ln).size, from.ln, to.ln, 1e-9, from.size, to.size));
-      const margin = 180 - Math.abs(this.#angle + turnOf(from, sample)) * (180 / Math.PI);
+      const angle = (Math.abs(this.#angle + turnOf(from, sample)) * (180 / Math.PI)) % 360;
+      const margin = this.#isSigned ? 180 - angle : Math.abs(180 - angle);
       if (this.phaseMargin === null || margin < this.phaseMargin) [this.phaseMargin, this.crossover] = [margin, Math.exp(sample.ln)];
     }
     if (from.im > 0 !== to.im > 0 && (from.re < 0 || to.re < 0)) {
