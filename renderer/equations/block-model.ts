@@ -117,7 +117,8 @@ function towards(term: CurrentTerm): string {
 export function nodesModel(board: Board, id: string, frequency: number): NodesModel {
   const equations = boardEquations(board);
   const solved = solveEquations(board, frequency);
-  const isMine = (name: string): boolean => name.startsWith(`${id}.`);
+  // Ids may hold dots themselves, so the last one counts.
+  const isMine = (name: string): boolean => name.slice(0, name.lastIndexOf(".")) === id;
   return {
     nodes: equations.nodes.filter(({ node }) => isMine(node)).map((equation) => ({
       node: equation.node,
