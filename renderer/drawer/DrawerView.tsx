@@ -2,6 +2,8 @@ import { useEffect, useState } from "react";
 import { actionById, run } from "../editor/actions/actions.ts";
 import { useShell } from "../editor/hooks.ts";
 import "./drawer.css";
+import "./panels.css";
+import "./work.css";
 import { reasonOf } from "./drawer-store.ts";
 import { FilterBar } from "./FilterBar.tsx";
 import { useDrawer, useDrawerState } from "./hooks.ts";

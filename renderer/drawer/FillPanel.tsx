@@ -10,7 +10,7 @@ import { reasonOf } from "./drawer-store.ts";
 import { useDrawerState } from "./hooks.ts";
 import { counted, lineName, percentText } from "./line-text.ts";
 import { linesForBoard } from "./stock-query.ts";
-import { moneysText } from "./swap-text.ts";
+import { candidateName, moneysText } from "./swap-text.ts";
 import { useBoardStock } from "./use-board-stock.ts";
 
 interface Wish {
@@ -207,7 +207,7 @@ function FillReport({ result, hasCeiling }: { readonly result: FillResult; reado
               {placed.map(({ role, line, candidate }) => (
                 <tr key={role.name}>
                   <td>{role.label}</td>
-                  <td title={line.id}>{lineName(line)}</td>
+                  <td title={(candidate?.lines ?? [line]).map((one) => one.id).join(" + ")}>{candidate === null ? lineName(line) : candidateName(candidate)}</td>
                   <td className="is-number">{candidate === null ? (role.kind === "op-amp" ? "" : "kept") : percentText(candidate.deviation)}</td>
                   <td className="is-number">{candidate === null ? "" : candidate.left}</td>
                 </tr>

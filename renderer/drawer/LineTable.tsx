@@ -7,6 +7,7 @@ import { useShell } from "../editor/hooks.ts";
 import { CellEditor } from "./CellEditor.tsx";
 import { COLUMNS, nextEditable } from "./columns.ts";
 import { useDrawer, useDrawerState } from "./hooks.ts";
+import "./line-table.css";
 import { valueText } from "./line-text.ts";
 import { isChosen, NOTHING_CHOSEN, toggled } from "./selection.ts";
 

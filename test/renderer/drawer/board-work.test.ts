@@ -9,6 +9,7 @@ import { EVERY_LINE } from "../../../core/contract/drawer-schemas.ts";
 import { respond } from "../../../core/analysis/response.ts";
 import { buildBill } from "../../../core/drawer/bill.ts";
 import { fillBoard } from "../../../core/drawer/fill.ts";
+import { matchPieces } from "../../../core/drawer/match.ts";
 import { boardRoles, filledProject } from "../../../core/drawer/roles.ts";
 import { rankSwaps } from "../../../core/drawer/swap.ts";
 import type { Project } from "../../../core/model/project.ts";
@@ -18,8 +19,9 @@ import { compileBoard } from "../../../core/net/star.ts";
 import { fillingsOf } from "../../../renderer/drawer/FillPanel.tsx";
 import { findingsOf } from "../../../renderer/drawer/findings.ts";
 import { ghostOf } from "../../../renderer/drawer/ghost.ts";
+import { measuredFillings } from "../../../renderer/drawer/MatchPanel.tsx";
 import { shoppingCsv, shoppingText } from "../../../renderer/drawer/shopping.ts";
-import { linesForBoard, linesForRole, namedLines } from "../../../renderer/drawer/stock-query.ts";
+import { linesForBoard, linesForRole, namedLines, piecesForBoard } from "../../../renderer/drawer/stock-query.ts";
 import { candidateName, effectText, worstText } from "../../../renderer/drawer/swap-text.ts";
 import { withColumn } from "../../../renderer/drawer/ImportMappingTable.tsx";
 import { createHostClient, type HostClient } from "../../../renderer/host/client.ts";
@@ -100,6 +102,21 @@ describe("a board and the starter drawer", () => {
     // Each finding is of a line that the board names, faults first.
     const findings = findingsOf(board, lines);
     for (const { role, line } of findings) expect([role.stock, role.part?.second?.stock]).toContain(line.id);
+  });
+
+  test("matching writes what was measured beside the values, and says what it is worth", async () => {
+    const { project: filled } = fillBoard(resolveBoard(project), await linesForBoard(host, resolveBoard(project)));
+    const line = filled.blocks.find((b) => b.id === "b1k")!.parts!.seriesR.stock!;
+    const values = [455, 462, 468, 471, 474, 479, 483, 490, 495];
+    await host.call("drawer.putPieces", { pieces: values.map((value, i) => ({ id: null, line, mark: String(i + 1), value, frequency: null })) });
+    const board = resolveBoard(filled);
+    const result = matchPieces(board, await piecesForBoard(host, board));
+    expect(result.matched.length).toBeGreaterThan(3);
+    expect(result.error).toBeLessThanOrEqual(result.random!.best);
+    const written = filledProject(filled, measuredFillings(result));
+    expect(written).toEqual(result.project);
+    // No value changes by it.
+    for (const { role } of result.matched) expect(written.blocks.find((b) => b.id === role.block)!.parts![role.role].value).toBe(role.value);
   });
 
   test("an underrated capacitor is found out", async () => {
