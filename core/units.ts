@@ -158,8 +158,8 @@ export function formatValue(value: number, quantity: Quantity, opts: FormatOpts 
 export function formatFigure(value: number, quantity: Quantity, significant = 3): string {
   const [mantissa, prefix] = scaled(value, significant, PREFIXES_OF[quantity]);
   const unit = `${prefix}${UNIT_SYMBOL[quantity]}`;
-  const whole = mantissa.replace("-", "").split(".")[0].length;
-  const text = Number(mantissa).toFixed(Math.max(0, significant - (whole === 1 && mantissa.startsWith("0") ? 0 : whole)));
+  const size = Math.abs(Number(mantissa));
+  const text = Number(mantissa).toFixed(size === 0 ? 0 : Math.min(100, Math.max(0, significant - 1 - Math.floor(Math.log10(size)))));
   return unit === "" ? text : `${text} ${unit}`;
 }
 

@@ -1,7 +1,7 @@
 import { BLOCKS } from "../blocks/index.ts";
 import { RAIL_GAP } from "../blocks/boost-cut-stage/drawing.ts";
 import type { Block } from "../model/project.ts";
-import { GRID, LINE, valueFontSize } from "./frame.ts";
+import { chainGridOf, GRID, LEAST_VALUE_GRID, LINE, valueFontSize } from "./frame.ts";
 import { clamp, type Box, type SheetPlace } from "./units.ts";
 
 /** How much is written: by how wide a band's slot is. */
@@ -43,8 +43,8 @@ export interface BandPlace {
   readonly box: Box;
 }
 
-/** Lines of figures by detail: label, peak, centre, Q, now. */
-export const FIGURE_LINES: Record<Detail, number> = { full: 5, short: 3, slim: 4 };
+/** Lines of figures by detail: label, boost and cut, centre, Q, now. */
+export const FIGURE_LINES: Record<Detail, number> = { full: 6, short: 3, slim: 4 };
 
 export function detailOf(slot: number, scale: number): Detail {
   if (slot >= 68 && scale >= 0.78) return "full";
@@ -62,7 +62,7 @@ export interface BandHeights {
 
 export function bandHeights(scale: number, slot: number, marginScale: number): BandHeights {
   return {
-    rail: RAIL_GAP * GRID * marginScale * clamp(scale, 0.7, 1),
+    rail: RAIL_GAP * chainGridOf(marginScale, scale),
     drop: Math.round(14 * Math.max(0.8, scale)),
     track: Math.round(100 * scale),
     lead: Math.round(20 * Math.max(0.8, scale)),
@@ -75,12 +75,10 @@ const VALUE_CHARACTERS = 2.5;
 const VALUE_ROOM = 26;
 /** Width of a gyrator leg without values, grid units. */
 const LEG_UNITS = 14.4;
-/** Smallest grid at which values stand clear of the symbols. */
-const LEAST_VALUE_GRID = 2.8;
 
-/** Pixels a grid unit of a leg: with its values beside it where there is room, else without and as large as fits. */
+/** Pixels a grid unit of a leg: never too small for its values where the slot has room for them, else without and as large as fits. */
 function legGridOf(scale: number, slot: number): number {
-  const withValues = Math.min(GRID * scale, (slot - VALUE_ROOM) / LEG_UNITS);
+  const withValues = Math.min(Math.max(GRID * scale, LEAST_VALUE_GRID), (slot - VALUE_ROOM) / LEG_UNITS);
   return withValues >= LEAST_VALUE_GRID ? withValues : Math.min(GRID * scale, LEAST_VALUE_GRID - 0.05, slot / (LEG_UNITS + 2));
 }
 

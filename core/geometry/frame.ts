@@ -41,7 +41,7 @@ export function zoomOf(limits: Span, span: Span): number {
 /** Left and right ends of the ruling and the scale of the drawings in the margins, for a sheet of some width. */
 function margins(width: number): { left: number; right: number; scale: number } {
   const scale = clamp(width / 1060, 0.75, 1);
-  return { left: Math.round(202 * scale), right: Math.round(width - 98 * scale), scale };
+  return { left: Math.round(210 * scale), right: Math.round(width - 98 * scale), scale };
 }
 
 /** The range widened so that a band at either end stands clear of the margins. */
@@ -70,7 +70,7 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
   // A span kept from another range is brought inside this one.
   const shown = span ? moveSpan(span, limits, 1) : limits;
   const room = Math.max(260, height - TOP - AXIS);
-  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.24), room * 0.46));
+  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.22), room * 0.46));
   const boardHeight = room - responseHeight;
   let fitting = LEAST_SCALE;
   while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;
@@ -83,6 +83,14 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
     board: { left: 0, right: width, top: responseBottom + AXIS, bottom: height },
     scale: clamp(fitting * zoom, LEAST_SCALE, MOST_SCALE),
   };
+}
+
+/** Smallest grid at which values, whose letters do not shrink with it, stand clear of the symbols. */
+export const LEAST_VALUE_GRID = 2.8;
+
+/** Pixels a grid unit of the drawings in the margins: they shrink less than the board, for there are few of them. */
+export function chainGridOf(marginScale: number, scale: number): number {
+  return Math.max(LEAST_VALUE_GRID, GRID * marginScale * clamp(scale, 0.7, 1));
 }
 
 /** Text size for drawings at a scale: it follows the grid, but never below what can be read. */

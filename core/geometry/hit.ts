@@ -3,7 +3,7 @@ import type { Block } from "../model/project.ts";
 import { knobY, type BandPlace } from "./band-place.ts";
 import type { SheetLayout } from "./layout.ts";
 import { isInside, overlaps, type Box, type ScreenPoint } from "./units.ts";
-import { bandValues, chainValues, type ValueTarget } from "./values.ts";
+import { bandValues, chainValues, showsValues, type ValueTarget } from "./values.ts";
 
 export type Hit =
   | { readonly part: "knob"; readonly id: string }
@@ -22,9 +22,9 @@ export function knobBox(place: BandPlace, position: number): Box {
 
 /**
  * The topmost thing at a point: knobs before values before blocks. Of knobs that share the point, the nearest one.
- * Nothing on the board can be hit through the response above it.
+ * Nothing on the board can be hit through the response above it. `chosen`: the only band selected.
  */
-export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>, at: ScreenPoint): Hit | null {
+export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>, at: ScreenPoint, chosen: string | null = null): Hit | null {
   const { x, y } = at;
   if (y < layout.frame.board.top || y > layout.frame.board.bottom) return null;
   const { left, right } = layout.frame.ruling;
@@ -38,7 +38,7 @@ export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>,
   }
   if (nearest) return { part: "knob", id: nearest.id };
   const values = [
-    ...(isOnRuling ? layout.bands.flatMap((place) => bandValues(place, blocks.get(place.id)!)) : []),
+    ...(isOnRuling ? layout.bands.filter((place) => showsValues(place, place.id === chosen)).flatMap((place) => bandValues(place, blocks.get(place.id)!)) : []),
     ...layout.chain.flatMap(chainValues),
   ];
   const value = values.find((v) => isInside(v.box, x, y));

@@ -5,7 +5,7 @@ import type { Block, Project, SheetPoint } from "../model/project.ts";
 import { bandFrequency } from "./band-frequency.ts";
 import { bandHeight, bandHeights, detailOf, placeBand, type BandPlace } from "./band-place.ts";
 import { FEED_DROP, placeChain, type ChainPlace, type WirePath } from "./chain.ts";
-import { frameOf, FULL_SLOT, GRID, LINE, type Frame } from "./frame.ts";
+import { chainGridOf, frameOf, FULL_SLOT, type Frame } from "./frame.ts";
 import { slotWidth, spread } from "./placement.ts";
 import { lastRail, railsOf, type Rail, type RailPlace, type Rails } from "./rails.ts";
 import { frequencyAt, frequencyOfSheetX, pixelOf, sheetXOf, type Span } from "./ruling.ts";
@@ -107,16 +107,11 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
     const bandSizes = bandHeights(scale, slots[index], frame.marginScale);
     const placed = placeRail(rail, index, { frame, scale, slot: slots[index], wanted: xs[index], heights: bandSizes, legUnits: legUnits[index], railY: y, leaderTop: y - above + 6, figures: opts.figures, ...(moving ? { moving } : {}) });
     bands.push(...placed);
-    places.push({ rail, index, top: top + shift, y, gap: bandSizes.rail, bottom: top + heights[index] + shift, slot: slots[index], figuresTop: placed.find((b) => b.hand === null)?.figuresTop ?? null });
+    places.push({ rail, index, top: top + shift, y, gap: bandSizes.rail, bottom: top + heights[index] + shift, slot: slots[index] });
     top += heights[index];
   });
   const { chain, wires, reference } = placeChain(project, rails, places, frame, chainGrid, hasReferenceAmp);
   return { frame, scale, chainGrid, rails: places, bands, chain, wires, reference, scroll, mostScroll };
-}
-
-/** The drawings in the margins shrink less than the board: there are few of them. */
-function chainGridOf(marginScale: number, scale: number): number {
-  return GRID * marginScale * clamp(scale, 0.7, 1);
 }
 
 function aboveOf(rail: Rail, chainGrid: number): number {
@@ -220,6 +215,3 @@ export function arrangedPlaces(project: Project, figures: ReadonlyMap<string, Ba
       }),
   );
 }
-
-/** Lines of text that the figures of a rail take. */
-export const figureLineY = (top: number, line: number): number => top + line * LINE + LINE / 2;

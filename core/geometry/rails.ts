@@ -102,7 +102,6 @@ export interface RailPlace {
   readonly gap: number;
   readonly bottom: number;
   readonly slot: number;
-  readonly figuresTop: number | null;
 }
 
 /**

@@ -51,9 +51,13 @@ export function drawingValues(id: string, drawing: Drawing, place: DrawingPlace,
   });
 }
 
-/** A band's values, its track's too; none where its slot is too narrow for them. */
+/** Whether a band's values are written: where its slot has the room; over its neighbours where it is the chosen one. */
+export function showsValues(place: BandPlace, isChosen: boolean): boolean {
+  return place.hasValues || (isChosen && place.detail !== "slim");
+}
+
+/** A band's values, its track's too. */
 export function bandValues(place: BandPlace, block: Block): ValueTarget[] {
-  if (!place.hasValues) return [];
   const values = drawingValues(block.id, BLOCKS[block.kind].drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, (role) => partCode(block, role));
   const track = partCode(block, "track");
   const fontSize = valueFontSize(place.legGrid);

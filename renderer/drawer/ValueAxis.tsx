@@ -144,6 +144,11 @@ function AxisDrawing({ axis, kind }: { readonly axis: Axis; readonly kind: AxisK
           ))}
           {mark && <path d={`M${x(mark.value)} 18V${BASE + 4}`} className="axis-pointer" />}
         </svg>
+        {!mark && (
+          <p className="axis-reading quiet" style={{ left: SIDE }}>
+            No {KIND_NAMES[kind].many.toLowerCase()} among the lines shown.
+          </p>
+        )}
         {mark && (
           <p className="axis-reading" style={{ left: Math.max(SIDE, Math.min(width - 290, x(mark.value) - 8)) }}>
             {markText(mark, quantity)}

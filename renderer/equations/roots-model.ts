@@ -1,6 +1,6 @@
 import { rootFigures } from "../../core/analysis/poles.ts";
 import { smallestMargin } from "../../core/analysis/stability.ts";
-import { formatFigure, formatValue } from "../../core/units.ts";
+import { formatFigure } from "../../core/units.ts";
 import type { Stability } from "../worker/protocol.ts";
 
 /** A pole or a zero; a complex pair is one row. */
@@ -74,7 +74,7 @@ export function rootFrequencyText({ frequency }: Pick<RootRow, "frequency">): st
 }
 
 export function qText({ q }: Pick<RootRow, "q">): string {
-  return q === null ? "–" : formatValue(q, "plain").replace("-", "−");
+  return q === null ? "–" : formatFigure(q, "plain").replace("-", "−");
 }
 
 export function dampingText({ damping }: Pick<RootRow, "damping">): string {

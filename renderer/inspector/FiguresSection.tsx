@@ -1,14 +1,14 @@
 import { memo } from "react";
 import type { BandFigures, BandPeak } from "../../core/analysis/bands.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
-import { formatDb, formatValue } from "../../core/units.ts";
+import { formatDb, formatFigure } from "../../core/units.ts";
 import { WarningSign } from "../panels/Stability.tsx";
 import { useUnstableEnds } from "../worker/hooks.ts";
 
 const NONE = "–";
-const hertz = (value: number | null): string => (value === null ? NONE : formatValue(value, "frequency"));
+const hertz = (value: number | null): string => (value === null ? NONE : formatFigure(value, "frequency"));
 /** A Q this low is no peak any more, and its digits say nothing. */
-const plain = (value: number | null): string => (value === null ? NONE : value < 0.01 ? "< 0.01" : formatValue(value, "plain"));
+const plain = (value: number | null): string => (value === null ? NONE : value < 0.01 ? "< 0.01" : formatFigure(value, "plain"));
 
 interface Row {
   readonly label: string;
@@ -42,9 +42,9 @@ function rowsFor(figures: BandFigures): readonly Row[] {
 /** What a band does in circuit, both ends of its slider, and its leg alone. */
 export const FiguresSection = memo(function FiguresSection({ figures }: { readonly figures: BandFigures }) {
   const leg = [
-    ["L", figures.inductance === null ? null : formatValue(figures.inductance, "inductance")],
-    ["f₀", figures.resonance === null ? null : formatValue(figures.resonance, "frequency")],
-    ["Q", figures.legQ === null ? null : formatValue(figures.legQ, "plain")],
+    ["L", figures.inductance === null ? null : formatFigure(figures.inductance, "inductance")],
+    ["f₀", figures.resonance === null ? null : formatFigure(figures.resonance, "frequency")],
+    ["Q", figures.legQ === null ? null : formatFigure(figures.legQ, "plain")],
   ].filter((entry) => entry[1] !== null);
   const ends = useUnstableEnds().filter(({ id }) => id === figures.id).map(({ end }) => end);
   const mark = (end: "boost" | "cut"): string | undefined => (ends.includes(end) ? "is-void" : undefined);

@@ -1,6 +1,6 @@
 import { setField, without } from "../../core/model/edit.ts";
 import type { Part, SingleSupply, SplitSupply, SupplyReference } from "../../core/model/project.ts";
-import { formatValue } from "../../core/units.ts";
+import { formatFigure, formatValue } from "../../core/units.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { readPositive } from "../editor/part-text.ts";
 import { isFromTable, opAmpOptions } from "./BlockPanel.tsx";
@@ -78,7 +78,7 @@ function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly s
       />
       <div className="row">
         <span className="row-label">reference at</span>
-        <span>{formatValue(middle, "voltage")}</span>
+        <span>{formatFigure(middle, "voltage")}</span>
       </div>
       <div className="row">
         <span className="row-label">reference buffer</span>

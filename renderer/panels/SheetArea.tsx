@@ -11,11 +11,12 @@ import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { editPartText } from "../editor/part-text.ts";
 import { Sheet } from "../sheet/Sheet.tsx";
 import type { SheetProps } from "../sheet/sheet-props.ts";
+import { useIsUnstable } from "../worker/hooks.ts";
 import { UnstableBanner } from "./Stability.tsx";
 import { WiringFaults } from "./WiringFaults.tsx";
 import { MenuItems } from "./MenuBar.tsx";
 
-type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range" | "isPhaseShown">;
+type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range" | "isPhaseShown" | "isVoid">;
 
 /** The sheet with what may lie over it: an invitation on an empty board, wiring faults, the context menu. */
 export function SheetArea() {
@@ -26,6 +27,7 @@ export function SheetArea() {
   const selection = useEditorState((s) => s.selection);
   const range = useEditorState((s) => s.range);
   const isPhaseShown = useUiState((s) => s.isPhaseShown);
+  const isVoid = useIsUnstable();
   const theme = useUiState((s) => s.theme);
   const source = useUiState((s) => s.ghost);
   const ghost = useMemo(() => (source ? ghostOf(project, source, selection, range) : null), [project, source, selection, range]);
@@ -57,7 +59,7 @@ export function SheetArea() {
 
   return (
     <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
-      <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} {...handlers} />
+      <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} isVoid={isVoid} {...handlers} />
       <UnstableBanner />
       {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}

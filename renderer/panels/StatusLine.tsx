@@ -1,5 +1,5 @@
 import { Popover } from "@base-ui/react/popover";
-import { formatDb, formatValue } from "../../core/units.ts";
+import { formatDb, formatFigure } from "../../core/units.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useDrawer, useDrawerState } from "../drawer/hooks.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
@@ -11,10 +11,10 @@ export function StatusLine() {
   const isSingle = useEditorState((s) => s.project.supply.kind === "single");
   const flatness = useEditorState((s) => s.analysis.flatness);
   const notice = useUiState((s) => s.notice);
-  const isDrawer = useUiState((s) => s.view === "drawer");
+  const view = useUiState((s) => s.view);
   return (
     <footer className="status-line">
-      {isDrawer ? <DrawerReading /> : <CursorReading />}
+      {view === "drawer" ? <DrawerReading /> : view === "board" ? <CursorReading /> : <span className="status-reading" />}
       <p key={notice?.key} className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
         {notice?.text}
       </p>
@@ -38,7 +38,7 @@ function CursorReading() {
   const cursor = useUiState((s) => s.cursor);
   return (
     <span className={cursor ? "status-reading is-circuit-figure" : "status-reading"}>
-      {cursor ? `${formatValue(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
+      {cursor ? `${formatFigure(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
     </span>
   );
 }

@@ -20,7 +20,7 @@ export function TopLine() {
     <header className="top-line">
       <div className="top-title">
         <NameField name={name} />
-        <p className="subtitle" data-testid="subtitle">
+        <p className="subtitle" data-testid="subtitle" title={`${size} · ${state}`}>
           {size} · {state}
         </p>
       </div>

@@ -16,17 +16,18 @@ interface BandSceneProps {
   readonly block: Block;
   readonly figures: BandFigures | undefined;
   readonly isSelected: boolean;
+  readonly isVoid: boolean;
 }
 
 /** A band but for its knob: drawn again only when its parts, its place or its figures change. */
-export const BandScene = memo(function BandScene({ inks, ratio, frame, place, block, figures, isSelected }: BandSceneProps) {
+export const BandScene = memo(function BandScene({ inks, ratio, frame, place, block, figures, isSelected, isVoid }: BandSceneProps) {
   const draw = useCallback(
     (pen: Pen) => {
       const { ruling, board } = frame;
       if (place.box.right < ruling.left || place.box.left > ruling.right) return;
-      pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => drawBand(pen, place, block, figures, isSelected));
+      pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => drawBand(pen, place, block, figures, isSelected, isVoid));
     },
-    [frame, place, block, figures, isSelected],
+    [frame, place, block, figures, isSelected, isVoid],
   );
   return <Scene inks={inks} ratio={ratio} draw={draw} />;
 });

@@ -154,7 +154,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
       {layout && areFontsReady && (
         <SheetStage
           layout={layout} drawn={drawn} blocks={blocks} results={results} selection={selection} held={held} inks={INKS[theme]} ratio={ratio}
-          isPhaseShown={props.isPhaseShown ?? false} overlay={overlay}
+          isPhaseShown={props.isPhaseShown ?? false} isVoid={props.isVoid ?? false} overlay={overlay}
         />
       )}
       {layout && (

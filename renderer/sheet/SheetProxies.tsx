@@ -5,7 +5,7 @@ import type { SheetLayout } from "../../core/geometry/layout.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
 import type { Block } from "../../core/model/project.ts";
-import { formatDb, formatValue } from "../../core/units.ts";
+import { formatDb, formatFigure } from "../../core/units.ts";
 import { KnobProxy, type KnobActions } from "./KnobProxy.tsx";
 import type { OverlayStore } from "./overlay-store.ts";
 import type { SheetResults } from "./sheet-props.ts";
@@ -120,7 +120,7 @@ function ResponseProxy({ layout, results, overlay, onCursorAt }: ResponseProxyPr
       aria-valuemin={Math.round(first)}
       aria-valuemax={Math.round(last)}
       aria-valuenow={Math.round(at)}
-      aria-valuetext={reading ? `${formatValue(at, "frequency")}: ${formatDb(reading.gain, 2)}, ${reading.phase.toFixed(0)}°` : formatValue(at, "frequency")}
+      aria-valuetext={reading ? `${formatFigure(at, "frequency")}: ${formatDb(reading.gain, 2)}, ${reading.phase.toFixed(0)}°` : formatFigure(at, "frequency")}
       style={{ left: response.left, top: response.top, width: response.right - response.left, height: response.bottom - response.top }}
       onKeyDown={onKeyDown}
       onFocus={(event) => {

@@ -5,13 +5,14 @@ import { knobY } from "../../core/geometry/band-place.ts";
 import type { ChainPlace } from "../../core/geometry/chain.ts";
 import type { SheetLayout } from "../../core/geometry/layout.ts";
 import { levelSpan, phaseSpan, type LevelSpan } from "../../core/geometry/levels.ts";
+import { showsValues } from "../../core/geometry/values.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
 import type { Block, Project } from "../../core/model/project.ts";
 import { formatDb } from "../../core/units.ts";
 import { BandScene } from "./BandScene.tsx";
 import { drawChainBlock, drawRails, drawReference, drawWires } from "./draw/chain.ts";
 import { drawCurves } from "./draw/curves.ts";
-import { drawFigureCard, drawKnob } from "./draw/live.ts";
+import { drawChosenValues, drawFigureCard, drawKnob } from "./draw/live.ts";
 import { drawCursor, drawMarquee, drawTag } from "./draw/overlay.ts";
 import { drawPaper, drawScrollMark } from "./draw/paper.ts";
 import type { Pen } from "./draw/pen.ts";
@@ -32,6 +33,7 @@ interface SheetStageProps {
   readonly inks: Inks;
   readonly ratio: number;
   readonly isPhaseShown: boolean;
+  readonly isVoid: boolean;
   readonly overlay: OverlayStore;
 }
 
@@ -40,7 +42,7 @@ interface SheetStageProps {
  * A knob that moves redraws the third alone.
  */
 export function SheetStage(props: SheetStageProps) {
-  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, overlay } = props;
+  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, isVoid, overlay } = props;
   const { frame } = layout;
   const figures = results?.figures;
   const { levels, phase } = useSpans(results, isPhaseShown);
@@ -75,16 +77,18 @@ export function SheetStage(props: SheetStageProps) {
       drawCurves(pen, {
         response: frame.response, ruling: frame.ruling, levels, phase,
         total: results?.total ?? null, alone: results?.alone ?? null,
-        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "", ghost: results?.ghost ?? null,
+        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "", ghost: results?.ghost ?? null, isVoid,
       });
       const { ruling, board } = frame;
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
         for (const place of layout.bands) {
           if (place.box.right < ruling.left || place.box.left > ruling.right) continue;
-          drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), place.id === held, selection.includes(place.id));
+          drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), { isHeld: place.id === held, isSelected: selected.has(place.id), isVoid });
         }
+        const itself = chosen && blocks.get(chosen.id);
+        if (chosen && itself && !chosen.hasValues && showsValues(chosen, true)) drawChosenValues(pen, chosen, itself);
         const its = chosen && figures?.get(chosen.id);
-        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), { ...board, left: ruling.left, right: ruling.right });
+        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), { ...board, left: ruling.left, right: ruling.right }, isVoid);
         const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
         if (grip) {
           const position = blocks.get(grip.id)?.slider?.position ?? 0.5;
@@ -93,7 +97,7 @@ export function SheetStage(props: SheetStageProps) {
         }
       });
     },
-    [layout, frame, levels, phase, results, figures, blocks, selection, held],
+    [layout, frame, levels, phase, results, figures, blocks, selection, selected, held, isVoid],
   );
 
   return (
@@ -109,7 +113,7 @@ export function SheetStage(props: SheetStageProps) {
         {ordered.map((place) => (
           <BandScene
             key={place.id} inks={inks} ratio={ratio} frame={frame} place={place} block={drawnBlocks.get(place.id)!}
-            figures={figures?.get(place.id)} isSelected={selected.has(place.id)}
+            figures={figures?.get(place.id)} isSelected={selected.has(place.id)} isVoid={isVoid}
           />
         ))}
       </Layer>

@@ -1,9 +1,10 @@
 import type { BandFigures } from "../../core/analysis/bands.ts";
 import { BLOCKS } from "../../core/blocks/index.ts";
-import { formatDb, formatValue } from "../../core/units.ts";
+import { formatDb, formatFigure } from "../../core/units.ts";
 
 export interface FigureTexts {
-  readonly peak: string;
+  readonly boost: string;
+  readonly cut: string;
   /** Without their unit, which the margin gives: boost and cut, and the boost alone where there is no room for both. */
   readonly barePeak: string;
   readonly shortPeak: string;
@@ -19,9 +20,10 @@ export function bandFigureTexts({ boost, cut, kind }: BandFigures): FigureTexts 
   const isMirrored = Math.abs(boost.peak + cut.peak) < SAME;
   const shape = BLOCKS[kind].shape ?? "level";
   const peak = boost.peak.toFixed(1);
-  const where = boost.frequency === null ? "—" : formatValue(boost.frequency, "frequency");
+  const where = boost.frequency === null ? "—" : formatFigure(boost.frequency, "frequency");
   return {
-    peak: isMirrored ? `±${peak} dB` : `${formatDb(boost.peak).replace(" dB", "")} ${formatDb(cut.peak)}`,
+    boost: `▲ ${formatDb(boost.peak)}`,
+    cut: `▼ ${formatDb(cut.peak)}`,
     barePeak: isMirrored ? `±${peak}` : `+${peak} −${Math.abs(cut.peak).toFixed(1)}`,
     shortPeak: isMirrored ? `±${peak}` : `+${peak}`,
     centre: shape === "level" ? "all alike" : where,

@@ -43,6 +43,8 @@ export interface SheetProps {
   readonly range: { readonly from: number; readonly to: number };
   /** Draws the phase with its own axis; off where absent. */
   readonly isPhaseShown?: boolean;
+  /** The board oscillates: its figures are drawn struck, its curves faded. */
+  readonly isVoid?: boolean;
   onSelect(ids: readonly string[], mode: "replace" | "toggle" | "add"): void;
   onKnobStart(id: string): void;
   onKnobMove(id: string, position: number): void;

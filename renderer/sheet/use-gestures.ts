@@ -48,7 +48,7 @@ export function useGestures(opts: GestureOpts) {
     const box = element.current?.getBoundingClientRect();
     return { x: event.clientX - (box?.left ?? 0), y: event.clientY - (box?.top ?? 0) };
   };
-  const hitAt = ({ x, y }: { x: number; y: number }): Hit | null => (layout ? hitTest(layout, blocks, { x: px(x), y: px(y) }) : null);
+  const hitAt = ({ x, y }: { x: number; y: number }): Hit | null => (layout ? hitTest(layout, blocks, { x: px(x), y: px(y) }, onlyOf(props.selection)) : null);
   const finish = (): void => {
     gesture.current = null;
     overlay.setState({ marquee: null });
@@ -226,12 +226,17 @@ function placesMoved(layout: SheetLayout, ids: readonly string[], dx: number, dy
   return places;
 }
 
-/** The keyboard follows the hand: to the knob, else to the response or the board as a whole. */
+/** The one block that is selected; null where none or several are. */
+function onlyOf(selection: readonly string[]): string | null {
+  return selection.length === 1 ? selection[0] : null;
+}
+
+/** The keyboard follows the hand: to the knob, else to the response or the board as a whole. A hand that points needs no ring. */
 function focusFor(element: HTMLElement | null, hit: Hit | null, isOnResponse: boolean): void {
   const wanted = hit?.part === "knob"
     ? element?.querySelector<HTMLElement>(`[data-band="${CSS.escape(hit.id)}"]`)
     : isOnResponse ? element?.querySelector<HTMLElement>("[data-response]") : element;
-  wanted?.focus({ preventScroll: true });
+  wanted?.focus({ preventScroll: true, focusVisible: false });
 }
 
 /** Whether the space bar is down while the sheet has the keyboard. */

@@ -196,7 +196,7 @@ describe("how values are written", () => {
   ] as const)("%d as a %s is %s", (value, quantity, text) => expect(formatValue(value, quantity)).toBe(text));
 
   test.each([
-    [1000, "frequency", "1.00 kHz"], [59, "frequency", "59.0 Hz"], [957.49, "frequency", "957 Hz"], [999.7, "frequency", "1.00 kHz"], [0.123_782, "inductance", "124 mH"], [1.7, "plain", "1.70"], [0.8, "plain", "0.800"],
+    [1000, "frequency", "1.00 kHz"], [59, "frequency", "59.0 Hz"], [957.49, "frequency", "957 Hz"], [999.7, "frequency", "1.00 kHz"], [0.123_782, "inductance", "124 mH"], [1.7, "plain", "1.70"], [0.8, "plain", "0.800"], [-0.512, "plain", "-0.512"], [0.051_24, "plain", "0.0512"], [0, "frequency", "0 Hz"],
   ] as const)("the computed figure %d (%s) is %s, three digits whatever they are", (value, quantity, text) => expect(formatFigure(value, quantity)).toBe(text));
 
   test.each([

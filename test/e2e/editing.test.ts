@@ -9,7 +9,7 @@ import type { Project } from "../../core/model/project.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import { compileBoard } from "../../core/net/star.ts";
-import { formatDb, formatValue } from "../../core/units.ts";
+import { formatDb, formatFigure } from "../../core/units.ts";
 import { launchBrowser } from "../helpers/browser.ts";
 import { DEMO, Session } from "./session.ts";
 
@@ -40,8 +40,8 @@ describe("what the screen says is what the core computes", () => {
       const wanted = figures.find((f) => f.id === id)!;
       await session.sheet.pick(id);
       expect(await session.panel.figure("peak")).toEqual([formatDb(wanted.boost.peak), formatDb(wanted.cut.peak)]);
-      expect(await session.panel.figure("centre")).toEqual([formatValue(wanted.boost.frequency!, "frequency"), formatValue(wanted.cut.frequency!, "frequency")]);
-      expect(await session.panel.figure("Q")).toEqual([formatValue(wanted.boost.q!, "plain"), formatValue(wanted.cut.q!, "plain")]);
+      expect(await session.panel.figure("centre")).toEqual([formatFigure(wanted.boost.frequency!, "frequency"), formatFigure(wanted.cut.frequency!, "frequency")]);
+      expect(await session.panel.figure("Q")).toEqual([formatFigure(wanted.boost.q!, "plain"), formatFigure(wanted.cut.q!, "plain")]);
       expect(await session.panel.figure("isolated")).toEqual([formatDb(wanted.isolatedBoost), formatDb(-wanted.isolatedBoost)]);
       expect((await session.panel.figure("lost in circuit"))[0]).toBe(formatDb(-wanted.interactionLoss));
       expect(await session.panel.liveGain()).toBe(`${formatDb(gainAt(demo, id, demo.blocks.find((b) => b.id === id)!.slider!.position), 2)} now`);

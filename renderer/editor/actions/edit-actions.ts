@@ -1,7 +1,7 @@
 import { BAND_KINDS, BLOCKS } from "../../../core/blocks/index.ts";
 import { blockName, removeBlocks } from "../../../core/model/edit.ts";
 import { copyBands, duplicateBands, stageOf, type Addition } from "../../../core/model/edit-bands.ts";
-import { formatDb, formatValue } from "../../../core/units.ts";
+import { formatDb, formatFigure } from "../../../core/units.ts";
 import type { BandFigures } from "../../../core/analysis/bands.ts";
 import type { Block } from "../../../core/model/project.ts";
 import { copyText } from "../copy-text.ts";
@@ -138,10 +138,10 @@ function step(c: ActionContext, by: 1 | -1): void {
   c.sheet()?.focusBlock(id);
 }
 
-const hertz = (f: number | null): string => (f === null ? "–" : formatValue(f, "frequency"));
-const plain = (q: number | null): string => (q === null ? "–" : formatValue(q, "plain"));
+const hertz = (f: number | null): string => (f === null ? "–" : formatFigure(f, "frequency"));
+const plain = (q: number | null): string => (q === null ? "–" : formatFigure(q, "plain"));
 
-/** The figures as tab-separated text, one row a band, with the units in the head. */
+/** The figures as tab-separated text, one row a band. */
 export function figuresText(figures: readonly BandFigures[]): string {
   const rows = figures.map((f) => [
     f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q),

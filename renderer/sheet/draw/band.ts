@@ -8,8 +8,8 @@ import { figureLine } from "./figure-line.ts";
 import { drawDrawing, drawValues, lineOf } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
 
-/** All of a band that stays while its slider moves: leader, track, leg, values and figures. */
-export function drawBand(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean): void {
+/** All of a band that stays while its slider moves: leader, track, leg, values and figures, struck where they are void. */
+export function drawBand(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean, isVoid: boolean): void {
   const { inks } = pen;
   if (isSelected) {
     const { box } = place;
@@ -20,8 +20,8 @@ export function drawBand(pen: Pen, place: BandPlace, block: Block, figures: Band
   const parts = partsOf(block);
   const { drawing } = BLOCKS[block.kind];
   drawDrawing(pen, drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, (role) => parts[role] !== undefined);
-  drawValues(pen, bandValues(place, block));
-  drawFigures(pen, place, block, figures, isSelected);
+  if (place.hasValues) drawValues(pen, bandValues(place, block));
+  drawFigures(pen, place, block, figures, isSelected, isVoid);
 }
 
 /** A dotted line from the ruling at the band's own frequency to where the band had room. */
@@ -55,7 +55,7 @@ function drawTrack(pen: Pen, place: BandPlace): void {
   }
 }
 
-function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean): void {
+function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean, isVoid: boolean): void {
   const { inks } = pen;
   const isSlim = place.detail === "slim";
   const size = place.detail === "full" ? 12.5 : isSlim ? 10.5 : 11.5;
@@ -66,14 +66,15 @@ function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigu
   pen.text(label, place.x, figureLine(place, place.isStaggered ? "staggered" : "label"), { size, isBold: true, align: "center", color: isSelected ? inks.accent : inks.ink, ...over });
   if (!figures) return;
   const texts = bandFigureTexts(figures);
+  const style = { align: "center", isStruck: isVoid, ...over } as const;
   if (place.detail === "full") {
-    const peak = [texts.peak, texts.barePeak].find((text) => pen.widthOf(text, 11.5) <= place.slot - 2) ?? texts.shortPeak;
-    pen.text(peak, place.x, figureLine(place, "peak"), { size: 11.5, align: "center", ...over });
-    pen.text(texts.centre, place.x, figureLine(place, "centre"), { align: "center", color: inks.inkSoft, ...over });
-    pen.text(texts.quality, place.x, figureLine(place, "quality"), { align: "center", color: inks.inkSoft, ...over });
+    pen.text(texts.boost, place.x, figureLine(place, "peak"), { ...style, size: 11.5, color: isVoid ? inks.inkSoft : inks.boostText });
+    pen.text(texts.cut, place.x, figureLine(place, "cut"), { ...style, size: 11.5, color: isVoid ? inks.inkSoft : inks.cutText });
+    pen.text(texts.centre, place.x, figureLine(place, "centre"), { ...style, color: inks.inkSoft });
+    pen.text(texts.quality, place.x, figureLine(place, "quality"), { ...style, color: inks.inkSoft });
   } else {
     const small = isSlim ? 10 : 11;
     const short = [texts.barePeak, texts.shortPeak].find((text) => pen.widthOf(text, small) <= place.slot - 2) ?? texts.shortPeak.slice(1);
-    pen.text(short, place.x, figureLine(place, "peak"), { size: small, align: "center", ...over });
+    pen.text(short, place.x, figureLine(place, "peak"), { ...style, size: small, color: isVoid ? inks.inkSoft : inks.ink });
   }
 }

@@ -30,7 +30,8 @@ function drawCaptions(pen: Pen, layout: SheetLayout, rail: RailPlace, hasFigures
   const x = layout.frame.ruling.left - 12;
   const write = (text: string, line: Parameters<typeof figureLine>[1]): void => pen.text(text, x, figureLine(first, line), { align: "right", color: pen.inks.inkSoft });
   if (first.detail === "full") {
-    write("peak in circuit, dB", "peak");
+    write("boost in circuit", "peak");
+    write("cut in circuit", "cut");
     write("centre", "centre");
     write("width", "quality");
     write("as it stands", "now");

@@ -2,7 +2,7 @@ import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
 import { extremeIndex } from "../../../core/geometry/reading.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
 import type { Box } from "../../../core/geometry/units.ts";
-import { formatDb, formatValue } from "../../../core/units.ts";
+import { formatDb, formatFigure } from "../../../core/units.ts";
 import type { Curve, Ghost } from "../sheet-props.ts";
 import { faint, type Pen } from "./pen.ts";
 
@@ -16,12 +16,15 @@ export interface CurveScene {
   /** Name of the band that is shown alone. */
   readonly aloneLabel: string;
   readonly ghost?: Ghost | null;
+  /** The board oscillates: the curves are faded, their figures struck. */
+  readonly isVoid: boolean;
 }
 
 /** The response: what the sliders do together in ink, the selected band alone dashed and named. */
 export function drawCurves(pen: Pen, scene: CurveScene): void {
   const { response, total, alone, ghost, inks, phase } = { ...scene, inks: pen.inks };
   pen.clipped(response.left, response.top, response.right, response.bottom, () => {
+    if (scene.isVoid) pen.ctx.globalAlpha = 0.45;
     if (total) fillBetween(pen, scene, total);
     if (phase && total) stroke(pen, scene, total.frequency, total.phase, phase, inks.accent, 1.2, [2, 3]);
     if (alone) stroke(pen, scene, alone.frequency, alone.gain, scene.levels, isBoost(alone) ? inks.boost : inks.cut, 1.6, [6, 4]);
@@ -94,7 +97,7 @@ function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
   const at = { x: pixelOf(ruling, alone.frequency[peak]), y: levelY(levels, response.top, response.bottom - response.top, alone.gain[peak]) };
   if (at.x < response.left || at.x > response.right) return;
   const isUp = isBoost(alone);
-  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}: ${formatDb(alone.gain[peak])}, ${formatValue(alone.frequency[peak], "frequency")}`;
+  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}: ${formatDb(alone.gain[peak])}, ${formatFigure(alone.frequency[peak], "frequency")}`;
   const width = pen.widthOf(text);
   // Beside the peak, a little further out than the curve goes, on the side that has the room.
   const isRight = at.x + 14 + width <= response.right - 4;
@@ -106,7 +109,7 @@ function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
     return y !== null && Math.abs(y - beside) < 11;
   });
   const y = isCrossed ? (isUp ? response.top + 9 : response.bottom - 9) : beside;
-  pen.text(text, x, y, { color: isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper });
+  pen.text(text, x, y, { color: scene.isVoid ? pen.inks.inkSoft : isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper, isStruck: scene.isVoid });
 }
 
 /** What the dotted curves are, where they depart most, on the side away from the line they depart from. */

@@ -3,6 +3,8 @@ import type { BandFigures } from "../../../core/analysis/bands.ts";
 import { knobY, type BandPlace } from "../../../core/geometry/band-place.ts";
 import { clamp, type Box } from "../../../core/geometry/units.ts";
 import { formatDb } from "../../../core/units.ts";
+import { bandValues } from "../../../core/geometry/values.ts";
+import type { Block } from "../../../core/model/project.ts";
 import { bandFigureTexts } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
 import { lineOf } from "./symbols.ts";
@@ -17,8 +19,15 @@ export function sideOf(position: number): Side {
   return position > 0.5 + CENTRE ? "boost" : position < 0.5 - CENTRE ? "cut" : "centre";
 }
 
+export interface KnobState {
+  readonly isHeld: boolean;
+  readonly isSelected: boolean;
+  /** The board oscillates: the gain means nothing. */
+  readonly isVoid: boolean;
+}
+
 /** The knob with its wiper lead, and the band's gain as it stands. Shape tells the side too: a notch up, down or none. */
-export function drawKnob(pen: Pen, place: BandPlace, position: number, now: number | undefined, isHeld: boolean, isSelected: boolean): void {
+export function drawKnob(pen: Pen, place: BandPlace, position: number, now: number | undefined, { isHeld, isSelected, isVoid }: KnobState): void {
   const { inks, ctx } = pen;
   const y = knobY(place, position);
   const side = sideOf(position);
@@ -41,7 +50,7 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
   }
   if (now === undefined) return;
   const text = formatDb(now);
-  const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: nowColor(pen, now) } as const;
+  const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: isVoid ? inks.inkSoft : nowColor(pen, now), isStruck: isVoid } as const;
   const bare = text.replace(" dB", "");
   const written = place.detail === "full" ? text : pen.widthOf(bare, shown.size) <= slot - 2 ? bare : formatDb(now, 0).replace(" dB", "");
   const lineY = figureLine(place, "now");
@@ -61,14 +70,25 @@ function nowColor(pen: Pen, now: number): string {
 }
 
 /** The figures of the selected band in full, over its neighbours, where its slot has no room for them. */
-export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, within: Box): void {
+export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, within: Box, isVoid: boolean): void {
   const { inks } = pen;
   const texts = bandFigureTexts(figures);
-  const lines = [figures.label, texts.peak, texts.centre, texts.quality, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
+  const lines = [figures.label, texts.boost, texts.cut, texts.centre, texts.quality, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
   const width = Math.max(...lines.map((text, i) => pen.widthOf(text, i === 0 ? 12 : 11, i === 0))) + 20;
   const height = lines.length * 15 + 10;
   const x = clamp(place.x, within.left + width / 2, within.right - width / 2);
   const top = Math.min(place.figuresTop - 3, within.bottom - height - 4);
   pen.box(x, top + height / 2, width, height, { fill: inks.card, stroke: inks.accent, lineWidth: 1.4, radius: 6 });
-  lines.forEach((text, i) => pen.text(text, x, top + 5 + i * 15 + 7.5, { align: "center", isBold: i === 0, size: i === 0 ? 12 : 11, color: i === 0 ? inks.accent : inks.ink }));
+  lines.forEach((text, i) => pen.text(text, x, top + 5 + i * 15 + 7.5, { align: "center", isBold: i === 0, size: i === 0 ? 12 : 11, color: i === 0 ? inks.accent : isVoid ? inks.inkSoft : inks.ink, isStruck: isVoid && i > 0 }));
+}
+
+/** The values of the selected band, over its neighbours, where its slot has no room for them. */
+export function drawChosenValues(pen: Pen, place: BandPlace, block: Block): void {
+  for (const { text, x, y, align, fontSize, role } of bandValues(place, block)) {
+    const width = pen.widthOf(text, fontSize);
+    const left = align === "left" ? x : align === "right" ? x - width : x - width / 2;
+    pen.ctx.fillStyle = pen.inks.accentWash;
+    pen.ctx.fillRect(left - 1, y - fontSize * 0.55, width + 2, fontSize * 1.1);
+    pen.text(text, x, y, { size: fontSize, align, color: role === "track" ? pen.inks.inkSoft : pen.inks.ink });
+  }
 }

@@ -7,6 +7,8 @@ export interface TextOpts {
   readonly align?: CanvasTextAlign;
   /** Paints the ground behind the letters first, so that lines beneath do not cut them. */
   readonly halo?: string;
+  /** Struck through: the text means nothing. */
+  readonly isStruck?: boolean;
 }
 
 /** A canvas with the habits of this sheet: crisp lines at any pixel ratio, text set from its middle. */
@@ -89,6 +91,10 @@ export class Pen {
     }
     ctx.fillStyle = opts.color ?? this.inks.ink;
     ctx.fillText(text, x, y);
+    if (!opts.isStruck) return;
+    const { width } = ctx.measureText(text);
+    const left = opts.align === "center" ? x - width / 2 : opts.align === "right" ? x - width : x;
+    this.line([left - 1, y, left + width + 1, y], opts.color ?? this.inks.ink, 1.4);
   }
 
   widthOf(text: string, size = 11, isBold = false): number {

@@ -10,9 +10,9 @@ const figures: BandFigures = {
 const within = (length: number) => (text: string): boolean => text.length <= length;
 
 describe("figures under a band", () => {
-  test("a mirrored range is one figure, another one two", () => {
-    expect(bandFigureTexts(figures)).toEqual({ peak: "±10.5 dB", barePeak: "±10.5", shortPeak: "±10.5", centre: "1.02 kHz", quality: "Q 1.34" });
-    expect(bandFigureTexts({ ...figures, cut: end(-11.2) })).toMatchObject({ peak: "+10.5 −11.2 dB", barePeak: "+10.5 −11.2", shortPeak: "+10.5" });
+  test("boost and cut are told apart where they differ", () => {
+    expect(bandFigureTexts(figures)).toEqual({ boost: "▲ +10.5 dB", cut: "▼ −10.4 dB", barePeak: "±10.5", shortPeak: "±10.5", centre: "1.02 kHz", quality: "Q 1.34" });
+    expect(bandFigureTexts({ ...figures, cut: end(-11.2) })).toMatchObject({ cut: "▼ −11.2 dB", barePeak: "+10.5 −11.2", shortPeak: "+10.5" });
   });
 
   test("shelves and levels have no Q", () => {
