@@ -44,7 +44,7 @@ export interface BandPlace {
 }
 
 /** Lines of figures by detail: label, boost and cut, centre, Q, now. */
-export const FIGURE_LINES: Record<Detail, number> = { full: 6, short: 3, slim: 4 };
+const FIGURE_LINES: Record<Detail, number> = { full: 6, short: 3, slim: 4 };
 
 export function detailOf(slot: number, scale: number): Detail {
   if (slot >= 68 && scale >= 0.78) return "full";
@@ -82,9 +82,12 @@ function legGridOf(scale: number, slot: number): number {
   return withValues >= LEAST_VALUE_GRID ? withValues : Math.min(GRID * scale, LEAST_VALUE_GRID - 0.05, slot / (LEG_UNITS + 2));
 }
 
+/** Pixels between a leg and its figures. */
+const BELOW_LEG = 8;
+
 /** From the boost rail to the end of the figures. */
 export function bandHeight(heights: BandHeights, legUnits: number, detail: Detail): number {
-  return heights.rail + heights.drop + heights.track + heights.lead + legUnits * heights.legGrid + 10 + FIGURE_LINES[detail] * LINE;
+  return heights.rail + heights.drop + heights.track + heights.lead + legUnits * heights.legGrid + BELOW_LEG + FIGURE_LINES[detail] * LINE;
 }
 
 export interface BandAt {
@@ -122,7 +125,7 @@ export function placeBand(at: BandAt): BandPlace {
   const lopsided = drawing.left < -5 ? -((drawing.left + 2.7) * heights.legGrid + (hasValues ? valueFontSize(heights.legGrid) * VALUE_CHARACTERS : 0)) / 2 : 0;
   const legX = Math.abs(lopsided - (leadX - x)) < 4 ? leadX : x + Math.round(lopsided);
   const legY = trackBottom + heights.lead;
-  const figuresTop = Math.round(legY + at.legUnits * heights.legGrid + 10);
+  const figuresTop = Math.round(legY + at.legUnits * heights.legGrid + BELOW_LEG);
   return {
     id: block.id, rail: at.rail, x, trueX: at.trueX, frequency: at.frequency, hand: at.hand, isLoose: at.isLoose, slot, detail, hasValues,
     isStaggered: at.isStaggered, leaderTop: at.leaderTop,

@@ -12,7 +12,7 @@ const END_PAD = 30;
 /** Height of a line of figures, whatever the scale: text does not shrink. */
 export const LINE = 15;
 /** Scales of the board: smaller and its symbols run together, larger and one band fills the sheet. */
-export const LEAST_SCALE = 0.5;
+const LEAST_SCALE = 0.5;
 const MOST_SCALE = 1.7;
 /** A band with all its values takes this much at scale 1. */
 export const FULL_SLOT = 88;
@@ -34,7 +34,7 @@ export interface Frame {
 }
 
 /** How far the frequency axis is zoomed in, 1 for all of it. */
-export function zoomOf(limits: Span, span: Span): number {
+function zoomOf(limits: Span, span: Span): number {
   return Math.log(limits.to / limits.from) / Math.log(span.to / span.from);
 }
 
@@ -45,7 +45,7 @@ function margins(width: number): { left: number; right: number; scale: number } 
 }
 
 /** The range widened so that a band at either end stands clear of the margins. */
-export function sheetLimits(range: Span, width: number): Span {
+function sheetLimits(range: Span, width: number): Span {
   const { left, right } = margins(width);
   return paddedSpan(range, END_PAD, Math.max(100, right - left));
 }
@@ -70,7 +70,7 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
   // A span kept from another range is brought inside this one.
   const shown = span ? moveSpan(span, limits, 1) : limits;
   const room = Math.max(260, height - TOP - AXIS);
-  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.22), room * 0.46));
+  const responseHeight = Math.round(clamp(room - heightAt(1), Math.max(120, room * 0.21), room * 0.46));
   const boardHeight = room - responseHeight;
   let fitting = LEAST_SCALE;
   while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;

@@ -14,7 +14,7 @@ export type Hit =
 const LEAST_TARGET = 24;
 
 /** Where a knob can be taken: the knob itself, and never less than a finger needs where there is room for it. */
-export function knobBox(place: BandPlace, position: number): Box {
+function knobBox(place: BandPlace, position: number): Box {
   const y = knobY(place, position);
   const half = Math.max(place.knobHalf + 2, Math.min(LEAST_TARGET, place.slot) / 2);
   return { left: place.x - half, right: place.x + half, top: y - LEAST_TARGET / 2, bottom: y + LEAST_TARGET / 2 };

@@ -17,7 +17,7 @@ const RAIL_UNITS = 480;
 const VALUE_SLOT = 69;
 /** Narrowest slot that still shows a slider. */
 const LEAST_SLOT = 28;
-const BETWEEN_RAILS = 12;
+const BETWEEN_RAILS = 8;
 /** Grid units above a rail (the stage's op amp) and below it (what feeds a stage, what ends the chain). */
 const ABOVE = 23.5;
 
@@ -57,7 +57,7 @@ export interface LayoutOpts {
  * x is on the frequency ruling (300 units a decade from 10 Hz), y counts from the first rail (480 units a rail).
  * Bands move along the ruling and down from their rail, a stage takes its rail up or down; the rest of the chain is fixed.
  */
-export function handPlace(block: Block, moving?: ReadonlyMap<string, SheetPoint>): SheetPlace | null {
+function handPlace(block: Block, moving?: ReadonlyMap<string, SheetPoint>): SheetPlace | null {
   const at = moving?.get(block.id) ?? block.at;
   return at?.byHand === true ? { x: sheetUnits(at.x), y: sheetUnits(at.y) } : null;
 }

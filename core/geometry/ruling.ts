@@ -31,7 +31,7 @@ export function frequencyAt(ruling: Ruling, x: number): number {
   return from * (to / from) ** ((x - left) / (right - left));
 }
 
-export function pixelsPerDecade(ruling: Ruling): number {
+function pixelsPerDecade(ruling: Ruling): number {
   return ((ruling.right - ruling.left) * Math.LN10) / Math.log(ruling.to / ruling.from);
 }
 
@@ -122,7 +122,7 @@ export interface AxisLabel {
 }
 
 /** `20`, `31.5`, `1 k`, `12.5 k`: the unit stands at the end of the axis. */
-export function axisFrequencyText(frequency: number): string {
+function axisFrequencyText(frequency: number): string {
   return frequency >= 999.5 ? `${Number((frequency / 1000).toPrecision(4))} k` : `${Number(frequency.toPrecision(4))}`;
 }
 

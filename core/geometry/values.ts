@@ -27,7 +27,7 @@ export interface DrawingPlace {
 }
 
 /** A value as the sheet writes it: the letter code of the trade, such as 4k7, 470R or 3n9, of at most three digits. */
-export function partCode(block: Block, role: string): string | null {
+function partCode(block: Block, role: string): string | null {
   if (role === "track") return block.slider ? formatCode(block.slider.track.value, "resistance", 3) : null;
   const part = partsOf(block)[role];
   const quantity = BLOCKS[block.kind].roles.find((r) => r.role === role)?.quantity;

@@ -9,7 +9,7 @@ import type { DialogProps } from "./QuestionDialogs.tsx";
 import { useListPlace, walkList } from "./use-list-keys.ts";
 
 /** Actions that fit a search, best first: every word must be found; what can be done now comes before what cannot. */
-export function findActions(text: string, c: ActionContext): Action[] {
+function findActions(text: string, c: ActionContext): Action[] {
   const words = text.toLowerCase().split(/\s+/).filter((word) => word !== "");
   const rank = (action: Action): number => {
     const label = labelOf(action, c).toLowerCase();

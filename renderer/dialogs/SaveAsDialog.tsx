@@ -14,7 +14,7 @@ function hasControlCharacter(text: string): boolean {
 }
 
 /** What is wrong with a file name on some system, or null. */
-export function nameProblem(name: string): string | null {
+function nameProblem(name: string): string | null {
   const text = name.trim();
   if (text === "") return "Give the file a name.";
   if (FORBIDDEN.test(text) || hasControlCharacter(text)) return 'A file name has none of < > : " / \\ | ? * in it.';

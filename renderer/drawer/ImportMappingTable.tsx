@@ -143,7 +143,7 @@ export function ImportMappingTable({ preview, name, onReading, onMapping }: Impo
 type Line = NonNullable<ResultOf<"drawer.importPreview">["rows"][number]["line"]>;
 
 /** `resistor 4k7 metal film 1 %, 0.25 W, 20 pieces, 0.04 EUR` */
-export function takenText(line: Line, quantity: number | null): string {
+function takenText(line: Line, quantity: number | null): string {
   const cost = unitCost(line, 1);
   return [`${KIND_NAMES[line.kind].one} ${lineName(line)}`, line.rating === null ? "" : ratingText(line), quantity === null ? "" : `${quantity} there`, cost === null ? "" : costText(cost, line.currency)].filter((part) => part !== "").join(", ");
 }

@@ -8,7 +8,7 @@ import { useDrawer } from "./hooks.ts";
 import { percentText } from "./line-text.ts";
 
 /** The mark for the next piece: the number after the largest that is in use. */
-export function nextMark(pieces: readonly Pick<StockPiece, "mark">[]): string {
+function nextMark(pieces: readonly Pick<StockPiece, "mark">[]): string {
   const most = Math.max(0, ...pieces.map((piece) => (/^\d+$/.test(piece.mark) ? Number(piece.mark) : 0)));
   return String(most + 1);
 }

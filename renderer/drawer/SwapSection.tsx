@@ -1,4 +1,4 @@
-import { useEffect, useState } from "react";
+import { useEffect, useRef, useState } from "react";
 import { fillingPatch, filledProject } from "../../core/drawer/roles.ts";
 import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import type { RankedCandidate } from "../../core/drawer/swap.ts";
@@ -85,19 +85,25 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
   const show = (candidate: RankedCandidate | null): void => {
     ui.patch({ ghost: candidate && { label: candidateName(candidate), change: (project) => filledProject(project, [{ role, filling: candidate.filling }]) } });
   };
+  /** The card that has the focus: its ghost comes back when the pointer goes. */
+  const focused = useRef<RankedCandidate | null>(null);
+  const focus = (candidate: RankedCandidate | null): void => {
+    focused.current = candidate;
+    show(candidate);
+  };
   // A ghost does not outlive the list that it came from.
   useEffect(() => () => ui.patch({ ghost: null }), [ui]);
   const take = (candidate: RankedCandidate): void => {
     const { project } = editor.store.getState();
     editor.apply(`take ${candidateName(candidate)} for ${role.label.replace(": ", ", ")}`, fillingPatch(project, [{ role, filling: candidate.filling }]));
-    ui.patch({ ghost: null });
+    focus(null);
     ui.notify(`${candidate.lines.map((line) => line.id).join(" and ")} for ${what}.`);
   };
   const shown = isWhole ? candidates : candidates.slice(0, FEW);
   const hasProblem = shown.some((candidate) => candidate.problems.length > 0);
   return (
     <>
-      <ul className={isStale ? "swap-list is-stale" : "swap-list"} onPointerLeave={() => show(null)}>
+      <ul className={isStale ? "swap-list is-stale" : "swap-list"} onPointerLeave={() => show(focused.current)}>
         {shown.map((candidate) => {
           const name = candidateName(candidate);
           const isBarred = hasFault(candidate);
@@ -108,8 +114,8 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
                 className={`swap-card${candidate.isInPlace ? " is-in-place" : ""}${isBarred ? " is-barred" : ""}`}
                 aria-disabled={isBarred || candidate.isInPlace}
                 onPointerEnter={() => show(candidate)}
-                onFocus={() => show(candidate)}
-                onBlur={() => show(null)}
+                onFocus={() => focus(candidate)}
+                onBlur={() => focus(null)}
                 onClick={() => !isBarred && !candidate.isInPlace && take(candidate)}
               >
                 <span className="swap-name">{name}</span>

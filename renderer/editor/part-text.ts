@@ -54,7 +54,7 @@ export function editPartText(editor: Editor, id: string, role: string, text: str
 }
 
 /** The series in which a value steps: what shops stock of each. */
-export function seriesFor(quantity: Quantity): ESeries {
+function seriesFor(quantity: Quantity): ESeries {
   return quantity === "resistance" ? 24 : 12;
 }
 

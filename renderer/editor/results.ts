@@ -104,18 +104,6 @@ function curve(sweep: ResponseSweep, positions: Float64Array): Curve {
   return { frequency: sweep.frequency, gain: gain.slice(), phase: phase.slice() };
 }
 
-/** Index of the entry of an ascending column that is nearest to a value by ratio. */
-export function nearestIndex(column: Float64Array, value: number): number {
-  let low = 0;
-  let high = column.length - 1;
-  while (high - low > 1) {
-    const middle = (low + high) >> 1;
-    if (column[middle] < value) low = middle;
-    else high = middle;
-  }
-  return value / column[low] < column[high] / value ? low : high;
-}
-
 /** Whether two documents differ in nothing but slider positions, places and texts that no figure carries. */
 export function isSameModel(a: Project, b: Project): boolean {
   if (a === b) return true;

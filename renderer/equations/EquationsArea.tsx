@@ -4,6 +4,7 @@ import { UnstableBanner } from "../panels/Stability.tsx";
 import { WiringFaults } from "../panels/WiringFaults.tsx";
 import { BlockList } from "./BlockList.tsx";
 import { BlockPage } from "./BlockPage.tsx";
+import "./account.css";
 import "./equations.css";
 import { PolesPage } from "./PolesPage.tsx";
 import "./roots.css";

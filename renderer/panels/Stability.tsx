@@ -11,17 +11,20 @@ import type { Ends } from "../worker/protocol.ts";
 export function nameOfBlock(project: Project, id: string): string {
   const block = project.blocks.find((b) => b.id === id);
   if (!block) return id === "reference" ? "signal reference" : id;
-  // A board has one input and one output: their kind says more than an id.
-  const isEnd = block.kind === "input" || block.kind === "output";
-  return block.label === undefined && isEnd ? BLOCKS[block.kind].label : blockName(block);
+  // The only block of its kind goes by its kind, as on the sheet: that says more than an id. Bands go by their id there.
+  const isOnly = BLOCKS[block.kind].place !== "band" && project.blocks.filter((b) => b.kind === block.kind).length === 1;
+  return block.label === undefined && isOnly ? BLOCKS[block.kind].label : blockName(block);
 }
 
 /** The smallest phase margin of the board, or that it oscillates and where. */
 export function StabilityStatus() {
   const { context } = useShell();
   const project = useEditorState((s) => s.project);
+  const hasBoard = useEditorState((s) => s.analysis.board !== null);
   const { value, isCurrent, failure } = useStability();
   const ends = useUnstableEnds();
+  // Faulty wiring leaves no loops to judge.
+  if (!hasBoard) return null;
   if (failure !== null) {
     return (
       <span className="status-caution is-kept" data-testid="stability" title={failure}>
@@ -70,7 +73,7 @@ export function endText(project: Project, { id, end }: Ends[number]): string {
 }
 
 /** “Octave bus” and “4 kHz”: the blocks whose loops oscillate. */
-export function loopNames(project: Project, unstable: readonly { readonly block: string }[]): string {
+function loopNames(project: Project, unstable: readonly { readonly block: string }[]): string {
   const names = [...new Set(unstable.map(({ block }) => `“${nameOfBlock(project, block)}”`))];
   return names.length < 2 ? names.join("") : `${names.slice(0, -1).join(", ")} and ${names.at(-1)!}`;
 }

@@ -32,7 +32,7 @@ function to(value: number): number {
 }
 
 /** Where a key takes a slider; null for keys that are not its own. */
-export function keyedPosition(key: string, isShift: boolean, position: number): number | null {
+function keyedPosition(key: string, isShift: boolean, position: number): number | null {
   const step = isShift ? BIG_STEP : STEP;
   switch (key) {
     case "ArrowUp":

@@ -10,7 +10,7 @@ export interface View {
   readonly scroll: number;
 }
 
-export const FITTED: View = { span: null, scroll: 0 };
+const FITTED: View = { span: null, scroll: 0 };
 
 export type Whole = Pick<LayoutOpts, "project" | "figures" | "width" | "height" | "range">;
 

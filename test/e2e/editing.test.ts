@@ -82,6 +82,18 @@ describe("sliders", () => {
     expect(await session.subtitle()).toContain("read-only demo");
   });
 
+  test("a hand that points leaves no ring, a key that walks does", async () => {
+    const hasRing = (): Promise<boolean> => session.page.evaluate(() => document.activeElement?.matches(":focus-visible") ?? false);
+    const box = (await session.sheet.knob("b1k").boundingBox())!;
+    await session.page.mouse.click(box.x + box.width / 2, box.y + box.height / 2);
+    expect(await session.sheet.knob("b1k").evaluate((element) => element === document.activeElement)).toBe(true);
+    expect(await hasRing()).toBe(false);
+    await session.page.mouse.click(box.x - 24, box.y + 40);
+    expect(await hasRing()).toBe(false);
+    await session.keyboard.press("Tab");
+    expect(await hasRing()).toBe(true);
+  });
+
   test("keys move it in steps, and the value is read out", async () => {
     const knob = session.sheet.knob("b500");
     await knob.focus();

@@ -6,6 +6,7 @@ import { lawResults } from "../../core/analysis/laws.ts";
 import { polesAndZeros } from "../../core/analysis/poles.ts";
 import { loopMargins, smallestMargin } from "../../core/analysis/stability.ts";
 import { setPartValue } from "../../core/model/edit.ts";
+import { BLOCKS } from "../../core/blocks/index.ts";
 import { newProject } from "../../core/model/new-project.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import type { Project } from "../../core/model/project.ts";
@@ -205,7 +206,9 @@ describe("an unstable board", () => {
   test("says so wherever there are figures, names the loop, and recovers", async () => {
     const project = { ...OSCILLATING.slow, blocks: OSCILLATING.slow.blocks.map((b) => (b.id === "hi" ? { ...b, label: "Treble" } : b)) };
     const [pole] = polesAndZeros(resolveBoard(project)).unstable;
-    const name = project.blocks.find((b) => b.id === pole.block)?.label ?? pole.block;
+    // The only stage, and without a name of its own: it goes by its kind.
+    const name = BLOCKS[project.blocks.find((b) => b.id === pole.block)!.kind].label;
+    expect(name).toBe("Boost/cut stage");
     session = await Session.start(browser, { projects: { "Howling.bandwright": serializeProject(project) } });
     await session.keyboard.press("Control+o");
     await session.page.getByRole("option", { name: "Howling" }).dblclick();

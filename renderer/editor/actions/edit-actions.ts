@@ -142,7 +142,7 @@ const hertz = (f: number | null): string => (f === null ? "–" : formatFigure(f
 const plain = (q: number | null): string => (q === null ? "–" : formatFigure(q, "plain"));
 
 /** The figures as tab-separated text, one row a band. */
-export function figuresText(figures: readonly BandFigures[]): string {
+function figuresText(figures: readonly BandFigures[]): string {
   const rows = figures.map((f) => [
     f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q),
     formatDb(f.cut.peak), hertz(f.cut.frequency), plain(f.cut.q),

@@ -9,7 +9,7 @@ import { copyText } from "../copy-text.ts";
 import type { Action, ActionContext } from "./action.ts";
 
 /** The equations of some blocks at one frequency, with a warning above them where the board oscillates. */
-export function equationsText(board: Board, blocks: readonly string[], frequency: number, style: EquationStyle): string {
+function equationsText(board: Board, blocks: readonly string[], frequency: number, style: EquationStyle): string {
   const report = boardReport(board, { style, blocks, frequency });
   const comment = style === "tex" ? "% " : "";
   const unstable = unstablePoles(board);

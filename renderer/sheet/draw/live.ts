@@ -15,7 +15,7 @@ const CENTRE = 0.0005;
 
 export type Side = "boost" | "cut" | "centre";
 
-export function sideOf(position: number): Side {
+function sideOf(position: number): Side {
   return position > 0.5 + CENTRE ? "boost" : position < 0.5 - CENTRE ? "cut" : "centre";
 }
 
@@ -52,12 +52,15 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
   const text = formatDb(now);
   const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: isVoid ? inks.inkSoft : nowColor(pen, now), isStruck: isVoid } as const;
   const bare = text.replace(" dB", "");
-  const written = place.detail === "full" ? text : pen.widthOf(bare, shown.size) <= slot - 2 ? bare : formatDb(now, 0).replace(" dB", "");
-  const lineY = figureLine(place, "now");
   const isBold = place.detail === "full";
+  // Measured once: letters are what costs most in a frame of many bands.
+  const room = pen.widthOf(isBold ? text : bare, shown.size, isBold);
+  const fits = isBold || room <= slot - 2;
+  const written = isBold ? text : fits ? bare : formatDb(now, 0).replace(" dB", "");
+  const lineY = figureLine(place, "now");
   if (!isSelected) {
     // Plain ground behind the letters: an outline about each would cost most of the frame.
-    const width = pen.widthOf(written, shown.size, isBold) + 2;
+    const width = (fits ? room : pen.widthOf(written, shown.size)) + 2;
     ctx.fillStyle = inks.paper;
     ctx.fillRect(x - width / 2, lineY - 6, width, 12);
   }
@@ -73,7 +76,7 @@ function nowColor(pen: Pen, now: number): string {
 export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, within: Box, isVoid: boolean): void {
   const { inks } = pen;
   const texts = bandFigureTexts(figures);
-  const lines = [figures.label, texts.boost, texts.cut, texts.centre, texts.quality, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
+  const lines = [figures.label, `${texts.boost.replace(" dB", "")}  ${texts.cut}`, `${texts.centre} · ${texts.quality}`, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
   const width = Math.max(...lines.map((text, i) => pen.widthOf(text, i === 0 ? 12 : 11, i === 0))) + 20;
   const height = lines.length * 15 + 10;
   const x = clamp(place.x, within.left + width / 2, within.right - width / 2);

@@ -37,6 +37,16 @@ describe("hit test", () => {
     }
   });
 
+  test("on a crowded bus the only selected band shows its values, and they can be taken", () => {
+    const { layout, blocks } = laidOut([100, 160, 250, 400, 630, 1000, 1600, 2500, 4000, 6300, 10e3, 16e3, 20, 31, 50, 80]);
+    const band = layout.bands[3];
+    expect([band.hasValues, band.detail]).toEqual([false, "short"]);
+    const value = bandValues(band, blocks.get(band.id)!).find((v) => v.role === "seriesC")!;
+    const place = at((value.box.left + value.box.right) / 2, value.y);
+    expect(hitTest(layout, blocks, place)?.part).toBe("block");
+    expect(hitTest(layout, blocks, place, band.id)).toMatchObject({ part: "value", id: band.id, value: { role: "seriesC" } });
+  });
+
   test("finds blocks by their figures and symbols, and nothing on bare paper or in the response", () => {
     const { layout, blocks } = laidOut([100, 1000, 10e3]);
     for (const band of layout.bands) expect(hitTest(layout, blocks, at(band.x, band.figuresTop + 8))).toEqual({ part: "block", id: band.id });

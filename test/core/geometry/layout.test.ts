@@ -5,6 +5,7 @@ import { bandFrequency } from "../../../core/geometry/band-frequency.ts";
 import { arrangedPlaces, layoutSheet, movedPlace, type LayoutOpts, type SheetLayout } from "../../../core/geometry/layout.ts";
 import { pixelOf } from "../../../core/geometry/ruling.ts";
 import { overlaps } from "../../../core/geometry/units.ts";
+import { chainValues } from "../../../core/geometry/values.ts";
 import type { Block, Project } from "../../../core/model/project.ts";
 import { boardOf, gyratorAt, THIRD_OCTAVES, twoStages } from "../../helpers/sheet-boards.ts";
 
@@ -76,6 +77,28 @@ describe("layout", () => {
     const low = layOut(project, { height: 480, scroll: 1e6 });
     expect(low.scroll).toBe(low.mostScroll);
     expect(low.rails[1].bottom).toBeLessThanOrEqual(low.frame.board.bottom + 15);
+  });
+
+  test("octaves on two rails keep their values on a usual screen", () => {
+    const layout = layOut(twoStages(OCTAVES.map((f) => gyratorAt(f))), { height: 806 });
+    expect(layout.mostScroll).toBe(0);
+    expect(layout.bands.filter((band) => !band.hasValues)).toEqual([]);
+  });
+
+  test.each([[1440], [1090], [712]])("the chain stays inside the sheet, its values apart, at a width of %d", (width) => {
+    const project = boardOf(OCTAVES.map((f) => gyratorAt(f)));
+    const blocks = project.blocks.map((block) =>
+      block.kind === "boost-cut-stage" ? { ...block, parts: { ...block.parts, feedbackC: { value: 47e-12 } } }
+      : block.kind === "input" ? { ...block, parts: { ...block.parts, couplingC: { value: 100e-9 }, loadR: { value: 1e6 } } }
+      : block);
+    const { chain, frame } = layOut({ ...project, blocks } as Project, { width, height: 608 });
+    expect(Math.min(...chain.map((place) => place.x + place.drawing.left * place.grid))).toBeGreaterThan(0);
+    const values = chain.flatMap((place) => chainValues(place));
+    expect(values.map(({ text }) => text)).toEqual(expect.arrayContaining(["47p", "100n", "1M"]));
+    for (const [i, a] of values.entries()) {
+      expect(a.box.right, a.text).toBeLessThanOrEqual(frame.width);
+      for (const b of values.slice(i + 1)) expect(overlaps(a.box, b.box), `${a.text} and ${b.text}`).toBe(false);
+    }
   });
 
   test("draws what is wired wrongly: a band on no bus has a row of its own, a board without a stage its ends", () => {

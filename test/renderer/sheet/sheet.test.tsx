@@ -2,6 +2,7 @@
 import { act } from "react";
 import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
 import { boardOf, gyratorAt } from "../../helpers/sheet-boards.ts";
+import { Pen } from "../../../renderer/sheet/draw/pen.ts";
 import { mountSheet, stubSurroundings, type Mounted } from "./mount-sheet.tsx";
 
 const FREQUENCIES = [4000, 63, 250, 1000];
@@ -192,6 +193,22 @@ describe("the sheet", () => {
     expect(sheet.handle.screenPlaceOf("b63", "knob")!.x).toBeGreaterThan(200);
     await act(async () => sheet.handle.fit());
     expect(sheet.handle.screenPlaceOf("b63", "knob")).toEqual(before);
+  });
+
+  test("the figures of a board that oscillates are struck, its parts are not", async () => {
+    const written = vi.spyOn(Pen.prototype, "text");
+    const struck = (): readonly string[] => written.mock.calls.filter(([, , , opts]) => opts?.isStruck === true).map(([text]) => text);
+    const drawn = (): Promise<void> => act(async () => new Promise((resolve) => { setTimeout(resolve, 50); }));
+    await act(async () => sheet.handle.zoomBy(1.01));
+    await drawn();
+    expect(written.mock.calls.map(([text]) => text)).toContain("470R");
+    expect(struck()).toEqual([]);
+    const other = await mountSheet(boardOf([gyratorAt(1000)]), { isVoid: true });
+    await drawn();
+    await other.unmount();
+    expect(struck()).toEqual(expect.arrayContaining([expect.stringMatching(/^▲ \+[\d.]+ dB$/), expect.stringMatching(/^▼ −[\d.]+ dB$/), expect.stringMatching(/^Q /), expect.stringMatching(/^[+−]?[\d.]+ dB$/)]));
+    expect(struck()).not.toContain("470R");
+    expect(struck()).not.toContain("1 kHz");
   });
 
   test("wiring faults leave the blocks on the sheet", async () => {
