@@ -62,7 +62,7 @@ export function drawChainBlock(pen: Pen, place: ChainPlace, isSelected: boolean)
   const { grid, x, y } = place;
   const name = block.label ?? BLOCKS[block.kind].label;
   if (block.kind === "boost-cut-stage") {
-    pen.text(name, x - 46 * grid, y - 21 * grid, { isBold: true, size: 12 });
+    pen.text(name, x - 46 * grid, y - 20.5 * grid, { isBold: true, size: 12 });
     if (block.opAmp) pen.text(block.opAmp, x - 14 * grid, y - 17 * grid, { color: inks.inkSoft, size: 10.5 });
   } else if (block.kind === "input") pen.text(block.label ?? "in", x + 4 * grid, y + 21 * grid, { isBold: true, size: 12 });
   else if (block.kind === "output") pen.text(block.label ?? "out", x + 13.6 * grid, y + 16.5 * grid, { isBold: true, size: 12 });
