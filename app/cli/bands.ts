@@ -1,7 +1,7 @@
 import type { Command } from "commander";
 import { bandFigures, type BandPeak } from "../../core/analysis/bands.ts";
 import { formatFigure, type Quantity } from "../../core/units.ts";
-import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { boardCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 
 /** `bands FILE`: band figures, one row a band. */
 export function bandsCommand(): Command {
@@ -14,6 +14,7 @@ export function bandsCommand(): Command {
         printJson({ bands });
         return;
       }
+      finiteJson(bands);
       const value = (x: number | null, quantity: Quantity): string => (x === null ? "–" : formatFigure(x, quantity));
       const peak = ({ peak: db, frequency, q }: BandPeak): string[] => [db.toFixed(2), value(frequency, "frequency"), value(q, "plain")];
       printTable(

@@ -1,7 +1,7 @@
 import { readFile } from "node:fs/promises";
 import { Command } from "commander";
 import { FaultError, faultText } from "../../core/errors.ts";
-import { unstablePoles, unstableText } from "../../core/analysis/poles.ts";
+import { instabilityText } from "../../core/analysis/summary.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
@@ -49,8 +49,8 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
     const board = resolveBoard(project);
     for (const warning of [...warnings, ...board.warnings]) process.stderr.write(`${file}: warning: ${faultText(warning)}\n`);
     const run = { positions: sliderPositions(board, opts), isMeasured: opts.measured === true };
-    const unstable = unstablePoles(board, run);
-    if (unstable.length > 0) process.stderr.write(`${file}: ${unstableText(unstable)}\n`);
+    const trouble = instabilityText(board, run);
+    if (trouble !== null) process.stderr.write(`${file}: ${trouble}\n`);
     return { board, run, compiled: compileBoard(board, run) };
   } catch (error) {
     if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));
@@ -97,7 +97,12 @@ export function readFrequency(text: string, option: string): number {
 
 /** JSON for other programs: stable, indented, and without NaN or Infinity. @throws CommandFailure (exit 1) where a number is not finite */
 export function printJson(value: unknown): void {
-  const text = JSON.stringify(
+  process.stdout.write(`${finiteJson(value)}\n`);
+}
+
+/** A result as JSON text; a command that shows it to people calls this too, so that neither form has NaN in it. @throws CommandFailure */
+export function finiteJson(value: unknown): string {
+  return JSON.stringify(
     value,
     (key, inner: unknown) => {
       if (typeof inner === "number" && !Number.isFinite(inner)) throw new CommandFailure(`no finite result for “${key}”: some value of the board is out of any practical range`, 1);
@@ -105,7 +110,6 @@ export function printJson(value: unknown): void {
     },
     2,
   );
-  process.stdout.write(`${text}\n`);
 }
 
 /** Columns of text: those that hold figures to the right, words and the first column to the left. */

@@ -30,6 +30,11 @@ export async function runCommandLine(args: readonly string[]): Promise<number> {
       process.stderr.write(`${error.message}\n`);
       return error.exitCode;
     }
+    // The engine's word for values with which there is nothing to compute.
+    if (error instanceof RangeError) {
+      process.stderr.write(`${error.message}\n`);
+      return EXIT.failed;
+    }
     process.stderr.write(`bandwright failed unexpectedly: ${error instanceof Error ? (error.stack ?? error.message) : String(error)}\n`);
     return EXIT.failed;
   }

@@ -1,7 +1,7 @@
 import type { Command } from "commander";
 import { polesAndZeros, rootFigures, type Root } from "../../core/analysis/poles.ts";
 import { formatFigure } from "../../core/units.ts";
-import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { boardCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 
 /** `poles FILE`: poles and zeros of the whole board. */
 export function polesCommand(): Command {
@@ -15,6 +15,7 @@ export function polesCommand(): Command {
         printJson({ poles: poles.map(root), zeros: zeros.map(root) });
         return;
       }
+      finiteJson({ poles, zeros, reproducedWithin });
       const row = (kind: string, root: Root, block: string): string[] => {
         const { frequency, q } = rootFigures(root);
         const number = (x: number): string => (x === 0 ? "0" : x.toPrecision(6));

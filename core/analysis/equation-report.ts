@@ -7,7 +7,7 @@ import { formatDb, formatFigure } from "../units.ts";
 import { bandFigures } from "./bands.ts";
 import { branchEquationText, complexText, lawSteps, lawSymbolText, nodeEquationText, opAmpGainText, stageTransferNumbers, stageTransferText, type EquationStyle } from "./equation-text.ts";
 import { idealTransfer, type IdealTransfer } from "./ideal-transfer.ts";
-import { lossAccount } from "./interaction.ts";
+import { lossAccount, type LossAccount } from "./interaction.ts";
 import { lawAccounts } from "./laws.ts";
 import { boardEquations, solveEquations, termCurrent, type BoardEquations, type SolvedEquations } from "./node-equations.ts";
 import { ResponseSweep } from "./response.ts";
@@ -51,7 +51,7 @@ export function blockIds(board: Board): string[] {
   return board.project.supply.kind === "single" ? [...ids, "reference"] : ids;
 }
 
-/** Everything that the screen and the command line show of a board's equations. @throws RangeError where they have no solution */
+/** Everything that the screen and the command line show of a board's equations. @throws RangeError where they have no finite solution */
 export function boardReport(board: Board, opts: ReportOpts): BoardReport {
   const { frequency, style } = opts;
   const equations = boardEquations(board, opts);
@@ -95,6 +95,7 @@ export function blockReportText(block: BlockReport, style: EquationStyle): strin
 function lawLines(band: Block, stage: Block, opts: ReportOpts): ReportLine[] {
   const { style } = opts;
   return lawAccounts(band, stage, opts).flatMap((account): ReportLine[] => {
+    if (![account.value, ...account.elasticity.map((e) => e.value)].every(Number.isFinite)) throw new RangeError(`the design laws of “${band.id}” have no finite result: some value of it is out of any practical range`);
     const { symbols, values, result } = lawSteps(account, band.kind, style);
     const inDb = account.law.symbol === "G" ? ` (${formatDb(20 * Math.log10(account.value), 2)})` : "";
     const moves = account.elasticity.map(({ symbol, value }) => `${symbol} ${value < 0 ? "−" : "+"}${Math.abs(value).toFixed(2)} %`).join(", ");
@@ -106,8 +107,15 @@ function lawLines(band: Block, stage: Block, opts: ReportOpts): ReportLine[] {
 }
 
 function lossLines(board: Board, figure: ReturnType<typeof bandFigures>[number], opts: ReportOpts): ReportLine[] {
-  const account = lossAccount(board, figure.id, opts);
   const prose = (text: string): ReportLine => ({ text, isProse: true });
+  let account: LossAccount;
+  try {
+    account = lossAccount(board, figure.id, opts);
+  } catch (error) {
+    // The laws and node equations beside it are worth having all the same.
+    if (error instanceof RangeError) return [prose(error.message)];
+    throw error;
+  }
   const { frequency, q, peak } = figure.boost;
   const at = frequency === null ? "" : ` at ${formatFigure(frequency, "frequency")}`;
   const width = q === null ? "" : `, Q ${formatFigure(q, "plain")}`;
@@ -132,6 +140,7 @@ function stageLines(stage: Block, ideal: IdealTransfer | undefined, gain: number
     });
   }
   const onPaper = 20 * Math.log10(Math.hypot(ideal.total.re, ideal.total.im));
+  if (!Number.isFinite(onPaper)) throw new RangeError(`the transfer function has no finite result at ${ideal.frequency.toPrecision(4)} Hz: some value of the board is out of any practical range`);
   lines.push({ text: `whole chain in this form ${formatDb(onPaper, 3)}; with its real op amps and reference ${formatDb(gain ?? onPaper, 3)}`, isProse: true });
   return lines;
 }

@@ -83,7 +83,7 @@ export interface SolvedEquations {
   readonly amperes: ReadonlyMap<string, ComplexValue>;
 }
 
-/** Solves the node equations at a frequency, Hz. @throws RangeError where they have no unique solution */
+/** Solves the node equations at a frequency, Hz. @throws RangeError where they have no unique or no finite solution */
 export function solveEquations(board: Board, frequency: number, opts: ValueOpts = {}): SolvedEquations {
   const { size, conductance, storage, excitation, unknowns } = describeNetlist(expandBoard(board, opts));
   const lu = new ComplexLu(size);
@@ -93,6 +93,7 @@ export function solveEquations(board: Board, frequency: number, opts: ValueOpts 
   const re = excitation.slice();
   const im = new Float64Array(size);
   lu.solve(re, im);
+  if (!re.every(Number.isFinite) || !im.every(Number.isFinite)) throw new RangeError(`the node equations have no finite solution at ${frequency.toPrecision(4)} Hz`);
   const volts = new Map<string, ComplexValue>([["ground", { re: 0, im: 0 }]]);
   const amperes = new Map<string, ComplexValue>();
   unknowns.forEach((unknown, i) => {

@@ -55,6 +55,7 @@ const [SHARED_FROM, SHARED_TO] = [1e5, 1e9];
  * node floats at DC). Zeros: the same with the EMF's equation replaced by v(load) = 0. Every root is then refined on the
  * full pencil by two-sided Rayleigh quotient iteration (Ostrowski, Arch. Rational Mech. Anal. 3, 1959), so that time
  * constants ten decades apart keep their digits.
+ * @throws RangeError where some value is out of any practical range
  */
 export function polesAndZeros(board: Board, opts: ValueOpts = {}): PolesAndZeros {
   const poleForm = describeNetlist(expandBoard(board, opts));
@@ -69,7 +70,7 @@ export function polesAndZeros(board: Board, opts: ValueOpts = {}): PolesAndZeros
   return { poles, zeros, ...factored, unstable: poles.filter(isUnstable) };
 }
 
-/** The poles that make a board oscillate: those with a positive real part. Quicker than `polesAndZeros`, which tells more. */
+/** The poles that make a board oscillate: those with a positive real part. Quicker than `polesAndZeros`, which tells more. @throws RangeError as that does */
 export function unstablePoles(board: Board, opts: ValueOpts = {}): Pole[] {
   const form = describeNetlist(expandBoard(board, opts));
   const suspects = eigenvaluesOf(form).filter((root) => root.re > -1e-6 * Math.hypot(root.re, root.im));
@@ -133,10 +134,11 @@ function eigenvaluesOf(form: Descriptor): Root[] {
   return [...near.filter((root) => sizeOf(root) < seam), ...far.filter((root) => sizeOf(root) >= seam && sizeOf(root) < FARTHEST)];
 }
 
-/** The roots as one shift tells them, the infinite ones apart. */
+/** The roots as one shift tells them, the infinite ones apart. @throws RangeError where no shift gives finite numbers */
 function shiftedRoots(form: Descriptor, shifts: readonly number[]): Root[] {
   const { size: n, conductance, storage, storageTerms } = form;
   const m = storageTerms.length;
+  if (m === 0) return [];
   const lu = new ComplexLu(n);
   const column = new Float64Array(n);
   const zero = new Float64Array(n);
@@ -157,6 +159,7 @@ function shiftedRoots(form: Descriptor, shifts: readonly number[]): Root[] {
         k[i * m + j] = sigma * value * sum;
       });
     });
+    if (!k.every(Number.isFinite)) break;
     const { re, im } = realEigenvalues(k, m);
     const roots: Root[] = [];
     for (let i = 0; i < m; i++) {
@@ -165,7 +168,7 @@ function shiftedRoots(form: Descriptor, shifts: readonly number[]): Root[] {
     }
     return roots;
   }
-  return [];
+  throw new RangeError("there are no poles to be found: some value of the board is out of any practical range");
 }
 
 /**

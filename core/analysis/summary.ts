@@ -1,10 +1,11 @@
 import type { Board } from "../net/board.ts";
+import { expandBoard } from "../net/expand.ts";
 import { compileBoard } from "../net/star.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { bandFigures } from "./bands.ts";
 import { unstablePoles, unstableText } from "./poles.ts";
 import { logFrequencies, ResponseSweep } from "./response.ts";
-import { loopMargins, smallestMargin } from "./stability.ts";
+import { loopMargins, smallestMargin, type LoopMargin } from "./stability.ts";
 
 export interface Flatness {
   /** Largest departure from the gain at 1 kHz, dB, over the range. */
@@ -32,18 +33,45 @@ export function boardSize(board: Board): string {
   return `${count(bands, "band", "bands")} on ${count(buses, "bus", "buses")}, ${volts}`;
 }
 
-/** One line that says what a board does: size, boost in circuit, flatness, and whether its loops are at peace. */
+/** One line that says what a board does: size, boost in circuit, flatness, and whether its loops are at peace. @throws RangeError where it has no finite response */
 export function boardSummary(board: Board, opts: ValueOpts = {}): string {
   const peaks = bandFigures(board, opts).map((f) => f.boost.peak);
   const boosts = peaks.length === 0 ? "" : `; boost in circuit ${Math.min(...peaks).toFixed(1)} to ${Math.max(...peaks).toFixed(1)} dB`;
   const flat = flatness(board, opts);
+  if (![...peaks, flat.within].every(Number.isFinite)) throw new RangeError("there is no finite response: some value of the board is out of any practical range");
   return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred; ${stabilityText(board, opts)}`;
+}
+
+/** Boards of more nodes than this are not looked at for stability: the work grows with the cube, and these would take minutes. */
+const MOST_NODES = 320;
+
+/** Says that a board oscillates, or that nobody can tell; null where it is at peace. */
+export function instabilityText(board: Board, opts: ValueOpts = {}): string | null {
+  return judged(board, opts, () => {
+    const unstable = unstablePoles(board, opts);
+    return unstable.length > 0 ? unstableText(unstable) : null;
+  });
 }
 
 /** `smallest phase margin 57° (b6k3)`, or that the board is unstable. */
 export function stabilityText(board: Board, opts: ValueOpts = {}): string {
-  const unstable = unstablePoles(board, opts);
-  if (unstable.length > 0) return unstableText(unstable);
-  const least = smallestMargin(loopMargins(board, opts));
-  return least ? `smallest phase margin ${least.phaseMargin.toFixed(0)}° (${least.block})` : "ideal op amps, so no loop to judge";
+  return instabilityText(board, opts) ?? judged(board, opts, () => marginText(loopMargins(board, opts)));
+}
+
+function marginText(margins: readonly LoopMargin[]): string {
+  if (margins.length === 0) return "ideal op amps, so no loop to judge";
+  const least = smallestMargin(margins);
+  return least ? `smallest phase margin ${least.phaseMargin.toFixed(0)}° (${least.block})` : "no loop gain reaches 1";
+}
+
+function judged<T>(board: Board, opts: ValueOpts, judge: () => T): T | string {
+  const unknown = (why: string): string => `whether the board oscillates is not known: ${why}`;
+  const nodes = expandBoard(board, opts).nodeCount;
+  if (nodes > MOST_NODES) return unknown(`it has ${nodes} nodes, and more than ${MOST_NODES} would take too long`);
+  try {
+    return judge();
+  } catch (error) {
+    if (error instanceof RangeError) return unknown(error.message);
+    throw error;
+  }
 }

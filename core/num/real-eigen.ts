@@ -9,8 +9,9 @@ export interface Eigenvalues {
   readonly im: Float64Array;
 }
 
-/** @param a n×n, row-major; overwritten. @throws RangeError where the iteration does not settle (never seen on finite input) */
+/** @param a n×n, row-major; overwritten. @throws RangeError where an entry is not finite, or the iteration does not settle */
 export function realEigenvalues(a: Float64Array, n: number): Eigenvalues {
+  if (!a.every(Number.isFinite)) throw new RangeError("the matrix has an entry that is not a finite number");
   balance(a, n);
   hessenberg(a, n);
   return francisQr(a, n);
@@ -30,7 +31,8 @@ function balance(a: Float64Array, n: number): void {
       }
       if (row === 0 || column === 0) continue;
       const factor = 2 ** Math.round(Math.log2(row / column) / 2);
-      if ((column * factor + row / factor) >= 0.95 * (column + row)) continue;
+      // The other way round, sums past any number's range would be balanced for ever.
+      if (!(column * factor + row / factor < 0.95 * (column + row))) continue;
       isSettled = false;
       for (let j = 0; j < n; j++) {
         a[i * n + j] /= factor;

@@ -37,6 +37,21 @@ const entry = fc.integer({ min: -1000, max: 1000 }).map((n) => n / 100);
 const square = fc.integer({ min: 1, max: 16 }).chain((n) => fc.array(fc.array(entry, { minLength: n, maxLength: n }), { minLength: n, maxLength: n }));
 
 describe("eigenvalues", () => {
+  test.each([Infinity, -Infinity, NaN])("of a matrix with %d in it are refused at once", (bad) => {
+    expect(() => eigenvalues([[1, bad, 0], [2, 3, 1], [0, 1, 1]])).toThrow(RangeError);
+  });
+
+  test("of a matrix whose sums run past any number's range are found or refused, and not sought for ever", () => {
+    const outcome = (): string => {
+      try {
+        return eigenvalues([[0, 1.5e308, 1.5e308], [1, 0, 0], [1, 0, 0]]).length === 3 ? "found" : "lost";
+      } catch (error) {
+        return error instanceof RangeError ? "refused" : "broken";
+      }
+    };
+    expect(["found", "refused"]).toContain(outcome());
+  });
+
   test("of random matrices are those of ml-matrix", () => {
     fc.assert(
       fc.property(square, (rows) => {
