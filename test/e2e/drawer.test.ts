@@ -115,7 +115,7 @@ describe("the drawer", () => {
       await expect.poll(() => session.page.getByLabel("Measured value").inputValue()).toBe("");
     }
     await expect.poll(user.panel).toContain("181.5 nF");
-    expect(await user.panel()).toContain("−0.6 %");
+    await expect.poll(user.panel).toContain("−0.6 %");
 
     await session.page.getByRole("button", { name: "Show all" }).click();
     await session.page.getByText("Capacitors", { exact: true }).click();

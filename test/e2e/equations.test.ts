@@ -141,7 +141,8 @@ describe("the equations of a block", () => {
       await session.keyboard.press("Alt+Shift+E");
       await expect.poll(async () => (await area().innerText()).toLowerCase()).toContain(words.toLowerCase());
     }
-    expect(await stability().count()).toBe(1);
+    // Faulty wiring leaves no loop to judge: nothing stands there as if it were being computed.
+    expect(await stability().count()).toBe(0);
   });
 });
 
