@@ -45,10 +45,11 @@ const EXTREMES: readonly (readonly [string, Project])[] = [
   ["a track past any", with1("track", 1e300)],
   ["an op amp unlike any", { ...BOARD, opAmps: { TL072: { openLoopGain: 1e-300, gainBandwidth: 1e-300, inputR: 1e-300, outputR: 1e300 } } }],
 ];
-const COMMANDS = [["check"], ["bands"], ["bands", "--json"], ["respond", "--points", "3"], ["poles"], ["poles", "--json"], ["equations", "--at", "1k"]];
+/** Commands that each of them once brought to a halt, to a stack trace or to NaN. */
+const COMMANDS = [[["check"], ["equations", "--at", "1k"]], [["check"], ["bands"], ["equations", "--at", "1k"]], [["poles"], ["respond", "--points", "3"]], [["poles", "--json"], ["equations", "--at", "1k"]], [["check"], ["bands", "--json"], ["poles"]]];
 
 describe.concurrent("values out of any practical range", () => {
-  test.each(EXTREMES.flatMap(([name, project], n) => COMMANDS.map((command) => [name, command.join(" "), project, n, command] as const)))("%s: %s", async (_name, text, project, n, [command, ...options]) => {
+  test.each(EXTREMES.flatMap(([name, project], n) => COMMANDS[n].map((command) => [name, command.join(" "), project, n, command] as const)))("%s: %s", async (_name, text, project, n, [command, ...options]) => {
     const { code, stdout, stderr } = await bandwright(command, write(`${n}-${text.replaceAll(/\W+/g, "-")}`, project), ...options);
     expect([0, 1]).toContain(code);
     expect(stdout).not.toMatch(/NaN|Infinity/);
