@@ -1,15 +1,18 @@
 import { randomBytes } from "node:crypto";
-import { open, rename, stat, unlink } from "node:fs/promises";
+import { open, realpath, rename, stat, unlink } from "node:fs/promises";
 import { dirname, join } from "node:path";
 
 /**
  * Writes a file whole or not at all: into a temporary file beside it, flushed, then renamed over it.
- * A crash, a full disk or a pulled plug leaves the old file as it was. The old file's mode and owner are kept.
+ * A crash, a full disk or a pulled plug leaves the old file as it was. The old file's mode and owner are kept. Where the
+ * path is a link, the file behind it is the one that is replaced; what is no file (a folder, a device) never is.
  * The node file handle writes on until every byte is down, so that a short write cannot pass for a whole one.
  */
 export async function writeWhole(path: string, text: string): Promise<void> {
-  const folder = dirname(path);
-  const old = await stat(path).catch(() => null);
+  const target = await realpath(path).catch(() => path);
+  const folder = dirname(target);
+  const old = await stat(target).catch(() => null);
+  if (old !== null && !old.isFile()) throw new Error("not an ordinary file");
   // A short name of its own: one built on the file's name could grow too long for the file system.
   const temp = join(folder, `.bandwright-${randomBytes(8).toString("hex")}.tmp`);
   const handle = await open(temp, "wx", old === null ? 0o666 : 0o600);
@@ -25,7 +28,7 @@ export async function writeWhole(path: string, text: string): Promise<void> {
     } finally {
       await handle.close();
     }
-    await rename(temp, path);
+    await rename(temp, target);
   } catch (error) {
     await unlink(temp).catch(() => undefined);
     throw error;

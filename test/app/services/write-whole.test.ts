@@ -1,5 +1,5 @@
 import { execFile, spawn } from "node:child_process";
-import { chmod, mkdtemp, readdir, readFile, rm, stat, writeFile } from "node:fs/promises";
+import { chmod, lstat, mkdir, mkdtemp, readdir, readFile, rm, stat, symlink, writeFile } from "node:fs/promises";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { fileURLToPath } from "node:url";
@@ -30,6 +30,27 @@ describe("writing a file whole", () => {
     await writeWhole(path, "new");
     expect((await stat(path)).mode & 0o777).toBe(0o640);
     expect(await readFile(path, "utf8")).toBe("new");
+  });
+
+  test("writes to the file behind a link, and the link stays one", async () => {
+    await mkdir(join(folder, "elsewhere"));
+    const file = join(folder, "elsewhere", "a");
+    const link = join(folder, "link");
+    await writeFile(file, "old");
+    await symlink(file, link);
+    await writeWhole(link, "new");
+    expect((await lstat(link)).isSymbolicLink()).toBe(true);
+    expect(await readFile(file, "utf8")).toBe("new");
+    expect(await readdir(join(folder, "elsewhere"))).toEqual(["a"]);
+  });
+
+  test("never puts a file in the place of a pipe or a folder", async () => {
+    const pipe = join(folder, "pipe");
+    await promisify(execFile)("mkfifo", [pipe]);
+    await mkdir(join(folder, "inner"));
+    for (const path of [pipe, join(folder, "inner")]) await expect(writeWhole(path, "new")).rejects.toThrow("not an ordinary file");
+    expect((await stat(pipe)).isFIFO()).toBe(true);
+    expect((await readdir(folder)).toSorted()).toEqual(["inner", "pipe"]);
   });
 
   test("takes the longest name that the file system does", async () => {
