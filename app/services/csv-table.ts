@@ -1,11 +1,10 @@
-import { open, stat } from "node:fs/promises";
 import { Readable } from "node:stream";
 import { CsvError, parse } from "csv-parse";
 import { HostFailure } from "../../core/contract/failures.ts";
 import { EXPORT_MAPPING, isExport } from "../../core/drawer/export-rows.ts";
 import { guessDelimiter, guessHeader, guessMapping } from "../../core/drawer/guess-mapping.ts";
 import type { Encoding, ImportMapping, TableReading } from "../../core/drawer/mapping.ts";
-import { readFailure } from "./system-error.ts";
+import { readWhole } from "./read-whole.ts";
 
 const MAX_TABLE_BYTES = 256 * 1024 * 1024;
 const CHUNK = 65_536;
@@ -28,21 +27,8 @@ export interface Table {
 }
 
 /** A file's bytes. @throws HostFailure */
-export async function readTableFile(path: string): Promise<Buffer> {
-  try {
-    const info = await stat(path);
-    if (info.isDirectory()) throw new HostFailure("file-unreadable", { path, reason: "folder", detail: "" });
-    if (!info.isFile()) throw new HostFailure("file-unreadable", { path, reason: "system", detail: "not an ordinary file" });
-    if (info.size > MAX_TABLE_BYTES) throw new HostFailure("file-unreadable", { path, reason: "too-large", detail: "" });
-    const handle = await open(path, "r");
-    try {
-      return await handle.readFile();
-    } finally {
-      await handle.close();
-    }
-  } catch (error) {
-    throw error instanceof HostFailure ? error : readFailure(path, error);
-  }
+export function readTableFile(path: string): Promise<Buffer> {
+  return readWhole(path, MAX_TABLE_BYTES);
 }
 
 /** Decodes a table's bytes: as told, else by their mark, else UTF-8, else what spreadsheets wrote before it. */

@@ -1,5 +1,5 @@
 import { createHash } from "node:crypto";
-import { access, constants, mkdir, open, readdir, stat } from "node:fs/promises";
+import { access, constants, mkdir, readdir, stat } from "node:fs/promises";
 import { basename, dirname, extname, join } from "node:path";
 import { HostFailure } from "../../core/contract/failures.ts";
 import type { ArgsOf, ResultOf } from "../../core/contract/methods.ts";
@@ -8,6 +8,7 @@ import type { Project } from "../../core/model/project.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { serializeProject } from "../../core/model/serialize.ts";
 import { isInside, type PathGuard } from "./path-guard.ts";
+import { readWhole } from "./read-whole.ts";
 import { readFailure, systemCode, writeFailure } from "./system-error.ts";
 import { writeWhole } from "./write-whole.ts";
 
@@ -117,29 +118,11 @@ interface ProjectFile {
 }
 
 async function readProjectFile(path: string): Promise<ProjectFile> {
-  const bytes = await readBytes(path);
+  const bytes = await readWhole(path, MAX_PROJECT_BYTES);
   try {
     return { text: new TextDecoder("utf-8", { fatal: true }).decode(bytes), fingerprint: fingerprintOf(bytes) };
   } catch {
     throw new HostFailure("file-unreadable", { path, reason: "not-text", detail: "" });
-  }
-}
-
-async function readBytes(path: string): Promise<Buffer> {
-  try {
-    // Asked before opening: opening a pipe would wait for ever.
-    const info = await stat(path);
-    if (info.isDirectory()) throw new HostFailure("file-unreadable", { path, reason: "folder", detail: "" });
-    if (!info.isFile()) throw new HostFailure("file-unreadable", { path, reason: "system", detail: "not an ordinary file" });
-    if (info.size > MAX_PROJECT_BYTES) throw new HostFailure("file-unreadable", { path, reason: "too-large", detail: "" });
-    const handle = await open(path, "r");
-    try {
-      return await handle.readFile();
-    } finally {
-      await handle.close();
-    }
-  } catch (error) {
-    throw error instanceof HostFailure ? error : readFailure(path, error);
   }
 }
 
@@ -181,7 +164,7 @@ async function requireReplaceable(path: string, fingerprint: string | null, repl
   if (!(await isWritable(path))) throw new HostFailure("read-only", { path, why: "permission" });
   if (replace) return;
   if (fingerprint === null) throw new HostFailure("file-exists", { path });
-  if (info.size > MAX_PROJECT_BYTES || fingerprintOf(await readBytes(path)) !== fingerprint) throw new HostFailure("changed-on-disk", { path });
+  if (info.size > MAX_PROJECT_BYTES || fingerprintOf(await readWhole(path, MAX_PROJECT_BYTES)) !== fingerprint) throw new HostFailure("changed-on-disk", { path });
 }
 
 /** Whether a save may replace the file: a rename would get past the file's own protection, so that both are asked. */
