@@ -10,6 +10,9 @@ import { findUiFile, type UiFiles } from "./ui-files.ts";
 /** A call carries at most one project, and that without the file's indentation. */
 const MAX_BODY_BYTES = MAX_PROJECT_BYTES + 64 * 1024;
 
+/** The one request without a token carries a code; whoever else reaches the port cannot make us hold more. */
+const MAX_CODE_BYTES = 1024;
+
 /** A running loopback server. */
 export interface LoopbackServer {
   /** `http://127.0.0.1:PORT` */
@@ -73,7 +76,7 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
   async function respondToPost(request: IncomingMessage, response: ServerResponse): Promise<void> {
     const path = request.url ?? "";
     if (path === "/api/session") {
-      const body = await readJson(request);
+      const body = await readJson(request, MAX_CODE_BYTES);
       const given = typeof body === "object" && body !== null && "code" in body ? body.code : null;
       if (isCodeUsed || typeof given !== "string" || !isSame(given, code)) throw new Refusal(403, "This address has been used already.");
       isCodeUsed = true;
@@ -83,7 +86,7 @@ export async function serveLoopback(host: Host, ui: UiFiles): Promise<LoopbackSe
     }
     const bearer = /^Bearer ([\w-]+)$/.exec(request.headers.authorization ?? "")?.[1];
     if (bearer === undefined || !isSame(bearer, token)) throw new Refusal(401, "This call needs the session's token.");
-    const body = await readJson(request);
+    const body = await readJson(request, MAX_BODY_BYTES);
     if (path === "/api/call") {
       const answer = await host.answer(body);
       if (answer === null) throw new Refusal(400, "This is not a call.");
@@ -149,16 +152,16 @@ function streamEvents(response: ServerResponse, host: Host): void {
   response.on("close", stop);
 }
 
-async function readJson(request: IncomingMessage): Promise<unknown> {
+async function readJson(request: IncomingMessage, most: number): Promise<unknown> {
   if (!/^application\/json\b/i.test(request.headers["content-type"] ?? "")) throw new Refusal(415, "Calls are sent as JSON.");
   const tooLarge = new Refusal(413, "This is too large.");
-  if (Number(request.headers["content-length"] ?? 0) > MAX_BODY_BYTES) throw tooLarge;
+  if (Number(request.headers["content-length"] ?? 0) > most) throw tooLarge;
   const chunks: Buffer[] = [];
   let size = 0;
   for await (const chunk of request) {
     if (!Buffer.isBuffer(chunk)) throw new Refusal(400, "This body cannot be read.");
     size += chunk.length;
-    if (size > MAX_BODY_BYTES) throw tooLarge;
+    if (size > most) throw tooLarge;
     chunks.push(chunk);
   }
   try {

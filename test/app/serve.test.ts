@@ -202,6 +202,13 @@ describe("what nobody else may do", () => {
     await expectRefused(request({ method: "POST", path: "/api/session", body: "null" }), 403);
   });
 
+  test("more than a code takes, from whoever has no token", async () => {
+    const body = JSON.stringify({ code: "x".repeat(2000) });
+    await expectRefused(request({ method: "POST", path: "/api/session", headers: { Authorization: null }, body }), 413);
+    const chunked = { Authorization: null, "Content-Length": null, "Transfer-Encoding": "chunked" };
+    await expectRefused(request({ method: "POST", path: "/api/session", headers: chunked, body: `${body.length.toString(16)}\r\n${body}\r\n0\r\n\r\n` }), 413);
+  });
+
   test.each(["/", "/api/call", "/api/session"])("OPTIONS %s, so that no other page's call gets past its browser", async (path) => {
     await expectRefused(request({ method: "OPTIONS", path, headers: { Origin: server.origin, "Access-Control-Request-Method": "POST" } }), 403);
     await expectRefused(request({ method: "OPTIONS", path, headers: { Origin: "https://evil.test", "Access-Control-Request-Method": "POST" } }), 403);
