@@ -80,7 +80,8 @@ async function start(): Promise<void> {
     void requestOpening(path);
   };
   async function requestOpening(path: string): Promise<void> {
-    await guard.grant(path);
+    // What cannot be let in is asked for all the same: opening it then says what is wrong with it.
+    await guard.grant(path).catch(() => undefined);
     host.emit("project.openRequested", { path });
   }
   for (const path of early.splice(0)) openPath(path);
@@ -189,7 +190,11 @@ function macMenu(): Menu {
 function finishSavesBeforeQuitting(close: () => Promise<void>): void {
   let isDone = false;
   async function quitAfterwards(): Promise<void> {
-    await close();
+    try {
+      await close();
+    } catch (error) {
+      console.error(error);
+    }
     isDone = true;
     app.quit();
   }
