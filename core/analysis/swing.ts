@@ -2,7 +2,7 @@ import type { Board } from "../net/board.ts";
 import { expandBoard } from "../net/expand.ts";
 import { GROUND, type Netlist } from "../net/netlist.ts";
 import { describeNetlist } from "../net/nodal.ts";
-import { sliderResistances, type ValueOpts } from "../net/values.ts";
+import { sliderPosition, sliderResistances, type ValueOpts } from "../net/values.ts";
 import { ComplexLu } from "../num/complex-lu.ts";
 import { railsOf } from "./dc.ts";
 import { angular, logFrequencies } from "./response.ts";
@@ -36,6 +36,8 @@ interface Track {
   readonly boost: number;
   readonly cut: number;
   readonly nodes: readonly [m: number, w: number, p: number];
+  /** Where its slider stands in this run. */
+  readonly position: number;
   readonly resistances: (position: number) => { readonly boost: number; readonly cut: number };
 }
 
@@ -84,7 +86,7 @@ export function largestSwings(board: Board, opts: SwingOpts = {}): Swing[] {
     if (!lu.factor()) throw new RangeError(`the node equations have no unique solution at ${(omega / 2 / Math.PI).toPrecision(4)} Hz`);
   };
   const whole: readonly (readonly [string, (track: Track) => number])[] = [
-    ["as it stands", (t) => opts.positions?.[t.id] ?? board.project.blocks.find((b) => b.id === t.id)!.slider!.position],
+    ["as it stands", (t) => t.position],
     ["every slider at full boost", () => 1],
     ["every slider at full cut", () => 0],
   ];
@@ -126,7 +128,7 @@ function tracksOf(board: Board, netlist: Netlist, opts: ValueOpts): Track[] {
       const at = sliderResistances(slider, position, opts);
       return { boost: Math.max(at.boost, least), cut: Math.max(at.cut, least) };
     };
-    return [{ id: band.id, boost: boost.value, cut: cut.value, nodes: [boost.a, boost.b, cut.b], resistances }];
+    return [{ id: band.id, boost: boost.value, cut: cut.value, nodes: [boost.a, boost.b, cut.b], position: sliderPosition(band, opts), resistances }];
   });
 }
 

@@ -50,7 +50,9 @@ export function sliderResistances(slider: Slider, position: number, opts: ValueO
 
 /** The position of a band's slider for a run. */
 export function sliderPosition(block: Block, opts: ValueOpts): number {
-  return opts.positions?.[block.id] ?? block.slider!.position;
+  const { positions } = opts;
+  // A band may be called “constructor”, which every object has something for.
+  return positions && Object.hasOwn(positions, block.id) ? positions[block.id] : block.slider!.position;
 }
 
 /** The model of a block's op amp. @throws FaultError where the name is unknown */

@@ -268,3 +268,15 @@ describe("corners", () => {
     }
   });
 });
+
+test("positions for some bands leave the others as they stand, whatever these are called", () => {
+  const board = tenBandBoard();
+  const band = board.blocks.find((b) => b.slider)!;
+  const renamed = (id: string): Project => ({
+    ...board,
+    blocks: board.blocks.map((b) => (b.id === band.id ? { ...b, id } : b)),
+    wires: board.wires.map((w) => (w.to === `${band.id}.bus` ? { ...w, to: `${id}.bus` } : w)),
+  });
+  const positionsOf = (project: Project): Float64Array => compileBoard(resolveBoard(project), { positions: {} }).positions;
+  for (const id of ["constructor", "toString", "__proto__"]) expect(positionsOf(renamed(id))).toEqual(positionsOf(board));
+});
