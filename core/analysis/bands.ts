@@ -55,7 +55,7 @@ export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = 
 export function endFigure(scan: Scan, index: number, band: Block, laws: Readonly<Record<string, number>>, position: 0 | 1): BandPeak {
   const { shape } = BLOCKS[band.kind];
   if (shape === "resonance") return scan.resonance(index, position, laws.f0);
-  const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, 20 * Math.log10(laws.G));
+  const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, 20 * Math.log10(laws.G), laws.fc);
   return { peak, frequency, q, lower, upper };
 }
 

@@ -70,7 +70,7 @@ export function lossAccount(board: Board, id: string, opts: Pick<ValueOpts, "isM
     return { frequency: frequency ?? laws.f0, gain };
   };
   const plateau = (): Reading => {
-    const { plateau: frequency, peak: gain } = scan.shelf(index, 1, shape === "low-shelf" ? 1 : -1, isolatedBoost);
+    const { plateau: frequency, peak: gain } = scan.shelf(index, 1, shape === "low-shelf" ? 1 : -1, isolatedBoost, laws.fc);
     return { frequency, gain };
   };
   const finished = shape === "resonance" ? peak() : plateau();

@@ -124,15 +124,19 @@ export class Scan {
    * least over two octaves among the frequencies where the effect is strong; the corner is where the effect is half of
    * that on the plateau, in dB.
    * `plateau` is the frequency where the plateau was read, Hz.
+   * @param corner of the leg alone, Hz; undefined for a level, which has none
    * @param side on which the corner lies: 1 above (low shelf), −1 below
    */
-  shelf(band: number, position: 0 | 1, side: 1 | -1, isolatedBoost: number): BandPeak & { readonly plateau: number } {
+  shelf(band: number, position: 0 | 1, side: 1 | -1, isolatedBoost: number, corner: number | undefined): BandPeak & { readonly plateau: number } {
     if (!this.#isCentredFresh) this.#sweepGain(this.#centred);
     this.#isCentredFresh = true;
     return this.#with(band, position, () => {
       const sign = position === 1 ? 1 : -1;
       const effect = this.#gain.map((gain, i) => gain - this.#centred[i]);
-      const settled = this.#flattest((i) => sign * effect[i] > isolatedBoost / 4);
+      const f = this.#frequency;
+      // Past the leg's own corner, where its capacitor or inductance no longer holds the leg back: a neighbour's skirts may be flatter still.
+      const isPast = (i: number): boolean => corner === undefined || (side === 1 ? f[i] < corner : f[i] > corner);
+      const settled = this.#flattest((i) => isPast(i) && sign * effect[i] > isolatedBoost / 4);
       const at = settled < 0 ? argMax(effect, sign) : settled;
       const centred = new Float64Array(this.#positions.length).fill(0.5);
       const effectAt = (lnF: number): number => this.#gainAt(lnF) - this.#gainAt(lnF, centred);

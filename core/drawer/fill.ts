@@ -85,10 +85,14 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
       candidatesFor(board.project, role, lines, { window: opts.window ?? 0.2, units, stress, pairs, most: pairs ? MOST_PAIRS : Infinity }).filter((c) => !hasFault(c) && c.lines.every((l) => isPriced(l) && (free.get(l.id) ?? 0) > 0));
     const single = soundOf(false);
     const quiet = single.filter((c) => c.problems.length === 0);
-    if (quiet.length > 0) return { role, candidates: quiet.slice(0, MOST_CANDIDATES) };
-    // Two pieces where one that does is not there; a caution where neither is.
+    const isNear = quiet.some((c) => Math.abs(c.deviation) <= SINGLE_ENOUGH);
+    if (quiet.length > 0 && (isNear || opts.pairs === false)) return { role, candidates: quiet.slice(0, MOST_CANDIDATES) };
+    // Two pieces beside single ones that are far off; a caution where neither is sound.
     const pairs = opts.pairs === false ? [] : soundOf(true).filter((c) => c.joined !== null && c.problems.length === 0);
-    return { role, candidates: (pairs.length > 0 ? pairs : single).slice(0, MOST_CANDIDATES) };
+    // Some of each: pairs are many, and all of them may want the same few pieces.
+    const sound = [...pairs.slice(0, MOST_CANDIDATES - Math.min(quiet.length, MOST_CANDIDATES / 2)), ...quiet.slice(0, MOST_CANDIDATES)].slice(0, MOST_CANDIDATES);
+    sound.sort((x, y) => Math.abs(x.deviation) - Math.abs(y.deviation));
+    return { role, candidates: sound.length > 0 ? sound : single.slice(0, MOST_CANDIDATES) };
   });
   const trial = new TrialBoard(board, values);
   const target = compileBoard(board, values);
@@ -127,6 +131,8 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
 /** Nearest first; further ones would hardly be taken. */
 const MOST_CANDIDATES = 16;
 const MOST_PAIRS = 64;
+/** A single part this near to the wanted value, as a fraction, needs no second one beside it. */
+const SINGLE_ENOUGH = 0.05;
 
 /** Keeps a role's own line where it has one with a piece left, and takes that piece out of what is free. */
 function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: PlacedRole[]): boolean {

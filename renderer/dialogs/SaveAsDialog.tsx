@@ -91,7 +91,12 @@ export function SaveAsDialog({ ask, close }: DialogProps<"saveAs">) {
             setName(event.target.value);
             setError(null);
           }}
-          onKeyDown={(event) => event.key === "Enter" && void save()}
+          onKeyDown={(event) => {
+            if (event.key !== "Enter") return;
+            // Else the rest of the key press goes to whatever has the focus once this dialog is gone.
+            event.preventDefault();
+            void save();
+          }}
         />
         {error !== null && <span className="field-error">{error}</span>}
       </label>

@@ -1,3 +1,4 @@
+import { BLOCKS } from "../../core/blocks/index.ts";
 import { bandFigures, type BandFigures } from "../../core/analysis/bands.ts";
 import { logFrequencies, ResponseSweep } from "../../core/analysis/response.ts";
 import { flatness } from "../../core/analysis/summary.ts";
@@ -68,7 +69,11 @@ export class ResultsEngine {
     const compiled = compileBoard(board);
     const figures = new Map(bandFigures(board).map((figure) => [figure.id, figure]));
     const order = compiled.bands.map((band) => band.id);
-    const centres = Float64Array.from(order, (id) => figures.get(id)?.boost.frequency ?? LEVEL_FREQUENCY);
+    const centres = Float64Array.from(order, (id) => {
+      const figure = figures.get(id);
+      // A level works on all frequencies alike; its corner, far below, is no place to read it.
+      return figure && BLOCKS[figure.kind].shape !== "level" ? (figure.boost.frequency ?? LEVEL_FREQUENCY) : LEVEL_FREQUENCY;
+    });
     const model: Model = {
       sweep: new ResponseSweep(compiled, logFrequencies(range.from, range.to, POINTS)),
       centres: order.length > 0 ? new ResponseSweep(compiled, centres) : null,

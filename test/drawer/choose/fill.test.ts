@@ -127,7 +127,8 @@ describe("a board filled from the drawer", () => {
         ...Array.from({ length: 5 }, (_, i) => lineOf(`T${i}`, "potentiometer", 10e3 * shift(i, 4), { quantity: 1, tolerance: 0.2 })),
       ];
       const only = ["b0.seriesC", "b0.seriesR", "b0.gyratorC", "b0.slider"];
-      const result = fillBoard(board, lines, { only });
+      // Single parts against every way of placing single parts.
+      const result = fillBoard(board, lines, { only, pairs: false });
       expect(result.isExhaustive).toBe(false);
       const wanted = bruteForce(board, only, lines, {});
       const reached = objective(result.project, board.project, only);
@@ -150,8 +151,19 @@ describe("a board filled from the drawer", () => {
     expect(bill.isReady).toBe(true);
     expect(bill.costPerUnit).toHaveLength(1);
     expect(bill.costPerUnit[0].amount).toBeCloseTo(result.cost[0].amount, 9);
-    for (const { line, candidate } of result.placed) if (candidate) expect(Math.abs(candidate.value! / line.value! - 1)).toBeLessThan(1e-12);
+    for (const { line, candidate } of result.placed) if (candidate && candidate.joined === null) expect(Math.abs(candidate.value! / line.value! - 1)).toBeLessThan(1e-12);
     expect(fillBoard(board, lines, { units: 2 })).toEqual(result);
+  });
+
+  it("joins two pieces where the nearest single one is far off, and is better for it", () => {
+    const board = demo("curlew-pedal");
+    // 1.2 µF is what the lowest band wants.
+    const lines = fullDrawer().filter((l) => l.kind !== "capacitor" || Math.abs(l.value! / 1.2e-6 - 1) > 0.06);
+    const joined = fillBoard(board, lines);
+    const single = fillBoard(board, lines, { pairs: false });
+    expect(joined.error).toBeLessThan(single.error / 2);
+    expect(joined.placed.filter((p) => p.candidate?.joined).map((p) => p.role.name)).toContain("b100.seriesC");
+    for (const { candidate } of joined.placed) if (candidate) expect(Math.abs(candidate.deviation)).toBeLessThan(0.05);
   });
 
   it("changes nothing where every value is there", () => {
