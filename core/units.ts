@@ -16,7 +16,6 @@ const UNIT_WORDS: Record<Quantity, readonly string[]> = {
   voltage: ["v", "volt", "volts"], temperature: ["°c", "c"], ratio: ["%"], plain: [],
 };
 
-
 /** Decimal exponents of the same prefixes: numbers are read as `4.7e-9` so that 4n7 is exactly the double 4.7e-9. */
 const EXPONENT: Record<string, number> = { p: -12, n: -9, u: -6, µ: -6, μ: -6, m: -3, "": 0, k: 3, K: 3, M: 6, G: 9, T: 12 };
 
@@ -39,7 +38,7 @@ function parseLiteral(source: string, quantity: Quantity): number | undefined {
   if (quantity === "ratio") {
     const ratio = /^(\d+(?:[.,]\d*)?|[.,]\d+)(%)?$/.exec(text);
     if (!ratio) return undefined;
-    return Number(`${ratio[1]!.replace(",", ".")}${ratio[2] ? "e-2" : ""}`);
+    return Number(`${ratio[1].replace(",", ".")}${ratio[2] ? "e-2" : ""}`);
   }
   for (const word of UNIT_WORDS[quantity]) {
     // A lone trailing F or H is a unit word only after a prefix or a digit; "4F7" keeps its letter in the middle.
@@ -51,13 +50,13 @@ function parseLiteral(source: string, quantity: Quantity): number | undefined {
   const marks = MARK_LETTER[quantity];
   const plain = /^(\d+(?:[.,]\d*)?|[.,]\d+)([eE][+-]?\d+)?([pnuµμmkKMGT]?)$/.exec(text);
   if (plain) {
-    const [, digits, exponent, prefix] = plain;
-    const power = (exponent ? Number(exponent.slice(1)) : 0) + EXPONENT[prefix!]!;
-    return Number(`${digits!.replace(",", ".")}e${power}`);
+    const [, mantissa, exponent, prefix] = plain;
+    const power = (exponent ? Number(exponent.slice(1)) : 0) + EXPONENT[prefix];
+    return Number(`${mantissa.replace(",", ".")}e${power}`);
   }
   const coded = new RegExp(`^(\\d*)([pnuµμmkKMGT${marks}])(\\d*)$`).exec(text);
   if (coded && (coded[1] !== "" || coded[3] !== "")) {
-    const power = EXPONENT[coded[2]!] ?? 0;
+    const power = EXPONENT[coded[2]] ?? 0;
     return Number(`${coded[1] || "0"}.${coded[3] || "0"}e${power}`);
   }
   return undefined;
@@ -122,7 +121,7 @@ function scaled(value: number, significant: number, allowed: readonly (readonly 
   if (value === 0 || !Number.isFinite(value)) return [String(value), ""];
   const [mantissa, power] = value.toExponential(significant - 1).split("e");
   const exponent = Number(power);
-  let best = allowed[0]!;
+  let best = allowed[0];
   for (const step of allowed) if (step[1] <= exponent) best = step;
   return [digits(Number(`${mantissa}e${exponent - best[1]}`), significant), best[0]];
 }

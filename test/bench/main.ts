@@ -63,7 +63,7 @@ function mathjsMs(board: Board): { readonly ms: number; readonly unknowns: numbe
   const right = Array.from(excitation, (b) => [complex(b, 0)]);
   let total = 0;
   for (const w of omega) {
-    const rows: Complex[][] = Array.from({ length: size }, (_, i) => Array.from({ length: size }, (_, j) => complex(conductance[i * size + j], w * storage[i * size + j])));
+    const rows: Complex[][] = Array.from({ length: size }, (_row, i) => Array.from({ length: size }, (_column, j) => complex(conductance[i * size + j], w * storage[i * size + j])));
     const start = performance.now();
     lusolve(rows, right);
     total += performance.now() - start;

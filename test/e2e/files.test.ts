@@ -179,7 +179,7 @@ describe("without a pointer", () => {
     await keyboard.type("By hand");
     await keyboard.press("Enter");
     await expect.poll(() => session.subtitle()).toContain("· saved");
-    expect(restoreProject(await readFile(session.path("By hand.bandwright"), "utf8")).project.blocks.find((b) => b.id === "b250")!.parts!.seriesR!.value).toBe(680);
+    expect(restoreProject(await readFile(session.path("By hand.bandwright"), "utf8")).project.blocks.find((b) => b.id === "b250")!.parts!.seriesR.value).toBe(680);
 
     await keyboard.command("keys");
     expect(await session.dialog("Keys").innerText()).toContain("Ctrl+Shift+Z");

@@ -39,7 +39,7 @@ describe("adding a band", () => {
     const project = withBands(1000);
     const changed = { ...project, blocks: project.blocks.map((b) => (b.id === "b1k" ? { ...b, opAmp: "NE5532", slider: { track: { value: 5e4 }, law: { power: 2 }, position: 0.9, endR: 3 } } : b)) };
     const added = addBand(changed, "eq", "low-shelf-section", 0);
-    expect(added.ok && find(applyPatch(changed, added.patch), added.ids[0]!)).toMatchObject({ id: "low", label: "Low", opAmp: "NE5532", slider: { track: { value: 5e4 }, law: { power: 2 }, position: 0.5, endR: 3 } });
+    expect(added.ok && find(applyPatch(changed, added.patch), added.ids[0])).toMatchObject({ id: "low", label: "Low", opAmp: "NE5532", slider: { track: { value: 5e4 }, law: { power: 2 }, position: 0.5, endR: 3 } });
   });
 
   test("is refused without a stage", () => {
@@ -138,7 +138,7 @@ describe("copies", () => {
     const copies = duplicateBands(project, ["b500", "b1k", "in"]);
     expect(copies.ok && copies.ids).toEqual(["b500-2", "b1k-2"]);
     const after = copies.ok ? applyPatch(project, copies.patch) : project;
-    expect(resolveBoard(after).chain[1]!.bands.map((b) => b.id)).toEqual(["b500", "b1k", "b500-2", "b1k-2"]);
+    expect(resolveBoard(after).chain[1].bands.map((b) => b.id)).toEqual(["b500", "b1k", "b500-2", "b1k-2"]);
     const again = duplicateBands(after, ["b1k-2"]);
     expect(again.ok && again.ids).toEqual(["b1k-3"]);
   });

@@ -15,10 +15,10 @@ import { resolveBoard } from "../../../core/net/board.ts";
 const edit = fc.record({ what: fc.nat(13), which: fc.nat(1000), kind: fc.nat(BAND_KINDS.length - 1), number: fc.double({ min: 0.001, max: 1, noNaN: true }) });
 
 function patchOf(project: Project, { what, which, kind, number }: { what: number; which: number; kind: number; number: number }): Patch {
-  const block = project.blocks[which % project.blocks.length]!;
+  const block = project.blocks[which % project.blocks.length];
   const role = Object.keys(block.parts ?? {})[which % 3] ?? "none";
-  const stage = stagesOf(project)[which % stagesOf(project).length]!.id;
-  const band = BAND_KINDS[kind]!;
+  const stage = stagesOf(project)[which % stagesOf(project).length].id;
+  const band = BAND_KINDS[kind];
   const added = (addition: ReturnType<typeof addBand>): Patch => (addition.ok ? addition.patch : []);
   switch (what) {
     case 0:
@@ -36,9 +36,9 @@ function patchOf(project: Project, { what, which, kind, number }: { what: number
     case 6:
       return added(addBand(project, stage, band, 20 + number * 20_000));
     case 7:
-      return added(duplicateBands(project, [block.id, project.blocks[(which + 1) % project.blocks.length]!.id]));
+      return added(duplicateBands(project, [block.id, project.blocks[(which + 1) % project.blocks.length].id]));
     case 8: {
-      const removal = removeBlocks(project, [block.id, project.blocks[(which + 3) % project.blocks.length]!.id]);
+      const removal = removeBlocks(project, [block.id, project.blocks[(which + 3) % project.blocks.length].id]);
       return removal.ok ? removal.patch : [];
     }
     case 9:
@@ -102,7 +102,7 @@ describe("history", () => {
   test("a new step forgets what had been taken back", () => {
     const first = newProject();
     const history = record(EMPTY_HISTORY, { label: "a", patch: setField(first, "name", "a") });
-    const back = undo(applyPatch(first, history.done[0]!.patch), history)!;
+    const back = undo(applyPatch(first, history.done[0].patch), history)!;
     expect(record(back.history, { label: "b", patch: [] }).undone).toEqual([]);
   });
 });
@@ -112,7 +112,7 @@ describe("patch", () => {
 
   test("takes any order of rows to any other and back", () => {
     const pool = Array.from({ length: 8 }, (_, n) => block(`b${n}`));
-    const rows = fc.uniqueArray(fc.nat(7), { maxLength: 8 }).map((picks) => picks.map((n) => pool[n]!));
+    const rows = fc.uniqueArray(fc.nat(7), { maxLength: 8 }).map((picks) => picks.map((n) => pool[n]));
     fc.assert(
       fc.property(rows, rows, (before, after) => {
         const a = { ...newProject(), blocks: before };

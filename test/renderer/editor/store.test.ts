@@ -1,6 +1,6 @@
 import { beforeEach, describe, expect, test } from "vitest";
 import { respond, logFrequencies } from "../../../core/analysis/response.ts";
-import { setField, setPartValue, setPosition } from "../../../core/model/edit.ts";
+import { removeWire, setField, setPartValue, setPosition } from "../../../core/model/edit.ts";
 import { addBand, changeKind } from "../../../core/model/edit-bands.ts";
 import { newProject } from "../../../core/model/new-project.ts";
 import type { Project } from "../../../core/model/project.ts";
@@ -95,15 +95,29 @@ describe("dirty state", () => {
   });
 });
 
+describe("a wire that is wrong", () => {
+  test("is taken out, and the board works again", () => {
+    const wires = [...now().wires, { from: "eq.out", to: "nowhere.in" }];
+    editor.apply("wire wrongly", setField(now(), "wires", wires));
+    expect(state().analysis.faults).toHaveLength(1);
+    editor.apply("take out a wire", removeWire(now(), wires.length - 1));
+    expect(state().analysis.faults).toEqual([]);
+    expect(state().analysis.results).not.toBeNull();
+    expect(now().wires).toHaveLength(wires.length - 1);
+    editor.undo();
+    expect(now().wires).toHaveLength(wires.length);
+  });
+});
+
 describe("results", () => {
   test("follow the document and equal a computation from scratch", () => {
     editor.begin("slide");
     editor.preview((base) => setPosition(base, "b1k", 0.8));
     const { total, liveGain, figures } = state().analysis.results!;
     const fresh = respond(compileBoard(resolveBoard(now())), logFrequencies(FULL_RANGE.from, FULL_RANGE.to, 481));
-    for (let i = 0; i < 481; i++) expect(total.gain[i]).toBeCloseTo(fresh.gain[i]!, 9);
+    for (let i = 0; i < 481; i++) expect(total.gain[i]).toBeCloseTo(fresh.gain[i], 9);
     const centre = figures.get("b1k")!.boost.frequency!;
-    expect(liveGain.get("b1k")).toBeCloseTo(respond(compileBoard(resolveBoard(now())), new Float64Array([centre])).gain[0]!, 9);
+    expect(liveGain.get("b1k")).toBeCloseTo(respond(compileBoard(resolveBoard(now())), new Float64Array([centre])).gain[0], 9);
   });
 
   test("figures are kept while a slider moves, and worked out anew when a part changes", () => {
@@ -140,7 +154,7 @@ describe("results", () => {
     editor.load({ ...now(), wires: now().wires.filter((w) => w.to !== "out.in") }, null, []);
     expect(state().analysis.board).toBeNull();
     expect(state().analysis.results).toBeNull();
-    expect(state().analysis.faults[0]!.blocks).toContain("out");
+    expect(state().analysis.faults[0].blocks).toContain("out");
     editor.apply("kind", changeKind(now(), "b1k", "shelf-section"));
     expect(now().blocks.find((b) => b.id === "b1k")!.kind).toBe("shelf-section");
   });
