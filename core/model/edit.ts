@@ -161,3 +161,8 @@ export function removeBlocks(project: Project, ids: readonly string[]): Edit {
   });
   return { ok: true, patch: patchBetween(project, { ...project, blocks: project.blocks.filter((b) => !doomed.has(b.id)), wires }) };
 }
+
+/** Takes one wire out, by its place in the list. */
+export function removeWire(project: Project, index: number): Patch {
+  return patchBetween(project, { ...project, wires: project.wires.filter((_, i) => i !== index) });
+}

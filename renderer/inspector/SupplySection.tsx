@@ -1,5 +1,5 @@
 import { setField, without } from "../../core/model/edit.ts";
-import type { Part, SingleSupply, SplitSupply, SupplyReference } from "../../core/model/project.ts";
+import { partsOf, type Part, type SingleSupply, type SplitSupply, type SupplyReference } from "../../core/model/project.ts";
 import { formatFigure, formatValue } from "../../core/units.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { readPositive } from "../editor/part-text.ts";
@@ -54,6 +54,8 @@ function Volts({ label, value, onTake, sign = "" }: { readonly label: string; re
 }
 
 function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly set: (what: string, next: SingleSupply) => void }) {
+  const project = useEditorState((state) => state.project);
+  const open = project.blocks.filter((b) => (b.kind === "input" || b.kind === "output") && partsOf(b).couplingC === undefined).map((b) => b.kind);
   const opAmps = useEditorState((s) => s.project.opAmps);
   const { reference } = supply;
   const roles: PartRole[] = [
@@ -91,7 +93,8 @@ function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly s
       </div>
       {isFromTable(opAmps, reference.opAmp) && <p className="hint">Typical values from memory: check the maker's current sheet.</p>}
       {reference.opAmp === undefined && <p className="caution">Every band shares the divider's impedance, which couples them at low frequencies. A larger bypass C or a buffer parts them.</p>}
-      <p className="caution">Coupling capacitors now stand off the reference voltage: mind the polarity and the voltage rating of electrolytics.</p>
+      {open.length < 2 && <p className="caution">Coupling capacitors stand off the reference voltage: mind the polarity and the voltage rating of electrolytics.</p>}
+      {open.length > 0 && <p className="caution">The {open.join(" and the ")} has no coupling capacitor, so what is connected there takes the reference voltage down: fit one.</p>}
     </>
   );
 }

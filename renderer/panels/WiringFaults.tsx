@@ -1,4 +1,5 @@
 import type { Fault } from "../../core/errors.ts";
+import { removeWire } from "../../core/model/edit.ts";
 import { useShell } from "../editor/hooks.ts";
 
 /** Stands where the response would be, and leads to the blocks that are wired wrongly. */
@@ -8,14 +9,14 @@ export function WiringFaults({ faults }: { readonly faults: readonly Fault[] }) 
       <h2>
         {faults.length === 1 ? "One wiring fault" : `${faults.length} wiring faults`}: there is no response to show
       </h2>
-      <p className="quiet">The board is open and can be edited. Each entry selects the blocks that it speaks of.</p>
-      <FaultList faults={faults} />
+      <p className="quiet">The board is open and can be edited. Each entry selects the blocks that it speaks of; a wire that is wrong can be taken out.</p>
+      <FaultList faults={faults} canMend />
     </section>
   );
 }
 
-/** Faults or warnings; one that names blocks selects them. */
-export function FaultList({ faults }: { readonly faults: readonly Fault[] }) {
+/** Faults or warnings; one that names blocks selects them, and one that speaks of a wire can take it out. */
+export function FaultList({ faults, canMend = false }: { readonly faults: readonly Fault[]; readonly canMend?: boolean }) {
   const { context, sheetRef } = useShell();
   return (
     <ul className="fault-list">
@@ -36,8 +37,19 @@ export function FaultList({ faults }: { readonly faults: readonly Fault[] }) {
             <span>{fault.message}</span>
             {fault.path !== "" && <span className="fault-path">{fault.path}</span>}
           </button>
+          {canMend && wireOf(fault) !== null && (
+            <button type="button" className="button" onClick={() => context.editor.apply("take out a wire", removeWire(context.editor.store.getState().project, wireOf(fault)!))}>
+              Take this wire out
+            </button>
+          )}
         </li>
       ))}
     </ul>
   );
+}
+
+/** The wire that a fault is about, by its place in the file; null where it is about none. */
+function wireOf(fault: Fault): number | null {
+  const match = /^wires\[(\d+)\]/.exec(fault.path);
+  return match ? Number(match[1]) : null;
 }

@@ -77,7 +77,8 @@ export function SheetStage(props: SheetStageProps) {
       drawCurves(pen, {
         response: frame.response, ruling: frame.ruling, levels, phase,
         total: results?.total ?? null, alone: results?.alone ?? null,
-        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "", ghost: results?.ghost ?? null, isVoid,
+        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "",
+        aloneFigures: chosen ? (results?.figures.get(chosen.id) ?? null) : null, ghost: results?.ghost ?? null, isVoid,
       });
       const { ruling, board } = frame;
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {

@@ -95,3 +95,21 @@ test("measured values count where they are asked for", () => {
   expect(measured.resonance! / named.resonance!).toBeCloseTo(Math.sqrt(220 / 250), 9);
   expect(measured.boost.frequency! / named.boost.frequency!).toBeCloseTo(Math.sqrt(220 / 250), 4);
 });
+
+test("a shelf's plateau is read past its own corner, not on the skirts of a band beside it", () => {
+  const project = oneBus(
+    [
+      bandOf("mid", "gyrator-section", { seriesC: 180e-9, seriesR: 470, gyratorC: 3.3e-9, gyratorR: 91e3 }, { opAmp: "TL072" }),
+      bandOf("near", "gyrator-section", { seriesC: 22e-9, seriesR: 470, gyratorC: 390e-12, gyratorR: 100e3 }, { opAmp: "TL072" }),
+      bandOf("high", "shelf-section", { seriesC: 22e-9, seriesR: 680 }),
+    ],
+    { opAmp: "NE5532" },
+  );
+  const { boost, cut } = bandFigures(resolveBoard(project)).find((f) => f.id === "high")!;
+  // Three octaves above the leg's corner of 10.6 kHz the capacitor is a wire.
+  const far = 2 ** 3 / (2 * Math.PI * 22e-9 * 680);
+  for (const [figure, position] of [[boost, 1], [cut, 0]] as const) {
+    expect(Math.abs(figure.peak - nodalGain(netlistOf(project, centredBut(project, { high: position })), [far])[0])).toBeLessThan(0.7);
+    expect(figure.frequency!).toBeGreaterThan(5e3);
+  }
+});

@@ -1,3 +1,5 @@
+import type { BandFigures } from "../../../core/analysis/bands.ts";
+import { BLOCKS } from "../../../core/blocks/index.ts";
 import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
 import { extremeIndex } from "../../../core/geometry/reading.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
@@ -15,6 +17,8 @@ export interface CurveScene {
   readonly alone: Curve | null;
   /** Name of the band that is shown alone. */
   readonly aloneLabel: string;
+  /** Its figures, from which the name's numbers come: the curve's own points are only as fine as the screen. */
+  readonly aloneFigures: BandFigures | null;
   readonly ghost?: Ghost | null;
   /** The board oscillates: the curves are faded, their figures struck. */
   readonly isVoid: boolean;
@@ -91,13 +95,21 @@ function fillBetween(pen: Pen, scene: CurveScene, curve: Curve): void {
 }
 
 /** What the dashed curve is, beside its peak. */
+/** `: +11.0 dB, 2.03 kHz` of a peak, `: plateau +13.9 dB` of a shelf or level. */
+function aloneNumbers(figures: BandFigures | null, isUp: boolean): string {
+  if (!figures) return "";
+  const { peak, frequency } = isUp ? figures.boost : figures.cut;
+  if (BLOCKS[figures.kind].shape !== "resonance") return `: plateau ${formatDb(peak)}`;
+  return `: ${formatDb(peak)}${frequency === null ? "" : `, ${formatFigure(frequency, "frequency")}`}`;
+}
+
 function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
   const { response, ruling, levels, total } = scene;
   const peak = extremeIndex(alone.gain);
   const at = { x: pixelOf(ruling, alone.frequency[peak]), y: levelY(levels, response.top, response.bottom - response.top, alone.gain[peak]) };
   if (at.x < response.left || at.x > response.right) return;
   const isUp = isBoost(alone);
-  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}: ${formatDb(alone.gain[peak])}, ${formatFigure(alone.frequency[peak], "frequency")}`;
+  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}${aloneNumbers(scene.aloneFigures, isUp)}`;
   const width = pen.widthOf(text);
   // Beside the peak, a little further out than the curve goes, on the side that has the room.
   const isRight = at.x + 14 + width <= response.right - 4;

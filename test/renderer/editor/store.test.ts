@@ -3,6 +3,7 @@ import { respond, logFrequencies } from "../../../core/analysis/response.ts";
 import { removeWire, setField, setPartValue, setPosition } from "../../../core/model/edit.ts";
 import { addBand, changeKind } from "../../../core/model/edit-bands.ts";
 import { newProject } from "../../../core/model/new-project.ts";
+import { patchBetween } from "../../../core/model/patch.ts";
 import type { Project } from "../../../core/model/project.ts";
 import { resolveBoard } from "../../../core/net/board.ts";
 import { compileBoard } from "../../../core/net/star.ts";
@@ -98,7 +99,7 @@ describe("dirty state", () => {
 describe("a wire that is wrong", () => {
   test("is taken out, and the board works again", () => {
     const wires = [...now().wires, { from: "eq.out", to: "nowhere.in" }];
-    editor.apply("wire wrongly", setField(now(), "wires", wires));
+    editor.apply("wire wrongly", patchBetween(now(), { ...now(), wires }));
     expect(state().analysis.faults).toHaveLength(1);
     editor.apply("take out a wire", removeWire(now(), wires.length - 1));
     expect(state().analysis.faults).toEqual([]);
