@@ -126,10 +126,10 @@ function FrequencyLine({ frequency, suggested, isBand, name }: FrequencyLineProp
       />
       {isAsked && suggested !== frequency ? (
         <button type="button" className="button is-small" onClick={() => ui.patch({ equationsAt: null })}>
-          {isBand ? `Back to the centre of ${name}` : "Back to 1 kHz"}
+          {isBand ? `Back to ${name}` : "Back to 1 kHz"}
         </button>
       ) : (
-        <span className="hint">{isBand ? "the band's centre at full boost" : ""}</span>
+        <span className="hint">{isBand ? "where the band works at full boost" : ""}</span>
       )}
       <span className="hint">
         On the sheet, <kbd>E</kbd> comes here with the frequency at the cursor.

@@ -1,3 +1,4 @@
+import { BLOCKS } from "../../core/blocks/index.ts";
 import type { BandFigures } from "../../core/analysis/bands.ts";
 import { blockIds } from "../../core/analysis/equation-report.ts";
 import type { Board } from "../../core/net/board.ts";
@@ -17,7 +18,9 @@ export function shownBlock(board: Board, selection: readonly string[], page: Equ
   return chosen ?? board.chain.flatMap((item) => item.bands)[0]?.id ?? ids[0];
 }
 
-/** The frequency that a block suggests, to four digits: its own centre where it has one, Hz. */
+/** The frequency that a block suggests, to four digits: the centre of a band, the corner of a shelf, else the usual one, Hz. */
 export function shownFrequency(id: string, figures: ReadonlyMap<string, BandFigures> | undefined): number {
-  return Number((figures?.get(id)?.boost.frequency ?? USUAL_FREQUENCY).toPrecision(4));
+  const figure = figures?.get(id);
+  const own = figure && BLOCKS[figure.kind].shape !== "level" ? figure.boost.frequency : null;
+  return Number((own ?? USUAL_FREQUENCY).toPrecision(4));
 }
