@@ -1,7 +1,8 @@
 import { compile, derivative, parse, type EvalFunction, type MathNode } from "mathjs/number";
 import { BLOCKS } from "../blocks/index.ts";
 import type { Law } from "../blocks/definition.ts";
-import type { Block } from "../model/project.ts";
+import type { BlockKind } from "../blocks/kinds.ts";
+import type { Block, Part } from "../model/project.ts";
 import { blockValues, type ValueOpts } from "../net/values.ts";
 import type { Quantity } from "../units.ts";
 
@@ -23,6 +24,24 @@ export function lawResults(band: Block, stage: Block, opts: ValueOpts = {}): Rea
   const results: Record<string, number> = {};
   for (const law of BLOCKS[band.kind].laws) scope[law.symbol] = results[law.symbol] = evaluate(law.expression, scope);
   return results;
+}
+
+/**
+ * The frequency that a kind's laws give for these parts, Hz: the resonance f0 of its leg, or the corner fc; undefined for a
+ * kind without one and for values that give none.
+ */
+export function legFrequency(kind: BlockKind, parts: Readonly<Record<string, Part>>): number | undefined {
+  const scope: Record<string, number> = { windingR: parts.inductor?.windingR ?? 0 };
+  for (const { role } of BLOCKS[kind].roles) if (parts[role]) scope[role] = parts[role].value;
+  for (const { symbol, quantity, expression } of BLOCKS[kind].laws) {
+    if (quantity === "frequency") {
+      const value = evaluate(expression, scope);
+      return Number.isFinite(value) && value > 0 ? value : undefined;
+    }
+    // Frequencies stand on inductance alone; boost and Q want to know more than the leg.
+    if (quantity === "inductance") scope[symbol] = evaluate(expression, scope);
+  }
+  return undefined;
 }
 
 /** Something that a law is made of. */

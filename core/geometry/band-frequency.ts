@@ -1,4 +1,5 @@
 import type { BandFigures } from "../analysis/bands.ts";
+import { legFrequency } from "../analysis/laws.ts";
 import { BLOCKS } from "../blocks/index.ts";
 import { partsOf, type Block } from "../model/project.ts";
 
@@ -9,16 +10,7 @@ import { partsOf, type Block } from "../model/project.ts";
 export function bandFrequency(block: Block, figures: BandFigures | undefined): number | null {
   const { shape } = BLOCKS[block.kind];
   if (shape === undefined || shape === "level") return null;
-  const frequency = shape === "resonance" ? legFrequency(block) : (figures?.boost.frequency ?? legFrequency(block));
+  const inCircuit = shape === "resonance" ? null : (figures?.boost.frequency ?? null);
+  const frequency = inCircuit ?? legFrequency(block.kind, partsOf(block)) ?? null;
   return frequency !== null && Number.isFinite(frequency) && frequency > 0 ? frequency : null;
-}
-
-function legFrequency(block: Block): number | null {
-  const value = (role: string): number | undefined => partsOf(block)[role]?.value;
-  const [seriesC, seriesR, gyratorC, gyratorR] = [value("seriesC"), value("seriesR"), value("gyratorC"), value("gyratorR")];
-  const inductor = value("inductor") ?? (seriesR !== undefined && gyratorC !== undefined && gyratorR !== undefined ? seriesR * gyratorC * gyratorR : undefined);
-  if (inductor !== undefined && seriesC !== undefined) return 1 / (2 * Math.PI * Math.sqrt(inductor * seriesC));
-  if (seriesR === undefined) return null;
-  if (inductor !== undefined) return seriesR / (2 * Math.PI * inductor);
-  return seriesC === undefined ? null : 1 / (2 * Math.PI * seriesR * seriesC);
 }

@@ -1,5 +1,5 @@
 /** Edits that bring blocks in: new bands and chain blocks, another kind for a band, copies. */
-import { parse } from "mathjs/number";
+import { legFrequency } from "../analysis/laws.ts";
 import { BAND_KINDS, BLOCKS } from "../blocks/index.ts";
 import type { BlockKind } from "../blocks/kinds.ts";
 import { nearestPreferred } from "../e-series.ts";
@@ -38,15 +38,7 @@ export function nextCentre(centres: readonly number[]): number {
 
 /** The leg resonance that a kind's laws give for these parts, Hz; undefined for a kind without one. */
 export function lawResonance(kind: BlockKind, parts: Readonly<Record<string, Part>>): number | undefined {
-  const scope: Record<string, number> = { windingR: parts.inductor?.windingR ?? 0 };
-  for (const [role, part] of Object.entries(parts)) scope[role] = part.value;
-  for (const law of BLOCKS[kind].laws) {
-    if (law.symbol !== "L" && law.symbol !== "f0") continue;
-    const value = Number(parse(law.expression).compile().evaluate(scope));
-    if (law.symbol === "f0") return Number.isFinite(value) && value > 0 ? value : undefined;
-    scope[law.symbol] = value;
-  }
-  return undefined;
+  return BLOCKS[kind].shape === "resonance" ? legFrequency(kind, parts) : undefined;
 }
 
 function isReactive(kind: BlockKind, role: string): boolean {
