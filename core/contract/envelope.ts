@@ -17,7 +17,6 @@ export type Ok = v.InferOutput<typeof OK_SCHEMA>;
 export type Fail = v.InferOutput<typeof FAIL_SCHEMA>;
 export type EventMessage = v.InferOutput<typeof EVENT_SCHEMA>;
 export type Answer = Ok | Fail;
-export type HostMessage = v.InferOutput<typeof HOST_MESSAGE_SCHEMA>;
 
 /**
  * One end of a connection. A carrier is nothing but this; what arrives on it is validated by whoever listens.

@@ -102,14 +102,6 @@ function loopProblems(board: Board, role: BoardRole, candidate: Candidate, value
   return unstable.length === 0 ? [] : [{ level: "fault", about: "model", message: "the board oscillates with it" }];
 }
 
-/** The gain at given frequencies with a candidate in place: the ghost curve. dB; sliders as the file or `positions` say. */
-export function ghostGain(board: Board, role: BoardRole, candidate: Pick<Candidate, "filling">, frequency: Float64Array, opts: ValueOpts = {}): Float64Array {
-  const compiled = new TrialBoard(board, opts).with(role, candidate.filling);
-  const columns = transferColumns(frequency.length, false);
-  new Sweep(compiled, angular(frequency)).run(compiled.positions, columns);
-  return columns.re.map((re, i) => decibels(re, columns.im[i]));
-}
-
 /** Holds a board against versions of itself. */
 class Comparison {
   readonly before: readonly { readonly band: string; readonly boost: BandPeak }[];

@@ -70,10 +70,3 @@ export function assign(cost: Float64Array, rows: number, columns: number): Int32
   }
   return result;
 }
-
-/** Total cost of an assignment; rows that go without cost nothing. */
-export function assignmentCost(cost: Float64Array, columns: number, assignment: Int32Array): number {
-  let sum = 0;
-  for (const [i, j] of assignment.entries()) if (j >= 0) sum += cost[i * columns + j];
-  return sum;
-}
