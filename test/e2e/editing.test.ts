@@ -30,7 +30,7 @@ afterEach(() => session.end());
 /** dB at a band's centre with its slider somewhere, from the core alone. */
 function gainAt(project: Project, id: string, position: number): number {
   const centre = bandFigures(resolveBoard(project)).find((f) => f.id === id)!.boost.frequency!;
-  return respond(compileBoard(resolveBoard(applyPatch(project, setPosition(project, id, position)))), new Float64Array([centre])).gain[0]!;
+  return respond(compileBoard(resolveBoard(applyPatch(project, setPosition(project, id, position)))), new Float64Array([centre])).gain[0];
 }
 
 describe("what the screen says is what the core computes", () => {
@@ -177,7 +177,7 @@ describe("bands", () => {
     await session.menu("Bands", "Add gyrator section");
     const added = (await session.sheet.bands()).filter((id) => !first.includes(id));
     expect(added).toHaveLength(1);
-    const id = added[0]!;
+    const id = added[0];
     await session.panel.choose("Kind of band", "Inductor section");
     expect(await session.panel.field("inductor").count()).toBe(1);
     expect(await session.panel.field("gyrator R").count()).toBe(0);

@@ -91,7 +91,7 @@ describe("layout", () => {
       block.kind === "boost-cut-stage" ? { ...block, parts: { ...block.parts, feedbackC: { value: 47e-12 } } }
       : block.kind === "input" ? { ...block, parts: { ...block.parts, couplingC: { value: 100e-9 }, loadR: { value: 1e6 } } }
       : block);
-    const { chain, frame } = layOut({ ...project, blocks } as Project, { width, height: 608 });
+    const { chain, frame } = layOut({ ...project, blocks }, { width, height: 608 });
     expect(Math.min(...chain.map((place) => place.x + place.drawing.left * place.grid))).toBeGreaterThan(0);
     const values = chain.flatMap((place) => chainValues(place));
     expect(values.map(({ text }) => text)).toEqual(expect.arrayContaining(["47p", "100n", "1M"]));
