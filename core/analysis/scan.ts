@@ -43,7 +43,7 @@ export class Scan {
   readonly #centred: Float64Array;
   #isCentredFresh = true;
 
-  /** @param perOctave points of the coarse scan, which finds brackets; the figures come from the continuous response all the same */
+  /** @param perOctave points of the coarse scan, which finds brackets; peaks, edges and corners come from the continuous response all the same, and a plateau is flat about its point */
   constructor(board: CompiledBoard, from: number, to: number, perOctave = PER_OCTAVE) {
     const points = Math.ceil(Math.log2(to / from) * perOctave) + 1;
     this.#perOctave = perOctave;
