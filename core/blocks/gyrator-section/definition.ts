@@ -1,4 +1,5 @@
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
+import { placeGyrator } from "./circuit.ts";
 import { gyratorLeg } from "./equations.ts";
 import { gyratorDrawing } from "./drawing.ts";
 
@@ -16,16 +17,7 @@ export const gyratorSection: BlockDefinition = {
   hasSlider: true,
   hasOpAmp: true,
   drawing: gyratorDrawing,
-  expand(x) {
-    const a = x.node("a");
-    const n = x.node("n");
-    const o = x.node("o");
-    x.place("seriesC", x.wiper, a);
-    x.place("seriesR", a, o);
-    x.place("gyratorC", a, n);
-    x.place("gyratorR", n, x.reference);
-    x.opAmp(n, o, o);
-  },
+  expand: (x) => placeGyrator(x, "seriesC"),
   leg: (values, opAmp) => gyratorLeg(values.seriesC, values, opAmp),
   shape: "resonance",
   laws: [

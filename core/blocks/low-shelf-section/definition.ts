@@ -1,3 +1,4 @@
+import { placeGyrator } from "../gyrator-section/circuit.ts";
 import { gyratorLeg } from "../gyrator-section/equations.ts";
 import { capacitorRole, resistorRole, type BlockDefinition } from "../definition.ts";
 import { lowShelfDrawing } from "./drawing.ts";
@@ -16,16 +17,7 @@ export const lowShelfSection: BlockDefinition = {
   hasSlider: true,
   hasOpAmp: true,
   drawing: lowShelfDrawing,
-  expand(x) {
-    const a = x.node("a");
-    const n = x.node("n");
-    const o = x.node("o");
-    x.placeOrWire("blockingC", x.wiper, a);
-    x.place("seriesR", a, o);
-    x.place("gyratorC", a, n);
-    x.place("gyratorR", n, x.reference);
-    x.opAmp(n, o, o);
-  },
+  expand: (x) => placeGyrator(x, "blockingC"),
   leg: (values, opAmp) => gyratorLeg(values.blockingC, values, opAmp),
   shape: "low-shelf",
   laws: [
