@@ -7,7 +7,7 @@ import { resolveBoard } from "../../core/net/board.ts";
 import { assign } from "../../core/num/assignment.ts";
 import { randomFrom } from "../../core/num/random.ts";
 import { fullDrawer, lineOf } from "../helpers/drawer-lines.ts";
-import { tenBandTable } from "../helpers/handbook.ts";
+import { tenBandBoard } from "../helpers/boards.ts";
 
 export interface ChooseBench {
   readonly what: string;
@@ -16,7 +16,7 @@ export interface ChooseBench {
 
 /** @param median times a call: runs, warm-up, call */
 export function benchChoose(median: (runs: number, warmUp: number, call: () => void) => number): ChooseBench[] {
-  const board = resolveBoard(tenBandTable("TL072"));
+  const board = resolveBoard(tenBandBoard("TL072"));
   const role = findRole(board, "b1000.seriesC")!;
   const shared = findRole(board, "eq.feedbackR")!;
   const around = (kind: "capacitor" | "resistor", value: number) => Array.from({ length: 50 }, (_, i) => lineOf(`L${i}`, kind, value * (0.81 + i * 0.0076)));

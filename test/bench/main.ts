@@ -1,5 +1,5 @@
 /**
- * Times the solvers on the ten-band handbook table (test/helpers/handbook.ts) in one process and prints milliseconds and
+ * Times the solvers on the ten-band handbook table (test/helpers/boards.ts) in one process and prints milliseconds and
  * ratios: `npm run bench`, `npm run -s bench -- --json`. Medians of many runs after a warm-up; no test depends on it.
  */
 import { cpus } from "node:os";
@@ -14,7 +14,7 @@ import { expandBoard } from "../../core/net/expand.ts";
 import { describeNetlist, nodalTransfer } from "../../core/net/nodal.ts";
 import { compileBoard, Sweep } from "../../core/net/star.ts";
 import { transferColumns } from "../../core/net/transfer.ts";
-import { gyratorBoard, tenBandTable } from "../helpers/handbook.ts";
+import { gyratorBoard, tenBandBoard } from "../helpers/boards.ts";
 import { benchChoose } from "./choose.ts";
 import { benchDrawer } from "./drawer.ts";
 
@@ -72,7 +72,7 @@ function mathjsMs(board: Board): { readonly ms: number; readonly unknowns: numbe
 }
 
 const { values } = parseArgs({ options: { json: { type: "boolean" } } });
-const tenBands = resolveBoard(tenBandTable());
+const tenBands = resolveBoard(tenBandBoard());
 const star = starMs(tenBands);
 const slider = sliderMs(tenBands);
 const nodal = nodalMs(tenBands);

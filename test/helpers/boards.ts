@@ -44,7 +44,7 @@ export function bandOf(id: string, kind: BlockKind, values: Readonly<Record<stri
   return { id, kind, slider, parts, ...(BLOCKS[kind].hasOpAmp ? { opAmp: opts.opAmp ?? "ideal" } : {}) };
 }
 
-/** Octave bands after a handbook table, from memory: nominal Hz, gyratorC, seriesC, gyratorR, seriesR. */
+/** Ten-band octave table, Audio/Radio Handbook, National Semiconductor, 1980, from memory: nominal Hz, gyratorC, seriesC, gyratorR, seriesR. */
 export const TEN_BANDS: readonly (readonly [nominal: number, gyratorC: number, seriesC: number, gyratorR: number, seriesR: number])[] = [
   [32, 0.12e-6, 4.7e-6, 75e3, 560],
   [64, 0.056e-6, 3.3e-6, 68e3, 510],
@@ -62,6 +62,17 @@ export const TEN_BANDS: readonly (readonly [nominal: number, gyratorC: number, s
 export function tenBandBoard(opAmp = "table"): Project {
   const bands = TEN_BANDS.map(([nominal, gyratorC, seriesC, gyratorR, seriesR]) => bandOf(`b${nominal}`, "gyrator-section", { seriesC, seriesR, gyratorC, gyratorR }, { opAmp }));
   return oneBus(bands, { opAmp, opAmps: { table: TABLE_OP_AMP } });
+}
+
+/** Any number of gyrator bands with real op amps, spread evenly over 20 Hz–20 kHz on one bus; narrower the more there are. */
+export function gyratorBoard(count: number): Project {
+  const bands = Array.from({ length: count }, (_, index) => {
+    const omega = 2 * Math.PI * 20 * 1000 ** (count === 1 ? 0.5 : index / (count - 1));
+    const [seriesR, gyratorR] = [470, 68e3];
+    const inductance = (0.14 * count * seriesR) / omega;
+    return bandOf(`b${index + 1}`, "gyrator-section", { seriesC: 1 / (omega ** 2 * inductance), seriesR, gyratorC: inductance / (seriesR * gyratorR), gyratorR }, { opAmp: "table" });
+  });
+  return oneBus(bands, { opAmp: "table", opAmps: { table: TABLE_OP_AMP } });
 }
 
 const sometimes = <T>(arbitrary: fc.Arbitrary<T>): fc.Arbitrary<T | undefined> => fc.option(arbitrary, { nil: undefined });
