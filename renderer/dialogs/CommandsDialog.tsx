@@ -1,4 +1,5 @@
 import { useId, useRef, useState } from "react";
+import { flushSync } from "react-dom";
 import { chordsOf, isPossible, labelOf, type Action, type ActionContext } from "../editor/actions/action.ts";
 import { ACTIONS, run } from "../editor/actions/actions.ts";
 import { chordText } from "../editor/actions/chords.ts";
@@ -36,9 +37,9 @@ export function CommandsDialog({ close }: DialogProps<"commands">) {
   const found = findActions(text, context);
   const choose = (action: Action | undefined): void => {
     if (!action || !isPossible(action, context)) return;
-    close(null);
-    // After the focus has gone back to where it was, so that what opens next can return it there.
-    setTimeout(() => run(action, context), 0);
+    // The focus goes back to where it was first, so that what opens next can return it there; all before the next key.
+    flushSync(() => close(null));
+    queueMicrotask(() => run(action, context));
   };
 
   return (

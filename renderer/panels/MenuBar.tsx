@@ -15,7 +15,7 @@ export const MenuBar = memo(function MenuBar() {
           <Menu.Trigger className="menu-trigger">{name}</Menu.Trigger>
           <Menu.Portal>
             <Menu.Positioner className="positioner" sideOffset={4} align="start">
-              <Menu.Popup className="popup" finalFocus={(by) => (by === "mouse" ? document.querySelector<HTMLElement>(".view:not([hidden]) > main") : true)}>
+              <Menu.Popup className="popup" finalFocus={focusAfterMenu}>
                 <MenuItems actions={ACTIONS.filter((action) => action.menu === name)} />
               </Menu.Popup>
             </Menu.Positioner>
@@ -25,6 +25,13 @@ export const MenuBar = memo(function MenuBar() {
     </Menubar>
   );
 });
+
+/** Where the focus goes when a menu closes: what its entry has brought up keeps it. */
+function focusAfterMenu(by: string): boolean | HTMLElement | null {
+  const focused = document.activeElement;
+  if (focused !== null && focused !== document.body && focused.closest("[role=menu], [role=menubar]") === null) return false;
+  return by === "mouse" ? document.querySelector<HTMLElement>(".view:not([hidden]) > main") : true;
+}
 
 /** Entries for actions, with a rule between groups. */
 export function MenuItems({ actions }: { readonly actions: readonly Action[] }) {

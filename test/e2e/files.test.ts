@@ -158,7 +158,7 @@ describe("when the machine's side is gone", () => {
 
 describe("without a pointer", () => {
   test("open a demo, slide, change a value, add a band, save, read the keys", async () => {
-    session = await Session.start(browser, { size: { width: 1024, height: 700 } });
+    session = await Session.start(browser, { size: { width: 1024, height: 700 }, lateFrames: true });
     const { keyboard, page } = session;
     await keyboard.command("open a demo");
     await page.getByRole("option", { name: /Saltmarsh/ }).waitFor();

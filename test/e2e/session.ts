@@ -13,7 +13,12 @@ export interface SessionOpts {
   /** Files in the user's projects folder before it starts, by name. */
   readonly projects?: Readonly<Record<string, string>>;
   readonly size?: { readonly width: number; readonly height: number };
+  /** Every frame comes late, as on a machine that has other work: nothing typed meanwhile may be lost. */
+  readonly lateFrames?: boolean;
 }
+
+const LATE_FRAMES = `const request = window.requestAnimationFrame.bind(window);
+window.requestAnimationFrame = (draw) => request(() => request(() => request(() => request(() => request(draw)))));`;
 
 /** A user at Bandwright's screen, in that user's words. */
 export class Session {
@@ -43,6 +48,7 @@ export class Session {
     page.on("pageerror", (error) => session.complaints.push(error.message));
     await page.exposeBinding("tellViolation", (_source, text: string) => session.complaints.push(text));
     await page.addInitScript(`addEventListener("securitypolicyviolation", (event) => tellViolation(event.violatedDirective + " " + event.blockedURI))`);
+    if (opts.lateFrames) await page.addInitScript(LATE_FRAMES);
     await page.goto(app.url);
     await page.locator(".app").waitFor();
     return session;
@@ -79,15 +85,11 @@ export class Session {
     type: (text: string): Promise<void> => this.page.keyboard.type(text),
     undo: (): Promise<void> => this.press(["Control+z"]),
     redo: (): Promise<void> => this.press(["Control+Shift+z"]),
-    /** Finds a command by its words and does it. */
+    /** Finds a command by its words and does it, with hands that wait for nothing. */
     command: async (words: string): Promise<void> => {
       await this.press(["Control+k"]);
-      await this.dialog("All commands").waitFor();
       await this.page.keyboard.type(words);
       await this.press(["Enter"]);
-      await this.dialog("All commands").waitFor({ state: "detached" });
-      // The command runs as soon as the focus is back.
-      await this.page.evaluate(() => new Promise((resolve) => setTimeout(resolve)));
     },
     /** Tabs on until the element has the focus. */
     tabTo: async (target: Locator): Promise<void> => {

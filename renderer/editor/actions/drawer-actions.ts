@@ -1,3 +1,4 @@
+import { flushSync } from "react-dom";
 import { ALL_CHOSEN, NOTHING_CHOSEN } from "../../drawer/selection.ts";
 import { counted } from "../../drawer/line-text.ts";
 import { selectedBlocks, type Action, type ActionContext } from "./action.ts";
@@ -25,9 +26,24 @@ function show(c: ActionContext): void {
   c.ui.patch({ view: "drawer", contextMenu: null });
 }
 
-/** After what has just been asked for is on the screen. */
-function focusSoon(id: string): void {
-  setTimeout(() => document.getElementById(id)?.focus(), 30);
+/** How long the focus waits for a thing that is being read, ms. */
+const FOCUS_PATIENCE = 2000;
+
+/** Shows what a command is about and gives it the focus: before the next key where it is there, else as soon as it has been read. */
+function showAndFocus(bringUp: () => void, find: () => HTMLElement | null | undefined): void {
+  flushSync(bringUp);
+  const element = find();
+  if (element) return element.focus();
+  const focused = document.activeElement;
+  const observer = new MutationObserver(() => {
+    const late = find();
+    if (!late) return;
+    observer.disconnect();
+    // Hands that have gone elsewhere meanwhile stay there.
+    if (document.activeElement === focused || document.activeElement === document.body) late.focus();
+  });
+  observer.observe(document.body, { childList: true, subtree: true });
+  setTimeout(() => observer.disconnect(), FOCUS_PATIENCE);
 }
 
 function startTask(c: ActionContext, task: "fill" | "match"): void {
@@ -43,12 +59,14 @@ export const DRAWER_ACTIONS: readonly Action[] = [
     id: "drawer-swap", label: "Swap a part from the drawer", keywords: "replace candidate stock substitute capacitor resistor", menu: "Drawer", group: 1,
     when: (c) => hasBoard(c) && selectedBlocks(c).length === 1,
     perform: (c) => {
-      c.ui.patch({ view: "board", task: null, isPanelOpen: true, contextMenu: null });
-      setTimeout(() => {
-        const list = document.getElementById(SWAP_LIST);
-        list?.scrollIntoView({ block: "nearest" });
-        (list?.querySelector<HTMLElement>(".swap-card") ?? list)?.focus();
-      }, 30);
+      showAndFocus(
+        () => c.ui.patch({ view: "board", task: null, isPanelOpen: true, contextMenu: null }),
+        () => {
+          const list = document.getElementById(SWAP_LIST);
+          list?.scrollIntoView({ block: "nearest" });
+          return list?.querySelector<HTMLElement>(".swap-card") ?? list;
+        },
+      );
     },
   },
   { id: "drawer-fill", label: "Fill the board from the drawer…", keywords: "assign place parts stock lines budget", menu: "Drawer", group: 1, when: hasBoard, perform: (c) => startTask(c, "fill") },
@@ -57,8 +75,10 @@ export const DRAWER_ACTIONS: readonly Action[] = [
   {
     id: "drawer-find", label: "Find lines", keywords: "search filter drawer stock value", menu: "Drawer", group: 2, chords: ["Mod+F"], inFields: "always",
     perform: (c) => {
-      show(c);
-      focusSoon(SEARCH_FIELD);
+      showAndFocus(
+        () => show(c),
+        () => document.getElementById(SEARCH_FIELD),
+      );
     },
   },
   {
@@ -72,8 +92,10 @@ export const DRAWER_ACTIONS: readonly Action[] = [
     id: "drawer-edit-lines", keywords: "bulk change set fields chosen selected", menu: "Drawer", group: 2, when: hasChosen,
     label: (c) => `Edit ${isDrawerShown(c) ? counted(c.drawer.chosenCount(), "line") : "lines"} in the panel`,
     perform: (c) => {
-      c.ui.patch({ isPanelOpen: true });
-      setTimeout(() => document.querySelector<HTMLElement>(".panel .field-form input")?.focus(), 120);
+      showAndFocus(
+        () => c.ui.patch({ isPanelOpen: true }),
+        () => document.querySelector<HTMLElement>(".panel .field-form input"),
+      );
     },
   },
   {
