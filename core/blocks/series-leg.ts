@@ -1,4 +1,4 @@
-import { Dual } from "../num/dual.ts";
+import type { Phasor } from "../num/phasor.ts";
 import type { Leg, LegPort } from "./definition.ts";
 
 export interface SeriesLegValues {
@@ -22,9 +22,6 @@ class SeriesLeg implements Leg {
   readonly l: number;
   readonly rw: number;
   readonly cp: number;
-  readonly #z = new Dual();
-  readonly #t = new Dual();
-  readonly #coil = new Dual();
 
   constructor(c: number, r: number, l: number, rw: number, cp: number) {
     this.c = c;
@@ -51,16 +48,12 @@ class SeriesLeg implements Leg {
     }
   }
 
-  port(omega: number, out: LegPort): void {
-    const coil = this.#coil.affine(this.rw, this.l, omega);
-    const across = this.#t.affine(0, this.cp, omega);
-    const z = this.#z.mul(across, coil);
-    z[0] += 1;
-    z.div(coil, z);
-    z[0] += this.r;
-    const one = this.#t.real(1);
+  port<N extends Phasor>(omega: number, out: LegPort<N>, [z, t, coil]: readonly N[]): void {
+    coil.affine(this.rw, this.l, omega);
+    z.mul(t.affine(0, this.cp, omega), coil).shift(z, 1).div(coil, z).shift(z, this.r);
+    const one = t.real(1);
     if (this.c > 0) {
-      const block = this.#coil.affine(0, this.c, omega);
+      const block = coil.affine(0, this.c, omega);
       z.add(z, block.div(one, block));
     }
     out.ww.div(one, z);

@@ -1,18 +1,26 @@
-import type { LegPort } from "../blocks/definition.ts";
+import { LEG_REGISTERS, type LegPort } from "../blocks/definition.ts";
 import { Dual } from "../num/dual.ts";
+import { Phasor } from "../num/phasor.ts";
 import type { CompiledBoard, ItemForm, ReferenceForm } from "./star.ts";
 import type { TransferColumns } from "./transfer.ts";
+
+/** Working registers of the elimination. */
+const REGISTERS = 28;
 
 /** What hangs below a node of the chain, seen with the reference as a second port, and how the final output follows from it. */
 class Below {
   /** Current into what hangs here: ii·v + ir·v_r; current that it takes from the reference: ri·v + rr·v_r. */
-  readonly ii = new Dual();
-  readonly ir = new Dual();
-  readonly ri = new Dual();
-  readonly rr = new Dual();
+  readonly ii: Phasor;
+  readonly ir: Phasor;
+  readonly ri: Phasor;
+  readonly rr: Phasor;
   /** Final output = t·v + tr·v_r. */
-  readonly t = new Dual();
-  readonly tr = new Dual();
+  readonly t: Phasor;
+  readonly tr: Phasor;
+
+  constructor(make: () => Phasor) {
+    [this.ii, this.ir, this.ri, this.rr, this.t, this.tr] = [make(), make(), make(), make(), make(), make()];
+  }
 
   clear(): void {
     for (const d of [this.ii, this.ir, this.ri, this.rr, this.t, this.tr]) d.real(0);
@@ -21,7 +29,8 @@ class Below {
 
 /**
  * The star reduction in full: the shared reference of a single supply as a second port of every leg and stage, and
- * dH/ds along with H. Same elimination as the fast columns in star.ts, which it is tested against.
+ * where it is asked for dH/ds along with H, at three times the cost. Same elimination as the fast columns in star.ts,
+ * which it is tested against.
  */
 export class GeneralStar {
   #board: CompiledBoard;
@@ -29,41 +38,47 @@ export class GeneralStar {
   /** Kept leg ports, one for every band and frequency. */
   readonly #legs: readonly (readonly LegPort[])[];
   readonly #below: readonly Below[];
-  readonly #h = new Dual();
+  readonly #h: Phasor;
   /** The tracks' two parts in this run, ohms. */
   readonly #ra: Float64Array;
   readonly #rb: Float64Array;
   /** Working registers. */
-  readonly #d: readonly Dual[] = Array.from({ length: 28 }, () => new Dual());
+  readonly #d: readonly Phasor[];
+  readonly #legWork: readonly Phasor[];
+  /** 1 where a band's kept ports are of another leg or frequency. */
+  readonly #stale: Uint8Array;
 
-  constructor(board: CompiledBoard, omega: Float64Array) {
+  constructor(board: CompiledBoard, omega: Float64Array, withSlope: boolean) {
+    const make = (): Phasor => (withSlope ? new Dual() : new Phasor());
     this.#board = board;
     this.omega = omega;
+    this.#h = make();
+    this.#d = Array.from({ length: REGISTERS }, make);
+    this.#legWork = Array.from({ length: LEG_REGISTERS }, make);
     this.#ra = new Float64Array(board.bands.length);
     this.#rb = new Float64Array(board.bands.length);
-    this.#below = board.items.map(() => new Below());
-    this.#legs = board.bands.map(() => Array.from(omega, () => ({ ww: new Dual(), wr: new Dual(), rw: new Dual(), rr: new Dual() })));
-    this.retune();
+    this.#below = board.items.map(() => new Below(make));
+    this.#legs = board.bands.map(() => Array.from(omega, () => ({ ww: make(), wr: make(), rw: make(), rr: make() })));
+    this.#stale = new Uint8Array(board.bands.length).fill(1);
   }
 
-  /** Puts another version of the same board in; legs that differ are worked out anew. */
+  /** Puts another version of the same board in; legs that differ are worked out anew with the next run. */
   replace(board: CompiledBoard): void {
-    const old = this.#board;
+    for (const [index, band] of board.bands.entries()) if (band.leg !== this.#board.bands[index].leg) this.#stale[index] = 1;
     this.#board = board;
-    for (const [index, band] of board.bands.entries()) if (band.leg !== old.bands[index].leg) for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k]);
   }
 
-  /** Works out the legs anew after `omega` has changed. */
+  /** Takes notice that `omega` has changed. */
   retune(): void {
-    this.#board.bands.forEach((band, index) => {
-      for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k]);
-    });
+    this.#stale.fill(1);
   }
 
   run(positions: Float64Array, out: TransferColumns, weights: Float64Array): void {
     const { items } = this.#board;
     const h = this.#h;
-    for (const band of this.#board.bands) {
+    for (const [index, band] of this.#board.bands.entries()) {
+      if (this.#stale[index] === 1) for (let k = 0; k < this.omega.length; k++) band.leg.port(this.omega[k], this.#legs[index][k], this.#legWork);
+      this.#stale[index] = 0;
       const { boost, cut } = band.resistances(positions[band.index]);
       this.#ra[band.index] = boost;
       this.#rb[band.index] = cut;
@@ -79,6 +94,7 @@ export class GeneralStar {
       }
       out.re[k] = h.re;
       out.im[k] = h.im;
+      if (!(h instanceof Dual)) continue;
       if (out.slopeRe) out.slopeRe[k] = h.dre;
       if (out.slopeIm) out.slopeIm[k] = h.dim;
     }
@@ -156,7 +172,7 @@ export class GeneralStar {
   }
 
   /** v_p = v_m + e·(α·v_o − β·v_m), with α and β already times e. */
-  #plusInput(vp: Dual, vm: Dual, vo: Dual, alpha: Dual, beta: Dual, t: Dual): void {
+  #plusInput(vp: Phasor, vm: Phasor, vo: Phasor, alpha: Phasor, beta: Phasor, t: Phasor): void {
     vp.mul(alpha, vo).sub(vp, t.mul(beta, vm)).add(vp, vm);
   }
 
@@ -191,7 +207,7 @@ export class GeneralStar {
     up.t.scale(z, item.loadR);
   }
 
-  #input(index: number, item: Extract<ItemForm, { type: "input" }>, k: number, h: Dual): void {
+  #input(index: number, item: Extract<ItemForm, { type: "input" }>, k: number, h: Phasor): void {
     const below = this.#below[index];
     const omega = this.omega[k];
     const [z, c, t, d, vr, back, n] = this.#d;
@@ -213,7 +229,7 @@ export class GeneralStar {
   }
 
   /** Admittance of the reference node to ground: the bypassed divider, or the output of its follower. */
-  #referenceAdmittance(reference: ReferenceForm, omega: number, out: Dual): Dual {
+  #referenceAdmittance(reference: ReferenceForm, omega: number, out: Phasor): Phasor {
     const { conductance, bypassC, amp } = reference;
     out.affine(conductance, bypassC, omega);
     if (!amp) return out;

@@ -135,17 +135,20 @@ function referenceForm(board: Pick<Board, "project">, opts: ValueOpts): Referenc
 }
 
 /**
- * A compiled board on a fixed set of frequencies. Leg admittances are worked out when it is made and kept, so that `run`
+ * A compiled board on a fixed set of frequencies. Leg admittances are kept from run to run, so that `run`
  * for other slider positions costs one division a band and frequency. Nothing is allocated in `run`.
  */
 export class Sweep {
   #board: CompiledBoard;
   readonly omega: Float64Array;
   readonly #ones: Float64Array;
-  readonly #legRe: Float64Array[] = [];
-  readonly #legIm: Float64Array[] = [];
-  /** The full reduction: at once where the board needs it, else made when a slope is first asked for. */
+  #legRe: readonly Float64Array[] = [];
+  #legIm: readonly Float64Array[] = [];
+  /** The full reduction where the reference has an impedance of its own; with slopes on any board, once they are asked for. */
   #general: GeneralStar | undefined;
+  #sloped: GeneralStar | undefined;
+  /** 1 where a band's kept admittances are of another leg or frequency: they are worked out when they are needed. */
+  #stale: Uint8Array = new Uint8Array(0);
   /** Columns of the stage at work: Σ Rb·y, Σ Ra·y, Σ Ra·Rb·y/T. */
   #sums: readonly Float64Array[] = [];
   /** Load admittance at each item's out, and its gain. */
@@ -165,18 +168,15 @@ export class Sweep {
     const board = this.#board;
     const column = (): Float64Array => new Float64Array(omega.length);
     const pair = (): readonly [Float64Array, Float64Array] => [column(), column()];
-    this.#general = board.reference ? new GeneralStar(board, omega) : undefined;
+    this.#general = board.reference ? new GeneralStar(board, omega, false) : undefined;
+    this.#sloped = undefined;
     const isFast = board.reference === undefined;
     this.#sums = isFast ? [column(), column(), column(), column(), column(), column()] : [];
     this.#load = isFast ? board.items.map(pair) : [];
     this.#gain = isFast ? board.items.map(pair) : [];
-    this.#legRe.length = this.#legIm.length = 0;
-    if (!isFast) return;
-    for (const band of board.bands) {
-      this.#legRe.push(column());
-      this.#legIm.push(column());
-      band.leg.admittance(omega, this.#legRe[band.index], this.#legIm[band.index]);
-    }
+    this.#legRe = isFast ? board.bands.map(column) : [];
+    this.#legIm = isFast ? board.bands.map(column) : [];
+    this.#stale = new Uint8Array(board.bands.length).fill(1);
   }
 
   get board(): CompiledBoard {
@@ -197,14 +197,16 @@ export class Sweep {
       return;
     }
     this.#general?.replace(board);
-    for (const [index, re] of this.#legRe.entries()) if (board.bands[index].leg !== old.bands[index].leg) board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
+    this.#sloped?.replace(board);
+    for (const [index, band] of board.bands.entries()) if (band.leg !== old.bands[index].leg) this.#stale[index] = 1;
   }
 
   /** Moves a sweep of one point to another frequency, rad/s: what root-finding uses, without allocating. */
   retune(omega: number): void {
     this.omega[0] = omega;
     this.#general?.retune();
-    for (const [index, re] of this.#legRe.entries()) this.#board.bands[index].leg.admittance(this.omega, re, this.#legIm[index]);
+    this.#sloped?.retune();
+    this.#stale.fill(1);
   }
 
   /**
@@ -213,12 +215,20 @@ export class Sweep {
    * @param weights factor on each band's admittance, track included: 1 as it stands (the default), 0 as if it were not there
    */
   run(positions: Float64Array, out: TransferColumns, weights: Float64Array = this.#ones): void {
-    if (out.slopeRe || this.#board.reference) {
-      this.#general ??= new GeneralStar(this.#board, this.omega);
+    if (out.slopeRe) {
+      this.#sloped ??= new GeneralStar(this.#board, this.omega, true);
+      this.#sloped.run(positions, out, weights);
+      return;
+    }
+    if (this.#general) {
       this.#general.run(positions, out, weights);
       return;
     }
-    const { items, path } = this.#board;
+    const { items, path, bands } = this.#board;
+    for (let b = 0; b < bands.length; b++) {
+      if (this.#stale[b] === 1) bands[b].leg.admittance(this.omega, this.#legRe[b], this.#legIm[b]);
+      this.#stale[b] = 0;
+    }
     for (const [re, im] of this.#load) {
       re.fill(0);
       im.fill(0);

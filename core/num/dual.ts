@@ -1,20 +1,12 @@
+import { Phasor } from "./phasor.ts";
+
 /**
- * A complex number that carries its derivative with respect to s (forward-mode differentiation; Griewank and Walther,
- * "Evaluating Derivatives", 2nd ed., chapter 3). Methods write into `this`, so that nothing is allocated in a frequency loop.
- * The four numbers lie in a typed array, [re, im, d re, d im], so that writing one does not allocate either.
- * Every method may be called with `this` among its arguments.
+ * A phasor that carries its derivative with respect to s (forward-mode differentiation; Griewank and Walther,
+ * "Evaluating Derivatives", 2nd ed., chapter 3): [re, im, d re, d im].
  */
-export class Dual extends Float64Array {
+export class Dual extends Phasor {
   constructor() {
     super(4);
-  }
-
-  get re(): number {
-    return this[0];
-  }
-
-  get im(): number {
-    return this[1];
   }
 
   /** d/ds of the value. */
@@ -27,14 +19,14 @@ export class Dual extends Float64Array {
   }
 
   /** A constant: its derivative is 0. */
-  real(value: number): this {
+  override real(value: number): this {
     this[0] = value;
     this[1] = this[2] = this[3] = 0;
     return this;
   }
 
   /** constant + slope·s at s = jω. */
-  affine(constant: number, slope: number, omega: number): this {
+  override affine(constant: number, slope: number, omega: number): this {
     this[0] = constant;
     this[1] = slope * omega;
     this[2] = slope;
@@ -42,15 +34,7 @@ export class Dual extends Float64Array {
     return this;
   }
 
-  copy(a: Dual): this {
-    this[0] = a[0];
-    this[1] = a[1];
-    this[2] = a[2];
-    this[3] = a[3];
-    return this;
-  }
-
-  add(a: Dual, b: Dual): this {
+  override add(a: this, b: this): this {
     this[0] = a[0] + b[0];
     this[1] = a[1] + b[1];
     this[2] = a[2] + b[2];
@@ -58,7 +42,7 @@ export class Dual extends Float64Array {
     return this;
   }
 
-  sub(a: Dual, b: Dual): this {
+  override sub(a: this, b: this): this {
     this[0] = a[0] - b[0];
     this[1] = a[1] - b[1];
     this[2] = a[2] - b[2];
@@ -67,7 +51,7 @@ export class Dual extends Float64Array {
   }
 
   /** a + constant. */
-  shift(a: Dual, constant: number): this {
+  override shift(a: this, constant: number): this {
     this[0] = a[0] + constant;
     this[1] = a[1];
     this[2] = a[2];
@@ -75,7 +59,7 @@ export class Dual extends Float64Array {
     return this;
   }
 
-  scale(a: Dual, factor: number): this {
+  override scale(a: this, factor: number): this {
     this[0] = a[0] * factor;
     this[1] = a[1] * factor;
     this[2] = a[2] * factor;
@@ -83,7 +67,7 @@ export class Dual extends Float64Array {
     return this;
   }
 
-  mul(a: Dual, b: Dual): this {
+  override mul(a: this, b: this): this {
     const re = a[0] * b[0] - a[1] * b[1];
     const im = a[0] * b[1] + a[1] * b[0];
     const dre = a[2] * b[0] - a[3] * b[1] + a[0] * b[2] - a[1] * b[3];
@@ -96,7 +80,7 @@ export class Dual extends Float64Array {
   }
 
   /** this + a·b. */
-  addMul(a: Dual, b: Dual): this {
+  override addMul(a: this, b: this): this {
     const re = a[0] * b[0] - a[1] * b[1];
     const im = a[0] * b[1] + a[1] * b[0];
     const dre = a[2] * b[0] - a[3] * b[1] + a[0] * b[2] - a[1] * b[3];
@@ -109,7 +93,7 @@ export class Dual extends Float64Array {
   }
 
   /** a / b: (a/b)' = (a' − (a/b)·b') / b. */
-  div(a: Dual, b: Dual): this {
+  override div(a: this, b: this): this {
     const norm = 1 / (b[0] * b[0] + b[1] * b[1]);
     const re = (a[0] * b[0] + a[1] * b[1]) * norm;
     const im = (a[1] * b[0] - a[0] * b[1]) * norm;

@@ -3,7 +3,7 @@ import * as fc from "fast-check";
 import { describe, expect, test, vi } from "vitest";
 import { lawResults } from "../../core/analysis/laws.ts";
 import { angular, logFrequencies } from "../../core/analysis/response.ts";
-import type { LegCase, LegPort } from "../../core/blocks/definition.ts";
+import { LEG_REGISTERS, type Leg, type LegCase, type LegPort } from "../../core/blocks/definition.ts";
 import { BAND_KINDS, BLOCKS } from "../../core/blocks/index.ts";
 import { BLOCK_KINDS, type BlockKind } from "../../core/blocks/kinds.ts";
 import { newBlock, newProject } from "../../core/model/new-project.ts";
@@ -17,6 +17,7 @@ import { compileBoard, Sweep } from "../../core/net/star.ts";
 import { transferColumns, type TransferColumns } from "../../core/net/transfer.ts";
 import { blockValues } from "../../core/net/values.ts";
 import { Dual } from "../../core/num/dual.ts";
+import { Phasor } from "../../core/num/phasor.ts";
 import { probeLeg } from "../fixtures/leg-probe.ts";
 import { runs } from "../fixtures/runs.ts";
 import { blockArbitrary, modelArbitrary, partsArbitrary } from "../helpers/boards.ts";
@@ -52,7 +53,13 @@ function nodal(project: Project, frequency: Float64Array): TransferColumns {
 }
 
 const distanceAt = (a: TransferColumns, b: TransferColumns, k: number): number => Math.hypot(a.re[k] - b.re[k], a.im[k] - b.im[k]) / Math.hypot(b.re[k], b.im[k]);
-const newPort = (): LegPort => ({ ww: new Dual(), wr: new Dual(), rw: new Dual(), rr: new Dual() });
+/** A leg as a two-port at one frequency, worked out in one kind of number. */
+function portOf<N extends Phasor>(leg: Leg, omega: number, make: () => N): LegPort<N> {
+  const port = { ww: make(), wr: make(), rw: make(), rr: make() };
+  leg.port(omega, port, Array.from({ length: LEG_REGISTERS }, make));
+  return port;
+}
+const dualPort = (leg: Leg, omega: number): LegPort<Dual> => portOf(leg, omega, () => new Dual());
 const AUDIO = logFrequencies(10, 40e3, 9);
 
 describe.each(BLOCK_KINDS)("%s", (kind) => {
@@ -167,8 +174,7 @@ describe.each(BAND_KINDS)("the leg of a %s", (kind) => {
     fc.assert(
       fc.property(random, ([parts, opAmp, at]) => {
         const omega = 2 * Math.PI * 10 ** (at / 1000);
-        const port = newPort();
-        closedForm(parts, opAmp).port(omega, port);
+        const port = dualPort(closedForm(parts, opAmp), omega);
         const own = (driven: "wiper" | "reference", where: "wiper" | "reference") => probeLeg(kind, parts, opAmp, omega, driven, where);
         const pairs = [
           [port.ww, own("wiper", "wiper")],
@@ -184,6 +190,18 @@ describe.each(BAND_KINDS)("the leg of a %s", (kind) => {
         }
       }),
       runs(80),
+    );
+  });
+
+  test("as a two-port is the same, digit for digit, with derivatives and without", () => {
+    fc.assert(
+      fc.property(random, ([parts, opAmp, at]) => {
+        const omega = 2 * Math.PI * 10 ** (at / 1000);
+        const leg = closedForm(parts, opAmp);
+        const [dual, plain] = [dualPort(leg, omega), portOf(leg, omega, () => new Phasor())];
+        for (const way of ["ww", "wr", "rw", "rr"] as const) expect([plain[way].re, plain[way].im]).toEqual([dual[way].re, dual[way].im]);
+      }),
+      runs(20),
     );
   });
 
@@ -213,8 +231,7 @@ describe.each(BAND_KINDS)("the leg of a %s", (kind) => {
         leg.admittance(omega, re, im);
         for (const value of [...re, ...im]) expect(value).toSatisfy(Number.isFinite);
         for (const w of omega) {
-          const port = newPort();
-          leg.port(w, port);
+          const port = dualPort(leg, w);
           for (const value of [...port.ww, ...port.wr, ...port.rw, ...port.rr]) expect(value).toSatisfy(Number.isFinite);
         }
       }),

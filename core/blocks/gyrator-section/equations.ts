@@ -1,5 +1,5 @@
 import type { OpAmpModel } from "../../model/project.ts";
-import { Dual } from "../../num/dual.ts";
+import type { Phasor } from "../../num/phasor.ts";
 import type { Leg, LegPort, PartValues } from "../definition.ts";
 
 /**
@@ -32,17 +32,6 @@ class GyratorLeg implements Leg {
   readonly e1: number;
   readonly ro: number;
   readonly gin: number;
-  readonly #e = new Dual();
-  readonly #p = new Dual();
-  readonly #q = new Dual();
-  readonly #k = new Dual();
-  readonly #m = new Dual();
-  readonly #det = new Dual();
-  readonly #yc = new Dual();
-  readonly #u = new Dual();
-  readonly #v = new Dual();
-  readonly #t = new Dual();
-  readonly #ys = new Dual();
 
   constructor(cs: number, gs: number, cg: number, gg: number, e0: number, e1: number, ro: number, gin: number) {
     this.cs = cs;
@@ -93,39 +82,35 @@ class GyratorLeg implements Leg {
     }
   }
 
-  port(omega: number, out: LegPort): void {
+  port<N extends Phasor>(omega: number, out: LegPort<N>, [e, p, q, k, m, det, yc, u, v, t, ys]: readonly N[]): void {
     const { gs, cg, gg, ro, gin } = this;
-    const e = this.#e.affine(this.e0, this.e1, omega);
-    const p = this.#p.scale(e, 1 + ro * gs);
-    const q = this.#q.scale(e, ro * gin);
-    q[0] += 1;
-    const k = this.#k.affine(gg, cg, omega);
-    const m = this.#m.affine(gg + gin, cg, omega);
-    const det = this.#det.mul(p, m).addMul(q, k);
-    const yc = this.#yc.affine(0, cg, omega);
+    e.affine(this.e0, this.e1, omega);
+    p.scale(e, 1 + ro * gs);
+    q.scale(e, ro * gin).shift(q, 1);
+    k.affine(gg, cg, omega);
+    m.affine(gg + gin, cg, omega);
+    det.mul(p, m).addMul(q, k);
+    yc.affine(0, cg, omega);
     const { ww, wr, rw, rr } = out;
     // Driven at a: u = v_a − v_o, v = v_a − v_n = u − d.
-    let u = this.#u.mul(e, m);
-    u.add(u, this.#t.scale(q, gg)).div(u, det);
-    const v = this.#v.mul(e, k);
-    v.sub(v, this.#t.scale(p, gg)).div(v, det).sub(u, v);
+    u.mul(e, m).add(u, t.scale(q, gg)).div(u, det);
+    v.mul(e, k).sub(v, t.scale(p, gg)).div(v, det).sub(u, v);
     ww.scale(u, gs).addMul(v, yc);
-    rw.shift(this.#t.scale(v, -1), 1).scale(rw, -gg);
+    rw.shift(t.scale(v, -1), 1).scale(rw, -gg);
     // Driven at the reference: u = −Q·gg/Δ, d = P·gg/Δ.
-    u = this.#u.scale(q, -gg);
-    u.div(u, det);
+    u.scale(q, -gg).div(u, det);
     v.scale(p, gg).div(v, det).sub(u, v);
     wr.scale(u, gs).addMul(v, yc);
     rr.shift(v, 1).scale(rr, gg);
     if (this.cs === 0) return;
-    const ys = this.#ys.affine(0, this.cs, omega);
-    const ratio = this.#t.add(ys, ww);
+    ys.affine(0, this.cs, omega);
+    t.add(ys, ww);
     // rr − rw·wr/(ys + ww), then every transfer through ys/(ys + ww).
-    const loop = this.#u.mul(rw, wr);
-    rr.sub(rr, loop.div(loop, ratio));
-    ratio.div(ys, ratio);
-    ww.mul(ww, ratio);
-    wr.mul(wr, ratio);
-    rw.mul(rw, ratio);
+    u.mul(rw, wr);
+    rr.sub(rr, u.div(u, t));
+    t.div(ys, t);
+    ww.mul(ww, t);
+    wr.mul(wr, t);
+    rw.mul(rw, t);
   }
 }
