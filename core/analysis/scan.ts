@@ -20,6 +20,8 @@ export interface BandPeak {
 
 const HALF_POWER_DB = 10 * Math.log10(2);
 const PER_OCTAVE = 24;
+/** On ln f. */
+const TOLERANCE = 1e-12;
 
 /** A scan wide enough for a board's bands. @param characteristic frequencies of the legs, Hz; those that are not numbers are passed over */
 export function scanOf(board: Board, characteristic: readonly (number | undefined)[], opts: ValueOpts): Scan {
@@ -108,7 +110,7 @@ export class Scan {
         if (sign * (g[i] - g[i - 1]) >= 0 && sign * (g[i] - g[i + 1]) > 0 && (best < 0 || sign * (g[i] - g[best]) > 0)) best = i;
       }
       if (best < 0) return { peak: this.#gainAt(Math.log(resonance)), frequency: null, q: null, lower: null, upper: null };
-      const lnPeak = this.#bracketed((x) => this.#slopeAt(x), best - 1, best + 1);
+      const lnPeak = this.#top(best);
       const peak = this.#gainAt(lnPeak);
       const target = peak - sign * HALF_POWER_DB;
       const lower = this.#crossing(this.#gain, target, sign, best, -1, (x) => this.#gainAt(x));
@@ -169,23 +171,37 @@ export class Scan {
     return found;
   }
 
-  #bracketed(f: (lnF: number) => number, from: number, to: number): number {
-    const [a, b] = [Math.log(this.#frequency[from]), Math.log(this.#frequency[to])];
-    const [fa, fb] = [f(a), f(b)];
-    // A curve flat to rounding has no sign change to show: its ends are as good as each other.
-    if (fa > 0 === fb > 0) return Math.abs(fa) < Math.abs(fb) ? a : b;
-    return findRoot(f, a, b, 1e-12, fa, fb);
+  /** Where the slope is none next to a scan point that stands above (below) both its neighbours, as ln f. */
+  #top(at: number): number {
+    const slope = (lnF: number): number => this.#slopeAt(lnF);
+    const lnF = (index: number): number => Math.log(this.#frequency[index]);
+    const [before, here, after] = [this.#gain[at - 1], this.#gain[at], this.#gain[at + 1]];
+    // The vertex of the parabola through the three is within a few hundredths of a step: most often the root is that near.
+    const step = lnF(at) - lnF(at - 1);
+    const vertex = lnF(at) + (step / 2) * ((before - after) / (before - 2 * here + after));
+    const [a, b] = [vertex - step / 20, vertex + step / 20];
+    const [fa, fb] = [slope(a), slope(b)];
+    if (fa > 0 !== fb > 0) return findRoot(slope, a, b, TOLERANCE, fa, fb);
+    const [from, to] = [lnF(at - 1), lnF(at + 1)];
+    return bracketed(slope, from, to, slope(from), slope(to));
   }
 
   /** Where a column falls past a target on one side of its peak, as a frequency; null where it never does. */
   #crossing(column: Float64Array, target: number, sign: number, peak: number, direction: 1 | -1, exact: (lnF: number) => number): number | null {
     for (let i = peak + direction; i >= 0 && i < column.length; i += direction) {
       if (sign * (column[i] - target) >= 0) continue;
-      const inner = i - direction === peak ? peak : i - direction;
-      return Math.exp(this.#bracketed((x) => exact(x) - target, inner, i));
+      const [inner, outer] = [i - direction, i];
+      return Math.exp(bracketed((x) => exact(x) - target, Math.log(this.#frequency[inner]), Math.log(this.#frequency[outer]), column[inner] - target, column[outer] - target));
     }
     return null;
   }
+}
+
+/** A root of f between two points with these values there. */
+function bracketed(f: (lnF: number) => number, a: number, b: number, fa: number, fb: number): number {
+  // A curve flat to rounding has no sign change to show: its ends are as good as each other.
+  if (fa > 0 === fb > 0) return Math.abs(fa) < Math.abs(fb) ? a : b;
+  return findRoot(f, a, b, TOLERANCE, fa, fb);
 }
 
 function argMax(column: Float64Array, sign: number): number {

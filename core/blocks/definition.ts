@@ -1,4 +1,4 @@
-import type { Phasor } from "../num/phasor.ts";
+import type { Dual } from "../num/dual.ts";
 import type { NodeId } from "../net/netlist.ts";
 import type { OpAmpModel } from "../model/project.ts";
 import type { Quantity } from "../units.ts";
@@ -50,11 +50,11 @@ export interface Expander {
 }
 
 /** A leg's admittances seen from wiper (w) and signal reference (r), as currents into the leg: i_w = ww·v_w + wr·v_r, i_r = rw·v_w + rr·v_r. */
-export interface LegPort<N extends Phasor = Phasor> {
-  readonly ww: N;
-  readonly wr: N;
-  readonly rw: N;
-  readonly rr: N;
+export interface LegPort {
+  readonly ww: Dual;
+  readonly wr: Dual;
+  readonly rw: Dual;
+  readonly rr: Dual;
 }
 
 /** Registers that a leg's `port` may ask for. */
@@ -65,10 +65,10 @@ export interface Leg {
   /** Fills the admittance at the wiper with the reference at ground, siemens. `omega` in rad/s, all above 0. */
   admittance(omega: Float64Array, re: Float64Array, im: Float64Array): void;
   /**
-   * The same at one frequency, with the reference as a second port; in duals with every d/ds.
+   * The same at one frequency, with the reference as a second port and every d/ds.
    * @param work registers that it may overwrite, `LEG_REGISTERS` of them
    */
-  port<N extends Phasor>(omega: number, out: LegPort<N>, work: readonly N[]): void;
+  port(omega: number, out: LegPort, work: readonly Dual[]): void;
 }
 
 /** A design law of a block as a mathjs expression in its role names, `feedbackR` of its stage and earlier laws. SI units. */

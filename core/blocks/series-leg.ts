@@ -1,4 +1,4 @@
-import type { Phasor } from "../num/phasor.ts";
+import type { Dual } from "../num/dual.ts";
 import type { Leg, LegPort } from "./definition.ts";
 
 export interface SeriesLegValues {
@@ -48,7 +48,7 @@ class SeriesLeg implements Leg {
     }
   }
 
-  port<N extends Phasor>(omega: number, out: LegPort<N>, [z, t, coil]: readonly N[]): void {
+  port(omega: number, out: LegPort, [z, t, coil]: readonly Dual[]): void {
     coil.affine(this.rw, this.l, omega);
     z.mul(t.affine(0, this.cp, omega), coil).shift(z, 1).div(coil, z).shift(z, this.r);
     const one = t.real(1);

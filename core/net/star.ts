@@ -7,8 +7,9 @@ import { BLOCKS } from "../blocks/index.ts";
 import type { Leg } from "../blocks/definition.ts";
 import type { Block, OpAmpModel, Project } from "../model/project.ts";
 import type { Board } from "./board.ts";
-import type { TransferColumns } from "./transfer.ts";
-import { GeneralStar } from "./star-general.ts";
+import { hasSlopes, type TransferColumns } from "./transfer.ts";
+import { ReferenceStar } from "./star-reference.ts";
+import { SlopeStar } from "./star-slopes.ts";
 import { blockValues, opAmpModel, partValue, sliderPosition, sliderResistances, type ValueOpts } from "./values.ts";
 
 /** An op amp as the reductions use it: 1/A = e0 + s·e1, output resistance, input conductance. All 0 when ideal. */
@@ -144,9 +145,10 @@ export class Sweep {
   readonly #ones: Float64Array;
   #legRe: readonly Float64Array[] = [];
   #legIm: readonly Float64Array[] = [];
-  /** The full reduction where the reference has an impedance of its own; with slopes on any board, once they are asked for. */
-  #general: GeneralStar | undefined;
-  #sloped: GeneralStar | undefined;
+  /** Does the work where the reference has an impedance of its own. */
+  #shared: ReferenceStar | undefined;
+  /** Made when a slope is first asked for. */
+  #sloped: SlopeStar | undefined;
   /** 1 where a band's kept admittances are of another leg or frequency: they are worked out when they are needed. */
   #stale: Uint8Array = new Uint8Array(0);
   /** Columns of the stage at work: Σ Rb·y, Σ Ra·y, Σ Ra·Rb·y/T. */
@@ -168,7 +170,7 @@ export class Sweep {
     const board = this.#board;
     const column = (): Float64Array => new Float64Array(omega.length);
     const pair = (): readonly [Float64Array, Float64Array] => [column(), column()];
-    this.#general = board.reference ? new GeneralStar(board, omega, false) : undefined;
+    this.#shared = board.reference ? new ReferenceStar(board, omega) : undefined;
     this.#sloped = undefined;
     const isFast = board.reference === undefined;
     this.#sums = isFast ? [column(), column(), column(), column(), column(), column()] : [];
@@ -196,7 +198,7 @@ export class Sweep {
       this.#prepare();
       return;
     }
-    this.#general?.replace(board);
+    this.#shared?.replace(board);
     this.#sloped?.replace(board);
     for (const [index, band] of board.bands.entries()) if (band.leg !== old.bands[index].leg) this.#stale[index] = 1;
   }
@@ -204,7 +206,7 @@ export class Sweep {
   /** Moves a sweep of one point to another frequency, rad/s: what root-finding uses, without allocating. */
   retune(omega: number): void {
     this.omega[0] = omega;
-    this.#general?.retune();
+    this.#shared?.retune();
     this.#sloped?.retune();
     this.#stale.fill(1);
   }
@@ -215,13 +217,13 @@ export class Sweep {
    * @param weights factor on each band's admittance, track included: 1 as it stands (the default), 0 as if it were not there
    */
   run(positions: Float64Array, out: TransferColumns, weights: Float64Array = this.#ones): void {
-    if (out.slopeRe) {
-      this.#sloped ??= new GeneralStar(this.#board, this.omega, true);
+    if (hasSlopes(out)) {
+      this.#sloped ??= new SlopeStar(this.#board, this.omega);
       this.#sloped.run(positions, out, weights);
       return;
     }
-    if (this.#general) {
-      this.#general.run(positions, out, weights);
+    if (this.#shared) {
+      this.#shared.run(positions, out, weights);
       return;
     }
     const { items, path, bands } = this.#board;

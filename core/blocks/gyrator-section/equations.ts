@@ -1,5 +1,5 @@
 import type { OpAmpModel } from "../../model/project.ts";
-import type { Phasor } from "../../num/phasor.ts";
+import type { Dual } from "../../num/dual.ts";
 import type { Leg, LegPort, PartValues } from "../definition.ts";
 
 /**
@@ -82,7 +82,7 @@ class GyratorLeg implements Leg {
     }
   }
 
-  port<N extends Phasor>(omega: number, out: LegPort<N>, [e, p, q, k, m, det, yc, u, v, t, ys]: readonly N[]): void {
+  port(omega: number, out: LegPort, [e, p, q, k, m, det, yc, u, v, t, ys]: readonly Dual[]): void {
     const { gs, cg, gg, ro, gin } = this;
     e.affine(this.e0, this.e1, omega);
     p.scale(e, 1 + ro * gs);

@@ -1,26 +1,25 @@
 import { LEG_REGISTERS, type LegPort } from "../blocks/definition.ts";
 import { Dual } from "../num/dual.ts";
-import { Phasor } from "../num/phasor.ts";
 import type { CompiledBoard, ItemForm, ReferenceForm } from "./star.ts";
 import type { TransferColumns } from "./transfer.ts";
 
 /** Working registers of the elimination. */
 const REGISTERS = 28;
 
+function duals(count: number): Dual[] {
+  return Array.from({ length: count }, () => new Dual());
+}
+
 /** What hangs below a node of the chain, seen with the reference as a second port, and how the final output follows from it. */
 class Below {
   /** Current into what hangs here: ii·v + ir·v_r; current that it takes from the reference: ri·v + rr·v_r. */
-  readonly ii: Phasor;
-  readonly ir: Phasor;
-  readonly ri: Phasor;
-  readonly rr: Phasor;
+  readonly ii = new Dual();
+  readonly ir = new Dual();
+  readonly ri = new Dual();
+  readonly rr = new Dual();
   /** Final output = t·v + tr·v_r. */
-  readonly t: Phasor;
-  readonly tr: Phasor;
-
-  constructor(make: () => Phasor) {
-    [this.ii, this.ir, this.ri, this.rr, this.t, this.tr] = [make(), make(), make(), make(), make(), make()];
-  }
+  readonly t = new Dual();
+  readonly tr = new Dual();
 
   clear(): void {
     for (const d of [this.ii, this.ir, this.ri, this.rr, this.t, this.tr]) d.real(0);
@@ -28,37 +27,33 @@ class Below {
 }
 
 /**
- * The star reduction in full: the shared reference of a single supply as a second port of every leg and stage, and
- * where it is asked for dH/ds along with H, at three times the cost. Same elimination as the fast columns in star.ts,
- * which it is tested against.
+ * The star reduction with dH/ds beside H, by forward differentiation, and the shared reference of a single supply as a
+ * second port of every leg and stage. Same elimination as the columns of star.ts and star-reference.ts, which it is
+ * tested against, at several times their cost.
  */
-export class GeneralStar {
+export class SlopeStar {
   #board: CompiledBoard;
   readonly omega: Float64Array;
   /** Kept leg ports, one for every band and frequency. */
   readonly #legs: readonly (readonly LegPort[])[];
   readonly #below: readonly Below[];
-  readonly #h: Phasor;
+  readonly #h = new Dual();
   /** The tracks' two parts in this run, ohms. */
   readonly #ra: Float64Array;
   readonly #rb: Float64Array;
   /** Working registers. */
-  readonly #d: readonly Phasor[];
-  readonly #legWork: readonly Phasor[];
+  readonly #d = duals(REGISTERS);
+  readonly #legWork = duals(LEG_REGISTERS);
   /** 1 where a band's kept ports are of another leg or frequency. */
   readonly #stale: Uint8Array;
 
-  constructor(board: CompiledBoard, omega: Float64Array, withSlope: boolean) {
-    const make = (): Phasor => (withSlope ? new Dual() : new Phasor());
+  constructor(board: CompiledBoard, omega: Float64Array) {
     this.#board = board;
     this.omega = omega;
-    this.#h = make();
-    this.#d = Array.from({ length: REGISTERS }, make);
-    this.#legWork = Array.from({ length: LEG_REGISTERS }, make);
     this.#ra = new Float64Array(board.bands.length);
     this.#rb = new Float64Array(board.bands.length);
-    this.#below = board.items.map(() => new Below(make));
-    this.#legs = board.bands.map(() => Array.from(omega, () => ({ ww: make(), wr: make(), rw: make(), rr: make() })));
+    this.#below = board.items.map(() => new Below());
+    this.#legs = board.bands.map(() => Array.from(omega, () => ({ ww: new Dual(), wr: new Dual(), rw: new Dual(), rr: new Dual() })));
     this.#stale = new Uint8Array(board.bands.length).fill(1);
   }
 
@@ -73,7 +68,7 @@ export class GeneralStar {
     this.#stale.fill(1);
   }
 
-  run(positions: Float64Array, out: TransferColumns, weights: Float64Array): void {
+  run(positions: Float64Array, out: Required<TransferColumns>, weights: Float64Array): void {
     const { items } = this.#board;
     const h = this.#h;
     for (const [index, band] of this.#board.bands.entries()) {
@@ -94,9 +89,8 @@ export class GeneralStar {
       }
       out.re[k] = h.re;
       out.im[k] = h.im;
-      if (!(h instanceof Dual)) continue;
-      if (out.slopeRe) out.slopeRe[k] = h.dre;
-      if (out.slopeIm) out.slopeIm[k] = h.dim;
+      out.slopeRe[k] = h.dre;
+      out.slopeIm[k] = h.dim;
     }
   }
 
@@ -172,7 +166,7 @@ export class GeneralStar {
   }
 
   /** v_p = v_m + e·(α·v_o − β·v_m), with α and β already times e. */
-  #plusInput(vp: Phasor, vm: Phasor, vo: Phasor, alpha: Phasor, beta: Phasor, t: Phasor): void {
+  #plusInput(vp: Dual, vm: Dual, vo: Dual, alpha: Dual, beta: Dual, t: Dual): void {
     vp.mul(alpha, vo).sub(vp, t.mul(beta, vm)).add(vp, vm);
   }
 
@@ -207,7 +201,7 @@ export class GeneralStar {
     up.t.scale(z, item.loadR);
   }
 
-  #input(index: number, item: Extract<ItemForm, { type: "input" }>, k: number, h: Phasor): void {
+  #input(index: number, item: Extract<ItemForm, { type: "input" }>, k: number, h: Dual): void {
     const below = this.#below[index];
     const omega = this.omega[k];
     const [z, c, t, d, vr, back, n] = this.#d;
@@ -229,7 +223,7 @@ export class GeneralStar {
   }
 
   /** Admittance of the reference node to ground: the bypassed divider, or the output of its follower. */
-  #referenceAdmittance(reference: ReferenceForm, omega: number, out: Phasor): Phasor {
+  #referenceAdmittance(reference: ReferenceForm, omega: number, out: Dual): Dual {
     const { conductance, bypassC, amp } = reference;
     out.affine(conductance, bypassC, omega);
     if (!amp) return out;
