@@ -42,7 +42,8 @@ export function MenuItems({ actions }: { readonly actions: readonly Action[] }) 
     return (
       <Fragment key={action.id}>
         {isNewGroup && <Menu.Separator className="menu-rule" />}
-        <Menu.Item className="menu-item" disabled={!isPossible(action, context)} onClick={() => run(action, context)}>
+        {/* After the library's own handler, which takes the focus back to the entry. */}
+        <Menu.Item className="menu-item" disabled={!isPossible(action, context)} onClick={() => queueMicrotask(() => run(action, context))}>
           <span>{labelOf(action, context)}</span>
           {chord !== undefined && (
             <span className="menu-chord" aria-hidden="true">
