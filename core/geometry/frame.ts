@@ -7,6 +7,8 @@ export const GRID = 4;
 /** Height of the frequency labels between response and board. */
 const AXIS = 24;
 const TOP = 14;
+/** Lowest response that still shows a shape. */
+const LEAST_RESPONSE = 60;
 /** Room that a band at an end of the range keeps to the margin. */
 const END_PAD = 30;
 /** Height of a line of figures, whatever the scale: text does not shrink. */
@@ -53,6 +55,8 @@ function sheetLimits(range: Span, width: number): Span {
 export interface FrameOpts {
   readonly width: number;
   readonly height: number;
+  /** Pixels at the top that something else lies over: the response gives them up, and the board stays where it is. */
+  readonly topInset?: number;
   readonly range: Span;
   /** What is on show; null for all. */
   readonly span: Span | null;
@@ -64,7 +68,7 @@ export interface FrameOpts {
  * Zoom works on the frequency axis and on the board together: the ruling widens, and the board grows with it as long as
  * its bands have the room. The response keeps its height and never scrolls; the board below it does.
  */
-export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Frame {
+export function frameOf({ width, height, topInset = 0, range, span, heightAt }: FrameOpts): Frame {
   const { left, right, scale: marginScale } = margins(width);
   const limits = sheetLimits(range, width);
   // A span kept from another range is brought inside this one.
@@ -75,11 +79,12 @@ export function frameOf({ width, height, range, span, heightAt }: FrameOpts): Fr
   let fitting = LEAST_SCALE;
   while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;
   const zoom = zoomOf(limits, shown);
-  const responseBottom = TOP + responseHeight;
+  const responseTop = TOP + topInset;
+  const responseBottom = Math.max(TOP + responseHeight, responseTop + LEAST_RESPONSE);
   return {
     width, height, marginScale, limits, zoom,
     ruling: { left, right, from: shown.from, to: shown.to },
-    response: { left, right, top: TOP, bottom: responseBottom },
+    response: { left, right, top: responseTop, bottom: responseBottom },
     board: { left: 0, right: width, top: responseBottom + AXIS, bottom: height },
     scale: clamp(fitting * zoom, LEAST_SCALE, MOST_SCALE),
   };

@@ -41,6 +41,8 @@ export interface LayoutOpts {
   readonly figures: ReadonlyMap<string, BandFigures> | null;
   readonly width: number;
   readonly height: number;
+  /** Pixels at the top that something else lies over. */
+  readonly topInset?: number;
   readonly range: Span;
   /** Frequencies on show; null for all of them. */
   readonly span: Span | null;

@@ -30,12 +30,6 @@ export type Shown = {
   [D in DialogName]: { readonly key: number; readonly name: D; readonly ask: Dialogs[D]["ask"]; readonly close: (answer: Dialogs[D]["answer"]) => void };
 }[DialogName];
 
-export interface Reading {
-  readonly frequency: number;
-  readonly gain: number;
-  readonly phase: number;
-}
-
 export interface ContextMenuPlace {
   readonly clientX: number;
   readonly clientY: number;
@@ -67,7 +61,8 @@ export interface UiState {
   readonly task: Task | null;
   readonly isPanelOpen: boolean;
   readonly isPhaseShown: boolean;
-  readonly cursor: Reading | null;
+  /** Where on the response the pointer or the keyboard's cursor stands, Hz. */
+  readonly cursor: number | null;
   /** The last thing worth telling, in the status line. */
   readonly notice: { readonly key: number; readonly text: string; readonly isWarning: boolean } | null;
   readonly dialogs: readonly Shown[];

@@ -6,6 +6,7 @@ import { DIVIDER } from "../../core/drawer/roles.ts";
 import { SwapSection } from "../drawer/SwapSection.tsx";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { sizeText } from "../panels/TopLine.tsx";
+import { useUnstableEnds } from "../worker/hooks.ts";
 import { SupplySection } from "./SupplySection.tsx";
 import { ValueField } from "./ValueField.tsx";
 
@@ -52,6 +53,7 @@ export function ProjectPanel() {
 }
 
 function range(values: readonly number[], text: (value: number) => string): string {
+  if (values.length === 0) return "–";
   const [low, high] = [text(Math.min(...values)), text(Math.max(...values))];
   return low === high ? low : `${low} to ${high}`;
 }
@@ -59,7 +61,12 @@ function range(values: readonly number[], text: (value: number) => string): stri
 function Summary() {
   const size = useEditorState((s) => sizeText(s.project));
   const figures = useEditorState((s) => s.analysis.results?.figures);
-  const peaks = [...(figures?.values() ?? [])];
+  const ends = useUnstableEnds();
+  const all = [...(figures?.values() ?? [])];
+  // What is measured where the board oscillates is no figure: the rest of the board still has its own.
+  const isVoid = (id: string): boolean => ends.some((end) => end.id === id && end.end === "boost");
+  const peaks = all.filter((f) => !isVoid(f.id));
+  const left = all.filter((f) => isVoid(f.id)).map((f) => `“${f.label}”`);
   return (
     <section className="panel-section" aria-label="Summary">
       <h3>Summary</h3>
@@ -67,7 +74,7 @@ function Summary() {
         <span className="row-label">size</span>
         <span>{size}</span>
       </div>
-      {peaks.length > 0 && (
+      {all.length > 0 && (
         <>
           <div className="row">
             <span className="row-label">boost in circuit</span>
@@ -77,6 +84,7 @@ function Summary() {
             <span className="row-label">lost in circuit</span>
             <span className="is-circuit-figure">{range(peaks.map((f) => f.interactionLoss), (v) => `${v.toFixed(1)} dB`)}</span>
           </div>
+          {left.length > 0 && <p className="hint">Without {left.join(", ")}: unstable at full boost.</p>}
         </>
       )}
     </section>

@@ -1,5 +1,5 @@
 import { Menu } from "@base-ui/react/menu";
-import { memo, useMemo } from "react";
+import { memo, useMemo, useRef } from "react";
 import { BAND_KINDS } from "../../core/blocks/index.ts";
 import { duplicateBands } from "../../core/model/edit-bands.ts";
 import { moveBlocks, setPosition } from "../../core/model/edit.ts";
@@ -11,12 +11,13 @@ import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
 import { editPartText } from "../editor/part-text.ts";
 import { Sheet } from "../sheet/Sheet.tsx";
 import type { SheetProps } from "../sheet/sheet-props.ts";
-import { useIsUnstable } from "../worker/hooks.ts";
+import { useSize } from "../sheet/use-surroundings.ts";
+import { useIsUnstable, useUnstableEnds } from "../worker/hooks.ts";
 import { UnstableBanner } from "./Stability.tsx";
 import { WiringFaults } from "./WiringFaults.tsx";
 import { MenuItems } from "./MenuBar.tsx";
 
-type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range" | "isPhaseShown" | "isVoid">;
+type Handlers = Omit<SheetProps, "project" | "board" | "results" | "selection" | "theme" | "range" | "isPhaseShown" | "isVoid" | "unstableEnds" | "topInset">;
 
 /** The sheet with what may lie over it: an invitation on an empty board, wiring faults, the context menu. */
 export function SheetArea() {
@@ -28,6 +29,9 @@ export function SheetArea() {
   const range = useEditorState((s) => s.range);
   const isPhaseShown = useUiState((s) => s.isPhaseShown);
   const isVoid = useIsUnstable();
+  const unstableEnds = useUnstableEnds();
+  const notice = useRef<HTMLDivElement>(null);
+  const topInset = useSize(notice)?.height ?? 0;
   const theme = useUiState((s) => s.theme);
   const source = useUiState((s) => s.ghost);
   const ghost = useMemo(() => (source ? ghostOf(project, source, selection, range) : null), [project, source, selection, range]);
@@ -51,7 +55,7 @@ export function SheetArea() {
       onEditValue: (id, role, text) => editPartText(editor, id, role, text),
       onContextMenu: (at) => {
         if (at.target !== null && !editor.store.getState().selection.includes(at.target)) editor.select([at.target]);
-        ui.patch({ contextMenu: { ...at, frequency: ui.store.getState().cursor?.frequency ?? null } });
+        ui.patch({ contextMenu: { ...at, frequency: ui.store.getState().cursor } });
       },
       onCursor: (cursor) => ui.patch({ cursor }),
     };
@@ -59,8 +63,10 @@ export function SheetArea() {
 
   return (
     <main className="sheet-area" aria-label="Sheet" tabIndex={-1}>
-      <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} isVoid={isVoid} {...handlers} />
-      <UnstableBanner />
+      <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} isVoid={isVoid} unstableEnds={unstableEnds} topInset={topInset} {...handlers} />
+      <div ref={notice} className="sheet-notice">
+        <UnstableBanner />
+      </div>
       {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}
       <ContextMenu />

@@ -97,7 +97,7 @@ function Banner({ but }: Required<UnstableBannerProps>) {
     <div className="unstable-banner" role="alert">
       <WarningSign />
       <p>
-        <strong>Unstable:</strong> a pole lies in the right half plane, in the loop of {loopNames(project, value?.unstable ?? [])}. The board oscillates, and no figure here means anything. {but}
+        <strong>Unstable:</strong> a pole lies in the right half plane, in the loop of {loopNames(project, value?.unstable ?? [])}. The board oscillates: no figure here means anything. {but}
       </p>
       <button type="button" className="button is-small" onClick={() => run(actionById("show-poles"), context)}>
         Show the poles

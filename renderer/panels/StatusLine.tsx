@@ -1,8 +1,10 @@
 import { Popover } from "@base-ui/react/popover";
+import { readCurve } from "../../core/geometry/reading.ts";
 import { formatDb, formatFigure } from "../../core/units.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useDrawer, useDrawerState } from "../drawer/hooks.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
+import { degreesText } from "../sheet/figure-texts.ts";
 import { StabilityStatus } from "./Stability.tsx";
 import { FaultList } from "./WiringFaults.tsx";
 
@@ -34,11 +36,14 @@ function formatFlatness(flatness: number): string {
   return flatness < 0.005 ? "0.01 dB" : `${Number(flatness.toPrecision(2))} dB`;
 }
 
+/** The response where the pointer is: read anew whenever the pointer or the board changes. */
 function CursorReading() {
-  const cursor = useUiState((s) => s.cursor);
+  const frequency = useUiState((s) => s.cursor);
+  const total = useEditorState((s) => s.analysis.results?.total);
+  const reading = frequency !== null && total ? readCurve(total, frequency) : null;
   return (
-    <span className={cursor ? "status-reading is-circuit-figure" : "status-reading"}>
-      {cursor ? `${formatFigure(cursor.frequency, "frequency")} · ${formatDb(cursor.gain, 2)} · ${formatDegrees(cursor.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
+    <span className={reading ? "status-reading is-circuit-figure" : "status-reading"} data-testid="cursor-reading">
+      {frequency !== null && reading ? `${formatFigure(frequency, "frequency")} · ${formatDb(reading.gain, 2)} · ${degreesText(reading.phase)}` : <span className="quiet">Point at the sheet to read it</span>}
     </span>
   );
 }
@@ -50,10 +55,6 @@ function DrawerReading() {
   useDrawerState((s) => s.steps);
   const label = drawer.undoLabel();
   return <span className="status-reading quiet">{label === null ? "Nothing to undo in the drawer" : `${chordText("Mod+Z", context.isMac)} in the drawer takes back: ${label}`}</span>;
-}
-
-function formatDegrees(degrees: number): string {
-  return `${degrees.toFixed(1).replace("-", "−")}°`;
 }
 
 function Warnings() {

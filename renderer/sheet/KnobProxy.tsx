@@ -21,6 +21,8 @@ interface KnobProxyProps {
   readonly width: number;
   readonly height: number;
   readonly isSelected: boolean;
+  /** What is wrong with its figures, in words; empty where nothing is. */
+  readonly caution: string;
   readonly actions: KnobActions;
 }
 
@@ -57,7 +59,7 @@ function keyedPosition(key: string, isShift: boolean, position: number): number 
 }
 
 /** The slider of a band for keyboards and screen readers: it lies over the drawn knob and shows its focus. */
-export const KnobProxy = memo(function KnobProxy({ id, label, position, now, left, top, width, height, isSelected, actions }: KnobProxyProps) {
+export const KnobProxy = memo(function KnobProxy({ id, label, position, now, left, top, width, height, isSelected, caution, actions }: KnobProxyProps) {
   const isMoving = useRef(false);
   const end = (): void => {
     if (!isMoving.current) return;
@@ -94,7 +96,7 @@ export const KnobProxy = memo(function KnobProxy({ id, label, position, now, lef
       role="slider"
       tabIndex={0}
       data-band={id}
-      aria-label={isSelected ? `${label}, selected` : label}
+      aria-label={[label, ...(isSelected ? ["selected"] : []), ...(caution === "" ? [] : [caution])].join(", ")}
       aria-orientation="vertical"
       aria-valuemin={0}
       aria-valuemax={100}

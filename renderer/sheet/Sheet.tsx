@@ -19,7 +19,7 @@ import { pannedView, revealingView, useView, zoomedView } from "./view.ts";
 
 /** The drawing sheet: the response above, the board below, on one frequency ruling. It reports gestures and decides nothing. */
 export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
-  const { project, results, selection, theme, range } = props;
+  const { project, results, selection, theme, range, isVoid = false, unstableEnds = NO_ENDS, topInset = 0 } = props;
   const element = useRef<HTMLDivElement>(null);
   const size = useSize(element);
   const ratio = usePixelRatio();
@@ -35,8 +35,8 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
   const blocks = useMemo(() => new Map(project.blocks.map((block) => [block.id, block])), [project]);
   const { from, to } = range;
   const whole = useMemo(
-    () => (size && size.width > 0 && size.height > 0 ? { project: drawn, figures, ...size, range: { from, to } } : null),
-    [drawn, figures, size, from, to],
+    () => (size && size.width > 0 && size.height > 0 ? { project: drawn, figures, ...size, topInset, range: { from, to } } : null),
+    [drawn, figures, size, topInset, from, to],
   );
   const layout = useMemo(() => (whole ? layoutSheet({ ...whole, ...view, ...(moving ? { moving } : {}) }) : null), [whole, view, moving]);
 
@@ -49,9 +49,8 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
     (frequency: number | null) => {
       overlay.setState({ cursor: frequency });
       const now = latest.current.props;
-      const shown = now.results;
-      const reading = frequency === null || !shown ? null : readCurve(shown.total, frequency);
-      now.onCursor(frequency === null || !reading ? null : { frequency, ...reading });
+      const isOnCurve = frequency !== null && now.results !== null && readCurve(now.results.total, frequency) !== null;
+      now.onCursor(isOnCurve ? frequency : null);
     },
     [overlay],
   );
@@ -154,13 +153,16 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
       {layout && areFontsReady && (
         <SheetStage
           layout={layout} drawn={drawn} blocks={blocks} results={results} selection={selection} held={held} inks={INKS[theme]} ratio={ratio}
-          isPhaseShown={props.isPhaseShown ?? false} isVoid={props.isVoid ?? false} overlay={overlay}
+          isPhaseShown={props.isPhaseShown ?? false} isVoid={isVoid} unstableEnds={unstableEnds} overlay={overlay}
         />
       )}
       {layout && (
         <>
           <div className="sheet-surface" aria-hidden="true" />
-          <SheetProxies layout={layout} blocks={blocks} results={results} selection={selection} actions={actions} overlay={overlay} onCursorAt={onCursorAt} />
+          <SheetProxies
+            layout={layout} blocks={blocks} results={results} selection={selection} isVoid={isVoid} unstableEnds={unstableEnds} actions={actions} overlay={overlay}
+            onCursorAt={onCursorAt}
+          />
         </>
       )}
       {layout && editing && editedBlock && (
@@ -179,6 +181,8 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
     </div>
   );
 }
+
+const NO_ENDS: NonNullable<SheetProps["unstableEnds"]> = [];
 
 const NUDGES: Readonly<Record<string, readonly [number, number] | undefined>> = { ArrowLeft: [-1, 0], ArrowRight: [1, 0], ArrowUp: [0, -1], ArrowDown: [0, 1] };
 

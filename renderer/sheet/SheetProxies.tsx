@@ -7,26 +7,30 @@ import { BLOCKS } from "../../core/blocks/index.ts";
 import type { Block } from "../../core/model/project.ts";
 import { formatDb, formatFigure } from "../../core/units.ts";
 import { KnobProxy, type KnobActions } from "./KnobProxy.tsx";
+import { degreesText, NO_END_VOID, voidEndsOf, voidEndsText } from "./figure-texts.ts";
 import type { OverlayStore } from "./overlay-store.ts";
-import type { SheetResults } from "./sheet-props.ts";
+import type { SheetProps, SheetResults } from "./sheet-props.ts";
 
 interface SheetProxiesProps {
   readonly layout: SheetLayout;
   readonly blocks: ReadonlyMap<string, Block>;
   readonly results: SheetResults | null;
   readonly selection: readonly string[];
+  readonly isVoid: boolean;
+  readonly unstableEnds: NonNullable<SheetProps["unstableEnds"]>;
   readonly actions: KnobActions;
   readonly overlay: OverlayStore;
   readonly onCursorAt: (frequency: number | null) => void;
 }
 
 /** What of the drawing can be reached by keyboard: the response, the blocks of the chain, every knob from left to right. */
-export function SheetProxies({ layout, blocks, results, selection, actions, overlay, onCursorAt }: SheetProxiesProps) {
+export function SheetProxies({ layout, blocks, results, selection, isVoid, unstableEnds, actions, overlay, onCursorAt }: SheetProxiesProps) {
   const { board, ruling } = layout.frame;
+  const voidEnds = useMemo(() => voidEndsOf(unstableEnds), [unstableEnds]);
   const bands = useMemo(() => layout.bands.toSorted((a, b) => a.rail - b.rail || a.x - b.x), [layout]);
   return (
     <>
-      <ResponseProxy layout={layout} results={results} overlay={overlay} onCursorAt={onCursorAt} />
+      <ResponseProxy layout={layout} results={results} isVoid={isVoid} overlay={overlay} onCursorAt={onCursorAt} />
       <div className="sheet-proxies" style={{ top: board.top }}>
         {layout.chain.map((place) => (
           <ChainProxy
@@ -43,9 +47,9 @@ export function SheetProxies({ layout, blocks, results, selection, actions, over
           const now = results?.liveGain.get(place.id);
           return (
             <KnobProxy
-              key={place.id} id={place.id} label={block.label ?? block.id} position={position} now={now === undefined ? "" : formatDb(now)}
+              key={place.id} id={place.id} label={block.label ?? block.id} position={position} now={now === undefined ? "" : isVoid ? "unstable" : formatDb(now)}
               left={place.x - place.knobHalf - 2 - ruling.left} top={knobY(place, position) - 9 - board.top} width={place.knobHalf * 2 + 4} height={18}
-              isSelected={selection.includes(place.id)} actions={actions}
+              isSelected={selection.includes(place.id)} caution={voidEndsText(voidEnds.get(place.id) ?? NO_END_VOID)} actions={actions}
             />
           );
         })}
@@ -89,12 +93,13 @@ const ChainProxy = memo(function ChainProxy({ id, label, isSelected, actions, le
 interface ResponseProxyProps {
   readonly layout: SheetLayout;
   readonly results: SheetResults | null;
+  readonly isVoid: boolean;
   readonly overlay: OverlayStore;
   readonly onCursorAt: (frequency: number | null) => void;
 }
 
 /** The response as a slider over frequency: the cursor for hands that use keys. */
-function ResponseProxy({ layout, results, overlay, onCursorAt }: ResponseProxyProps) {
+function ResponseProxy({ layout, results, isVoid, overlay, onCursorAt }: ResponseProxyProps) {
   const { response, ruling } = layout.frame;
   const cursor = useStore(overlay, (state) => state.cursor);
   if (!results) return null;
@@ -120,7 +125,7 @@ function ResponseProxy({ layout, results, overlay, onCursorAt }: ResponseProxyPr
       aria-valuemin={Math.round(first)}
       aria-valuemax={Math.round(last)}
       aria-valuenow={Math.round(at)}
-      aria-valuetext={reading ? `${formatFigure(at, "frequency")}: ${formatDb(reading.gain, 2)}, ${reading.phase.toFixed(0)}°` : formatFigure(at, "frequency")}
+      aria-valuetext={[formatFigure(at, "frequency"), ...(isVoid ? ["unstable"] : reading ? [`${formatDb(reading.gain, 2)}, ${degreesText(reading.phase, 0)}`] : [])].join(": ")}
       style={{ left: response.left, top: response.top, width: response.right - response.left, height: response.bottom - response.top }}
       onKeyDown={onKeyDown}
       onFocus={(event) => {

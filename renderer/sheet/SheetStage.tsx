@@ -5,21 +5,23 @@ import { knobY } from "../../core/geometry/band-place.ts";
 import type { ChainPlace } from "../../core/geometry/chain.ts";
 import type { SheetLayout } from "../../core/geometry/layout.ts";
 import { levelSpan, phaseSpan, type LevelSpan } from "../../core/geometry/levels.ts";
-import { showsValues } from "../../core/geometry/values.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
+import { showsValues } from "../../core/geometry/values.ts";
 import type { Block, Project } from "../../core/model/project.ts";
 import { formatDb } from "../../core/units.ts";
 import { BandScene } from "./BandScene.tsx";
+import { drawBandGround } from "./draw/band.ts";
 import { drawChainBlock, drawRails, drawReference, drawWires } from "./draw/chain.ts";
+import { drawCard, settleCard, type Card } from "./draw/card.ts";
 import { drawCurves } from "./draw/curves.ts";
-import { drawChosenValues, drawFigureCard, drawKnob } from "./draw/live.ts";
+import { drawChosenValues, drawKnob } from "./draw/live.ts";
 import { drawCursor, drawMarquee, drawTag } from "./draw/overlay.ts";
 import { drawPaper, drawScrollMark } from "./draw/paper.ts";
 import type { Pen } from "./draw/pen.ts";
-import { travelText } from "./figure-texts.ts";
+import { BOTH_ENDS_VOID, NO_END_VOID, travelText, voidEndsOf } from "./figure-texts.ts";
 import type { OverlayStore } from "./overlay-store.ts";
 import { Scene } from "./Scene.tsx";
-import type { SheetResults } from "./sheet-props.ts";
+import type { SheetProps, SheetResults } from "./sheet-props.ts";
 import type { Inks } from "./tokens.ts";
 
 interface SheetStageProps {
@@ -34,6 +36,7 @@ interface SheetStageProps {
   readonly ratio: number;
   readonly isPhaseShown: boolean;
   readonly isVoid: boolean;
+  readonly unstableEnds: NonNullable<SheetProps["unstableEnds"]>;
   readonly overlay: OverlayStore;
 }
 
@@ -42,7 +45,7 @@ interface SheetStageProps {
  * A knob that moves redraws the third alone.
  */
 export function SheetStage(props: SheetStageProps) {
-  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, isVoid, overlay } = props;
+  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, isVoid, unstableEnds, overlay } = props;
   const { frame } = layout;
   const figures = results?.figures;
   const { levels, phase } = useSpans(results, isPhaseShown);
@@ -68,17 +71,36 @@ export function SheetStage(props: SheetStageProps) {
     [frame, layout, hasFigures, drawn.supply],
   );
   const selected = useMemo(() => new Set(selection), [selection]);
+  const grounds = useCallback(
+    (pen: Pen) => {
+      const { board, ruling } = frame;
+      pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
+        for (const place of layout.bands) if (selected.has(place.id)) drawBandGround(pen, place);
+      });
+    },
+    [frame, layout, selected],
+  );
   const drawnBlocks = useMemo(() => new Map(drawn.blocks.map((block) => [block.id, block])), [drawn]);
   const ordered = useMemo(() => layout.bands.toSorted((a, b) => Number(selected.has(a.id)) - Number(selected.has(b.id))), [layout, selected]);
+  const voidEnds = useMemo(() => voidEndsOf(unstableEnds), [unstableEnds]);
+  const chosen = selection.length === 1 ? layout.bands.find((b) => b.id === selection[0]) : undefined;
+  const chosenFigures = chosen && figures?.get(chosen.id);
+  const chosenVoids = isVoid ? BOTH_ENDS_VOID : ((chosen && voidEnds.get(chosen.id)) ?? NO_END_VOID);
+  const chosenDrawn = chosen && drawnBlocks.get(chosen.id);
+  /** Where the card goes is settled by the first frame that draws it, since only a canvas knows how wide letters are. */
+  const card = useMemo((): { settled: Card | null; settle: (pen: Pen) => Card } | null => {
+    if (!chosen || !chosenFigures || !chosenDrawn || chosen.detail === "full") return null;
+    return { settled: null, settle: (pen) => settleCard(pen, layout, chosen, chosenDrawn, chosenFigures, chosenVoids) };
+  }, [layout, chosen, chosenDrawn, chosenFigures, chosenVoids]);
 
   const live = useCallback(
     (pen: Pen) => {
-      const chosen = selection.length === 1 ? layout.bands.find((b) => b.id === selection[0]) : undefined;
+      const aloneEnd = ((chosen && blocks.get(chosen.id)?.slider?.position) ?? 0.5) < 0.5 ? "cut" : "boost";
       drawCurves(pen, {
         response: frame.response, ruling: frame.ruling, levels, phase,
         total: results?.total ?? null, alone: results?.alone ?? null,
         aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "",
-        aloneFigures: chosen ? (results?.figures.get(chosen.id) ?? null) : null, ghost: results?.ghost ?? null, isVoid,
+        aloneFigures: chosen ? (results?.figures.get(chosen.id) ?? null) : null, aloneEnd, ghost: results?.ghost ?? null, isVoid, isAloneVoid: chosenVoids[aloneEnd],
       });
       const { ruling, board } = frame;
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
@@ -88,8 +110,9 @@ export function SheetStage(props: SheetStageProps) {
         }
         const itself = chosen && blocks.get(chosen.id);
         if (chosen && itself && !chosen.hasValues && showsValues(chosen, true)) drawChosenValues(pen, chosen, itself);
-        const its = chosen && figures?.get(chosen.id);
-        if (chosen && its && chosen.detail !== "full") drawFigureCard(pen, chosen, its, results?.liveGain.get(chosen.id), { ...board, left: ruling.left, right: ruling.right }, isVoid);
+      });
+      pen.clipped(ruling.left, board.top, frame.width, board.bottom, () => {
+        if (card && chosen) drawCard(pen, (card.settled ??= card.settle(pen)), results?.liveGain.get(chosen.id), isVoid);
         const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
         if (grip) {
           const position = blocks.get(grip.id)?.slider?.position ?? 0.5;
@@ -98,7 +121,7 @@ export function SheetStage(props: SheetStageProps) {
         }
       });
     },
-    [layout, frame, levels, phase, results, figures, blocks, selection, selected, held, isVoid],
+    [layout, frame, levels, phase, results, blocks, selected, chosen, chosenVoids, card, held, isVoid],
   );
 
   return (
@@ -110,11 +133,13 @@ export function SheetStage(props: SheetStageProps) {
         {layout.chain.map((place) => (
           <ChainScene key={place.id} inks={inks} ratio={ratio} layout={layout} place={place} isSelected={selected.has(place.id)} />
         ))}
+        <Scene inks={inks} ratio={ratio} draw={grounds} />
         <Scene inks={inks} ratio={ratio} draw={rails} />
         {ordered.map((place) => (
           <BandScene
             key={place.id} inks={inks} ratio={ratio} frame={frame} place={place} block={drawnBlocks.get(place.id)!}
-            figures={figures?.get(place.id)} isSelected={selected.has(place.id)} isVoid={isVoid}
+            figures={figures?.get(place.id)} isSelected={selected.has(place.id)}
+            voids={isVoid ? BOTH_ENDS_VOID : (voidEnds.get(place.id) ?? NO_END_VOID)} isMarked={voidEnds.has(place.id)}
           />
         ))}
       </Layer>

@@ -1,4 +1,5 @@
 import type { BandFigures } from "../../core/analysis/bands.ts";
+import type { UnstableEnd } from "../../core/analysis/unstable-ends.ts";
 import type { Project, SheetPoint } from "../../core/model/project.ts";
 import type { Board } from "../../core/net/board.ts";
 
@@ -45,6 +46,10 @@ export interface SheetProps {
   readonly isPhaseShown?: boolean;
   /** The board oscillates: its figures are drawn struck, its curves faded. */
   readonly isVoid?: boolean;
+  /** Slider ends at which the board would oscillate: the figures taken there are struck and their bands marked. */
+  readonly unstableEnds?: readonly UnstableEnd[];
+  /** Pixels at the top that something else lies over: the response begins below it, and the board stays where it is. */
+  readonly topInset?: number;
   onSelect(ids: readonly string[], mode: "replace" | "toggle" | "add"): void;
   onKnobStart(id: string): void;
   onKnobMove(id: string, position: number): void;
@@ -57,7 +62,8 @@ export interface SheetProps {
   /** Returns what is wrong with the text, or null when it was taken. */
   onEditValue(id: string, role: string, text: string): string | null;
   onContextMenu(at: { readonly clientX: number; readonly clientY: number; readonly target: string | null }): void;
-  onCursor(reading: { readonly frequency: number; readonly gain: number; readonly phase: number } | null): void;
+  /** Where the cursor stands, Hz; null where the response has no such frequency. What it reads there changes with the board. */
+  onCursor(frequency: number | null): void;
 }
 
 /** What the shell may ask of the sheet. */

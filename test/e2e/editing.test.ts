@@ -109,6 +109,41 @@ describe("sliders", () => {
   });
 });
 
+describe("the read-out of the pointer", () => {
+  test("follows the board in the same frame while the pointer rests: by keys, by undo, by a value", async () => {
+    const { page } = session;
+    const readOut = page.getByTestId("cursor-reading");
+    const box = (await page.locator("[data-response]").boundingBox())!;
+    await page.mouse.move(box.x + box.width * 0.62, box.y + 40);
+    const first = await readOut.innerText();
+    expect(first).toMatch(/^[\d.]+ k?Hz · [+−]?\d+\.\d\d dB · −?\d+\.\d°$/);
+    const [hertz] = first.split(" · ");
+    /** What stands there when the next frame is about to be painted. */
+    const afterKey = (key: string): Promise<string> => page.evaluate(
+      (pressed) => new Promise<string>((resolve) => {
+        document.activeElement!.dispatchEvent(new KeyboardEvent("keydown", { key: pressed, bubbles: true, cancelable: true }));
+        document.activeElement!.dispatchEvent(new KeyboardEvent("keyup", { key: pressed, bubbles: true }));
+        requestAnimationFrame(() => resolve(document.querySelector("[data-testid=cursor-reading]")!.textContent));
+      }),
+      key,
+    );
+    /** The same place as the response itself tells it, whole degrees. */
+    const told = async (): Promise<string> => (await page.locator("[data-response]").getAttribute("aria-valuetext"))!;
+    await session.sheet.knob("b1k").focus();
+    const boosted = await afterKey("End");
+    expect(boosted).not.toBe(first);
+    expect(boosted.startsWith(`${hertz} · `)).toBe(true);
+    expect(await told()).toContain(boosted.split(" · ")[1]);
+    await session.keyboard.undo();
+    expect(await readOut.innerText()).toBe(first);
+    await session.sheet.pick("b1k");
+    await session.panel.set("series R", "100");
+    const retuned = await readOut.innerText();
+    expect(await told()).toContain(retuned.split(" · ")[1]);
+    expect(retuned).not.toBe(first);
+  });
+});
+
 describe("values", () => {
   test("edited in the panel: trade notation, arithmetic, preferred values, a message under the field", async () => {
     await session.sheet.pick("b1k");

@@ -216,6 +216,20 @@ describe("an unstable board", () => {
     await expect.poll(() => stability().innerText()).toBe(`unstable: the loop of “${name}”`);
     const banner = session.page.getByRole("main", { name: "Sheet" }).getByRole("alert");
     expect(await banner.innerText()).toContain("no figure here means anything");
+    // The banner lies over nothing: the response, its labels half a line higher included, begins below it.
+    const place = async (locator: Locator): Promise<{ top: number; bottom: number }> => {
+      const box = (await locator.boundingBox())!;
+      return { top: box.y, bottom: box.y + box.height };
+    };
+    const response = session.page.locator("[data-response]");
+    await expect.poll(async () => (await place(response)).top).toBeGreaterThan((await place(banner)).bottom + 8);
+    const [unstable, input] = [await place(response), await place(session.page.locator("[data-block=in]"))];
+    // Nor does it push anything aside that hands may hold.
+    const settled = async (): Promise<void> => {
+      expect((await place(response)).bottom).toBe(unstable.bottom);
+      expect(await place(session.page.locator("[data-block=in]"))).toEqual(input);
+    };
+    expect(await session.sheet.knob("hi").getAttribute("aria-valuetext")).toBe("unstable, 100 % of travel");
     const struck = (locator: Locator): Promise<string> => locator.evaluate((element) => getComputedStyle(element).textDecorationLine);
     expect(await struck(session.page.getByTestId("flatness"))).toBe("line-through");
     await session.sheet.pick("hi");
@@ -229,6 +243,11 @@ describe("an unstable board", () => {
     // At peace as it stands, but the figures at full boost are of a board that oscillates.
     await expect.poll(() => stability().innerText()).toBe("unstable with “Treble” at full boost");
     expect(await area().getByRole("alert").count()).toBe(0);
+    await session.keyboard.press("Alt+Shift+B");
+    await expect.poll(async () => (await place(response)).top).toBeLessThan(unstable.top - 20);
+    await settled();
+    // The band itself carries the mark on the sheet.
+    expect(await session.sheet.knob("hi").getAttribute("aria-label")).toBe("Treble, selected, unstable at full boost");
     expect(await struck(session.page.getByTestId("flatness"))).toBe("none");
     expect(await struck(session.page.locator("[data-figure=plateau] td").first())).toBe("line-through");
     expect(await struck(session.page.locator("[data-figure=plateau] td").last())).toBe("none");

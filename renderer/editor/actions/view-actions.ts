@@ -9,7 +9,7 @@ const PAN_STEP = 80;
 /** The frequency that the hands are at: under the open menu, else the cursor's, Hz. */
 function frequencyHere(c: ActionContext): number | null {
   const { contextMenu, cursor } = c.ui.store.getState();
-  return contextMenu?.frequency ?? cursor?.frequency ?? null;
+  return contextMenu?.frequency ?? cursor;
 }
 
 function isBoardShown(c: ActionContext): boolean {

@@ -3,25 +3,35 @@ import { BLOCKS } from "../../../core/blocks/index.ts";
 import type { BandPlace } from "../../../core/geometry/band-place.ts";
 import { bandValues } from "../../../core/geometry/values.ts";
 import { partsOf, type Block } from "../../../core/model/project.ts";
-import { bandFigureTexts, fittedLabel } from "../figure-texts.ts";
+import { bandFigureTexts, fittedLabel, peakForms, type VoidEnds } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
+import { SIGN_WIDTH, type Pen } from "./pen.ts";
+import { drawRuns, widthOfRuns } from "./runs.ts";
 import { drawDrawing, drawValues, lineOf } from "./symbols.ts";
-import type { Pen } from "./pen.ts";
+
+export interface BandState {
+  readonly isSelected: boolean;
+  /** Ends at which the figures mean nothing: they are struck. */
+  readonly voids: VoidEnds;
+  /** The band itself is marked: the board oscillates with this slider at an end, as it may not as it stands. */
+  readonly isMarked: boolean;
+}
 
 /** All of a band that stays while its slider moves: leader, track, leg, values and figures, struck where they are void. */
-export function drawBand(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean, isVoid: boolean): void {
-  const { inks } = pen;
-  if (isSelected) {
-    const { box } = place;
-    pen.box((box.left + box.right) / 2, (box.top + box.bottom) / 2, box.right - box.left, box.bottom - box.top, { fill: inks.accentWash, stroke: inks.accent, lineWidth: 1.4, radius: 8 });
-  }
+export function drawBand(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, state: BandState): void {
+  const { isSelected } = state;
   drawLeader(pen, place, isSelected);
   drawTrack(pen, place);
   const parts = partsOf(block);
   const { drawing } = BLOCKS[block.kind];
   drawDrawing(pen, drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, (role) => parts[role] !== undefined);
   if (place.hasValues) drawValues(pen, bandValues(place, block));
-  drawFigures(pen, place, block, figures, isSelected, isVoid);
+  drawFigures(pen, place, block, figures, state);
+}
+
+/** The ground of a selected band: under every band, since labels of neighbours may reach into it. */
+export function drawBandGround(pen: Pen, { box }: BandPlace): void {
+  pen.box((box.left + box.right) / 2, (box.top + box.bottom) / 2, box.right - box.left, box.bottom - box.top, { fill: pen.inks.accentWash, stroke: pen.inks.accent, lineWidth: 1.4, radius: 8 });
 }
 
 /** A dotted line from the ruling at the band's own frequency to where the band had room. */
@@ -55,26 +65,31 @@ function drawTrack(pen: Pen, place: BandPlace): void {
   }
 }
 
-function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, isSelected: boolean, isVoid: boolean): void {
+function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigures | undefined, { isSelected, voids, isMarked }: BandState): void {
   const { inks } = pen;
   const isSlim = place.detail === "slim";
   const size = place.detail === "full" ? 12.5 : isSlim ? 10.5 : 11.5;
+  const sign = isMarked ? SIGN_WIDTH : 0;
   // Slim labels share two lines, so each may be nearly two slots wide.
-  const room = isSlim ? place.slot * 1.8 : place.slot - 4;
+  const room = (isSlim ? place.slot * 1.8 : place.slot - 4) - sign;
   const over = isSelected ? {} : { halo: inks.paper };
   const label = fittedLabel(block.label ?? block.id, (text) => pen.widthOf(text, size, true) <= room);
-  pen.text(label, place.x, figureLine(place, place.isStaggered ? "staggered" : "label"), { size, isBold: true, align: "center", color: isSelected ? inks.accent : inks.ink, ...over });
+  const labelY = figureLine(place, place.isStaggered ? "staggered" : "label");
+  pen.text(label, place.x + sign / 2, labelY, { size, isBold: true, align: "center", color: isSelected ? inks.accent : inks.ink, ...over });
+  if (isMarked) pen.warningSign(place.x - pen.widthOf(label, size, true) / 2 - 2, labelY);
   if (!figures) return;
   const texts = bandFigureTexts(figures);
-  const style = { align: "center", isStruck: isVoid, ...over } as const;
+  const write = (text: string, line: Parameters<typeof figureLine>[1], textSize: number, color: string, isStruck: boolean): void =>
+    pen.text(text, place.x, figureLine(place, line), { align: "center", size: textSize, color: isStruck ? inks.inkSoft : color, isStruck, ...over });
   if (place.detail === "full") {
-    pen.text(texts.boost, place.x, figureLine(place, "peak"), { ...style, size: 11.5, color: isVoid ? inks.inkSoft : inks.boostText });
-    pen.text(texts.cut, place.x, figureLine(place, "cut"), { ...style, size: 11.5, color: isVoid ? inks.inkSoft : inks.cutText });
-    pen.text(texts.centre, place.x, figureLine(place, "centre"), { ...style, color: inks.inkSoft });
-    pen.text(texts.quality, place.x, figureLine(place, "quality"), { ...style, color: inks.inkSoft });
+    write(texts.boost, "peak", 11.5, inks.boostText, voids.boost);
+    write(texts.cut, "cut", 11.5, inks.cutText, voids.cut);
+    write(texts.centre, "centre", 11, inks.inkSoft, voids.boost);
+    write(texts.quality, "quality", 11, inks.inkSoft, voids.boost);
   } else {
     const small = isSlim ? 10 : 11;
-    const short = [texts.barePeak, texts.shortPeak].find((text) => pen.widthOf(text, small) <= place.slot - 2) ?? texts.shortPeak.slice(1);
-    pen.text(short, place.x, figureLine(place, "peak"), { ...style, size: small, color: isVoid ? inks.inkSoft : inks.ink });
+    const forms = peakForms(texts, voids);
+    const runs = forms.find((form) => widthOfRuns(pen, form, small) <= place.slot - 2) ?? forms.at(-1)!;
+    drawRuns(pen, runs, place.x, figureLine(place, "peak"), { size: small, ...over });
   }
 }

@@ -15,6 +15,8 @@ export interface CurveScene {
   readonly phase: LevelSpan | null;
   readonly total: Curve | null;
   readonly alone: Curve | null;
+  /** The end of its slider at which it is shown. */
+  readonly aloneEnd: "boost" | "cut";
   /** Name of the band that is shown alone. */
   readonly aloneLabel: string;
   /** Its figures, from which the name's numbers come: the curve's own points are only as fine as the screen. */
@@ -22,16 +24,25 @@ export interface CurveScene {
   readonly ghost?: Ghost | null;
   /** The board oscillates: the curves are faded, their figures struck. */
   readonly isVoid: boolean;
+  /** It does at the end at which the band is shown alone. */
+  readonly isAloneVoid: boolean;
 }
+
+/** Curves that mean nothing are this faint. */
+const VOID_ALPHA = 0.45;
 
 /** The response: what the sliders do together in ink, the selected band alone dashed and named. */
 export function drawCurves(pen: Pen, scene: CurveScene): void {
   const { response, total, alone, ghost, inks, phase } = { ...scene, inks: pen.inks };
   pen.clipped(response.left, response.top, response.right, response.bottom, () => {
-    if (scene.isVoid) pen.ctx.globalAlpha = 0.45;
+    if (scene.isVoid) pen.ctx.globalAlpha = VOID_ALPHA;
     if (total) fillBetween(pen, scene, total);
     if (phase && total) stroke(pen, scene, total.frequency, total.phase, phase, inks.accent, 1.2, [2, 3]);
-    if (alone) stroke(pen, scene, alone.frequency, alone.gain, scene.levels, isBoost(alone) ? inks.boost : inks.cut, 1.6, [6, 4]);
+    if (alone) {
+      pen.ctx.globalAlpha = scene.isVoid || scene.isAloneVoid ? VOID_ALPHA : 1;
+      stroke(pen, scene, alone.frequency, alone.gain, scene.levels, inks[scene.aloneEnd], 1.6, [6, 4]);
+      pen.ctx.globalAlpha = scene.isVoid ? VOID_ALPHA : 1;
+    }
     if (total) stroke(pen, scene, total.frequency, total.gain, scene.levels, inks.ink, 2.2);
     // Dots over the lines, so that what stays the same shows as much as what moves.
     if (ghost) for (const curve of [ghost.total, ...(ghost.alone ? [ghost.alone] : [])]) stroke(pen, scene, curve.frequency, curve.gain, scene.levels, inks.accent, 2.4, [0.1, 5]);
@@ -40,8 +51,11 @@ export function drawCurves(pen: Pen, scene: CurveScene): void {
   if (ghost) nameGhost(pen, scene, ghost);
 }
 
-function isBoost(curve: Curve): boolean {
-  return curve.gain[extremeIndex(curve.gain)] >= 0;
+/** Index of the highest point at full boost, of the lowest at full cut. */
+function peakIndex({ gain }: Curve, isUp: boolean): number {
+  let best = 0;
+  for (let i = 1; i < gain.length; i++) if (isUp ? gain[i] > gain[best] : gain[i] < gain[best]) best = i;
+  return best;
 }
 
 /** Pixels from one point of a curve to the next: less cannot be seen and costs time. */
@@ -94,7 +108,6 @@ function fillBetween(pen: Pen, scene: CurveScene, curve: Curve): void {
   }
 }
 
-/** What the dashed curve is, beside its peak. */
 /** `: +11.0 dB, 2.03 kHz` of a peak, `: plateau +13.9 dB` of a shelf or level. */
 function aloneNumbers(figures: BandFigures | null, isUp: boolean): string {
   if (!figures) return "";
@@ -103,12 +116,13 @@ function aloneNumbers(figures: BandFigures | null, isUp: boolean): string {
   return `: ${formatDb(peak)}${frequency === null ? "" : `, ${formatFigure(frequency, "frequency")}`}`;
 }
 
+/** What the dashed curve is, beside its peak. */
 function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
   const { response, ruling, levels, total } = scene;
-  const peak = extremeIndex(alone.gain);
+  const isUp = scene.aloneEnd === "boost";
+  const peak = peakIndex(alone, isUp);
   const at = { x: pixelOf(ruling, alone.frequency[peak]), y: levelY(levels, response.top, response.bottom - response.top, alone.gain[peak]) };
   if (at.x < response.left || at.x > response.right) return;
-  const isUp = isBoost(alone);
   const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}${aloneNumbers(scene.aloneFigures, isUp)}`;
   const width = pen.widthOf(text);
   // Beside the peak, a little further out than the curve goes, on the side that has the room.
@@ -121,7 +135,8 @@ function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
     return y !== null && Math.abs(y - beside) < 11;
   });
   const y = isCrossed ? (isUp ? response.top + 9 : response.bottom - 9) : beside;
-  pen.text(text, x, y, { color: scene.isVoid ? pen.inks.inkSoft : isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper, isStruck: scene.isVoid });
+  const isStruck = scene.isVoid || scene.isAloneVoid;
+  pen.text(text, x, y, { color: isStruck ? pen.inks.inkSoft : isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper, isStruck });
 }
 
 /** What the dotted curves are, where they depart most, on the side away from the line they depart from. */

@@ -1,11 +1,8 @@
 /** What moves while a slider is dragged. */
-import type { BandFigures } from "../../../core/analysis/bands.ts";
 import { knobY, type BandPlace } from "../../../core/geometry/band-place.ts";
-import { clamp, type Box } from "../../../core/geometry/units.ts";
 import { formatDb } from "../../../core/units.ts";
 import { bandValues } from "../../../core/geometry/values.ts";
 import type { Block } from "../../../core/model/project.ts";
-import { bandFigureTexts } from "../figure-texts.ts";
 import { figureLine } from "./figure-line.ts";
 import { lineOf } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
@@ -70,19 +67,6 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
 function nowColor(pen: Pen, now: number): string {
   if (Math.abs(now) < 0.05) return pen.inks.inkSoft;
   return now > 0 ? pen.inks.boostText : pen.inks.cutText;
-}
-
-/** The figures of the selected band in full, over its neighbours, where its slot has no room for them. */
-export function drawFigureCard(pen: Pen, place: BandPlace, figures: BandFigures, now: number | undefined, within: Box, isVoid: boolean): void {
-  const { inks } = pen;
-  const texts = bandFigureTexts(figures);
-  const lines = [figures.label, `${texts.boost.replace(" dB", "")}  ${texts.cut}`, `${texts.centre} · ${texts.quality}`, ...(now === undefined ? [] : [`now ${formatDb(now)}`])];
-  const width = Math.max(...lines.map((text, i) => pen.widthOf(text, i === 0 ? 12 : 11, i === 0))) + 20;
-  const height = lines.length * 15 + 10;
-  const x = clamp(place.x, within.left + width / 2, within.right - width / 2);
-  const top = Math.min(place.figuresTop - 3, within.bottom - height - 4);
-  pen.box(x, top + height / 2, width, height, { fill: inks.card, stroke: inks.accent, lineWidth: 1.4, radius: 6 });
-  lines.forEach((text, i) => pen.text(text, x, top + 5 + i * 15 + 7.5, { align: "center", isBold: i === 0, size: i === 0 ? 12 : 11, color: i === 0 ? inks.accent : isVoid ? inks.inkSoft : inks.ink, isStruck: isVoid && i > 0 }));
 }
 
 /** The values of the selected band, over its neighbours, where its slot has no room for them. */

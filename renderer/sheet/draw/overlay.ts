@@ -4,6 +4,7 @@ import { pixelOf } from "../../../core/geometry/ruling.ts";
 import type { Frame } from "../../../core/geometry/frame.ts";
 import { tagPlace, type Box } from "../../../core/geometry/units.ts";
 import { formatDb, formatFigure } from "../../../core/units.ts";
+import { degreesText } from "../figure-texts.ts";
 import { faint, type Pen } from "./pen.ts";
 
 export interface CursorReading {
@@ -26,7 +27,7 @@ export function drawCursor(pen: Pen, frame: Frame, levels: LevelSpan, reading: C
     pen.dot(x, y, 4.5, inks.paper);
     pen.dot(x, y, 3, inks.accent);
   }
-  const parts = [formatFigure(reading.frequency, "frequency"), formatDb(reading.gain, 2), `${reading.phase < 0 ? "−" : ""}${Math.abs(reading.phase).toFixed(1)}°`];
+  const parts = [formatFigure(reading.frequency, "frequency"), formatDb(reading.gain, 2), degreesText(reading.phase)];
   drawTag(pen, parts.join("   "), { x, y: onCurve }, { ...response, left: response.left + 2, right: response.right - 2 });
 }
 

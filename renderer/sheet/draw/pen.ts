@@ -11,6 +11,9 @@ export interface TextOpts {
   readonly isStruck?: boolean;
 }
 
+/** Width of the warning sign, with the space that it keeps to what follows, px. */
+export const SIGN_WIDTH = 13;
+
 /** A canvas with the habits of this sheet: crisp lines at any pixel ratio, text set from its middle. */
 export class Pen {
   readonly ctx: CanvasRenderingContext2D;
@@ -78,6 +81,27 @@ export class Pen {
     this.ctx.beginPath();
     this.ctx.arc(this.snap(x, 1), this.snap(y, 1), radius, 0, 2 * Math.PI);
     this.ctx.fill();
+  }
+
+  /** A triangle with a mark of exclamation, its middle at a place. */
+  warningSign(x: number, y: number): void {
+    const { ctx, inks } = this;
+    ctx.beginPath();
+    ctx.moveTo(x, y - 4.6);
+    ctx.lineTo(x + 5, y + 4);
+    ctx.lineTo(x - 5, y + 4);
+    ctx.closePath();
+    ctx.fillStyle = inks.paper;
+    ctx.fill();
+    ctx.strokeStyle = inks.warning;
+    ctx.lineWidth = this.width(1.3);
+    ctx.stroke();
+    ctx.beginPath();
+    ctx.moveTo(x, y - 1.6);
+    ctx.lineTo(x, y + 1);
+    ctx.moveTo(x, y + 2.4);
+    ctx.lineTo(x, y + 2.5);
+    ctx.stroke();
   }
 
   text(text: string, x: number, y: number, opts: TextOpts = {}): void {

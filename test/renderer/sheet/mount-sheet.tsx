@@ -55,7 +55,7 @@ export async function mountSheet(start: Project, extra: Partial<SheetProps> = {}
         onMove={(moves) => { log.push(["place", moves]); for (const { id, at } of moves) change(id, (b) => ({ ...b, at })); }}
         onEditValue={(id, role, text) => { log.push(["edit", id, role, text]); return text === "bad" ? "not understood" : null; }}
         onContextMenu={(at) => { log.push(["menu", at.target]); }}
-        onCursor={(reading) => { log.push(["cursor", reading]); }}
+        onCursor={(frequency) => { log.push(["cursor", frequency]); }}
         {...extra}
       />
     );

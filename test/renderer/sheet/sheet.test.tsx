@@ -1,8 +1,9 @@
 // @vitest-environment jsdom
 import { act } from "react";
 import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
-import { boardOf, gyratorAt } from "../../helpers/sheet-boards.ts";
+import { boardOf, gyratorAt, THIRD_OCTAVES } from "../../helpers/sheet-boards.ts";
 import { Pen } from "../../../renderer/sheet/draw/pen.ts";
+import { INKS } from "../../../renderer/sheet/tokens.ts";
 import { mountSheet, stubSurroundings, type Mounted } from "./mount-sheet.tsx";
 
 const FREQUENCIES = [4000, 63, 250, 1000];
@@ -177,11 +178,11 @@ describe("the sheet", () => {
   test("the response has a cursor for keys and for the pointer", async () => {
     const response = sheet.page.querySelector<HTMLElement>("[data-response]")!;
     await press(response, "ArrowRight");
-    expect(response.getAttribute("aria-valuetext")).toMatch(/^1\.03 kHz: [+−]?\d+\.\d\d dB, -?\d+°$/);
+    expect(response.getAttribute("aria-valuetext")).toMatch(/^1\.03 kHz: [+−]?\d+\.\d\d dB, −?\d+°$/);
     const at = sheet.handle.screenPlaceOf("b250", "knob")!;
     await point("pointermove", { x: at.x, y: 100 });
-    const [, reading] = sheet.log.findLast(([name]) => name === "cursor")! as [string, { frequency: number }];
-    expect(reading.frequency / 250).toBeCloseTo(1, 0);
+    const [, frequency] = sheet.log.findLast(([name]) => name === "cursor")! as [string, number];
+    expect(frequency / 250).toBeCloseTo(1, 0);
   });
 
   test("zooming brings a band nearer, fitting brings all of them back", async () => {
@@ -209,6 +210,64 @@ describe("the sheet", () => {
     expect(struck()).toEqual(expect.arrayContaining([expect.stringMatching(/^▲ \+[\d.]+ dB$/), expect.stringMatching(/^▼ −[\d.]+ dB$/), expect.stringMatching(/^Q /), expect.stringMatching(/^[+−]?[\d.]+ dB$/)]));
     expect(struck()).not.toContain("470R");
     expect(struck()).not.toContain("1 kHz");
+  });
+
+  test("a band that oscillates at one end only has that end's figures struck and its name marked, wherever they are written", async () => {
+    const written = vi.spyOn(Pen.prototype, "text");
+    const marked = vi.spyOn(Pen.prototype, "warningSign");
+    const struck = (): readonly string[] => written.mock.calls.filter(([, , , opts]) => opts?.isStruck === true).map(([text]) => text);
+    const drawn = (): Promise<void> => act(async () => new Promise((resolve) => { setTimeout(resolve, 50); }));
+    const other = await mountSheet(boardOf([gyratorAt(250), gyratorAt(1000)]), { unstableEnds: [{ id: "b1000", end: "boost" }] });
+    await drawn();
+    expect([...new Set(struck())]).toEqual([expect.stringMatching(/^▲ /), expect.stringMatching(/kHz$/), expect.stringMatching(/^Q /)]);
+    expect(new Set(marked.mock.calls.map(String)).size).toBe(1);
+    const named = (id: string): string => other.page.querySelector(`[data-band="${id}"]`)!.getAttribute("aria-label")!;
+    expect([named("b250"), named("b1000")]).toEqual(["250 Hz", "1 kHz, unstable at full boost"]);
+    // The curve of the band alone is that end's too, and so is what stands beside it.
+    written.mockClear();
+    await press(other.page.querySelector<HTMLElement>('[data-band="b1000"]')!, "Enter");
+    await drawn();
+    expect(struck()).toContainEqual(expect.stringMatching(/^1 kHz alone, full boost/));
+    await press(other.page.querySelector<HTMLElement>('[data-band="b1000"]')!, "Home");
+    written.mockClear();
+    await press(other.page.querySelector<HTMLElement>('[data-band="b1000"]')!, "PageUp");
+    await drawn();
+    expect(written.mock.calls.find(([text]) => /alone, full cut/.test(text))![3]!.isStruck).toBe(false);
+    await other.unmount();
+  });
+
+  test("on a crowded bus too, and on the card of the selected band, which lies over nobody's figures", async () => {
+    const bands = THIRD_OCTAVES.map((f) => gyratorAt(f, `b${f}`.replace(".", "_")));
+    const other = await mountSheet(boardOf(bands), { unstableEnds: [{ id: "b1000", end: "cut" }] });
+    const drawn = (): Promise<void> => act(async () => new Promise((resolve) => { setTimeout(resolve, 50); }));
+    await drawn();
+    const written = vi.spyOn(Pen.prototype, "text");
+    const marked = vi.spyOn(Pen.prototype, "warningSign");
+    const boxed = vi.spyOn(Pen.prototype, "box");
+    await press(other.page.querySelector<HTMLElement>('[data-band="b1000"]')!, "Enter");
+    await drawn();
+    const struck = written.mock.calls.filter(([, , , opts]) => opts?.isStruck === true).map(([text]) => text);
+    expect([...new Set(struck)]).toEqual([expect.stringMatching(/^▼ −[\d.]+ dB$/)]);
+    // Under the band, and on its card.
+    expect(new Set(marked.mock.calls.map(String)).size).toBe(2);
+    const [x, y, width, height] = boxed.mock.calls.findLast(([, , , , opts]) => opts.stroke === INKS.paper.accent)!;
+    const inside = written.mock.calls.filter(([, tx, ty]) => Math.abs(tx - x) < width / 2 && Math.abs(ty - y) < height / 2).map(([text]) => text);
+    expect(inside.join(" ")).toMatch(/1 kHz.*▲.*▼.*Q /);
+    // Nothing but its own lines: every other band's label and figures stay in sight.
+    expect(inside.filter((text) => /^\d/.test(text) && text !== "1 kHz")).toEqual([]);
+    await other.unmount();
+  });
+
+  test("what lies over its top takes room from the response alone", async () => {
+    const place = (page: HTMLElement, selector: string): { top: number; bottom: number } => {
+      const { style } = page.querySelector<HTMLElement>(selector)!;
+      return { top: parseFloat(style.top), bottom: parseFloat(style.top) + parseFloat(style.height) };
+    };
+    const [response, knobPlace] = [place(sheet.page, "[data-response]"), sheet.handle.screenPlaceOf("b1000", "knob")];
+    const other = await mountSheet(boardOf(FREQUENCIES.map((f) => gyratorAt(f))), { topInset: 46 });
+    expect(place(other.page, "[data-response]")).toEqual({ top: response.top + 46, bottom: response.bottom });
+    expect(other.handle.screenPlaceOf("b1000", "knob")).toEqual(knobPlace);
+    await other.unmount();
   });
 
   test("wiring faults leave the blocks on the sheet", async () => {
