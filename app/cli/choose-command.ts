@@ -1,38 +1,44 @@
-import { stat } from "node:fs/promises";
+import { readFile, stat } from "node:fs/promises";
 import { resolve } from "node:path";
-import type { Command } from "commander";
-import type { Candidate, Money } from "../../core/drawer/candidates.ts";
-import type { StockedLine } from "../../core/drawer/stock.ts";
+import { buildReference } from "../../core/drawer/bill.ts";
+import type { Candidate } from "../../core/drawer/candidates.ts";
+import { QUANTITY_OF } from "../../core/drawer/check-line.ts";
+import { RATING_CAUTION, needsRatingCaution, type Problem } from "../../core/drawer/stress.ts";
+import { freeForBuild, type Money, type StockedLine } from "../../core/drawer/stock.ts";
 import { formatValue, parseValue } from "../../core/units.ts";
+import { PROJECT_FORMAT, type Project } from "../../core/model/project.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { serializeProject } from "../../core/model/serialize.ts";
-import type { Project } from "../../core/model/project.ts";
-import { ownDrawerPath } from "../services/drawer-path.ts";
+import { MAX_PROJECT_BYTES } from "../services/projects.ts";
 import { writeFailure } from "../services/system-error.ts";
 import { writeWhole } from "../services/write-whole.ts";
 import type { DrawerStore } from "../store/drawer-store.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
-import { withDrawer as withOpenDrawer } from "./stock-drawer.ts";
 
-/** What the commands that choose parts have in common: which drawer, and JSON. */
-export interface ChooseOpts {
-  readonly drawer?: string;
-  readonly json?: true;
+/** Every line in use, as a build of this project sees it: what the project holds itself is there for it. */
+export function linesFor(store: DrawerStore, project: Project): readonly StockedLine[] {
+  return freeForBuild(store.allLines(), store.heldBy(buildReference(project)));
 }
 
-/** Adds the options that every command on the drawer takes. */
-export function withDrawerOptions(command: Command): Command {
-  return command.option("--drawer <PATH>", "drawer file; your own where not given").option("--json", "as JSON");
+/** What is said of every `-o`. */
+export const OUTPUT_HELP = "where to write the board. A project that is there, FILE itself too, is replaced; any other file is left alone";
+
+/** Looks at what a board would be written over, before any work is done. @throws CommandFailure where that is no project */
+export async function requireOutput(path: string): Promise<void> {
+  const there = await stat(path).catch(() => null);
+  if (there === null || (there.isFile() && there.size === 0)) return;
+  if (!there.isFile()) throw new CommandFailure(`-o: ${path} is ${there.isDirectory() ? "a folder" : "not an ordinary file"}: name a file to write the board to`);
+  if (there.size > MAX_PROJECT_BYTES || !(await isProjectFile(path))) throw new CommandFailure(`-o: ${path} is there already and is no project, so nothing was written over it: choose another name, or remove the file first`);
 }
 
-/**
- * Runs work on the drawer and closes it. A drawer that is not there is bad input: a command that reads makes no file.
- * @throws CommandFailure
- */
-export async function withDrawer<T>(opts: ChooseOpts, work: (store: DrawerStore) => T | Promise<T>): Promise<T> {
-  const path = opts.drawer === undefined ? ownDrawerPath() : resolve(opts.drawer);
-  if ((await stat(path).catch(() => null)) === null) throw new CommandFailure(`there is no drawer at ${path}: “bandwright stock import” makes one${opts.drawer === undefined ? ", or name another with --drawer" : ""}`);
-  return await withOpenDrawer(opts, work);
+/** Whether a file says that it is a project, of whatever version and however faulty. */
+async function isProjectFile(path: string): Promise<boolean> {
+  try {
+    const value: unknown = JSON.parse(new TextDecoder("utf-8", { fatal: true }).decode(await readFile(path)));
+    return typeof value === "object" && value !== null && "format" in value && value.format === PROJECT_FORMAT;
+  } catch {
+    return false;
+  }
 }
 
 /** Writes a project whole or not at all. @throws CommandFailure (exit 1) where the system would not */
@@ -61,16 +67,6 @@ export function readFraction(text: string, option: string): number {
   return parsed.value;
 }
 
-/** An amount such as `15`, `15 EUR` or `12,50EUR`; without a currency that of the drawer, where it knows but one. @throws CommandFailure */
-export function readMoney(text: string, option: string, lines: readonly StockedLine[]): Money {
-  const match = /^\s*(\d+(?:[.,]\d+)?)\s*([A-Za-z]{3})?\s*$/.exec(text);
-  if (!match) throw new CommandFailure(`${option}: must be an amount such as 15 or “15 EUR”, got “${text}”`);
-  const currencies = [...new Set(lines.filter((l) => l.prices.length > 0).map((l) => l.currency))];
-  const currency = match[2]?.toUpperCase() ?? (currencies.length === 1 ? currencies[0] : undefined);
-  if (currency === undefined) throw new CommandFailure(`${option}: name the currency, such as “15 EUR”: the drawer has prices in ${currencies.join(", ") || "none"}`);
-  return { amount: Number(match[1].replace(",", ".")), currency };
-}
-
 /** `1.25 EUR`; small amounts with as many digits as they need. */
 export function moneyText(money: Money | null): string {
   if (money === null) return "–";
@@ -90,8 +86,8 @@ export function linesText(candidate: Pick<Candidate, "lines" | "joined">): strin
 
 /** A part's value in the unit of its kind; op amps by type. */
 export function stockText(kind: StockedLine["kind"], value: number | null, type: string | null): string {
-  if (value === null) return type ?? "–";
-  return formatValue(value, kind === "capacitor" ? "capacitance" : kind === "inductor" ? "inductance" : "resistance", { significant: 4 });
+  const quantity = QUANTITY_OF[kind];
+  return value === null || quantity === null ? (type ?? "–") : formatValue(value, quantity, { significant: 4 });
 }
 
 /** `+1.2 %`, with a true minus. */
@@ -99,4 +95,16 @@ export function percentText(fraction: number | null, digits = 2): string {
   if (fraction === null) return "–";
   const text = Math.abs(fraction * 100).toFixed(digits);
   return `${Number(text) === 0 ? "" : fraction > 0 ? "+" : "−"}${text} %`;
+}
+
+/** Writes what is to be said of lines in their places, `where` before each; what is said of several places alike is said once. */
+export function printProblems(found: readonly { readonly where: string; readonly line: string; readonly problem: Problem }[]): void {
+  if (found.length === 0) return;
+  const places = new Map<string, string[]>();
+  for (const { where, line, problem } of found) {
+    const said = `${line}: ${problem.level === "fault" ? "does not do: " : ""}${problem.message}`;
+    places.set(said, [...(places.get(said) ?? []), where]);
+  }
+  process.stdout.write(`\n${[...places].map(([said, where]) => `${where.join(", ")}, ${said}`).join("\n")}\n`);
+  if (needsRatingCaution(found.map((one) => one.problem))) process.stdout.write(`${RATING_CAUTION}\n`);
 }

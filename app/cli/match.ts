@@ -1,10 +1,11 @@
 import type { Command } from "commander";
 import { matchPieces, type MatchResult } from "../../core/drawer/match.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { percentText, readCount, stockText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
+import { OUTPUT_HELP, percentText, readCount, requireOutput, stockText, writeProject } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
+import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
 
-interface MatchCommandOpts extends SliderOpts, ChooseOpts {
+interface MatchCommandOpts extends SliderOpts, DrawerOption {
   readonly output: string;
   readonly deals: string;
   readonly seed: string;
@@ -14,15 +15,17 @@ interface MatchCommandOpts extends SliderOpts, ChooseOpts {
 export function matchCommand(): Command {
   return withDrawerOptions(
     boardCommand("match", "deal the measured pieces of the drawer to the roles that name their line, so that the board comes nearest its design", "match channel.bandwright -o matched.bandwright")
-      .requiredOption("-o, --output <FILE>", "where to write the board")
+      .requiredOption("-o, --output <FILE>", OUTPUT_HELP)
       .option("--deals <N>", "random deals to compare with", "200")
       .option("--seed <N>", "seed of the random deals", "1"),
+    "has to be there",
   ).action(async (file: string, opts: MatchCommandOpts) => {
     const deals = readCount(opts.deals, "--deals", 10_000);
     const seed = readCount(opts.seed, "--seed", 2 ** 32 - 1);
     const { board, run: { positions, isMeasured } } = await loadBoard(file, opts);
     if (isMeasured) throw new CommandFailure("--measured: matching aims at the board's design values, and writes measured ones");
-    const pieces = await withDrawer(opts, (store) => store.allPieces());
+    await requireOutput(opts.output);
+    const pieces = await withDrawer(opts, "has to be there", (store) => store.allPieces());
     const result = matchPieces(board, pieces, { positions, deals, seed });
     if (result.matched.length === 0) throw new CommandFailure("no part of the board names a stock line of which pieces have been measured. Nothing was written", EXIT.failed);
     await writeProject(opts.output, result.project);

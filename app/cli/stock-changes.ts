@@ -1,10 +1,10 @@
 import { Option, type Command } from "commander";
-import { readCoefficient, readCurrency, readPrices, readQuantity, readRating, readTolerance, readValue, type Cell } from "../../core/drawer/cells.ts";
+import { readCoefficient, readCurrency, readPrices, readQuantity, readRating, readTolerance, readValue, readWinding, type Cell } from "../../core/drawer/cells.ts";
 import { QUANTITY_OF, RATING_UNIT } from "../../core/drawer/check-line.ts";
 import { MOVEMENT_KINDS, STOCK_KINDS, type MovementKind, type StockKind, type StockLine } from "../../core/drawer/stock.ts";
 import { printJson } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
-import { drawerCommand, printLines, withDrawer, type DrawerOption } from "./stock-drawer.ts";
+import { drawerCommand, printLines, read, withDrawer, type DrawerOption } from "./stock-drawer.ts";
 
 interface AddOpts extends DrawerOption {
   readonly kind: StockKind;
@@ -14,6 +14,7 @@ interface AddOpts extends DrawerOption {
   readonly rating?: string;
   readonly technology: string;
   readonly tempco?: string;
+  readonly winding?: string;
   readonly package: string;
   readonly location: string;
   readonly quantity: string;
@@ -33,8 +34,9 @@ export function stockAddCommand(): Command {
     .option("--type <TYPE>", "of an op amp, such as TL072")
     .option("--tolerance <T>", "such as 5%")
     .option("--rating <R>", "such as 0.25W or 63V")
-    .option("--technology <TEXT>", "film, C0G, electrolytic, …", "")
+    .option("--technology <TEXT>", "film, C0G, electrolytic, …; a track's taper too: carbon, linear", "")
     .option("--tempco <TC>", "temperature coefficient, such as 50ppm")
+    .option("--winding <OHMS>", "winding resistance of an inductor, such as 12")
     .option("--package <TEXT>", "package or lead pitch", "")
     .option("--location <TEXT>", "where it lies", "")
     .option("--quantity <N>", "pieces there", "0")
@@ -45,7 +47,7 @@ export function stockAddCommand(): Command {
     .option("--notes <TEXT>", "whatever else is worth knowing", "")
     .action(async (id: string, opts: AddOpts) => {
       const { line, quantity } = readLine(id, opts);
-      const added = await withDrawer(opts, (store) => store.addLine(line, quantity));
+      const added = await withDrawer(opts, "made where there is none", (store) => store.addLine(line, quantity));
       if (opts.json) printJson(added);
       else printLines([added.line]);
     });
@@ -53,35 +55,35 @@ export function stockAddCommand(): Command {
 
 function readLine(id: string, opts: AddOpts): { readonly line: StockLine; readonly quantity: number } {
   const quantityName = QUANTITY_OF[opts.kind];
-  const prices = read("--prices", opts.prices, readPrices);
+  const prices = readOptional("--prices", opts.prices, readPrices);
   const line: StockLine = {
     id: id.trim(),
     kind: opts.kind,
-    value: quantityName === null ? (opts.value === undefined ? null : wrong("--value", "an op amp has a --type, and no value")) : read("--value", opts.value, (text) => readValue(text, "", quantityName)),
+    value: quantityName === null ? (opts.value === undefined ? null : noValue()) : readOptional("--value", opts.value, (text) => readValue(text, "", quantityName)),
     type: opts.type ?? null,
-    tolerance: read("--tolerance", opts.tolerance, (text) => readTolerance(text, /^\d*\.?\d+$/.test(text) && Number(text) >= 1 ? "%" : "")),
-    rating: read("--rating", opts.rating, (text) => readRating(text, RATING_UNIT[opts.kind] ?? "")),
+    tolerance: readOptional("--tolerance", opts.tolerance, (text) => readTolerance(text, /^\d*\.?\d+$/.test(text) && Number(text) >= 1 ? "%" : "")),
+    rating: readOptional("--rating", opts.rating, (text) => readRating(text, RATING_UNIT[opts.kind] ?? "")),
     technology: opts.technology,
-    temperatureCoefficient: read("--tempco", opts.tempco, (text) => readCoefficient(text, "ppm")),
+    temperatureCoefficient: readOptional("--tempco", opts.tempco, (text) => readCoefficient(text, "ppm")),
+    windingR: readOptional("--winding", opts.winding, (text) => readWinding(text, "")),
     package: opts.package,
     location: opts.location,
     prices: prices?.prices ?? [],
-    currency: read("--currency", opts.currency, readCurrency) ?? prices?.currency ?? "",
+    currency: readOptional("--currency", opts.currency, readCurrency) ?? prices?.currency ?? "",
     supplier: opts.supplier,
     orderCode: opts.orderCode,
     notes: opts.notes,
   };
-  return { line, quantity: read("--quantity", opts.quantity, readQuantity) ?? 0 };
+  return { line, quantity: read("--quantity", opts.quantity, readQuantity) };
 }
 
-function read<T>(option: string, text: string | undefined, reader: (text: string) => Cell<T>): T | null {
-  if (text === undefined) return null;
-  const cell = reader(text.trim());
-  return cell.ok ? cell.value : wrong(option, cell.message);
+function noValue(): never {
+  throw new CommandFailure("--value: an op amp has a --type, and no value");
 }
 
-function wrong(option: string, message: string): never {
-  throw new CommandFailure(`${option}: ${message}`);
+/** An option that may be left out. */
+function readOptional<T>(option: string, text: string | undefined, reader: (text: string) => Cell<T>): T | null {
+  return text === undefined ? null : read(option, text, reader);
 }
 
 interface MoveOpts extends DrawerOption {
@@ -114,8 +116,8 @@ export function stockCountCommand(): Command {
 }
 
 async function move(line: string, kind: MovementKind, text: string, opts: MoveOpts): Promise<void> {
-  const count = read("COUNT", text, readQuantity) ?? 0;
-  const moved = await withDrawer(opts, (store) => store.move([{ line, kind, count, reference: opts.for, note: opts.note }]));
+  const count = read("COUNT", text, readQuantity);
+  const moved = await withDrawer(opts, "made where there is none", (store) => store.move([{ line, kind, count, reference: opts.for, note: opts.note }]));
   if (opts.json) printJson(moved);
   else printLines(moved.lines);
 }
@@ -125,8 +127,8 @@ export function stockUndoCommand(): Command {
   return drawerCommand("undo", "take a step back: the latest, or the one with this number (--json of a change gives it)", "undo")
     .argument("[STEP]", "the step's number")
     .action(async (text: string | undefined, opts: DrawerOption) => {
-      const undone = await withDrawer(opts, async (store) => {
-        const step = text === undefined ? store.steps(1000).find((one) => one.undoes === null && one.undoneBy === null)?.id : (read("STEP", text, readQuantity) ?? undefined);
+      const undone = await withDrawer(opts, "made where there is none", async (store) => {
+        const step = text === undefined ? store.steps(1000).find((one) => one.undoes === null && one.undoneBy === null)?.id : read("STEP", text, readQuantity);
         if (step === undefined) throw new CommandFailure("there is nothing to undo");
         return store.undo(step);
       });

@@ -1,7 +1,9 @@
+import { existsSync } from "node:fs";
 import { resolve } from "node:path";
 import { Command } from "commander";
 import type { DrawerLine } from "../../core/contract/drawer-schemas.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
+import type { Cell } from "../../core/drawer/cells.ts";
 import { QUANTITY_OF, RATING_UNIT } from "../../core/drawer/check-line.ts";
 import { unitCost } from "../../core/drawer/stock.ts";
 import { formatValue } from "../../core/units.ts";
@@ -10,20 +12,31 @@ import { openDrawer, type DrawerStore } from "../store/drawer-store.ts";
 import { printTable } from "./board-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 
+/** What every command on the drawer has in common: which drawer, and JSON. */
 export interface DrawerOption {
   readonly drawer?: string;
   readonly json?: true;
 }
 
-/** A command on the drawer. */
+/** Whether a command makes a drawer where there is none. */
+export type DrawerUse = "made where there is none" | "has to be there";
+
+/** A command on the drawer itself. */
 export function drawerCommand(name: string, about: string, example: string): Command {
-  return new Command(name).description(about).option("--drawer <PATH>", "another drawer file than your own; made where there is none").option("--json", "as JSON").addHelpText("after", `\nExample:\n  bandwright stock ${example}`);
+  return withDrawerOptions(new Command(name).description(about), "made where there is none").addHelpText("after", `\nExample:\n  bandwright stock ${example}`);
+}
+
+/** Adds the options that every command on the drawer takes. */
+export function withDrawerOptions(command: Command, use: DrawerUse): Command {
+  return command.option("--drawer <PATH>", `another drawer file than your own; ${use}`).option("--json", "as JSON");
 }
 
 /** Works on the drawer, and closes it whatever happens. @throws CommandFailure */
-export async function withDrawer<T>(opts: DrawerOption, work: (store: DrawerStore) => Promise<T> | T): Promise<T> {
+export async function withDrawer<T>(opts: DrawerOption, use: DrawerUse, work: (store: DrawerStore) => Promise<T> | T): Promise<T> {
+  const path = opts.drawer === undefined ? ownDrawerPath() : resolve(opts.drawer);
+  if (use === "has to be there" && !existsSync(path)) throw new CommandFailure(`there is no drawer at ${path}: “bandwright stock import” makes one${opts.drawer === undefined ? ", or name another with --drawer" : ""}`);
   try {
-    const store = await openDrawer({ path: opts.drawer === undefined ? ownDrawerPath() : resolve(opts.drawer), now: () => new Date() });
+    const store = await openDrawer({ path, now: () => new Date() });
     try {
       return await work(store);
     } finally {
@@ -39,6 +52,13 @@ export function toCommandFailure(error: unknown): unknown {
   if (!(error instanceof HostFailure)) return error;
   const isTheirs = error.code !== "drawer-unusable" && error.code !== "import-cancelled" && error.code !== "file-unwritable";
   return new CommandFailure(error.message, isTheirs ? EXIT.badInput : EXIT.failed);
+}
+
+/** An option or argument in trade notation. @throws CommandFailure */
+export function read<T>(option: string, text: string, reader: (text: string) => Cell<T>): T {
+  const cell = reader(text.trim());
+  if (!cell.ok) throw new CommandFailure(`${option}: ${cell.message}`);
+  return cell.value;
 }
 
 /** Lines as a table for people. */

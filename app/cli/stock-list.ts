@@ -28,7 +28,7 @@ export function stockListCommand(): Command {
     .action(async (words: readonly string[], opts: ListOpts) => {
       const filter: LineFilter = { ...EVERY_LINE, text: words.join(" ").slice(0, 500), kind: opts.kind === undefined ? [] : [opts.kind], onlyAvailable: opts.available === true, withRetired: opts.retired === true };
       const sort: LineSort = { by: opts.sort, descending: opts.descending === true };
-      const { total, lines, isEmpty } = await withDrawer(opts, (store) => {
+      const { total, lines, isEmpty } = await withDrawer(opts, "made where there is none", (store) => {
         const first = store.lines(filter, sort, 0, Math.min(opts.limit, WINDOW));
         const all = [...first.lines];
         while (all.length < Math.min(opts.limit, first.total)) {

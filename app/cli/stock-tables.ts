@@ -38,7 +38,7 @@ export function stockImportCommand(): Command {
     .action(async (file: string | undefined, opts: ImportOpts) => {
       if ((file === undefined) === (opts.starter === undefined)) throw new CommandFailure("give a FILE or --starter (--help says what is understood)");
       const path = file === undefined ? STARTER : resolve(file);
-      const report = await withDrawer(opts, async (store) => {
+      const report = await withDrawer(opts, "made where there is none", async (store) => {
         const { text, encoding } = decodeTable(await readTableFile(path), opts.encoding ?? null);
         const table = withOptions(await openTable(text, encoding, null, null), opts);
         const delimited = opts.delimiter === undefined ? table : withOptions(await openTable(text, encoding, { ...table.reading, delimiter: DELIMITERS[opts.delimiter] }, null), opts);
@@ -126,7 +126,7 @@ export function stockExportCommand(): Command {
     .argument("[FILE]", "where to; standard output where it is left off")
     .option("--replace", "replace a file that is there")
     .action(async (file: string | undefined, opts: DrawerOption & { readonly replace?: true }) => {
-      await withDrawer(opts, async (store) => {
+      await withDrawer(opts, "made where there is none", async (store) => {
         if (opts.json) {
           const lines = [...store.eachLine()];
           if (file === undefined) printJson({ lines });

@@ -1,14 +1,15 @@
 import type { Command } from "commander";
 import { boardRoles, findRole, type BoardRole } from "../../core/drawer/roles.ts";
-import { rankSwaps, type RankedCandidate, type Swap } from "../../core/drawer/swap.ts";
-import { RATING_CAUTION } from "../../core/drawer/stress.ts";
+import { rankSwaps, type Swap } from "../../core/drawer/swap.ts";
+import { hasFault } from "../../core/drawer/place-problems.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import { formatDb } from "../../core/units.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { linesText, moneyText, percentText, readCount, readFraction, stockText, withDrawer, withDrawerOptions, writeProject, type ChooseOpts } from "./choose-command.ts";
+import { linesFor, linesText, moneyText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, writeProject } from "./choose-command.ts";
 import { CommandFailure } from "./failure.ts";
+import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
 
-interface SwapCommandOpts extends SliderOpts, ChooseOpts {
+interface SwapCommandOpts extends SliderOpts, DrawerOption {
   readonly role: string;
   readonly pairs?: true;
   readonly units: string;
@@ -28,7 +29,8 @@ export function swapCommand(): Command {
       .option("--window <FRACTION>", "how far the value may be off", "20%")
       .option("--most <N>", "how many to try, nearest first", "50")
       .option("--take <N>", "put number N of the list into the board and write it to -o")
-      .option("-o, --output <FILE>", "where to write the board"),
+      .option("-o, --output <FILE>", OUTPUT_HELP),
+    "has to be there",
   ).action(async (file: string, opts: SwapCommandOpts) => {
     const units = readCount(opts.units, "--units");
     const window = readFraction(opts.window, "--window");
@@ -38,10 +40,12 @@ export function swapCommand(): Command {
     const { board, run } = await loadBoard(file, opts);
     const role = findRole(board, opts.role);
     if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
-    const lines = await withDrawer(opts, (store) => store.allLines());
+    if (opts.output !== undefined) await requireOutput(opts.output);
+    const lines = await withDrawer(opts, "has to be there", (store) => linesFor(store, board.project));
     const swap = rankSwaps(board, role, lines, { ...run, units, window, most, pairs: opts.pairs === true });
     const taken = take === undefined ? undefined : swap.candidates[take - 1];
     if (take !== undefined && !taken) throw new CommandFailure(`--take: the list has ${swap.candidates.length} entries, so there is no number ${take}`);
+    if (taken && hasFault(taken)) throw new CommandFailure(`--take: number ${take}, ${linesText(taken)}, does not do: ${taken.problems.filter((p) => p.level === "fault").map((p) => p.message).join("; ")}`);
     if (taken && opts.output !== undefined) await writeProject(opts.output, applyPatch(board.project, taken.patch));
     if (opts.json) printJson({ ...swapJson(swap), taken: take ?? null });
     else printSwap(swap, role);
@@ -79,10 +83,5 @@ function printSwap({ candidates, stress }: Swap, role: BoardRole): void {
       formatDb(c.change.peak, 2), percentText(c.change.centre), percentText(c.change.q), `${c.asItStands.toFixed(2)} dB`, `${c.atFullBoost.toFixed(2)} dB`, moneyText(c.cost), String(c.left),
     ]),
   );
-  const notes = candidates.flatMap((c, i) => c.problems.map((p) => noteText(c, i, p)));
-  if (notes.length > 0) process.stdout.write(`\n${notes.join("\n")}\n${RATING_CAUTION}\n`);
-}
-
-function noteText(c: RankedCandidate, index: number, { level, message }: RankedCandidate["problems"][number]): string {
-  return `${index + 1}. ${c.lines.map((l) => l.id).join(", ")}: ${level === "fault" ? "does not do: " : ""}${message}`;
+  printProblems(candidates.flatMap((c, i) => c.problems.map((problem) => ({ where: `no. ${i + 1}`, line: linesText(c), problem }))));
 }

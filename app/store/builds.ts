@@ -1,4 +1,4 @@
-import type { BillEntry, Build } from "../../core/contract/drawer-schemas.ts";
+import type { BillEntry, Build, DrawerLine } from "../../core/contract/drawer-schemas.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
 import type { Db } from "./db.ts";
 import { requireFree, takeOut } from "./ledger.ts";
@@ -28,12 +28,7 @@ const SELECT = "SELECT key, reference, units, units_used AS unitsUsed, state, at
 export function reserveBuild(db: Db, step: Step, reference: string, units: number, entries: readonly BillEntry[]): void {
   letGo(db, step, reference);
   const bill = addUp(db, entries);
-  for (const { line: key, count } of bill) {
-    const line = lineByKey(db, key);
-    if (line.retired) throw new HostFailure("drawer-refused", { problems: [`${line.id}: it is retired, so nothing of it can be held.`] });
-    requireFree(db, { key, line }, count * units, reference);
-    step.book(key, "reserved", count * units, reference, "");
-  }
+  hold(db, step, reference, units, bill);
   const old = findBuild(db, reference);
   put(db, step, old, { reference, units, unitsUsed: old?.fields.unitsUsed ?? 0, state: "reserved", at: step.at, bill });
 }
@@ -46,15 +41,20 @@ export function releaseBuild(db: Db, step: Step, reference: string): void {
   if (old !== null && old.fields.state === "reserved") put(db, step, old, { ...old.fields, units: 0, state: "released", at: step.at });
 }
 
-/** Books what finished units took, held pieces first. */
-export function useBuild(db: Db, step: Step, reference: string, units: number): void {
+/**
+ * Books what finished units took, held pieces first. Units that are planned beyond these stay planned; where the bill is
+ * another than they were held for, they are held anew with it.
+ */
+export function useBuild(db: Db, step: Step, reference: string, units: number, entries: readonly BillEntry[]): void {
+  const bill = addUp(db, entries);
   const old = findBuild(db, reference);
-  if (old === null) throw new HostFailure("drawer-missing", { what: "build", id: reference });
-  if (old.fields.state !== "reserved") throw new HostFailure("drawer-refused", { problems: [`${reference}: nothing is held for it any more, so there are no units to book.`] });
-  if (units > old.fields.units) throw new HostFailure("drawer-refused", { problems: [`${reference}: pieces are held for ${old.fields.units} units, so ${units} cannot be booked.`] });
-  for (const { line: key, count } of old.fields.bill) takeOut(db, step, { key, line: lineByKey(db, key) }, "used", count * units, reference, "");
-  const left = old.fields.units - units;
-  put(db, step, old, { ...old.fields, units: left, unitsUsed: old.fields.unitsUsed + units, state: left === 0 ? "used" : "reserved", at: step.at });
+  const planned = old?.fields.state === "reserved" ? old.fields.units : 0;
+  const left = Math.max(0, planned - units);
+  const isOther = planned > 0 && !isSameBill(old!.fields.bill, bill);
+  if (isOther) letGo(db, step, reference);
+  for (const { line: key, count } of bill) takeOut(db, step, { key, line: lineInUse(db, key) }, "used", count * units, reference, "");
+  if (isOther && left > 0) hold(db, step, reference, left, bill);
+  put(db, step, old, { reference, units: left, unitsUsed: (old?.fields.unitsUsed ?? 0) + units, state: left === 0 ? "used" : "reserved", at: step.at, bill });
 }
 
 /** Everything that was ever planned, the latest first. */
@@ -79,6 +79,26 @@ export function buildFields(db: Db, key: number): Fields | null {
 export function restoreBuild(db: Db, key: number, fields: Fields | null): void {
   if (fields === null) db.run("DELETE FROM builds WHERE key = ?", key);
   else write(db, key, fields as unknown as BuildFields);
+}
+
+function hold(db: Db, step: Step, reference: string, units: number, bill: Bill): void {
+  for (const { line: key, count } of bill) {
+    const line = lineInUse(db, key);
+    requireFree(db, { key, line }, count * units, reference);
+    step.book(key, "reserved", count * units, reference, "");
+  }
+}
+
+/** @throws HostFailure drawer-refused where it is retired */
+function lineInUse(db: Db, key: number): DrawerLine {
+  const line = lineByKey(db, key);
+  if (line.retired) throw new HostFailure("drawer-refused", { problems: [`${line.id}: it is retired, so no build can take from it.`] });
+  return line;
+}
+
+function isSameBill(a: Bill, b: Bill): boolean {
+  const counts = new Map(a.map(({ line, count }) => [line, count]));
+  return a.length === b.length && b.every(({ line, count }) => counts.get(line) === count);
 }
 
 function letGo(db: Db, step: Step, reference: string): boolean {

@@ -6,7 +6,7 @@ import type { StockLine, StockPiece } from "../../core/drawer/stock.ts";
 import { allBuilds, releaseBuild, requireBuild, reserveBuild, useBuild } from "./builds.ts";
 import { openBeside, openDb, type Db } from "./db.ts";
 import { importRows, type ImportCounts, type ImportRow } from "./import-lines.ts";
-import { bookMove, readLedger } from "./ledger.ts";
+import { bookMove, heldOf, readLedger } from "./ledger.ts";
 import { eachLine, findLine, holdersOf, insertLine, namesOf, requireLine, requireSoundLine, selectLines, updateLine } from "./lines.ts";
 import { allPieces, pieceById, piecesOf, putPiece, removePiece } from "./pieces.ts";
 import { candidatesOf, countOf, facetsOf, valuesOf, windowOf } from "./query.ts";
@@ -195,9 +195,15 @@ export class DrawerStore {
     return { step };
   }
 
-  use(reference: string, units: number): { step: number; build: Build } {
-    const { step } = asStep(this.db, this.now(), `Use for ${reference}`, (one) => useBuild(this.db, one, reference, units));
+  /** Books the pieces of finished units as used, as one step whether they were held before or not. */
+  use(reference: string, units: number, bill: readonly BillEntry[]): { step: number; build: Build } {
+    const { step } = asStep(this.db, this.now(), `Use for ${reference}`, (one) => useBuild(this.db, one, reference, units, bill));
     return { step: certain(step), build: requireBuild(this.db, reference) };
+  }
+
+  /** Pieces that a reference holds, by line id. */
+  heldBy(reference: string): ReadonlyMap<string, number> {
+    return heldOf(this.db, reference);
   }
 
   builds(): Build[] {

@@ -1,4 +1,4 @@
-import type { StockLine } from "../../core/drawer/stock.ts";
+import { emptyLine, type StockLine } from "../../core/drawer/stock.ts";
 import type { Db } from "./db.ts";
 import { findLine, insertLine, requireSoundLine, updateLine, type LineEdit } from "./lines.ts";
 import { bookMove, requireCountable } from "./ledger.ts";
@@ -28,13 +28,6 @@ export interface ImportCounts {
 
 const PAUSE_EVERY = 500;
 const MOST_FAULTS = 1000;
-
-/** A line of a kind with nothing else said about it. */
-export function emptyLine(id: string): StockLine {
-  return {
-    id, kind: "resistor", value: null, type: null, tolerance: null, rating: null, technology: "", temperatureCoefficient: null, package: "", location: "", prices: [], currency: "", supplier: "", orderCode: "", notes: "",
-  };
-}
 
 /**
  * Takes rows in as one step: makes lines, updates known ones, books differences of quantity as counted. To be run inside a

@@ -9,6 +9,12 @@ export function heldBy(db: Db, reference: string, key: number): number {
   return db.value<number>("SELECT count FROM holdings WHERE reference = ? AND line = ?", reference, key) ?? 0;
 }
 
+/** What one reference holds, by line id. */
+export function heldOf(db: Db, reference: string): ReadonlyMap<string, number> {
+  const rows = db.all<{ id: string; count: number }>("SELECT l.id, h.count FROM holdings h JOIN lines l ON l.key = h.line WHERE h.reference = ? ORDER BY l.id", reference);
+  return new Map(rows.map(({ id, count }) => [id, count]));
+}
+
 /** Books one movement of a line, after looking whether there are pieces for it. @throws HostFailure drawer-short, drawer-refused, drawer-missing */
 export function bookMove(db: Db, step: Step, move: Move): void {
   const found = requireLine(db, move.line);

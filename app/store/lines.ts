@@ -8,11 +8,11 @@ import { TEXT_FIELDS } from "./words.ts";
 
 /** A line's row with the names of its fields. */
 const LINE_COLUMNS =
-  "l.key, l.id, l.retired, l.kind, l.value, l.type, l.tolerance, l.rating, l.technology, l.temperature_coefficient AS temperatureCoefficient, l.package, l.location, l.quantity, l.reserved, l.supplier, l.order_code AS orderCode, l.currency, l.prices, l.notes";
+  "l.key, l.id, l.retired, l.kind, l.value, l.type, l.tolerance, l.rating, l.technology, l.temperature_coefficient AS temperatureCoefficient, l.winding_resistance AS windingR, l.package, l.location, l.quantity, l.reserved, l.supplier, l.order_code AS orderCode, l.currency, l.prices, l.notes";
 
 /** Of a field that can be edited, its column. */
 const COLUMN_OF = {
-  kind: "kind", value: "value", type: "type", tolerance: "tolerance", rating: "rating", technology: "technology", temperatureCoefficient: "temperature_coefficient", package: "package",
+  kind: "kind", value: "value", type: "type", tolerance: "tolerance", rating: "rating", technology: "technology", temperatureCoefficient: "temperature_coefficient", windingR: "winding_resistance", package: "package",
   location: "location", prices: "prices", currency: "currency", supplier: "supplier", orderCode: "order_code", notes: "notes", retired: "retired",
 } as const;
 
@@ -83,9 +83,9 @@ export function requireSoundLine(line: StockLine): void {
 /** Makes a line; it has no pieces yet. */
 export function insertLine(db: Db, step: Step, line: StockLine, isRetired = false): number {
   const key = db.run(
-    `INSERT INTO lines (id, retired, kind, value, type, tolerance, rating, technology, temperature_coefficient, package, location, supplier, order_code, currency, prices, notes)
-     VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
-    line.id, isRetired ? 1 : 0, line.kind, line.value, line.type, line.tolerance, line.rating, line.technology, line.temperatureCoefficient, line.package, line.location, line.supplier, line.orderCode, line.currency,
+    `INSERT INTO lines (id, retired, kind, value, type, tolerance, rating, technology, temperature_coefficient, winding_resistance, package, location, supplier, order_code, currency, prices, notes)
+     VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+    line.id, isRetired ? 1 : 0, line.kind, line.value, line.type, line.tolerance, line.rating, line.technology, line.temperatureCoefficient, line.windingR, line.package, line.location, line.supplier, line.orderCode, line.currency,
     JSON.stringify(line.prices), line.notes,
   );
   step.reword(key, null);

@@ -135,8 +135,10 @@ export const DRAWER_METHODS = {
   }),
   /** Lets everything go that the reference holds. */
   "drawer.release": method({ args: v.strictObject({ reference: REFERENCE }), result: v.object({ step: v.nullable(COUNT) }), mutates: true }),
-  /** Books the pieces of finished units as used. */
-  "drawer.use": method({ args: v.strictObject({ reference: REFERENCE, units: COUNT_FROM_ONE }), result: v.object({ step: COUNT, build: BUILD_SCHEMA }), mutates: true }),
+  /** Pieces that a project or build holds. */
+  "drawer.held": method({ args: v.strictObject({ reference: REFERENCE }), result: v.object({ held: list(v.object({ line: v.string(), count: COUNT_FROM_ONE })) }), mutates: false }),
+  /** Books the pieces of finished units as used, held ones first, in one step. */
+  "drawer.use": method({ args: v.strictObject({ reference: REFERENCE, units: COUNT_FROM_ONE, bill: BILL_SCHEMA }), result: v.object({ step: COUNT, build: BUILD_SCHEMA }), mutates: true }),
   "drawer.builds": method({ args: NOTHING, result: v.object({ builds: list(BUILD_SCHEMA) }), mutates: false }),
   /** Takes a step back, as a new step: undoing that one is the redo. */
   "drawer.undo": method({ args: v.strictObject({ step: COUNT }), result: v.object({ step: COUNT, label: v.string() }), mutates: true }),

@@ -25,6 +25,7 @@ const FIELDS = {
   rating: v.nullable(NUMBER),
   technology: SHORT_TEXT,
   temperatureCoefficient: v.nullable(NUMBER),
+  windingR: v.nullable(NUMBER),
   package: SHORT_TEXT,
   location: SHORT_TEXT,
   prices: PRICES,

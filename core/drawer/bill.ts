@@ -1,8 +1,8 @@
 import type { Project } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
-import { compareText, type Money } from "./candidates.ts";
+import { compareText } from "./candidates.ts";
 import { amplifiersIn, boardRoles, type BoardRole } from "./roles.ts";
-import { availableOf, unitCost, type StockedLine, type StockKind } from "./stock.ts";
+import { availableOf, leftAfter, unitCost, type Money, type StockedLine, type StockKind } from "./stock.ts";
 
 /** What a number of units takes of one line. */
 export interface BillRow {
@@ -12,11 +12,11 @@ export interface BillRow {
   /** Pieces a unit; packages for op amps. */
   readonly perUnit: number;
   readonly total: number;
-  /** Free pieces before the build, those reserved for this very build included. */
+  /** Free pieces before the build. */
   readonly available: number;
   /** Pieces missing. */
   readonly short: number;
-  /** Pieces free afterwards; 0 where some are missing. */
+  /** Stock left after this build; 0 where some are missing. */
   readonly left: number;
   /** Price of a piece at the total, and of all; null where unknown. */
   readonly unitCost: Money | null;
@@ -70,22 +70,17 @@ export interface Bill {
   readonly isReady: boolean;
 }
 
-export interface BillOpts {
-  /** Pieces of each line that this very build has reserved before: they are there for it. */
-  readonly held?: ReadonlyMap<string, number>;
-}
-
-/** What a number of units of a board takes from the drawer, what is missing, and what it costs. */
-export function buildBill(board: Board, lines: readonly StockedLine[], units: number, opts: BillOpts = {}): Bill {
+/** What a number of units of a board takes from the drawer, what is missing, and what it costs. @param lines as the build sees them: `freeForBuild` */
+export function buildBill(board: Board, lines: readonly StockedLine[], units: number): Bill {
   const roles = boardRoles(board);
   const { counted, unassigned } = countLines(roles, lines);
   const rows = [...counted].map(([line, { names, perUnit }]): BillRow => {
     const total = perUnit * units;
-    const available = Math.max(0, availableOf(line) + (opts.held?.get(line.id) ?? 0));
+    const left = leftAfter(line, perUnit, units);
     const each = unitCost(line, total);
     return {
-      line, roles: names, perUnit, total, available,
-      short: Math.max(0, total - available), left: Math.max(0, available - total),
+      line, roles: names, perUnit, total, available: availableOf(line),
+      short: Math.max(0, -left), left: Math.max(0, left),
       unitCost: each === null ? null : { amount: each, currency: line.currency },
       cost: each === null ? null : { amount: each * total, currency: line.currency },
     };
@@ -165,6 +160,11 @@ function shoppingList(rows: readonly BillRow[]): ShoppingGroup[] {
   return [...groups]
     .map(([supplier, items]) => ({ supplier, items, cost: sumMoney(items.map((i) => i.cost)) }))
     .toSorted((a, b) => Number(a.supplier === "") - Number(b.supplier === "") || compareText(a.supplier, b.supplier));
+}
+
+/** Units that the pieces there are enough for. */
+export function unitsThere({ rows }: Pick<Bill, "rows">): number {
+  return Math.min(...rows.map((r) => Math.floor(r.available / r.perUnit)));
 }
 
 /** Sums by currency, in the order of their codes. */

@@ -1,6 +1,7 @@
 import type { Board } from "../net/board.ts";
 import { formatValue } from "../units.ts";
-import { lineProblems } from "./candidates.ts";
+import { QUANTITY_OF } from "./check-line.ts";
+import { placeProblems } from "./place-problems.ts";
 import { boardRoles, type BoardRole } from "./roles.ts";
 import { boardStress, type BoardStress, type Problem } from "./stress.ts";
 import type { StockedLine } from "./stock.ts";
@@ -11,8 +12,6 @@ export interface RoleProblems {
   readonly line: StockedLine;
   readonly problems: readonly Problem[];
 }
-
-const QUANTITY = { resistor: "resistance", potentiometer: "resistance", capacitor: "capacitance", inductor: "inductance" } as const;
 
 /**
  * Checks the lines that a board names against what its parts have to bear and what they should be: ratings, polarity,
@@ -27,11 +26,22 @@ export function boardProblems(board: Board, lines: readonly StockedLine[], stres
       const line = id === null ? undefined : byId.get(id);
       if (!line) return [];
       // Of the wrong kind, its ratings say nothing here.
-      const bears = line.kind === role.kind ? lineProblems(role, line, stress).filter((p) => p.about !== "model") : [];
+      const bears = line.kind === role.kind ? placeProblems(role, line, stress).filter(isOfTheBoard) : [];
       const problems = [...sortProblems(role, line, wanted), ...bears];
       return problems.length > 0 ? [{ role, line, problems }] : [];
     });
   });
+}
+
+/** What is not known of a line matters when it is chosen; the board has its figures by now. */
+function isOfTheBoard({ level, about }: Problem): boolean {
+  return level !== "note" && about !== "winding";
+}
+
+/** In one list, faults first. */
+export function listedProblems(found: readonly RoleProblems[]): { readonly role: BoardRole; readonly line: StockedLine; readonly problem: Problem }[] {
+  const listed = found.flatMap(({ role, line, problems }) => problems.map((problem) => ({ role, line, problem })));
+  return listed.toSorted((a, b) => Number(b.problem.level === "fault") - Number(a.problem.level === "fault"));
 }
 
 /** More than rounding, less than any step of a series. */
@@ -40,7 +50,12 @@ const OTHER_VALUE = 1e-3;
 function sortProblems(role: BoardRole, line: StockedLine, wanted: number | null): Problem[] {
   if (line.kind !== role.kind) return [{ level: "fault", about: "kind", message: `${line.id} is no ${role.kind} but a ${line.kind}` }];
   if (role.kind === "op-amp") return line.type?.toLowerCase() === role.type?.toLowerCase() ? [] : [{ level: "fault", about: "kind", message: `the board says ${role.type}, and ${line.id} is a ${line.type}` }];
-  if (wanted === null || line.value === null || Math.abs(line.value / wanted - 1) <= OTHER_VALUE) return [];
-  const text = (value: number): string => formatValue(value, QUANTITY[role.kind as keyof typeof QUANTITY], { significant: 4 });
-  return [{ level: "fault", about: "value", message: `the board says ${text(wanted)}, and ${line.id} is ${text(line.value)}` }];
+  const problems: Problem[] = [];
+  const quantity = QUANTITY_OF[role.kind];
+  const text = (value: number): string => (quantity === null ? "" : formatValue(value, quantity, { significant: 4 }));
+  const isOther = (a: number, b: number): boolean => Math.abs(a - b) > OTHER_VALUE * b;
+  if (wanted !== null && line.value !== null && isOther(line.value, wanted)) problems.push({ level: "fault", about: "value", message: `the board says ${text(wanted)}, and ${line.id} is ${text(line.value)}` });
+  const winding = role.part?.windingR ?? 0;
+  if (line.windingR !== null && isOther(line.windingR, winding)) problems.push({ level: "caution", about: "winding", message: `the board says ${formatValue(winding, "resistance")} of winding resistance, and ${line.id} has ${formatValue(line.windingR, "resistance")}` });
+  return problems;
 }

@@ -2,15 +2,9 @@ import { findOpAmp } from "../model/op-amps.ts";
 import type { Project } from "../model/project.ts";
 import { bestPairs, isSum, lesserShare, pairTolerance, type Joined, type Pair, type PairItem } from "./pairs.ts";
 import { amplifiersIn, partFromStock, type BoardRole, type Filling } from "./roles.ts";
-import { polarityProblems, powerProblems, ratingProblems, type BoardStress, type Problem } from "./stress.ts";
-import { availableOf, isPolarised, unitCost, type StockedLine } from "./stock.ts";
-
-/** An amount of money; different currencies are never added. */
-export interface Money {
-  readonly amount: number;
-  /** ISO 4217. */
-  readonly currency: string;
-}
+import { placeProblems } from "./place-problems.ts";
+import type { BoardStress, Problem } from "./stress.ts";
+import { availableOf, leftAfter, unitCost, type Money, type StockedLine } from "./stock.ts";
 
 /** A part from the drawer that could go into a role: one piece, or two joined. */
 export interface Candidate {
@@ -25,7 +19,7 @@ export interface Candidate {
   readonly deviation: number;
   /** What a unit's role costs at the quantity of the build; a share of the package for op amps. Null where unknown. */
   readonly cost: Money | null;
-  /** Pieces of its lines that remain after the build, the least of them; below 0 where there are too few. */
+  /** Stock left after this build with the candidate in its role (see `leftAfter`), of two lines the lesser. */
   readonly left: number;
   readonly problems: readonly Problem[];
   readonly filling: Filling;
@@ -40,6 +34,8 @@ export interface CandidateOpts {
   readonly pairs?: boolean;
   /** Units to build, 1 by default: pieces have to be there for each. */
   readonly units?: number;
+  /** Pieces of each line (of op amps, amplifiers) that the board's other roles take a unit; none by default. */
+  readonly elsewhere?: ReadonlyMap<string, number>;
   /** Lines with too few free pieces too, with a fault. */
   readonly withShort?: boolean;
   /** What the part has to bear; without it, ratings are not checked. */
@@ -54,9 +50,9 @@ const SAME_VALUE = 1e-9;
 
 /** Parts of the drawer for a role: right kind, within the window, pieces there that nobody has spoken for; nearest first, then cheapest. */
 export function candidatesFor(project: Project, role: BoardRole, lines: readonly StockedLine[], opts: CandidateOpts = {}): Candidate[] {
-  const { most = 50, pairs = false, units = 1 } = opts;
+  const { most = 50, pairs = false } = opts;
   const found = role.kind === "op-amp" ? opAmpCandidates(project, lines, opts) : singleCandidates(role, lines, opts);
-  if (pairs && (role.kind === "resistor" || role.kind === "capacitor")) found.push(...pairCandidates(role, role.kind, lines, most, units, opts));
+  if (pairs && (role.kind === "resistor" || role.kind === "capacitor")) found.push(...pairCandidates(role, role.kind, lines, most, opts));
   return found.toSorted(byNearness).slice(0, most);
 }
 
@@ -70,13 +66,19 @@ export function compareText(a: string, b: string): number {
   return a < b ? -1 : a > b ? 1 : 0;
 }
 
-/** Of `Infinity − Infinity` and the like nothing can be said; a null cost sorts last. */
-function costOf(lines: readonly StockedLine[], units: number): Money | null {
-  const { currency } = lines[0];
+/** Pieces (of op amps, packages) of a line that a unit takes in all, where a candidate takes so many parts of it. */
+function piecesOf(line: StockedLine, parts: number, { elsewhere }: CandidateOpts): number {
+  const all = parts + (elsewhere?.get(line.id) ?? 0);
+  return line.kind === "op-amp" && line.type !== null ? Math.ceil(all / amplifiersIn(line.type)) : all;
+}
+
+/** Null where a price is unknown, or in another currency than that of the first line. */
+function costOf(taken: readonly StockedLine[], opts: CandidateOpts): Money | null {
+  const { currency } = taken[0];
   let amount = 0;
-  for (const line of lines) {
-    const count = lines.filter((l) => l.id === line.id).length * units;
-    const cost = unitCost(line, count);
+  for (const line of taken) {
+    const parts = taken.filter((l) => l.id === line.id).length;
+    const cost = unitCost(line, piecesOf(line, parts, opts) * (opts.units ?? 1));
     if (cost === null || line.currency !== currency) return null;
     amount += cost;
   }
@@ -89,45 +91,45 @@ function singleCandidates(role: BoardRole, lines: readonly StockedLine[], opts: 
   return lines.flatMap((line): Candidate[] => {
     if (line.kind !== role.kind || line.value === null || !(line.value > 0)) return [];
     const deviation = line.value / wanted - 1;
-    const left = availableOf(line) - units;
+    const left = leftAfter(line, piecesOf(line, 1, opts), units);
     if (Math.abs(deviation) > window + SAME_VALUE || (left < 0 && !withShort)) return [];
     return [{
       lines: [line], joined: null, value: line.value, tolerance: line.tolerance, deviation, left,
-      cost: costOf([line], units),
-      problems: [...stockProblems(line, left), ...lineProblems(role, line, opts.stress)],
-      filling: { part: partFromStock(role.part!, line.value, line.tolerance, line.id) },
+      cost: costOf([line], opts),
+      problems: [...stockProblems(line, left, opts), ...placeProblems(role, line, opts.stress)],
+      filling: { part: partFromStock(role.part!, line.value, line.tolerance, line.id, line.windingR) },
     }];
   });
 }
 
-function pairCandidates(role: BoardRole, kind: "resistor" | "capacitor", lines: readonly StockedLine[], most: number, units: number, opts: CandidateOpts): Candidate[] {
-  const { window = 0.2 } = opts;
+function pairCandidates(role: BoardRole, kind: "resistor" | "capacitor", lines: readonly StockedLine[], most: number, opts: CandidateOpts): Candidate[] {
+  const { window = 0.2, units = 1 } = opts;
   const wanted = role.value!;
   const items = lines.flatMap((line) => {
     // What is barred alone is barred as a half.
-    if (line.kind !== kind || line.value === null || !(line.value > 0) || lineProblems(role, line, opts.stress).some((p) => p.level === "fault")) return [];
-    return [{ line, value: line.value, available: availableOf(line) }];
+    if (line.kind !== kind || line.value === null || !(line.value > 0) || placeProblems(role, line, opts.stress).some((p) => p.level === "fault")) return [];
+    return [{ line, value: line.value, available: leftAfter(line, opts.elsewhere?.get(line.id) ?? 0, units) }];
   });
   return (["series", "parallel"] as const).flatMap((joined) => {
     const sums = isSum(kind, joined);
     return bestPairs(wanted, items, sums, most, units, (a, b) => lesserShare(a.value, b.value, sums) >= LEAST_SHARE).flatMap((pair): Candidate[] => {
       const deviation = pair.value / wanted - 1;
-      return Math.abs(deviation) > window + SAME_VALUE ? [] : [pairCandidate(role, pair, joined, sums, deviation, units, opts.stress)];
+      return Math.abs(deviation) > window + SAME_VALUE ? [] : [pairCandidate(role, pair, joined, sums, deviation, opts)];
     });
   });
 }
 
-function pairCandidate(role: BoardRole, pair: Pair<PairItem & { readonly line: StockedLine }>, joined: Joined, sums: boolean, deviation: number, units: number, stress: BoardStress | undefined): Candidate {
+function pairCandidate(role: BoardRole, pair: Pair<PairItem & { readonly line: StockedLine }>, joined: Joined, sums: boolean, deviation: number, opts: CandidateOpts): Candidate {
   const [a, b] = [pair.first.line, pair.second.line];
   const lines = [a, b];
   const tolerance = pairTolerance(pair.first.value, pair.second.value, a.tolerance, b.tolerance, sums);
-  const left = a.id === b.id ? availableOf(a) - 2 * units : Math.min(availableOf(a), availableOf(b)) - units;
+  const left = Math.min(...lines.map((line) => leftAfter(line, piecesOf(line, a.id === b.id ? 2 : 1, opts), opts.units ?? 1)));
   // Each half is held to the whole's voltage and heat: leakage shares a steady voltage out as it pleases.
-  const problems = lines.flatMap((line) => lineProblems(role, line, stress));
+  const problems = lines.flatMap((line) => placeProblems(role, line, opts.stress));
   const isNew = (p: Problem, index: number): boolean => problems.findIndex((q) => q.message === p.message) === index;
   const whole = partFromStock(role.part!, pair.value, tolerance, a.id);
   return {
-    lines, joined, value: pair.value, tolerance, deviation, left, cost: costOf(lines, units), problems: problems.filter(isNew),
+    lines, joined, value: pair.value, tolerance, deviation, left, cost: costOf(lines, opts), problems: problems.filter(isNew),
     filling: { part: { ...whole, second: { stock: b.id, value: pair.second.value, joined, firstValue: pair.first.value } } },
   };
 }
@@ -136,11 +138,11 @@ function opAmpCandidates(project: Project, lines: readonly StockedLine[], opts: 
   const { units = 1, withShort = false } = opts;
   return lines.flatMap((line): Candidate[] => {
     if (line.kind !== "op-amp" || line.type === null) return [];
-    const left = availableOf(line) - units;
+    const left = leftAfter(line, piecesOf(line, 1, opts), units);
     if (left < 0 && !withShort) return [];
     const name = modelName(project, line.type);
-    const cost = costOf([line], units);
-    const problems = stockProblems(line, left);
+    const cost = costOf([line], opts);
+    const problems = stockProblems(line, left, opts);
     if (name === undefined) problems.push({ level: "fault", about: "model", message: `no figures are known for a ${line.type}: give the project a model of that name first` });
     return [{
       lines: [line], joined: null, value: null, tolerance: null, deviation: 0, left, problems,
@@ -155,21 +157,8 @@ export function modelName(project: Project, type: string): string | undefined {
   return [type, type.toUpperCase(), ...Object.keys(project.opAmps ?? {}).filter((name) => name.toLowerCase() === type.toLowerCase())].find((name) => findOpAmp(project, name) !== undefined);
 }
 
-function stockProblems(line: StockedLine, left: number): Problem[] {
-  return left < 0 ? [{ level: "fault", about: "stock", message: `${-left} too few of ${line.id}: ${Math.max(0, availableOf(line))} are free` }] : [];
-}
-
-/** What is wrong with a line in a role, as far as voltage, heat and polarity go. */
-export function lineProblems(role: BoardRole, line: StockedLine, stress: BoardStress | undefined): Problem[] {
-  const at = stress?.get(role.name);
-  if (!at) return [];
-  if (role.kind === "capacitor") return [...ratingProblems(line.rating, at), ...(isPolarised(line) ? polarityProblems(line.rating, at) : [])];
-  if (role.kind === "resistor" || role.kind === "potentiometer") return powerProblems(line.rating, at);
-  if (role.kind === "inductor") return [{ level: "caution", about: "model", message: "the drawer does not know its winding resistance and self-capacitance: those of the part before are kept" }];
-  return [];
-}
-
-/** Whether anything bars it. */
-export function hasFault(candidate: Pick<Candidate, "problems">): boolean {
-  return candidate.problems.some((p) => p.level === "fault");
+function stockProblems(line: StockedLine, left: number, opts: CandidateOpts): Problem[] {
+  if (left >= 0) return [];
+  const others = opts.elsewhere?.get(line.id) ?? 0;
+  return [{ level: "fault", about: "stock", message: `${-left} too few of ${line.id}: ${Math.max(0, availableOf(line))} are free${others > 0 ? `, and other places of the board take it too` : ""}` }];
 }

@@ -1,6 +1,6 @@
 /** One cell of a table, read as a person would: trade notation, signs, units, either decimal mark. */
 import { parseValue } from "../units.ts";
-import type { PriceBreak, StockKind } from "./stock.ts";
+import type { Money, PriceBreak, StockKind } from "./stock.ts";
 
 /** What a cell holds, or why it cannot be taken. */
 export type Cell<T> = { readonly ok: true; readonly value: T } | { readonly ok: false; readonly message: string };
@@ -55,6 +55,12 @@ export function readValue(text: string, unit: string, quantity: "resistance" | "
   const parsed = parseValue(isBareNumber(text) ? text + unit : text, quantity);
   if (!parsed.ok) return refused(parsed.message);
   return parsed.value > 0 ? taken(parsed.value) : refused(`the value must be above 0, got “${text}”`);
+}
+
+/** A coil's winding resistance, Ω. */
+export function readWinding(text: string, unit: string): Cell<number> {
+  const read = readValue(text, unit, "resistance");
+  return read.ok ? read : refused(`winding resistance: ${read.message}`);
 }
 
 /** Letters of IEC 60062:2016 for symmetrical tolerances. */
@@ -119,12 +125,6 @@ export function readQuantity(text: string): Cell<number> {
 }
 
 const CURRENCY_SIGNS: Record<string, string> = { "€": "EUR", $: "USD", "£": "GBP", "¥": "JPY", "₹": "INR" };
-
-export interface Money {
-  readonly amount: number;
-  /** ISO 4217; empty where the cell does not say. */
-  readonly currency: string;
-}
 
 /** An amount of money with or without its currency: `€0.10`, `0,10 EUR`, `$1,234.50`. */
 export function readMoney(text: string): Cell<Money> {

@@ -19,13 +19,17 @@ export function lineProblems(line: StockLine): readonly string[] {
     if (line.value !== null) complain("an op amp has a type, and no value");
     if (line.type === null || line.type.trim() === "") complain("an op amp needs its type, such as TL072");
   } else {
-    if (line.value === null) complain(`a ${line.kind} needs a value`);
+    if (line.value === null) complain(`${aKind(line.kind)} needs a value`);
     else if (!(line.value > 0 && Number.isFinite(line.value))) complain(`its value must be a number above 0, got ${line.value}`);
-    if (line.type !== null) complain(`only op amps have a type, a ${line.kind} has none`);
+    if (line.type !== null) complain(`only op amps have a type, ${aKind(line.kind)} has none`);
   }
   if (line.tolerance !== null && !(line.tolerance >= 0 && line.tolerance <= 1)) complain(`its tolerance must be from 0 to 100 %, got ${percent(line.tolerance)}`);
   if (line.rating !== null && !(line.rating > 0 && Number.isFinite(line.rating))) complain(`its rating must be a number above 0, got ${line.rating}`);
   if (line.temperatureCoefficient !== null && !(Math.abs(line.temperatureCoefficient) <= 0.1)) complain("its temperature coefficient must be from −100 000 to 100 000 ppm/K");
+  if (line.windingR !== null) {
+    if (line.kind !== "inductor") complain(`only inductors have a winding resistance, ${aKind(line.kind)} has none`);
+    else if (!(line.windingR > 0 && Number.isFinite(line.windingR))) complain(`its winding resistance must be a number above 0, got ${line.windingR}`);
+  }
   if (line.currency !== "" && !/^[A-Z]{3}$/.test(line.currency)) complain(`its currency must be a code of three letters, such as EUR, got “${line.currency}”`);
   line.prices.forEach(({ from, unitCost }, index) => {
     if (!(unitCost >= 0 && Number.isFinite(unitCost))) complain(`its price from ${from} must be 0 or more, got ${unitCost}`);
@@ -34,6 +38,10 @@ export function lineProblems(line: StockLine): readonly string[] {
     if (before === undefined ? from !== 1 : from <= before.from) complain(before === undefined ? "its first price must hold from 1 piece" : "its prices must go up in number of pieces");
   });
   return problems;
+}
+
+function aKind(kind: StockKind): string {
+  return kind === "op-amp" ? "an op amp" : kind === "inductor" ? "an inductor" : `a ${kind}`;
 }
 
 function percent(fraction: number): string {

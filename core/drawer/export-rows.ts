@@ -6,7 +6,7 @@ import type { StockedLine } from "./stock.ts";
 
 /** The columns of an export, in order, under the names that an import knows them by. */
 const COLUMNS = [
-  ["id", "id"], ["kind", "kind"], ["value", "value"], ["type", "type"], ["tolerance", "tolerance"], ["rating", "rating"], ["technology", "technology"], ["temperature coefficient", "temperatureCoefficient"],
+  ["id", "id"], ["kind", "kind"], ["value", "value"], ["type", "type"], ["tolerance", "tolerance"], ["rating", "rating"], ["technology", "technology"], ["temperature coefficient", "temperatureCoefficient"], ["winding resistance", "windingR"],
   ["package", "package"], ["location", "location"], ["quantity", "quantity"], ["prices", "prices"], ["currency", "currency"], ["supplier", "supplier"], ["order code", "orderCode"], ["notes", "notes"], ["retired", "retired"],
 ] as const satisfies readonly (readonly [string, ImportField])[];
 
@@ -35,6 +35,7 @@ export function exportRow(line: StockedLine & { readonly retired: boolean }): re
     line.rating === null ? "" : exact(line.rating, `${trimmed(line.rating)}${RATING_UNIT[line.kind] ?? ""}`, (text) => readRating(text, "")),
     line.technology,
     line.temperatureCoefficient === null ? "" : exact(line.temperatureCoefficient, `${trimmed(line.temperatureCoefficient * 1e6)}ppm`, (text) => readCoefficient(text, "")),
+    line.windingR === null ? "" : exact(line.windingR, editText(line.windingR, "resistance"), (text) => parseValue(text, "resistance")),
     line.package,
     line.location,
     String(line.quantity),

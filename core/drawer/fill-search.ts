@@ -45,8 +45,8 @@ const MOST_PASSES = 12;
 
 /**
  * Chooses a candidate for each role so that the error of the response is least, with NEARNESS·Σ ln(value/wanted)² on top,
- * each line serving no more roles than it has pieces for. Few possibilities: all are simulated. Many: the error is taken as a quadratic form in ln(value), from
- * one simulation a role; block by block the best combination is picked until none gets better; then exact simulation
+ * each line serving no more roles than it has pieces for. Few possibilities: all are simulated. Many: the error is taken
+ * as a quadratic form in ln(value), from one simulation a role, with what a coil's winding does on top; block by block the best combination is picked until none gets better; then exact simulation
  * decides among the nearest combinations of every block, and exchanges between blocks that want the same line are tried.
  */
 export class FillSearch {
@@ -58,6 +58,8 @@ export class FillSearch {
   readonly #original: readonly Filling[];
   readonly #delta: readonly Float64Array[];
   readonly #extra: readonly Float64Array[];
+  /** dB², beside the quadratic form: what else than its value a candidate does to the response. */
+  readonly #aside: readonly Float64Array[];
   readonly #cost: readonly Float64Array[];
   readonly #used = new Map<string, number>();
   #choice: number[];
@@ -83,7 +85,14 @@ export class FillSearch {
         return NEARNESS * Math.log1p(c.deviation) ** 2 + (tolerance > wanted + 1e-12 ? WIDER_TOLERANCE * tolerance : 0) + (isClassTwo ? CLASS_TWO : 0) + PER_PLACE * order.indexOf(i);
       });
     });
+    this.#aside = roles.map(({ role, candidates }) => Float64Array.from(candidates, (c) => (role.kind === "inductor" ? this.#windingError(role, c) : 0)));
     this.#choice = roles.map(() => -1);
+  }
+
+  /** What a coil's winding resistance alone does, by simulation: it is not on the axis of values. */
+  #windingError(role: BoardRole, { filling }: Candidate): number {
+    if (!("part" in filling) || filling.part.windingR === role.part!.windingR) return 0;
+    return this.#error.of(this.#trial.with(role, { part: { ...filling.part, value: role.part!.value } }));
   }
 
   run(): Found {
@@ -243,7 +252,7 @@ export class FillSearch {
         if (!this.#canTake(role, c)) continue;
         seen++;
         hasTaken = true;
-        take(c, this.#extra[role][c] + this.#price * this.#cost[role][c]);
+        take(c, this.#extra[role][c] + this.#aside[role][c] + this.#price * this.#cost[role][c]);
       }
       if (!hasTaken || group.length > 1) take(-1, EMPTY);
     };

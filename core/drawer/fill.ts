@@ -4,11 +4,12 @@ import type { Project } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
 import { compileBoard } from "../net/star.ts";
 import { countLines, sumMoney } from "./bill.ts";
-import { candidatesFor, compareText, hasFault, type Candidate, type Money } from "./candidates.ts";
-import { FillSearch, type OpenRole } from "./fill-search.ts";
+import { candidatesFor, compareText, type Candidate } from "./candidates.ts";
+import { FillSearch, NEARNESS, type OpenRole } from "./fill-search.ts";
+import { hasFault, isSound, placeProblems } from "./place-problems.ts";
 import { amplifiersIn, boardRoles, filledProject, fillingPatch, onProject, type BoardRole, type Filling } from "./roles.ts";
 import { boardStress, type BoardStress, type Problem } from "./stress.ts";
-import { availableOf, unitCost, type StockedLine } from "./stock.ts";
+import { availableOf, leftAfter, unitCost, type Money, type StockedLine } from "./stock.ts";
 import { ResponseError, TrialBoard } from "./trial.ts";
 
 export interface FillOpts {
@@ -18,7 +19,7 @@ export interface FillOpts {
   readonly window?: number;
   /** Most that the parts of a unit may cost. Parts without a price in this currency are then left out. */
   readonly ceiling?: Money;
-  /** Roles that name a line of the drawer with enough pieces keep it. */
+  /** Roles that name a line of the drawer with enough pieces keep it, unless something bars it there. */
   readonly keep?: boolean;
   /** False: never two pieces for one value. By default, where no single piece does. */
   readonly pairs?: boolean;
@@ -34,7 +35,12 @@ export interface PlacedRole {
   readonly candidate: Candidate | null;
   readonly line: StockedLine;
   readonly problems: readonly Problem[];
+  /** Stock left after this build; of two lines the lesser. */
+  readonly left: number;
 }
+
+/** Before it is known what the other roles take. */
+type Placing = Omit<PlacedRole, "left">;
 
 export interface UnplacedRole {
   readonly role: BoardRole;
@@ -60,9 +66,10 @@ export interface FillResult {
 
 /**
  * Fills a board from the drawer: a line for every role, tracks and op amps too, so that the response departs least from
- * that of the board as it stands. Pieces have to be free for every unit; parts that ratings or polarity bar are not
- * taken; two pieces make a value where no single one does; parts with a caution come last. Roles without a line keep their value and are named with
- * the reason. Same input, same result.
+ * that of the board as it stands. Pieces have to be free for every unit; parts that ratings, polarity or a track's taper
+ * bar are not taken; two pieces make a value where no single one does; parts with a caution come last. A coil comes with
+ * the winding resistance that its line states. Roles without a line keep their value and are named with the reason. Same
+ * input, same result. `lines` are as the build sees them: `freeForBuild`.
  */
 export function fillBoard(board: Board, lines: readonly StockedLine[], opts: FillOpts = {}): FillResult {
   const { units = 1, ceiling } = opts;
@@ -71,31 +78,40 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
   const roles = boardRoles(board).filter((r) => opts.only === undefined || opts.only.includes(r.name));
   const free = new Map(lines.map((l) => [l.id, Math.floor(Math.max(0, availableOf(l)) / units)]));
   const byId = new Map(lines.map((l) => [l.id, l]));
-  const placed: PlacedRole[] = [];
+  const placed: Placing[] = [];
   const unplaced: UnplacedRole[] = [];
   const isPriced = (line: StockedLine): boolean => ceiling === undefined || (line.currency === ceiling.currency && unitCost(line, units) !== null);
 
   let open = roles.filter((r) => r.kind !== "op-amp");
-  if (opts.keep) open = open.filter((role) => !isKept(role, byId, free, placed));
+  if (opts.keep) open = open.filter((role) => !isKept(role, byId, free, placed, stress));
   const ampsCost = placeOpAmps(roles.filter((r) => r.kind === "op-amp"), lines, { units, isPriced, placed, unplaced });
-  const keptCost = placed.filter((p) => p.role.kind !== "op-amp").reduce((sum, p) => sum + (unitCost(p.line, units) ?? 0), 0);
+  const kept = placed.filter((p) => p.role.kind !== "op-amp").flatMap((p) => ownLines(p.role, byId) ?? []);
+  const keptCost = kept.reduce((sum, line) => sum + (line.currency === ceiling?.currency ? (unitCost(line, units) ?? 0) : 0), 0);
 
+  const trial = new TrialBoard(board, values);
+  const target = compileBoard(board, values);
+  const measure = new ResponseError(target);
+  /** A coil is its winding too: of two that are as near in value, one may do and the other not. */
+  const byResponse = (role: BoardRole, candidates: readonly Candidate[]): Candidate[] =>
+    candidates
+      .slice(0, MOST_COILS)
+      .map((candidate) => ({ candidate, error: measure.of(trial.with(role, candidate.filling)) + NEARNESS * Math.log1p(candidate.deviation) ** 2 }))
+      .toSorted((a, b) => a.error - b.error)
+      .map(({ candidate }) => candidate);
   const offers = open.map((role): OpenRole => {
     const soundOf = (pairs: boolean): Candidate[] =>
       candidatesFor(board.project, role, lines, { window: opts.window ?? 0.2, units, stress, pairs, most: pairs ? MOST_PAIRS : Infinity }).filter((c) => !hasFault(c) && c.lines.every((l) => isPriced(l) && (free.get(l.id) ?? 0) > 0));
-    const single = soundOf(false);
-    const quiet = single.filter((c) => c.problems.length === 0);
+    const single = role.kind === "inductor" ? byResponse(role, soundOf(false)) : soundOf(false);
+    const quiet = single.filter(isSound);
     const isNear = quiet.some((c) => Math.abs(c.deviation) <= SINGLE_ENOUGH);
     if (quiet.length > 0 && (isNear || opts.pairs === false)) return { role, candidates: quiet.slice(0, MOST_CANDIDATES) };
     // Two pieces beside single ones that are far off; a caution where neither is sound.
-    const pairs = opts.pairs === false ? [] : soundOf(true).filter((c) => c.joined !== null && c.problems.length === 0);
+    const pairs = opts.pairs === false ? [] : soundOf(true).filter((c) => c.joined !== null && isSound(c));
     // Some of each: pairs are many, and all of them may want the same few pieces.
     const sound = [...pairs.slice(0, MOST_CANDIDATES - Math.min(quiet.length, MOST_CANDIDATES / 2)), ...quiet.slice(0, MOST_CANDIDATES)].slice(0, MOST_CANDIDATES);
     sound.sort((x, y) => Math.abs(x.deviation) - Math.abs(y.deviation));
     return { role, candidates: sound.length > 0 ? sound : single.slice(0, MOST_CANDIDATES) };
   });
-  const trial = new TrialBoard(board, values);
-  const target = compileBoard(board, values);
   const searched = offers.filter((o) => o.candidates.length > 0);
   const search = new FillSearch(trial, target, searched, { capacity: free, ceiling: ceiling && ceiling.amount - ampsCost - keptCost });
   const found = search.run();
@@ -117,13 +133,14 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
   const inOrder = <T extends { readonly role: BoardRole }>(rows: T[]): T[] => rows.toSorted((a, b) => order.get(a.role.name)! - order.get(b.role.name)!);
   const project = filledProject(board.project, fillings);
   const cost = costOfUnit(board, project, placed, lines, units);
-  const error = new ResponseError(target);
-  const gains = error.gains(trial.compiled);
+  const gains = measure.gains(trial.compiled);
+  const { counted } = countLines(boardRoles(onProject(board, project)), lines);
+  const leftOf = ({ candidate, line }: Placing): number => Math.min(...(candidate?.lines ?? [line]).map((one) => leftAfter(one, counted.get(one)?.perUnit ?? 0, units)));
   const spent = cost.find((m) => m.currency === ceiling?.currency)?.amount ?? 0;
   return {
     project, patch: fillingPatch(board.project, fillings),
-    placed: inOrder(placed), unplaced: inOrder(unplaced),
-    error: Math.sqrt(found.error), worst: gains.reduce((most, g, i) => Math.max(most, Math.abs(g - error.target[i])), 0),
+    placed: inOrder(placed).map((p) => ({ ...p, left: leftOf(p) })), unplaced: inOrder(unplaced),
+    error: Math.sqrt(found.error), worst: gains.reduce((most, g, i) => Math.max(most, Math.abs(g - measure.target[i])), 0),
     isExhaustive: found.isExhaustive, cost, isWithinCeiling: ceiling === undefined || spent <= ceiling.amount * (1 + 1e-9),
   };
 }
@@ -131,20 +148,25 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
 /** Nearest first; further ones would hardly be taken. */
 const MOST_CANDIDATES = 16;
 const MOST_PAIRS = 64;
+const MOST_COILS = 64;
 /** A single part this near to the wanted value, as a fraction, needs no second one beside it. */
 const SINGLE_ENOUGH = 0.05;
 
-/** Keeps a role's own line where it has one with a piece left, and takes that piece out of what is free. */
-function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: PlacedRole[]): boolean {
-  const line = role.stock === null ? undefined : byId.get(role.stock);
-  const second = role.part?.second?.stock;
-  const wanted = [role.stock, ...(second === undefined ? [] : [second])];
-  if (!line || role.part?.second !== undefined && second === undefined) return false;
-  const need = new Map<string, number>();
-  for (const id of wanted) if (id !== null) need.set(id, (need.get(id) ?? 0) + 1);
-  if ([...need].some(([id, count]) => (free.get(id) ?? 0) < count)) return false;
-  for (const [id, count] of need) free.set(id, free.get(id)! - count);
-  placed.push({ role, candidate: null, line, problems: [] });
+/** The lines that a role names, two for a pair; null where the drawer does not have all of them. */
+function ownLines(role: BoardRole, byId: ReadonlyMap<string, StockedLine>): readonly StockedLine[] | null {
+  const ids = role.part?.second === undefined ? [role.stock] : [role.stock, role.part.second.stock ?? null];
+  const lines = ids.flatMap((id) => (id === null ? [] : (byId.get(id) ?? [])));
+  return lines.length === ids.length ? lines : null;
+}
+
+/** Keeps a role's own lines where they have pieces left and nothing bars them, and takes those pieces out of what is free. */
+function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: Placing[], stress: BoardStress): boolean {
+  const own = ownLines(role, byId);
+  if (own === null) return false;
+  const problems = own.flatMap((line) => placeProblems(role, line, stress)).filter((p) => p.about !== "winding");
+  if (hasFault({ problems }) || own.some((line) => free.get(line.id)! < own.filter((other) => other === line).length)) return false;
+  for (const line of own) free.set(line.id, free.get(line.id)! - 1);
+  placed.push({ role, candidate: null, line: own[0], problems });
   return true;
 }
 
@@ -152,7 +174,7 @@ function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: M
 function placeOpAmps(
   roles: readonly BoardRole[],
   lines: readonly StockedLine[],
-  { units, isPriced, placed, unplaced }: { readonly units: number; readonly isPriced: (line: StockedLine) => boolean; readonly placed: PlacedRole[]; readonly unplaced: UnplacedRole[] },
+  { units, isPriced, placed, unplaced }: { readonly units: number; readonly isPriced: (line: StockedLine) => boolean; readonly placed: Placing[]; readonly unplaced: UnplacedRole[] },
 ): number {
   let cost = 0;
   for (const type of new Set(roles.map((r) => r.type!))) {
@@ -196,7 +218,7 @@ function reasonFor(board: Board, role: BoardRole, lines: readonly StockedLine[],
   return opts.ceiling ? `no price in ${opts.ceiling.currency} for what fits` : `every piece of ${first.lines[0].id} is taken`;
 }
 
-function costOfUnit(board: Board, project: Project, placed: readonly PlacedRole[], lines: readonly StockedLine[], units: number): Money[] {
+function costOfUnit(board: Board, project: Project, placed: readonly Placing[], lines: readonly StockedLine[], units: number): Money[] {
   const names = new Set(placed.map((p) => p.role.name));
   const roles = boardRoles(onProject(board, project)).filter((r) => names.has(r.name));
   return sumMoney([...countLines(roles, lines).counted].map(([line, { perUnit }]) => {

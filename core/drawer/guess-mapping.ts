@@ -10,10 +10,11 @@ const HEADERS: readonly (readonly [ImportField, RegExp])[] = [
   ["tolerance", /^(?:tol|tolerance|accuracy)$/],
   ["temperatureCoefficient", /^(?:tc|tcr|tcc|tempco|tempcoeff?|temperaturecoefficient|ppm(?:k|c)?)$/],
   ["rating", /^(?:rating|rated(?:voltage|power)?|voltage(?:rating)?|power(?:rating)?|workingvoltage|volts?|watts?|wattage|vmax|pmax)$/],
+  ["windingR", /^(?:winding(?:resistance|r)?|dcr|rdc|dcresistance|coilresistance)(?:max|typ)?$/],
   ["quantity", /^(?:(?:stock|current|total)?(?:qty|quantity|count|level)|stock|instock|onhand|amount|pieces|pcs|number|available|stocked)$/],
   ["location", /^(?:location|place|bin|box|shelf|drawer|storage|where|position)$/],
   ["package", /^(?:package|pkg|case|size|footprint|pitch|leadpitch|leadspacing|form|housing|mounting)$/],
-  ["technology", /^(?:technology|tech|dielectric|material|construction|series|composition)$/],
+  ["technology", /^(?:technology|tech|dielectric|material|construction|series|composition|taper|law)$/],
   ["supplier", /^(?:supplier|vendor|shop|source|distributor|seller|boughtfrom|dealer)$/],
   ["orderCode", /^(?:ordercode|orderno|ordernumber|order|supplierpart(?:no|number)?|vendorpart(?:no|number)?|sku|articleno|article|itemno|itemcode|stockno|catalogue(?:no|number)?|cat(?:no)?)$/],
   ["currency", /^(?:currency|curr|cur)$/],
@@ -79,6 +80,7 @@ function unitOf(header: string, field: ImportField, cells: readonly string[]): s
   const bare = cells.filter(isBareNumber).map((cell) => Math.abs(Number(cell.replace(",", ".").replace("−", "-"))));
   switch (field) {
     case "value":
+    case "windingR":
     case "rating":
       return own === "%" || own.startsWith("ppm") ? "" : own;
     case "tolerance":

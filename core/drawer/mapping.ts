@@ -2,7 +2,7 @@ import type { StockKind } from "./stock.ts";
 
 /** What a column of a table can stand for. `price` is one price break a column, `prices` all breaks in one cell. */
 export const IMPORT_FIELDS = [
-  "id", "kind", "value", "type", "tolerance", "rating", "technology", "temperatureCoefficient", "package", "location",
+  "id", "kind", "value", "type", "tolerance", "rating", "technology", "temperatureCoefficient", "windingR", "package", "location",
   "quantity", "prices", "price", "currency", "supplier", "orderCode", "notes", "retired",
 ] as const;
 export type ImportField = (typeof IMPORT_FIELDS)[number];

@@ -1,8 +1,8 @@
-import { isBareNumber, kindOfValue, readCoefficient, readCurrency, readKind, readMoney, readPrices, readQuantity, readRating, readTick, readTolerance, readValue, type Cell } from "./cells.ts";
+import { isBareNumber, kindOfValue, readCoefficient, readCurrency, readKind, readMoney, readPrices, readQuantity, readRating, readTick, readTolerance, readValue, readWinding, type Cell } from "./cells.ts";
 import { lineProblems, QUANTITY_OF } from "./check-line.ts";
 import { makeId } from "./make-id.ts";
 import type { ColumnUse, ImportField, ImportMapping } from "./mapping.ts";
-import type { PriceBreak, StockKind, StockLine } from "./stock.ts";
+import { emptyLine, type PriceBreak, type StockKind, type StockLine } from "./stock.ts";
 
 /** Fields that the table says something about; a known line keeps the others. */
 export type RowFields = { -readonly [F in keyof Omit<StockLine, "id">]?: StockLine[F] } & { retired?: boolean };
@@ -53,6 +53,7 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
   if (used.has("tolerance")) fields.tolerance = read(text("tolerance"), (cell) => readTolerance(cell, unit("tolerance")));
   if (used.has("rating")) fields.rating = read(text("rating"), (cell) => readRating(cell, unit("rating")));
   if (used.has("temperatureCoefficient")) fields.temperatureCoefficient = read(text("temperatureCoefficient"), (cell) => readCoefficient(cell, unit("temperatureCoefficient")));
+  if (used.has("windingR")) fields.windingR = read(text("windingR"), (cell) => readWinding(cell, unit("windingR")));
   for (const field of TEXTS) {
     if (!used.has(field)) continue;
     fields[field] = text(field);
@@ -64,10 +65,7 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
   const quantity = used.has("quantity") ? read(text("quantity"), readQuantity) : null;
 
   const id = text("id");
-  const whole: StockLine = {
-    id, kind: kind ?? "resistor", value: null, type: null, tolerance: null, rating: null, technology: "", temperatureCoefficient: null, package: "", location: "", prices: [], currency: "", supplier: "", orderCode: "", notes: "",
-    ...withoutMark(fields),
-  };
+  const whole: StockLine = { ...emptyLine(id, kind ?? undefined), ...withoutMark(fields) };
   const madeId = id === "" && problems.length === 0 ? makeId(whole) : "";
   const line = { ...whole, id: id === "" ? madeId : id };
   if (problems.length === 0) problems.push(...lineProblems(line));

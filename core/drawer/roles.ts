@@ -2,7 +2,7 @@ import { BLOCKS } from "../blocks/index.ts";
 import { bareOf, blockName, TRACK } from "../model/edit.ts";
 import { BUILT_IN_OP_AMPS, IDEAL } from "../model/op-amps.ts";
 import { patchBetween, type Patch } from "../model/patch.ts";
-import { partsOf, type Block, type Part, type Project, type SupplyReference } from "../model/project.ts";
+import { partsOf, type Block, type Part, type Project, type SliderLaw, type SupplyReference } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
 import type { StockKind } from "./stock.ts";
 
@@ -26,6 +26,8 @@ export interface BoardRole {
   /** Op amps: the type on the board. */
   readonly type: string | null;
   readonly part: Part | null;
+  /** Tracks: the law of their slider; null otherwise. */
+  readonly law: SliderLaw | null;
   /** Stock line that the project names for it. */
   readonly stock: string | null;
 }
@@ -45,21 +47,28 @@ export function boardRoles(board: Board): BoardRole[] {
   return roles;
 }
 
-function partRole(block: string, role: string, label: string, kind: StockKind, band: string | null, part: Part): BoardRole {
-  return { name: `${block === DIVIDER ? "reference" : block}.${role === TRACK ? "slider" : role}`, block, role, label, kind, band, value: part.value, type: null, part, stock: part.stock ?? null };
+function partRole(block: string, role: string, label: string, kind: StockKind, band: string | null, part: Part, law: SliderLaw | null = null): BoardRole {
+  return { name: `${block === DIVIDER ? "reference" : block}.${role === TRACK ? "slider" : role}`, block, role, label, kind, band, value: part.value, type: null, part, law, stock: part.stock ?? null };
 }
 
 function opAmpRole(block: string, label: string, band: string | null, type: string, stock: string | undefined): BoardRole {
-  return { name: `${block === DIVIDER ? "reference" : block}.opAmp`, block, role: "opAmp", label, kind: "op-amp", band, value: null, type, part: null, stock: stock ?? null };
+  return { name: `${block === DIVIDER ? "reference" : block}.opAmp`, block, role: "opAmp", label, kind: "op-amp", band, value: null, type, part: null, law: null, stock: stock ?? null };
 }
 
 function blockRoles(block: Block, band: string | null): BoardRole[] {
   const { roles, hasOpAmp, hasSlider } = BLOCKS[block.kind];
   const parts = partsOf(block);
   const found = roles.flatMap(({ role, label, quantity }) => (parts[role] ? [partRole(block.id, role, `${blockName(block)}: ${label}`, KIND_OF[quantity], band, parts[role])] : []));
-  if (hasSlider && block.slider) found.push(partRole(block.id, TRACK, `${blockName(block)}: track`, "potentiometer", band, block.slider.track));
+  if (hasSlider && block.slider) found.push(partRole(block.id, TRACK, `${blockName(block)}: track`, "potentiometer", band, block.slider.track, block.slider.law ?? "linear"));
   if (hasOpAmp && block.opAmp !== undefined && block.opAmp !== IDEAL) found.push(opAmpRole(block.id, `${blockName(block)}: op amp`, band, block.opAmp, block.opAmpStock));
   return found;
+}
+
+/** Parts that roles take of each line, both pieces of a pair; of op amps, amplifiers. */
+export function partsByLine(roles: readonly BoardRole[]): ReadonlyMap<string, number> {
+  const counts = new Map<string, number>();
+  for (const { stock, part } of roles) for (const id of [stock, part?.second?.stock ?? null]) if (id !== null) counts.set(id, (counts.get(id) ?? 0) + 1);
+  return counts;
 }
 
 /** A role by its name; `b1k.track` is understood as `b1k.slider` is. */
@@ -104,10 +113,10 @@ export function fillingPatch(project: Project, fillings: Parameters<typeof fille
   return patchBetween(project, filledProject(project, fillings));
 }
 
-/** A part with another value, tolerance and stock line; a coil keeps its winding. */
-export function partFromStock(old: Part, value: number, tolerance: number | null, stock: string): Part {
+/** A part with another value, tolerance and stock line. A coil gets the winding that the line states, and else keeps its own. */
+export function partFromStock(old: Part, value: number, tolerance: number | null, stock: string, windingR: number | null = null): Part {
   const { tolerance: _gone, ...rest } = bareOf(old);
-  return { ...rest, value, ...(tolerance === null || tolerance >= 1 ? {} : { tolerance }), stock };
+  return { ...rest, value, ...(tolerance === null || tolerance >= 1 ? {} : { tolerance }), stock, ...(windingR === null ? {} : { windingR }) };
 }
 
 /** Op amps in a package of a type; 1 where the type is not in the built-in table. */

@@ -9,6 +9,13 @@ export interface PriceBreak {
   readonly unitCost: number;
 }
 
+/** An amount of money; different currencies are never added. */
+export interface Money {
+  readonly amount: number;
+  /** ISO 4217; empty where a table does not say. */
+  readonly currency: string;
+}
+
 /** A stock line: one sort of part, as bought. SI units. */
 export interface StockLine {
   /** The user's own name for it, unique, such as `R-100K-MF25`; projects refer to it in a part's `stock`. */
@@ -22,10 +29,15 @@ export interface StockLine {
   readonly tolerance: number | null;
   /** W for resistors and potentiometers, V for capacitors; null where unknown or without meaning. */
   readonly rating: number | null;
-  /** film, electrolytic, C0G, X7R, metal film, … as the user writes it; `electrolytic` and `tantalum` are polarised. */
+  /**
+   * film, electrolytic, C0G, X7R, metal film, … as the user writes it; `electrolytic` and `tantalum` are polarised. A track's
+   * taper stands here too: `carbon, linear`, `logarithmic`, `reverse log`, `power law 0.5` (see `taperOf`).
+   */
   readonly technology: string;
   /** Relative per kelvin, 50e-6 for 50 ppm/K. */
   readonly temperatureCoefficient: number | null;
+  /** Inductors: winding resistance, Ω; null where unknown, and for all other kinds. */
+  readonly windingR: number | null;
   /** Package or lead pitch. */
   readonly package: string;
   readonly location: string;
@@ -36,6 +48,13 @@ export interface StockLine {
   readonly supplier: string;
   readonly orderCode: string;
   readonly notes: string;
+}
+
+/** A line with nothing else said about it. */
+export function emptyLine(id: string, kind: StockKind = "resistor"): StockLine {
+  return {
+    id, kind, value: null, type: null, tolerance: null, rating: null, technology: "", temperatureCoefficient: null, windingR: null, package: "", location: "", prices: [], currency: "", supplier: "", orderCode: "", notes: "",
+  };
 }
 
 /** A line with what the ledger makes of it. */
@@ -74,9 +93,19 @@ export interface StockMovement {
   readonly note: string;
 }
 
+/** Lines as a build sees them: the pieces that it holds itself, by line id, are there for it. */
+export function freeForBuild<T extends StockedLine>(lines: readonly T[], held: ReadonlyMap<string, number>): T[] {
+  return lines.map((line) => (held.has(line.id) ? { ...line, reserved: line.reserved - held.get(line.id)! } : line));
+}
+
 /** Pieces that nobody has spoken for. */
 export function availableOf(line: StockedLine): number {
   return line.quantity - line.reserved;
+}
+
+/** Stock left after a build: the pieces that are free before it, less what all its units take; below 0 where some are missing. */
+export function leftAfter(line: StockedLine, perUnit: number, units: number): number {
+  return availableOf(line) - perUnit * units;
 }
 
 /** Unit cost when buying or taking a number of them; null where unknown. */

@@ -56,17 +56,22 @@ export const MOST_REVERSE = { always: 0.5, onPeaks: 2, ofRating: 0.1 } as const;
 /** Below this much spare voltage or power, as part of the rating, a part is held to be close to its limit. */
 const LEAST_SPARE = 0.2;
 
-/** What stands beside every result of these checks. */
+/** What stands beside every result of the checks of voltage, polarity and heat. */
 export const RATING_CAUTION = "Worked out for the board as drawn, at rest and just short of clipping. Switching on, faults and the maker's own rules can ask for more: good practice and the maker's sheet decide.";
 
 export interface Problem {
-  /** A fault bars the part from this place; a caution is for a person to weigh. */
-  readonly level: "fault" | "caution";
-  readonly about: "rating" | "polarity" | "power" | "stock" | "model" | "kind" | "value";
+  /** A fault bars the part from this place; a caution is for a person to weigh; a note says what is not known and weighs nothing. */
+  readonly level: "fault" | "caution" | "note";
+  readonly about: "rating" | "polarity" | "power" | "stock" | "model" | "kind" | "value" | "taper" | "winding";
   readonly message: string;
 }
 
 const volts = (v: number): string => `${Number(Math.abs(v).toPrecision(3))} V`;
+
+/** Whether the caution belongs beside these. */
+export function needsRatingCaution(problems: readonly Problem[]): boolean {
+  return problems.some(({ about }) => about === "rating" || about === "polarity" || about === "power");
+}
 
 /** Voltage against rating. */
 export function ratingProblems(rating: number | null, stress: PartStress): Problem[] {

@@ -1,18 +1,24 @@
 import type { Bill } from "../../core/drawer/bill.ts";
+import type { listedProblems } from "../../core/drawer/board-problems.ts";
 import { QUANTITY_OF } from "../../core/drawer/check-line.ts";
-import { RATING_CAUTION } from "../../core/drawer/stress.ts";
 import { formatValue } from "../../core/units.ts";
-import type { Finding } from "./findings.ts";
 import { KIND_NAMES, lineName } from "./line-text.ts";
 import { moneysText, sumText } from "./swap-text.ts";
+import { ProblemList } from "./ProblemList.tsx";
+import { TableHead } from "./TableHead.tsx";
 
 /** The bill of a build: shopping list by supplier, what has no line, what is to be weighed, and every line that is taken. */
-export function BillTables({ bill, findings }: { readonly bill: Bill; readonly findings: readonly Finding[] }) {
+export function BillTables({ bill, findings }: { readonly bill: Bill; readonly findings: ReturnType<typeof listedProblems> }) {
   return (
     <>
       {bill.shopping.length > 0 && <Shopping bill={bill} />}
       {bill.unassigned.length > 0 && <Unassigned bill={bill} />}
-      {findings.length > 0 && <Findings findings={findings} />}
+      {findings.length > 0 && (
+        <section aria-label="To weigh">
+          <h3>To weigh</h3>
+          <ProblemList found={findings} />
+        </section>
+      )}
       {bill.rows.length > 0 && <Rows bill={bill} />}
     </>
   );
@@ -27,21 +33,7 @@ function Shopping({ bill }: { readonly bill: Bill }) {
           <caption>
             {group.supplier === "" ? "No supplier named" : group.supplier}: {moneysText(group.cost)}
           </caption>
-          <thead>
-            <tr>
-              <th scope="col">line</th>
-              <th scope="col">order code</th>
-              <th scope="col" className="is-number">
-                missing
-              </th>
-              <th scope="col" className="is-number">
-                buy
-              </th>
-              <th scope="col" className="is-number">
-                cost
-              </th>
-            </tr>
-          </thead>
+          <TableHead columns={["line", "order code", { figure: "missing" }, { figure: "buy" }, { figure: "cost" }]} />
           <tbody>
             {group.items.map((item) => (
               <tr key={item.line.id}>
@@ -88,47 +80,12 @@ function Unassigned({ bill }: { readonly bill: Bill }) {
   );
 }
 
-function Findings({ findings }: { readonly findings: readonly Finding[] }) {
-  return (
-    <section aria-label="Ratings and polarity">
-      <h3>Ratings and polarity</h3>
-      <ul className="report-list is-caution">
-        {findings.map(({ role, line, problem }) => (
-          <li key={`${role.name} ${line.id} ${problem.message}`}>
-            {problem.level === "fault" ? "✕" : "⚠"} <strong>{role.label}</strong>, {line.id}: {problem.message}
-          </li>
-        ))}
-      </ul>
-      <p className="caution">{RATING_CAUTION}</p>
-    </section>
-  );
-}
-
 function Rows({ bill }: { readonly bill: Bill }) {
   return (
     <section aria-label="Parts taken">
       <h3>Parts taken</h3>
       <table className="list-table">
-        <thead>
-          <tr>
-            <th scope="col">line</th>
-            <th scope="col" className="is-number">
-              a unit
-            </th>
-            <th scope="col" className="is-number">
-              all
-            </th>
-            <th scope="col" className="is-number">
-              free now
-            </th>
-            <th scope="col" className="is-number">
-              after
-            </th>
-            <th scope="col" className="is-number">
-              cost
-            </th>
-          </tr>
-        </thead>
+        <TableHead columns={["line", { figure: "a unit" }, { figure: "all" }, { figure: "free now" }, { figure: "left" }, { figure: "cost" }]} />
         <tbody>
           {bill.rows.map((row) => (
             <tr key={row.line.id} className={row.short > 0 ? "is-short" : undefined}>

@@ -1,6 +1,7 @@
 import { useCallback, useMemo, useState } from "react";
 import type { Build, DrawerLine } from "../../core/contract/drawer-schemas.ts";
 import { buildBill, buildReference, type Bill } from "../../core/drawer/bill.ts";
+import { boardProblems, listedProblems } from "../../core/drawer/board-problems.ts";
 import type { Board } from "../../core/net/board.ts";
 import { copyText } from "../editor/copy-text.ts";
 import { download } from "../editor/actions/file-actions.ts";
@@ -14,7 +15,6 @@ import { readCount } from "./columns.ts";
 import { reasonOf } from "./drawer-store.ts";
 import { useDrawer } from "./hooks.ts";
 import { counted } from "./line-text.ts";
-import { findingsOf } from "./findings.ts";
 import { shoppingCsv, shoppingText } from "./shopping.ts";
 import { namedLines } from "./stock-query.ts";
 import { moneysText } from "./swap-text.ts";
@@ -45,10 +45,9 @@ export function BuildDialog({ close }: DialogProps<"drawerBuild">) {
   const units = count.ok && count.count >= 1 && count.count <= 100_000 ? count.count : null;
   const bill = useMemo((): Bill | null => {
     if (!found || units === null) return null;
-    const held = new Map((build?.bill ?? []).map((row) => [row.line, row.held]));
-    return buildBill(found.board, found.stock.lines, units, { held });
-  }, [found, build, units]);
-  const findings = useMemo(() => (found ? findingsOf(found.board, found.stock.lines) : []), [found]);
+    return buildBill(found.board, found.stock.lines, units);
+  }, [found, units]);
+  const findings = useMemo(() => (found ? listedProblems(boardProblems(found.board, found.stock.lines)) : []), [found]);
 
   const book = useCallback(
     async (work: () => Promise<unknown>, done: string): Promise<void> => {
@@ -72,9 +71,10 @@ export function BuildDialog({ close }: DialogProps<"drawerBuild">) {
     if (bill) void book(() => host.call("drawer.reserve", { reference, units: bill.units, bill: [...bill.reserve] }), `Reserved the parts of ${counted(bill.units, "unit")}.`);
   };
   const use = (): void => {
-    if (units !== null) void book(() => host.call("drawer.use", { reference, units }), `Booked the parts of ${counted(units, "unit")} as used.`);
+    if (bill) void book(() => host.call("drawer.use", { reference, units: bill.units, bill: [...bill.reserve] }), `Booked the parts of ${counted(bill.units, "unit")} as used.`);
   };
   const release = (): void => void book(() => host.call("drawer.release", { reference }), `Released what was held for “${reference}”.`);
+  const isBookable = bill !== null && bill.reserve.length > 0;
   const hasShopping = bill !== null && bill.shopping.length > 0;
   const shared = found?.stock.lines.length === 0;
 
@@ -89,16 +89,14 @@ export function BuildDialog({ close }: DialogProps<"drawerBuild">) {
             Close
           </button>
           {build !== null && build.units > 0 && (
-            <>
-              <button type="button" className="button" disabled={isBusy} onClick={release}>
-                Release all
-              </button>
-              <button type="button" className="button" disabled={isBusy || units === null} onClick={use}>
-                Use {units === null ? "" : counted(units, "unit")}
-              </button>
-            </>
+            <button type="button" className="button" disabled={isBusy} onClick={release}>
+              Release all
+            </button>
           )}
-          <button type="button" className="button is-primary" disabled={isBusy || bill === null || bill.reserve.length === 0} onClick={reserve}>
+          <button type="button" className="button" disabled={isBusy || !isBookable} onClick={use}>
+            Use {units === null ? "" : counted(units, "unit")}
+          </button>
+          <button type="button" className="button is-primary" disabled={isBusy || !isBookable} onClick={reserve}>
             Reserve {units === null ? "" : counted(units, "unit")}
           </button>
         </>

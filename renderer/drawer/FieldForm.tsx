@@ -1,8 +1,8 @@
 import { useId, useState, type FormEvent } from "react";
 import type { LineFields } from "../../core/contract/drawer-schemas.ts";
-import type { StockKind, StockLine } from "../../core/drawer/stock.ts";
+import { emptyLine, type StockKind, type StockLine } from "../../core/drawer/stock.ts";
 import { reasonOf } from "./drawer-store.ts";
-import { blankLine, FIELDS } from "./fields.ts";
+import { FIELDS } from "./fields.ts";
 
 interface FieldFormProps {
   /** Null where lines of several kinds are meant: fields that depend on the kind are left out. */
@@ -30,7 +30,7 @@ export function FieldForm({ kind, line, action, onTake }: FieldFormProps) {
     for (const field of shown) {
       const text = drafts[field.key];
       if (text === undefined) continue;
-      const edit = field.read(text, line ?? blankLine(kind ?? "resistor"));
+      const edit = field.read(text, line ?? emptyLine("", kind ?? undefined));
       if (edit.ok) fields = { ...fields, ...edit.fields };
       else wrong.set(field.key, edit.message);
     }

@@ -1,7 +1,8 @@
 import { useEffect, useMemo, useState } from "react";
 import { fillBoard, type FillResult } from "../../core/drawer/fill.ts";
 import { filledProject, fillingPatch } from "../../core/drawer/roles.ts";
-import { RATING_CAUTION } from "../../core/drawer/stress.ts";
+import { readCeiling } from "../../core/drawer/ceiling.ts";
+import type { Money } from "../../core/drawer/stock.ts";
 import type { DrawerLine } from "../../core/contract/drawer-schemas.ts";
 import type { Board } from "../../core/net/board.ts";
 import { useShell } from "../editor/hooks.ts";
@@ -12,13 +13,15 @@ import { counted, lineName, percentText } from "./line-text.ts";
 import { linesForBoard } from "./stock-query.ts";
 import { candidateName, moneysText } from "./swap-text.ts";
 import { useBoardStock } from "./use-board-stock.ts";
+import { ProblemList } from "./ProblemList.tsx";
+import { TableHead } from "./TableHead.tsx";
 
 interface Wish {
   readonly units: number;
   /** Fraction. */
   readonly window: number;
   readonly keep: boolean;
-  readonly ceiling: { readonly amount: number; readonly currency: string } | null;
+  readonly ceiling: Money | null;
 }
 
 type Outcome = { readonly result: FillResult; readonly board: Board } | { readonly problem: string } | null;
@@ -61,7 +64,7 @@ export function FillPanel() {
         <h2>Fill from the drawer</h2>
         <p className="quiet">Nothing is changed until you take it. The dotted curve is the board with the drawer's parts.</p>
       </header>
-      <WishForm wish={wish} onChange={setWish} />
+      <WishForm wish={wish} lines={found?.stock ?? []} onChange={setWish} />
       {(problem !== null || (outcome !== null && "problem" in outcome)) && <p className="field-error">{problem ?? (outcome !== null && "problem" in outcome ? outcome.problem : "")}</p>}
       {isEmpty && <p className="quiet">The drawer is empty: nothing can be placed from it yet.</p>}
       {problem === null && outcome === null && <p className="quiet" role="status">Trying parts…</p>}
@@ -97,20 +100,20 @@ function useFill(found: { readonly board: Board; readonly stock: readonly Drawer
   return outcome;
 }
 
-function WishForm({ wish, onChange }: { readonly wish: Wish; readonly onChange: (wish: Wish) => void }) {
+function WishForm({ wish, lines, onChange }: { readonly wish: Wish; readonly lines: readonly DrawerLine[]; readonly onChange: (wish: Wish) => void }) {
   const [texts, setTexts] = useState({ units: "1", window: "20", ceiling: "" });
   const [problem, setProblem] = useState<string | null>(null);
   const read = (next: typeof texts): void => {
     setTexts(next);
     const units = readCount(next.units);
     const window = Number(next.window.replace("%", "").replace(",", ".").trim());
-    const ceiling = /^(\d+(?:[.,]\d+)?)\s*([A-Za-z]{3})$/.exec(next.ceiling.trim());
+    const ceiling = next.ceiling.trim() === "" ? null : readCeiling(next.ceiling, lines);
     if (!units.ok || units.count < 1 || units.count > 100_000) setProblem("Units: a whole number from 1 on.");
     else if (!(window >= 0 && window <= 100)) setProblem("Values within: 0 to 100 %.");
-    else if (next.ceiling.trim() !== "" && ceiling === null) setProblem("Most a unit may cost: an amount with its currency, such as 25 EUR.");
+    else if (ceiling?.ok === false) setProblem(`Most a unit may cost: ${ceiling.message}.`);
     else {
       setProblem(null);
-      onChange({ ...wish, units: units.count, window: window / 100, ceiling: ceiling ? { amount: Number(ceiling[1].replace(",", ".")), currency: ceiling[2].toUpperCase() } : null });
+      onChange({ ...wish, units: units.count, window: window / 100, ceiling: ceiling?.value ?? null });
     }
   };
   return (
@@ -139,7 +142,7 @@ function WishForm({ wish, onChange }: { readonly wish: Wish; readonly onChange: 
 function FillReport({ result, hasCeiling }: { readonly result: FillResult; readonly hasCeiling: boolean }) {
   const { placed, unplaced, error, worst } = result;
   const total = placed.length + unplaced.length;
-  const cautions = placed.filter((row) => row.problems.length > 0);
+  const cautions = placed.flatMap(({ role, line, problems }) => problems.map((problem) => ({ role, line, problem })));
   return (
     <div className="report" aria-label="Report" role="region">
       <dl className="report-figures">
@@ -177,39 +180,21 @@ function FillReport({ result, hasCeiling }: { readonly result: FillResult; reado
       {cautions.length > 0 && (
         <>
           <h3>To weigh</h3>
-          <ul className="report-list is-caution">
-            {cautions.map(({ role, line, problems }) => (
-              <li key={role.name}>
-                ⚠ <strong>{role.label}</strong>, {line.id}: {problems.map((p) => p.message).join("; ")}
-              </li>
-            ))}
-          </ul>
-          <p className="caution">{RATING_CAUTION}</p>
+          <ProblemList found={cautions} />
         </>
       )}
       {placed.length > 0 && (
         <>
           <h3>Placed</h3>
           <table className="list-table">
-            <thead>
-              <tr>
-                <th scope="col">place</th>
-                <th scope="col">part</th>
-                <th scope="col" className="is-number">
-                  off
-                </th>
-                <th scope="col" className="is-number">
-                  left
-                </th>
-              </tr>
-            </thead>
+            <TableHead columns={["place", "part", { figure: "off" }, { figure: "left" }]} />
             <tbody>
-              {placed.map(({ role, line, candidate }) => (
+              {placed.map(({ role, line, candidate, left }) => (
                 <tr key={role.name}>
                   <td>{role.label}</td>
                   <td title={(candidate?.lines ?? [line]).map((one) => one.id).join(" + ")}>{candidate === null ? lineName(line) : candidateName(candidate)}</td>
                   <td className="is-number">{candidate === null ? (role.kind === "op-amp" ? "" : "kept") : percentText(candidate.deviation)}</td>
-                  <td className="is-number">{candidate === null ? "" : candidate.left}</td>
+                  <td className="is-number">{left}</td>
                 </tr>
               ))}
             </tbody>

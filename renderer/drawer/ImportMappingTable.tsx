@@ -12,11 +12,11 @@ interface ImportMappingTableProps {
 }
 
 const FIELD_NAMES: Readonly<Record<ImportField, string>> = {
-  id: "id", kind: "kind", value: "value", type: "op-amp type", tolerance: "tolerance", rating: "rating", technology: "technology", temperatureCoefficient: "temp. coefficient", package: "package", location: "location",
+  id: "id", kind: "kind", value: "value", type: "op-amp type", tolerance: "tolerance", rating: "rating", technology: "technology", temperatureCoefficient: "temp. coefficient", windingR: "winding resistance", package: "package", location: "location",
   quantity: "quantity", prices: "all prices", price: "price", currency: "currency", supplier: "supplier", orderCode: "order code", notes: "notes", retired: "retired",
 };
 const UNITS: Partial<Readonly<Record<ImportField, readonly string[]>>> = {
-  value: ["", "p", "n", "µ", "m", "k", "M", "pF", "nF", "µF", "mH", "H", "Ω", "kΩ", "MΩ"], tolerance: ["", "%"], rating: ["", "mW", "W", "V", "kV"], temperatureCoefficient: ["", "ppm"],
+  value: ["", "p", "n", "µ", "m", "k", "M", "pF", "nF", "µF", "mH", "H", "Ω", "kΩ", "MΩ"], tolerance: ["", "%"], rating: ["", "mW", "W", "V", "kV"], temperatureCoefficient: ["", "ppm"], windingR: ["", "m", "Ω", "kΩ"],
 };
 const DELIMITER_NAMES: readonly (readonly [Delimiter, string])[] = [[",", "comma"], [";", "semicolon"], ["\t", "tab"], ["|", "bar |"]];
 const ENCODING_NAMES: readonly (readonly [Encoding, string])[] = [["utf-8", "UTF-8"], ["windows-1252", "Western (Windows-1252)"], ["utf-16le", "UTF-16"]];

@@ -1,6 +1,7 @@
 import type { ImportReport } from "../../core/contract/drawer-schemas.ts";
 import type { EventData } from "../../core/contract/methods.ts";
 import { counted } from "./line-text.ts";
+import { TableHead } from "./TableHead.tsx";
 
 export type Progress = EventData<"drawer.importProgress">;
 
@@ -23,14 +24,7 @@ export function FaultTable({ faults, refused }: { readonly faults: readonly { re
     <div className="fault-table">
       <table className="list-table">
         <caption>{counted(refused, "line")} refused</caption>
-        <thead>
-          <tr>
-            <th scope="col" className="is-number">
-              line
-            </th>
-            <th scope="col">why</th>
-          </tr>
-        </thead>
+        <TableHead columns={[{ figure: "line" }, "why"]} />
         <tbody>
           {faults.slice(0, 200).map((fault) => (
             <tr key={`${fault.row} ${fault.message}`}>

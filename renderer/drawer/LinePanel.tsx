@@ -10,6 +10,7 @@ import { useDrawer, useDrawerState } from "./hooks.ts";
 import { counted, KIND_NAMES, lineName, momentText } from "./line-text.ts";
 import { PieceList } from "./PieceList.tsx";
 import { chosenCount } from "./selection.ts";
+import { TableHead } from "./TableHead.tsx";
 
 type LineDetail = ResultOf<"drawer.line">;
 
@@ -183,15 +184,7 @@ function Ledger({ id }: { readonly id: string }) {
   return (
     <>
       <table className="list-table">
-        <thead>
-          <tr>
-            <th scope="col">when</th>
-            <th scope="col">what</th>
-            <th scope="col" className="is-number">
-              pieces
-            </th>
-          </tr>
-        </thead>
+        <TableHead columns={["when", "what", { figure: "pieces" }]} />
         <tbody>
           {state.rows.map((entry) => (
             <tr key={entry.id}>

@@ -9,6 +9,7 @@ import { reasonOf } from "./drawer-store.ts";
 import { counted, percentText } from "./line-text.ts";
 import { piecesForBoard } from "./stock-query.ts";
 import { useBoardStock } from "./use-board-stock.ts";
+import { TableHead } from "./TableHead.tsx";
 
 type Fillings = Parameters<typeof filledProject>[1];
 
@@ -106,18 +107,7 @@ function MatchReport({ result }: { readonly result: MatchResult }) {
             )}
           </dl>
           <table className="list-table">
-            <thead>
-              <tr>
-                <th scope="col">place</th>
-                <th scope="col">piece</th>
-                <th scope="col" className="is-number">
-                  measured
-                </th>
-                <th scope="col" className="is-number">
-                  off
-                </th>
-              </tr>
-            </thead>
+            <TableHead columns={["place", "piece", { figure: "measured" }, { figure: "off" }]} />
             <tbody>
               {matched.map(({ role, piece, deviation }) => {
                 const quantity = QUANTITY_OF[role.kind];

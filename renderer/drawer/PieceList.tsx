@@ -6,6 +6,7 @@ import { readPositive } from "../editor/part-text.ts";
 import { reasonOf } from "./drawer-store.ts";
 import { useDrawer } from "./hooks.ts";
 import { percentText } from "./line-text.ts";
+import { TableHead } from "./TableHead.tsx";
 
 /** The mark for the next piece: the number after the largest that is in use. */
 function nextMark(pieces: readonly Pick<StockPiece, "mark">[]): string {
@@ -65,23 +66,7 @@ export function PieceList({ line, pieces }: { readonly line: StockLine; readonly
         <p className="quiet">Write a number on each piece, measure it, and keep the values here: they can then be matched to a board.</p>
       ) : (
         <table className="list-table">
-          <thead>
-            <tr>
-              <th scope="col">mark</th>
-              <th scope="col" className="is-number">
-                measured
-              </th>
-              <th scope="col" className="is-number">
-                off
-              </th>
-              <th scope="col" className="is-number">
-                at
-              </th>
-              <th scope="col">
-                <span className="visually-hidden">remove</span>
-              </th>
-            </tr>
-          </thead>
+          <TableHead columns={["mark", { figure: "measured" }, { figure: "off" }, { figure: "at" }, { unseen: "remove" }]} />
           <tbody>
             {pieces.map((piece) => (
               <tr key={piece.id}>

@@ -1,14 +1,15 @@
 import { useEffect, useRef, useState } from "react";
 import { fillingPatch, filledProject } from "../../core/drawer/roles.ts";
-import { RATING_CAUTION } from "../../core/drawer/stress.ts";
+import { needsRatingCaution, RATING_CAUTION } from "../../core/drawer/stress.ts";
 import type { RankedCandidate } from "../../core/drawer/swap.ts";
-import { hasFault } from "../../core/drawer/candidates.ts";
+import { hasFault } from "../../core/drawer/place-problems.ts";
 import { actionById, run } from "../editor/actions/actions.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
 import { Choice } from "../inspector/Choice.tsx";
 import { useDrawer, useDrawerState } from "./hooks.ts";
 import { counted } from "./line-text.ts";
-import { candidateName, effectText, joinedText, moneyText, worstText } from "./swap-text.ts";
+import { problemMark } from "./ProblemList.tsx";
+import { candidateName, effectText, leftText, moneyText, worstText } from "./swap-text.ts";
 import { rolesOf, useSwap } from "./use-swap.ts";
 
 /** The command Swap a part looks for it by this. */
@@ -100,7 +101,7 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
     ui.notify(`${candidate.lines.map((line) => line.id).join(" and ")} for ${what}.`);
   };
   const shown = isWhole ? candidates : candidates.slice(0, FEW);
-  const hasProblem = shown.some((candidate) => candidate.problems.length > 0);
+  const isCautioned = needsRatingCaution(shown.flatMap((candidate) => candidate.problems));
   return (
     <>
       <ul className={isStale ? "swap-list is-stale" : "swap-list"} onPointerLeave={() => show(focused.current)}>
@@ -119,7 +120,9 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
                 onClick={() => !isBarred && !candidate.isInPlace && take(candidate)}
               >
                 <span className="swap-name">{name}</span>
-                <span className="swap-left">{candidate.isInPlace ? "in place" : candidate.joined === null ? `${candidate.left + 1} left` : joinedText(candidate)}</span>
+                <span className="swap-left" title="left in stock after building one unit">
+                  {leftText(candidate)}
+                </span>
                 <span className="swap-effect">{effectText(candidate)}</span>
                 <span className="swap-worst">
                   {worstText(candidate.worst)} · {candidate.lines.map((line) => line.id).join(" + ")}
@@ -127,8 +130,7 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
                 <span className="swap-cost">{moneyText(candidate.cost)}</span>
                 {candidate.problems.map((problem) => (
                   <span key={problem.message} className={`swap-problem is-${problem.level}`}>
-                    {problem.level === "fault" ? "✕ " : "⚠ "}
-                    {problem.message}
+                    {problemMark(problem)} {problem.message}
                   </span>
                 ))}
               </button>
@@ -141,7 +143,7 @@ function Candidates({ candidates, role, what, isStale }: CandidatesProps) {
           {isWhole ? "Show fewer" : `Show ${counted(candidates.length - FEW, "more", "more")}`}
         </button>
       )}
-      {hasProblem && <p className="caution">{RATING_CAUTION}</p>}
+      {isCautioned && <p className="caution">{RATING_CAUTION}</p>}
     </>
   );
 }

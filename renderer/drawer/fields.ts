@@ -1,6 +1,8 @@
 import type { LineFields } from "../../core/contract/drawer-schemas.ts";
-import type { PriceBreak, StockKind, StockLine } from "../../core/drawer/stock.ts";
+import { emptyLine, type PriceBreak, type StockKind, type StockLine } from "../../core/drawer/stock.ts";
 import { RATING_UNIT } from "../../core/drawer/check-line.ts";
+import { editText } from "../../core/units.ts";
+import { readPositive } from "../editor/part-text.ts";
 import { COLUMNS, readRating, readToleranceField, readValue } from "./columns.ts";
 import { costText } from "./line-text.ts";
 
@@ -49,13 +51,14 @@ export const FIELDS: readonly LineField[] = [
     },
     appliesTo: (kind) => kind !== null && RATING_UNIT[kind] !== null, text: columnText("rating"), read: (text, line) => only(readRating(text, line.kind)),
   },
-  textField("technology", "technology", "film, C0G, metal film"),
+  textField("technology", "technology", "film, C0G, metal film; carbon, linear"),
   textField("package", "package"),
   {
     key: "temperatureCoefficient", label: () => "temp. coefficient", hint: "50 ppm/K", appliesTo: (kind) => kind !== "op-amp",
     text: (line) => (line.temperatureCoefficient === null ? "" : `${Number((line.temperatureCoefficient * 1e6).toPrecision(6))} ppm/K`),
     read: readCoefficient,
   },
+  { key: "windingR", label: () => "winding resistance", hint: "12 Ω", appliesTo: (kind) => kind === "inductor", text: (line) => (line.windingR === null ? "" : editText(line.windingR, "resistance")), read: readWinding },
   textField("location", "location"),
   { key: "prices", label: () => "prices", hint: "0.12; 100: 0.09", appliesTo: () => true, text: (line) => pricesText(line.prices), read: readPrices },
   { key: "currency", label: () => "currency", hint: "EUR", appliesTo: () => true, text: (line) => line.currency, read: (text) => (/^([A-Za-z]{3})?$/.test(text.trim()) ? { ok: true, fields: { currency: text.trim().toUpperCase() } } : { ok: false, message: "expected a code of three letters, such as EUR" }) },
@@ -63,6 +66,12 @@ export const FIELDS: readonly LineField[] = [
   textField("orderCode", "order code"),
   textField("notes", "notes"),
 ];
+
+function readWinding(text: string): FieldEdit {
+  if (text.trim() === "") return { ok: true, fields: { windingR: null } };
+  const read = readPositive(text, "resistance");
+  return read.ok ? { ok: true, fields: { windingR: read.value } } : { ok: false, message: read.message };
+}
 
 function readCoefficient(text: string): FieldEdit {
   if (text.trim() === "") return { ok: true, fields: { temperatureCoefficient: null } };
@@ -91,14 +100,9 @@ export function readPrices(text: string): FieldEdit {
   return { ok: true, fields: { prices } };
 }
 
-/** A line of a kind with nothing in it yet. */
-export function blankLine(kind: StockKind): StockLine {
-  return { id: "", kind, value: null, type: null, tolerance: null, rating: null, technology: "", temperatureCoefficient: null, package: "", location: "", prices: [], currency: "", supplier: "", orderCode: "", notes: "" };
-}
-
 /** A line as fields say it, or what is wrong with each. */
 export function lineFrom(kind: StockKind, id: string, texts: Readonly<Record<string, string>>): { readonly line: StockLine; readonly problems: ReadonlyMap<string, string> } {
-  let line = { ...blankLine(kind), id: id.trim() };
+  let line = emptyLine(id.trim(), kind);
   const problems = new Map<string, string>();
   for (const field of FIELDS) {
     if (!field.appliesTo(kind)) continue;

@@ -1,5 +1,6 @@
 import type { RankedCandidate } from "../../core/drawer/swap.ts";
-import type { Candidate, Money } from "../../core/drawer/candidates.ts";
+import type { Candidate } from "../../core/drawer/candidates.ts";
+import type { Money } from "../../core/drawer/stock.ts";
 import { formatDb } from "../../core/units.ts";
 import { costText, lineName, percentText, toleranceText, valueCode } from "./line-text.ts";
 
@@ -12,9 +13,9 @@ export function candidateName(candidate: Pick<Candidate, "lines" | "joined" | "t
   return [`${valueCode(first)} ${sign} ${valueCode(second)}`, technology, candidate.tolerance === null ? "" : toleranceText(Number(candidate.tolerance.toPrecision(2)))].filter((part) => part !== "").join(" ");
 }
 
-/** `two in series`; nothing for one piece. */
-export function joinedText(candidate: Pick<Candidate, "joined">): string {
-  return candidate.joined === null ? "" : `two in ${candidate.joined}`;
+/** `6 left`, `two in series, 6 left`, `in place, 6 left`: the stock after this build. */
+export function leftText({ joined, left, isInPlace }: Pick<RankedCandidate, "joined" | "left" | "isInPlace">): string {
+  return [isInPlace ? "in place" : "", joined === null ? "" : `two in ${joined}`, `${left} left`].filter((part) => part !== "").join(", ");
 }
 
 export function moneyText(money: Money | null): string {

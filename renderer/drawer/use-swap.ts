@@ -39,7 +39,7 @@ export function useSwap(role: BoardRole | undefined, withPairs: boolean): SwapSt
       try {
         const own = boardRoles(board).find((one) => one.name === name);
         if (!own) return;
-        const lines = await linesForRole(drawer.host, own, withPairs);
+        const lines = await linesForRole(drawer.host, board, own, withPairs);
         if (isCurrent) setState({ swap: rankSwaps(board, own, lines, { pairs: withPairs, most: MOST }), board, problem: null });
       } catch (error) {
         if (isCurrent) setState({ swap: null, board, problem: reasonOf(error) });

@@ -1,5 +1,5 @@
 /** Choosing parts on the command line, on a drawer with the starter's parts in it. */
-import { copyFileSync, existsSync, mkdtempSync, readdirSync, readFileSync, rmSync } from "node:fs";
+import { copyFileSync, existsSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, test, vi } from "vitest";
@@ -64,11 +64,18 @@ describe.concurrent("fill", () => {
     expect(bill.unassigned).toEqual([]);
   });
 
+  test("says where nothing fits at all, and writes nothing", async () => {
+    const [empty, out] = [join(folder, "empty.sqlite"), join(folder, "unfilled.bandwright")];
+    done(await bandwright("stock", "list", "--drawer", empty));
+    refused(await bandwright("fill", VOICE, "-o", out, "--drawer", empty), 1, /in\.sourceR, .* keep their values without a line: the drawer has no resistor[^]*nothing of the drawer goes into this board\. Nothing was written/);
+    expect(existsSync(out)).toBe(false);
+  });
+
   test("leaves what it cannot place and says so; a ceiling that cannot be kept writes nothing", async () => {
     const out = join(folder, "ten-of-them.bandwright");
     const ended = await bandwright("fill", VOICE, "-o", out, "--units", "20", "--drawer", drawer);
     expect(ended.code).toBe(0);
-    expect(ended.stderr).toMatch(/\.slider keeps its value without a line: /);
+    expect(ended.stderr).toMatch(/\.slider.* without a line: /);
     const none = join(folder, "none.bandwright");
     refused(await bandwright("fill", VOICE, "-o", none, "--ceiling", "2 EUR", "--drawer", drawer), 1, /more than the ceiling\. Nothing was written/);
     expect(existsSync(none)).toBe(false);
@@ -92,6 +99,19 @@ describe.concurrent("swap", () => {
     copyFileSync(VOICE, own);
     done(await bandwright("swap", own, "--role", "b1k.gyratorR", "--take", "1", "-o", own, "--drawer", drawer));
     expect(partAt(own, "b1k", "gyratorR").stock).toBeDefined();
+  });
+
+  test("does not take what is barred", async () => {
+    const own = join(folder, "barred.sqlite");
+    copyFileSync(drawer, own);
+    done(await bandwright("stock", "add", "P-LOG", "--kind", "potentiometer", "--value", "10k", "--technology", "carbon, log", "--quantity", "5", "--drawer", own));
+    const list = done(await bandwright("swap", VOICE, "--role", "b1k.slider", "--drawer", own));
+    const number = /^P-LOG +(\d+)/m.exec(list)![1];
+    expect(list.split("\n").filter((row) => /^P-/.test(row)).at(-1)).toMatch(/^P-LOG/);
+    expect(list).toContain(`no. ${number}, P-LOG: does not do: its taper is logarithmic, but the slider's law is linear`);
+    const out = join(folder, "barred.bandwright");
+    refused(await bandwright("swap", VOICE, "--role", "b1k.slider", "--take", number, "-o", out, "--drawer", own), 2, /--take: number \d+, P-LOG, does not do: its taper is logarithmic/);
+    expect(existsSync(out)).toBe(false);
   });
 
   test("refuses what makes no sense", async () => {
@@ -118,9 +138,48 @@ describe.concurrent("build", () => {
     await build("--units", "2", "--use");
     const after = await build("--units", "1");
     for (const [i, row] of after.rows.entries()) expect(row.available).toBe(before.rows[i].available - before.rows[i].total);
-    refused(await bandwright("build", filled, "--units", "50", "--reserve", "--drawer", own), 1, /too few pieces, so nothing was booked/);
     refused(await bandwright("build", VOICE, "--units", "1", "--reserve", "--drawer", own), 1, /fill it first/);
     refused(await bandwright("build", filled, "--units", "1", "--reserve", "--use", "--drawer", own), 2, /one at a time/);
+    done(await bandwright("build", filled, "--units", "1", "--reserve", "--drawer", own));
+    expect((await bandwright("build", filled, "--release", "--drawer", own)).stderr).toBe("nothing is held for “Saltmarsh voice channel” any more\n");
+    refused(await bandwright("build", filled, "--release", "--drawer", own), 1, /^nothing is held for “Saltmarsh voice channel”$/m);
+  });
+
+  test("uses what nobody held in one step, which one undo takes back", async () => {
+    const own = join(folder, "use.sqlite");
+    copyFileSync(drawer, own);
+    const look = async () => {
+      const store = await openDrawer({ path: own, now: () => new Date(0) });
+      const seen = { steps: store.steps(1000).length, lines: store.allLines(), builds: store.builds() };
+      store.close();
+      return seen;
+    };
+    const before = await look();
+    done(await bandwright("build", filled, "--units", "2", "--use", "--drawer", own));
+    const used = await look();
+    expect(used.steps).toBe(before.steps + 1);
+    expect(used.builds).toMatchObject([{ units: 0, unitsUsed: 2, state: "used" }]);
+    expect(done(await bandwright("stock", "undo", "--drawer", own))).toBe("Undo: Use for Saltmarsh voice channel\n");
+    expect(await look()).toEqual({ ...before, steps: before.steps + 2 });
+  });
+
+  test.each(["--reserve", "--use"])("%s of too many shows the shopping list and who holds the rest, books nothing, and says how to go on", async (booking) => {
+    const own = join(folder, `short${booking}.sqlite`);
+    copyFileSync(drawer, own);
+    const [line] = projectAt(filled).blocks.flatMap((b) => b.parts?.["seriesC"]?.stock ?? []);
+    done(await bandwright("stock", "move", line, "reserved", "2", "--for", "Ferry pedal", "--drawer", own));
+    const asked = await bandwright("build", filled, "--units", "60", "--drawer", own);
+    const ended = await bandwright("build", filled, "--units", "60", booking, "--drawer", own);
+    expect(ended.code).toBe(1);
+    expect(ended.stdout).toBe(asked.stdout);
+    expect(ended.stdout).toMatch(/To buy from Harbour Components[^]*order code[^]*cheaper/);
+    expect(ended.stderr).toMatch(/^too few pieces, so nothing was booked: .*\nThe shopping list says what to buy\..*“bandwright stock move LINE bought COUNT”.*There are pieces for \d units: --units \d\.$/m);
+    expect(ended.stderr).toContain(`of ${line} (held by Ferry pedal: 2)`);
+    const json = await bandwright("build", filled, "--units", "60", booking, "--drawer", own, "--json");
+    expect([json.code, (JSON.parse(json.stdout) as { booked: unknown }).booked, (JSON.parse(json.stdout) as Bill).shopping.length]).toEqual([1, null, 2]);
+    const store = await openDrawer({ path: own, now: () => new Date(0) });
+    expect([store.builds(), store.steps(1)[0].label]).toEqual([[], `Reserved: ${line}`]);
+    store.close();
   });
 
   test("shops by supplier", async () => {
@@ -152,6 +211,39 @@ describe.concurrent("match", () => {
       const [block, name] = role.split(".");
       expect(partAt(out, block, name)).toMatchObject({ piece, measured });
     }
+  });
+});
+
+describe.concurrent.each(["fill", "match", "swap"])("-o of %s", (name) => {
+  const args = name === "swap" ? ["--role", "b1k.gyratorR", "--take", "1"] : [];
+  const write = async (out: string, own = drawer): Promise<Ended> => bandwright(name, filled, ...args, "-o", out, "--drawer", own);
+
+  test("leaves any file alone that is no project, and says so before the work", async () => {
+    for (const [file, bytes] of [["parts.csv", "id,value\n1,2\n"], ["picture.png", Buffer.from([0x89, 0x50, 0x4e, 0x47, 0xff, 0])], ["other.json", "{ \"format\": \"recipe\" }"], ["own.sqlite", readFileSync(drawer)]] as const) {
+      const out = join(folder, `${name}-${file}`);
+      writeFileSync(out, bytes);
+      refused(await write(out, file === "own.sqlite" ? out : drawer), 2, /-o: .* is there already and is no project, so nothing was written over it/);
+      expect(readFileSync(out).equals(Buffer.from(bytes))).toBe(true);
+    }
+    refused(await write(folder), 2, /-o: .* is a folder: name a file/);
+  });
+
+  test("replaces an earlier project, an empty file and the input itself, as --help says", async () => {
+    const own = join(folder, `${name}-out.sqlite`);
+    copyFileSync(drawer, own);
+    const lines = [...new Set(projectAt(filled).blocks.flatMap((b) => b.parts?.["seriesR"]?.stock ?? []))];
+    const store = await openDrawer({ path: own, now: () => new Date(0) });
+    store.putPieces(lines.map((line) => ({ id: null, line, mark: "1", value: store.find(line)!.value! * 1.01, frequency: null })));
+    store.close();
+    const [earlier, empty, input] = ["earlier", "empty", "input"].map((one) => join(folder, `${name}-${one}.bandwright`));
+    copyFileSync("assets/demo/curlew-pedal.bandwright", earlier);
+    writeFileSync(empty, "");
+    copyFileSync(filled, input);
+    for (const out of [earlier, empty]) done(await write(out, own));
+    done(await bandwright(name, input, ...args, "-o", input, "--drawer", own));
+    expect(projectAt(earlier).name).toBe("Saltmarsh voice channel");
+    expect([earlier, empty].map((one) => readFileSync(one, "utf8"))).toEqual(Array(2).fill(readFileSync(input, "utf8")));
+    expect((await bandwright(name, "--help")).stdout.replaceAll(/\s+/g, " ")).toContain("A project that is there, FILE itself too, is replaced; any other file is left alone");
   });
 });
 

@@ -10,7 +10,7 @@ export function lineOf(id: string, kind: StockKind, valueOrType: number | string
     tolerance: kind === "op-amp" ? null : 0.05,
     rating: kind === "capacitor" ? 63 : kind === "resistor" ? 0.25 : null,
     technology: kind === "capacitor" ? "film" : kind === "resistor" ? "metal film" : "",
-    temperatureCoefficient: null, package: "", location: "", prices: [{ from: 1, unitCost: 0.1 }], currency: "EUR", supplier: "", orderCode: "", notes: "",
+    temperatureCoefficient: null, windingR: null, package: "", location: "", prices: [{ from: 1, unitCost: 0.1 }], currency: "EUR", supplier: "", orderCode: "", notes: "",
     quantity: 100, reserved: 0,
     ...more,
   };

@@ -3,12 +3,11 @@ import { tmpdir } from "node:os";
 import { join } from "node:path";
 import fc from "fast-check";
 import { afterEach } from "vitest";
-import { emptyLine } from "../../app/store/import-lines.ts";
 import { openDrawer, type DrawerStore } from "../../app/store/drawer-store.ts";
 import { decodeTable, openTable } from "../../app/services/csv-table.ts";
 import { importTable, type ImportOpts } from "../../app/services/drawer-tables.ts";
 import type { ImportReport } from "../../core/contract/drawer-schemas.ts";
-import type { StockKind, StockLine } from "../../core/drawer/stock.ts";
+import { emptyLine, type StockKind, type StockLine } from "../../core/drawer/stock.ts";
 
 const open: DrawerStore[] = [];
 const folders: string[] = [];
@@ -74,6 +73,7 @@ export function anyLine(): fc.Arbitrary<StockLine> {
       rating: fc.option(POSITIVE),
       technology: TEXT,
       temperatureCoefficient: fc.option(fc.double({ min: -0.1, max: 0.1, noNaN: true }).map((x) => x + 0)),
+      windingR: fc.option(POSITIVE),
       package: TEXT,
       location: TEXT,
       prices: fc.uniqueArray(fc.integer({ min: 2, max: 10_000 }), { maxLength: 3 }).chain((froms) =>
@@ -84,6 +84,7 @@ export function anyLine(): fc.Arbitrary<StockLine> {
       orderCode: TEXT,
       notes: fc.oneof(TEXT, fc.constantFrom('a "quoted" word', "two\nlines", "semi;colon, comma\ttab", "=1+1")),
     })
+    .map((line) => (line.kind === "inductor" ? line : { ...line, windingR: null }))
     .map((line) => (line.kind === "op-amp" ? { ...line, value: null, type: line.type.trim() || "X1" } : { ...line, type: null }));
 }
 

@@ -5,7 +5,7 @@ import { newProject } from "../../core/model/new-project.ts";
 const FINGERPRINT = "0".repeat(64);
 
 const LINE: DrawerLine = {
-  id: "R-4K7", kind: "resistor", value: 4700, type: null, tolerance: 0.01, rating: 0.25, technology: "metal film", temperatureCoefficient: 50e-6, package: "", location: "box Ω", prices: [{ from: 1, unitCost: 0.05 }],
+  id: "R-4K7", kind: "resistor", value: 4700, type: null, tolerance: 0.01, rating: 0.25, technology: "metal film", temperatureCoefficient: 50e-6, windingR: null, package: "", location: "box Ω", prices: [{ from: 1, unitCost: 0.05 }],
   currency: "EUR", supplier: "", orderCode: "", notes: "", quantity: 3, reserved: 1, retired: false,
 };
 const INFO = { path: "/drawer.sqlite", lines: 1, retired: 0, pieces: 0, version: 2 };
@@ -45,6 +45,7 @@ export function fakeHandlers(own: Partial<Handlers> = {}): Handlers {
     "drawer.starter": async () => REPORT,
     "drawer.export": async () => ({ path: null, text: "id\n", lines: 0 }),
     "drawer.reserve": async () => ({ step: 1, build: BUILD }),
+    "drawer.held": async () => ({ held: [{ line: "R-4K7", count: 1 }] }),
     "drawer.release": async () => ({ step: 1 }),
     "drawer.use": async () => ({ step: 1, build: BUILD }),
     "drawer.builds": async () => ({ builds: [BUILD] }),

@@ -131,7 +131,7 @@ const COMMAND = fc.oneof(
   fc.record({ do: fc.constant("move" as const), line: fc.constantFrom("A", "B"), kind: fc.constantFrom(...MOVEMENT_KINDS), count: fc.integer({ min: 0, max: 12 }), reference: fc.constantFrom("", "Channel", "Pedal") }),
   fc.record({ do: fc.constant("reserve" as const), reference: fc.constantFrom("Channel", "Pedal"), units: fc.integer({ min: 1, max: 3 }), counts: fc.tuple(fc.integer({ min: 1, max: 3 }), fc.integer({ min: 1, max: 3 })) }),
   fc.record({ do: fc.constant("release" as const), reference: fc.constantFrom("Channel", "Pedal") }),
-  fc.record({ do: fc.constant("use" as const), reference: fc.constantFrom("Channel", "Pedal"), units: fc.integer({ min: 1, max: 2 }) }),
+  fc.record({ do: fc.constant("use" as const), reference: fc.constantFrom("Channel", "Pedal"), units: fc.integer({ min: 1, max: 2 }), counts: fc.tuple(fc.integer({ min: 1, max: 3 }), fc.integer({ min: 1, max: 3 })) }),
   fc.record({ do: fc.constant("undo" as const), back: fc.integer({ min: 0, max: 6 }) }),
   fc.record({ do: fc.constant("edit" as const), line: fc.constantFrom("A", "B"), location: fc.constantFrom("box 1", "box 2") }),
 );
@@ -149,7 +149,7 @@ async function perform(store: DrawerStore, command: Command): Promise<void> {
       store.release(command.reference);
       break;
     case "use":
-      store.use(command.reference, command.units);
+      store.use(command.reference, command.units, [{ line: "A", count: command.counts[0] }, { line: "B", count: command.counts[1] }]);
       break;
     case "edit":
       store.editLines([command.line], { location: command.location });

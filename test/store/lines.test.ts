@@ -157,12 +157,13 @@ describe("builds", () => {
     const { build } = drawer.reserve("Channel", 3, [{ line: "R-1", count: 4 }, { line: "C-1", count: 1 }, { line: "R-1", count: 1 }]);
     expect(build).toMatchObject({ reference: "Channel", units: 3, unitsUsed: 0, state: "reserved", bill: [{ line: "R-1", count: 5, held: 15 }, { line: "C-1", count: 1, held: 3 }] });
     expect(drawer.find("R-1")).toMatchObject({ quantity: 20, reserved: 15 });
-    expect(drawer.use("Channel", 2).build).toMatchObject({ units: 1, unitsUsed: 2, state: "reserved" });
+    const bill = [{ line: "C-1", count: 1 }, { line: "R-1", count: 5 }];
+    expect(drawer.use("Channel", 2, bill).build).toMatchObject({ units: 1, unitsUsed: 2, state: "reserved" });
     expect(drawer.find("R-1")).toMatchObject({ quantity: 10, reserved: 5 });
+    expect([...drawer.heldBy("Channel")]).toEqual([["C-1", 1], ["R-1", 5]]);
     drawer.release("Channel");
     expect(drawer.find("R-1")).toMatchObject({ quantity: 10, reserved: 0 });
     expect(drawer.builds()).toMatchObject([{ reference: "Channel", units: 0, unitsUsed: 2, state: "released" }]);
-    expect(() => drawer.use("Channel", 1)).toThrow("Channel: nothing is held for it any more");
     expect(() => drawer.release("Nobody")).toThrow("Nothing is recorded for “Nobody”.");
   });
 
@@ -172,11 +173,42 @@ describe("builds", () => {
     expect(() => drawer.reserve("Pedal", 1, [{ line: "R-1", count: 1 }])).toThrow("R-1: 1 wanted, but none of 20 are free; held by Channel (20).");
     expect(() => drawer.reserve("Channel", 5, [{ line: "R-1", count: 5 }])).toThrow("R-1: 25 wanted, but only 20 of 20 are free.");
     expect(drawer.find("R-1")?.reserved).toBe(20);
-    expect(() => drawer.use("Channel", 5)).toThrow("Channel: pieces are held for 4 units, so 5 cannot be booked.");
   });
 
-  test("nothing is held of a retired line", () => {
+  test("using what nobody held is one step, which one undo takes back", async () => {
+    const before = drawer.steps(10).length;
+    const { step, build } = drawer.use("Channel", 2, [{ line: "R-1", count: 4 }, { line: "C-1", count: 1 }]);
+    expect(build).toMatchObject({ units: 0, unitsUsed: 2, state: "used" });
+    expect(drawer.steps(10)).toHaveLength(before + 1);
+    expect([drawer.find("R-1"), drawer.find("C-1")]).toMatchObject([{ quantity: 12, reserved: 0 }, { quantity: 4, reserved: 0 }]);
+    await drawer.undo(step);
+    expect([drawer.find("R-1"), drawer.find("C-1")]).toMatchObject([{ quantity: 20, reserved: 0 }, { quantity: 6, reserved: 0 }]);
+    expect(drawer.builds()).toEqual([]);
+  });
+
+  test("more units may be finished than were held, out of free pieces; too few change nothing", () => {
+    drawer.reserve("Channel", 2, [{ line: "R-1", count: 4 }]);
+    drawer.reserve("Pedal", 1, [{ line: "R-1", count: 7 }]);
+    expect(() => drawer.use("Channel", 4, [{ line: "R-1", count: 4 }])).toThrow("R-1: 8 wanted, but only 5 of 20 are free; held by Pedal (7).");
+    expect([...drawer.heldBy("Channel")]).toEqual([["R-1", 8]]);
+    expect(drawer.use("Channel", 3, [{ line: "R-1", count: 4 }]).build).toMatchObject({ units: 0, unitsUsed: 3, state: "used" });
+    expect(drawer.find("R-1")).toMatchObject({ quantity: 8, reserved: 7 });
+  });
+
+  test("units still planned are held anew where the finished ones took other parts, or nothing is booked", () => {
+    drawer.reserve("Channel", 5, [{ line: "R-1", count: 1 }]);
+    const other = [{ line: "C-1", count: 1 }];
+    expect(drawer.use("Channel", 2, other).build).toMatchObject({ units: 3, unitsUsed: 2, state: "reserved", bill: [{ line: "C-1", count: 1, held: 3 }] });
+    expect([...drawer.heldBy("Channel")]).toEqual([["C-1", 3]]);
+    drawer.reserve("Channel", 5, [{ line: "R-1", count: 1 }]);
+    drawer.move([{ line: "C-1", kind: "used", count: 2, reference: "", note: "" }]);
+    expect(() => drawer.use("Channel", 1, other)).toThrow("C-1: 4 wanted, but only 1 of 1 is free.");
+    expect([...drawer.heldBy("Channel")]).toEqual([["R-1", 5]]);
+  });
+
+  test("a retired line is taken for no build", () => {
     drawer.retireLines(["C-1"], true);
     expect(() => drawer.reserve("Channel", 1, [{ line: "C-1", count: 1 }])).toThrow("C-1: it is retired");
+    expect(() => drawer.use("Channel", 1, [{ line: "C-1", count: 1 }])).toThrow("C-1: it is retired");
   });
 });

@@ -5,6 +5,7 @@ import { expect, test } from "vitest";
 import { openDrawer } from "../../app/store/drawer-store.ts";
 import { migrate, readMigrations } from "../../app/store/migrate.ts";
 import { canLoadSqlite, loadSqlite } from "../../app/store/sqlite.ts";
+import { emptyLine } from "../../core/drawer/stock.ts";
 import { openScratch, scratchFolder } from "../helpers/drawer.ts";
 
 const NEWEST = readMigrations().length;
@@ -32,11 +33,11 @@ test("a new drawer has the newest version, a write-ahead log and its own mark in
   expect([header[18], header[19]]).toEqual([2, 2]);
 });
 
-/** A drawer as the first version wrote it. */
-function firstVersion(path: string): void {
+/** A drawer as an older version wrote it, with something in everything that the version knew. */
+function olderDrawer(path: string, version: number): void {
   const db = new Database(path);
   db.pragma("journal_mode = WAL");
-  migrate(db, readMigrations(), 1);
+  migrate(db, readMigrations(), version);
   db.exec(`
     INSERT INTO steps (at, label) VALUES ('2029-05-01T10:00:00.000Z', 'Add R-1'), ('2029-05-02T10:00:00.000Z', 'Reserve');
     INSERT INTO lines (id, kind, value, technology, package, location, supplier, order_code, currency, prices, notes) VALUES
@@ -47,27 +48,44 @@ function firstVersion(path: string): void {
     INSERT INTO ledger (step, line, kind, change, reference, note) VALUES
       (1, 1, 'counted', 20, '', ''), (2, 1, 'reserved', 6, 'Channel', ''), (2, 1, 'reserved', 3, 'Repair', ''), (2, 1, 'released', -3, 'Repair', ''), (2, 1, 'released', -2, 'Channel', '');
   `);
+  if (version >= 2) {
+    db.exec(`
+      INSERT INTO pieces (line, mark, value, frequency) VALUES (1, '7', 4712, 1000);
+      INSERT INTO builds (key, reference, units, units_used, state, at, bill) VALUES (1, 'Channel', 2, 1, 'reserved', '2029-05-02T10:00:00.000Z', '[{"line":1,"count":2}]');
+    `);
+  }
   db.close();
 }
 
-test("a drawer of the first version opens with everything in it, and who holds what is worked out from its ledger", async () => {
+test.each(readMigrations().slice(0, -1).map(({ version }) => version))("a drawer of version %i opens with everything in it, and takes what is new", async (version) => {
   const path = join(scratchFolder(), "old.sqlite");
-  firstVersion(path);
+  olderDrawer(path, version);
   const store = await openScratch(path);
-  expect(store.info()).toMatchObject({ lines: 2, version: NEWEST });
-  expect(store.line("R-1")).toMatchObject({ line: { quantity: 20, reserved: 4, location: "box Ω", prices: [{ from: 1, unitCost: 0.06 }] }, holders: [{ reference: "Channel", count: 4 }] });
-  // What it holds counts: all of it can be released, and no more.
-  expect(() => store.move([{ line: "R-1", kind: "released", count: 5, reference: "Channel", note: "" }])).toThrow("holds 4 pieces");
-  store.move([{ line: "R-1", kind: "released", count: 4, reference: "Channel", note: "" }]);
-  expect(store.ledger({ line: "R-1", reference: null, before: null, limit: 10 }).movements).toHaveLength(6);
+  expect(store.info()).toMatchObject({ lines: 2, version: NEWEST, pieces: version >= 2 ? 1 : 0 });
+  expect(store.line("R-1")).toMatchObject({ line: { value: 4700, quantity: 20, reserved: 4, windingR: null, prices: [{ from: 1, unitCost: 0.06 }] }, holders: [{ reference: "Channel", count: 4 }] });
+  if (version >= 2) expect(store.builds()).toMatchObject([{ reference: "Channel", units: 2, unitsUsed: 1, bill: [{ line: "R-1", count: 2, held: 4 }] }]);
+  store.addLine({ ...emptyLine("L-1", "inductor"), value: 0.1, windingR: 38 }, 2);
+  expect(store.find("L-1")).toMatchObject({ windingR: 38, quantity: 2 });
   expect(store.integrityProblems()).toEqual([]);
   store.close();
   expect(schemaOf(path)).toBe(readFileSync(join(import.meta.dirname, "schema.snap.sql"), "utf8"));
 });
 
+test("a drawer of the first version works out from its ledger who holds what", async () => {
+  const path = join(scratchFolder(), "old.sqlite");
+  olderDrawer(path, 1);
+  const store = await openScratch(path);
+  expect(store.line("R-1")).toMatchObject({ line: { quantity: 20, reserved: 4, location: "box Ω" }, holders: [{ reference: "Channel", count: 4 }] });
+  // What it holds counts: all of it can be released, and no more.
+  expect(() => store.move([{ line: "R-1", kind: "released", count: 5, reference: "Channel", note: "" }])).toThrow("holds 4 pieces");
+  store.move([{ line: "R-1", kind: "released", count: 4, reference: "Channel", note: "" }]);
+  expect(store.ledger({ line: "R-1", reference: null, before: null, limit: 10 }).movements).toHaveLength(6);
+  expect(store.integrityProblems()).toEqual([]);
+});
+
 test("a migration that fails leaves the drawer at the version before", () => {
   const path = join(scratchFolder(), "drawer.sqlite");
-  firstVersion(path);
+  olderDrawer(path, 1);
   const db = new Database(path);
   const broken = [readMigrations()[0], { version: 2, sql: "CREATE TABLE pieces (id INTEGER) STRICT; CREATE TABLE nonsense (" }];
   expect(() => migrate(db, broken)).toThrow("incomplete input");

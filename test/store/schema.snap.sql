@@ -109,7 +109,7 @@ CREATE TABLE lines (
   prices TEXT NOT NULL CHECK (json_valid(prices)),
   notes TEXT NOT NULL COLLATE NOCASE,
   available INTEGER NOT NULL GENERATED ALWAYS AS (quantity - reserved) VIRTUAL,
-  unit_cost REAL GENERATED ALWAYS AS (CAST (json_extract(prices, '$[0].unitCost') AS REAL)) VIRTUAL,
+  unit_cost REAL GENERATED ALWAYS AS (CAST (json_extract(prices, '$[0].unitCost') AS REAL)) VIRTUAL, winding_resistance REAL CHECK (winding_resistance > 0),
   CHECK ((kind = 'op-amp') = (value IS NULL)),
   CHECK ((kind = 'op-amp') = (type IS NOT NULL))
 ) STRICT;

@@ -6,6 +6,7 @@ import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
 import { createHost, type Host } from "../../../app/host.ts";
 import { createDrawer, type Drawer } from "../../../app/services/drawer.ts";
 import { createPathGuard } from "../../../app/services/path-guard.ts";
+import { readMigrations } from "../../../app/store/migrate.ts";
 import { isHostFailure } from "../../../core/contract/failures.ts";
 import { EVERY_LINE } from "../../../core/contract/drawer-schemas.ts";
 import { createHostClient, type HostClient } from "../../../renderer/host/client.ts";
@@ -45,7 +46,7 @@ afterEach(async () => {
 
 test("the first call makes the drawer in the user's data folder; an empty one can be begun with the starter, and that undone", async () => {
   const info = await client.call("drawer.info");
-  expect(info).toEqual({ path: join(base, "data", "bandwright", "drawer.sqlite"), lines: 0, retired: 0, pieces: 0, version: 2 });
+  expect(info).toEqual({ path: join(base, "data", "bandwright", "drawer.sqlite"), lines: 0, retired: 0, pieces: 0, version: readMigrations().length });
   const report = await client.call("drawer.starter", { job: "first" });
   expect(report).toMatchObject({ refused: 0, faults: [] });
   expect(report.added).toBeGreaterThanOrEqual(400);

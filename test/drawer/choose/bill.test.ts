@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import * as fc from "fast-check";
 import { buildBill, cheapestPurchase, sumMoney } from "../../../core/drawer/bill.ts";
-import { unitCost, type StockedLine } from "../../../core/drawer/stock.ts";
+import { freeForBuild, unitCost, type StockedLine } from "../../../core/drawer/stock.ts";
 import type { Block, Part, Project } from "../../../core/model/project.ts";
 import { resolveBoard, type Board } from "../../../core/net/board.ts";
 import { bandOf, oneBus } from "../../helpers/boards.ts";
@@ -81,7 +81,7 @@ describe("the bill of a build", () => {
   });
 
   it("gives back what this build has reserved before", () => {
-    const bill = buildBill(board(), LINES, 10, { held: new Map([["C100n", 20]]) });
+    const bill = buildBill(board(), freeForBuild(LINES, new Map([["C100n", 20]])), 10);
     expect(bill.rows.find((r) => r.line.id === "C100n")).toMatchObject({ available: 30, short: 0, left: 10 });
   });
 

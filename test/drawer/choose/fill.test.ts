@@ -149,6 +149,7 @@ describe("a board filled from the drawer", () => {
     expect(applyPatch(board.project, result.patch)).toEqual(project);
     const bill = buildBill(resolveBoard(project), lines, 2);
     expect(bill.isReady).toBe(true);
+    for (const { left, line, candidate } of result.placed) expect(left).toBe(Math.min(...bill.rows.filter((r) => (candidate?.lines ?? [line]).some((l) => l.id === r.line.id)).map((r) => r.available - r.total)));
     expect(bill.costPerUnit).toHaveLength(1);
     expect(bill.costPerUnit[0].amount).toBeCloseTo(result.cost[0].amount, 9);
     for (const { line, candidate } of result.placed) if (candidate && candidate.joined === null) expect(Math.abs(candidate.value! / line.value! - 1)).toBeLessThan(1e-12);

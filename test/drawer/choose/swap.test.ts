@@ -2,10 +2,12 @@ import { readFileSync } from "node:fs";
 import { describe, expect, it } from "vitest";
 import { bandFigures } from "../../../core/analysis/bands.ts";
 import { logFrequencies, ResponseSweep } from "../../../core/analysis/response.ts";
-import { hasFault } from "../../../core/drawer/candidates.ts";
-import { findRole } from "../../../core/drawer/roles.ts";
+import { hasFault } from "../../../core/drawer/place-problems.ts";
+import { buildBill } from "../../../core/drawer/bill.ts";
+import { fillBoard } from "../../../core/drawer/fill.ts";
+import { filledProject, findRole } from "../../../core/drawer/roles.ts";
 import { rankSwaps, type Swap, type SwapOpts } from "../../../core/drawer/swap.ts";
-import type { StockedLine } from "../../../core/drawer/stock.ts";
+import { freeForBuild, type StockedLine } from "../../../core/drawer/stock.ts";
 import { applyPatch } from "../../../core/model/patch.ts";
 import type { Project } from "../../../core/model/project.ts";
 import { restoreProject } from "../../../core/model/restore.ts";
@@ -80,6 +82,25 @@ describe("parts for a role, ranked by what they do to the board", () => {
     expect(candidates.map((c) => [c.lines[0].id, c.left, c.cost!.amount])).toEqual([["many", 15, 0.15]]);
     const short = rank(voice, "b1k.seriesC", lines, { units: 10, withShort: true }).candidates.find((c) => c.lines[0].id === "few")!;
     expect(short.problems).toEqual([{ level: "fault", about: "stock", message: "6 too few of few: 4 are free" }]);
+  });
+
+  it("counts as left what the bill of the board with the candidate counts, other roles on its line and op amps by the package included", () => {
+    const lines = freeForBuild(fullDrawer(90), new Map([["TL072", 3], ["R-4.7E2", 40]])).map((l) => ({ ...l, reserved: l.reserved + 45 }));
+    const filled = resolveBoard(fillBoard(voice, lines).project);
+    let shared = 0;
+    for (const name of ["b1k.seriesR", "b1k.seriesC", "b1k.opAmp", "b1k.slider", "eq.opAmp", "in.loadR"]) {
+      for (const c of rank(filled, name, lines, { units: 3, pairs: true, most: 6 }).candidates) {
+        const rows = buildBill(resolveBoard(applyPatch(filled.project, c.patch)), lines, 3).rows.filter((r) => c.lines.some((l) => l.id === r.line.id));
+        expect([name, c.lines.map((l) => l.id), c.left]).toEqual([name, c.lines.map((l) => l.id), Math.min(...rows.map((r) => r.available - r.total))]);
+        if (rows.some((r) => r.perUnit > c.lines.length)) shared++;
+      }
+    }
+    expect(shared).toBeGreaterThan(4);
+  });
+
+  it("offers no line whose pieces the board's other roles take", () => {
+    const both = (quantity: number) => rank(resolveBoard(filledProject(voice.project, [{ role: findRole(voice, "b63.seriesR")!, filling: { part: { value: 470, stock: "mine" } } }])), "b1k.seriesR", [lineOf("mine", "resistor", 470, { quantity })], { units: 2 }).candidates.length;
+    expect([both(4), both(3)]).toEqual([1, 0]);
   });
 
   it("joins two pieces where asked, and writes both down", () => {

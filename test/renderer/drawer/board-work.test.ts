@@ -7,7 +7,8 @@ import { createPathGuard } from "../../../app/services/path-guard.ts";
 import { createHost } from "../../../app/host.ts";
 import { EVERY_LINE } from "../../../core/contract/drawer-schemas.ts";
 import { respond } from "../../../core/analysis/response.ts";
-import { buildBill } from "../../../core/drawer/bill.ts";
+import { buildBill, buildReference } from "../../../core/drawer/bill.ts";
+import { boardProblems, listedProblems } from "../../../core/drawer/board-problems.ts";
 import { fillBoard } from "../../../core/drawer/fill.ts";
 import { matchPieces } from "../../../core/drawer/match.ts";
 import { boardRoles, filledProject } from "../../../core/drawer/roles.ts";
@@ -17,12 +18,11 @@ import { restoreProject } from "../../../core/model/restore.ts";
 import { resolveBoard } from "../../../core/net/board.ts";
 import { compileBoard } from "../../../core/net/star.ts";
 import { fillingsOf } from "../../../renderer/drawer/FillPanel.tsx";
-import { findingsOf } from "../../../renderer/drawer/findings.ts";
 import { ghostOf } from "../../../renderer/drawer/ghost.ts";
 import { measuredFillings } from "../../../renderer/drawer/MatchPanel.tsx";
 import { shoppingCsv, shoppingText } from "../../../renderer/drawer/shopping.ts";
 import { linesForBoard, linesForRole, namedLines, piecesForBoard } from "../../../renderer/drawer/stock-query.ts";
-import { candidateName, effectText, worstText } from "../../../renderer/drawer/swap-text.ts";
+import { candidateName, effectText, leftText, worstText } from "../../../renderer/drawer/swap-text.ts";
 import { withColumn } from "../../../renderer/drawer/ImportMappingTable.tsx";
 import { createHostClient, type HostClient } from "../../../renderer/host/client.ts";
 import { CHECKOUT } from "../../helpers/app.ts";
@@ -63,7 +63,7 @@ describe("a board and the starter drawer", () => {
   test("the dotted curve is the response with the candidate in place, whatever the sliders do meanwhile", async () => {
     const board = resolveBoard(project);
     const role = boardRoles(board).find((r) => r.name === "b1k.seriesC")!;
-    const { candidates } = rankSwaps(board, role, await linesForRole(host, role, false));
+    const { candidates } = rankSwaps(board, role, await linesForRole(host, board, role, false));
     const other = candidates.find((c) => c.value !== role.value)!;
     const moved = { ...project, blocks: project.blocks.map((b) => (b.id === "b1k" ? { ...b, slider: { ...b.slider!, position: 0.9 } } : b)) };
     const fillings = [{ role, filling: other.filling }];
@@ -74,13 +74,31 @@ describe("a board and the starter drawer", () => {
     expect(ghostOf({ ...moved, wires: [] }, { label: "", change: (p) => p }, [], RANGE)).toBeNull();
     expect(effectText(other)).toMatch(/^peak.*centre.*Q/);
     expect(worstText(0)).toBe("response unchanged");
+    // What is left is what the bill says of the board with it, one unit built.
+    const row = buildBill(resolveBoard(filledProject(project, fillings)), other.lines, 1).rows.find((r) => r.line.id === other.lines[0].id)!;
+    expect(leftText(other)).toBe(`${row.left} left`);
+    expect(leftText({ ...other, joined: "series", isInPlace: true })).toBe(`in place, two in series, ${row.left} left`);
+  });
+
+  test("pieces that the board's own build holds are there for it", async () => {
+    const board = resolveBoard(project);
+    const role = boardRoles(board).find((r) => r.name === "b1k.seriesC")!;
+    const before = await linesForRole(host, board, role, false);
+    const reference = buildReference(project);
+    const all = before.map((line) => ({ line: line.id, count: line.quantity }));
+    const { step } = await host.call("drawer.reserve", { reference, units: 1, bill: all });
+    expect(await linesForRole(host, board, role, false)).toEqual(before);
+    expect((await linesForRole(host, board, role, true)).filter((line) => before.some((b) => b.id === line.id))).toHaveLength(before.length);
+    const other = resolveBoard({ ...project, name: "Other board" });
+    expect(rankSwaps(other, role, await linesForRole(host, other, role, false)).candidates).toEqual([]);
+    await host.call("drawer.undo", { step });
   });
 
   test("pairs are sought among every line of the kind", async () => {
     const board = resolveBoard(project);
     const role = boardRoles(board).find((r) => r.name === "b1k.seriesC")!;
     const { total } = await host.call("drawer.lines", { filter: { ...EVERY_LINE, kind: ["capacitor"], onlyAvailable: true }, sort: { by: "id", descending: false }, offset: 0, limit: 1 });
-    const lines = await linesForRole(host, role, true);
+    const lines = await linesForRole(host, board, role, true);
     expect(lines).toHaveLength(total);
     const pair = rankSwaps(board, role, lines, { pairs: true, most: 24 }).candidates.find((c) => c.joined !== null)!;
     expect(candidateName(pair)).toContain(pair.joined === "series" ? " + " : " ∥ ");
@@ -100,7 +118,7 @@ describe("a board and the starter drawer", () => {
     expect(rows).toHaveLength(1 + bill.shopping.reduce((sum, group) => sum + group.items.length, 0));
     for (const group of bill.shopping) for (const item of group.items) expect(text).toContain(`${item.buy} × ${item.line.id}`);
     // Each finding is of a line that the board names, faults first.
-    const findings = findingsOf(board, lines);
+    const findings = listedProblems(boardProblems(board, lines));
     for (const { role, line } of findings) expect([role.stock, role.part?.second?.stock]).toContain(line.id);
   });
 
@@ -123,14 +141,14 @@ describe("a board and the starter drawer", () => {
     const weak = (await host.call("drawer.candidates", { kind: "capacitor", value: 1e-5, within: 0.5, type: null, technology: [], ratingFrom: null, toleranceTo: null, availableFrom: 0, limit: 50 })).lines[0];
     const line = { ...weak, technology: "film", rating: 1 };
     const blocks = project.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, seriesC: { ...b.parts!.seriesC, stock: line.id } } } : b));
-    const [first] = findingsOf(resolveBoard({ ...project, blocks }), [line]);
+    const [first] = listedProblems(boardProblems(resolveBoard({ ...project, blocks }), [line])).filter(({ problem }) => problem.about !== "value");
     expect(first).toMatchObject({ problem: { level: "fault", about: "rating" }, role: { name: "b1k.seriesC" } });
   });
 });
 
 describe("shopping lists", () => {
   test("cells are quoted as the standard has it, and no cell is a formula", () => {
-    const line = { id: '=1+1"', kind: "resistor", value: 100, type: null, tolerance: null, rating: null, technology: "a, b", temperatureCoefficient: null, package: "", location: "", prices: [], currency: "", supplier: "Q", orderCode: "", notes: "", quantity: 0, reserved: 0 } as const;
+    const line = { id: '=1+1"', kind: "resistor", value: 100, type: null, tolerance: null, rating: null, technology: "a, b", temperatureCoefficient: null, windingR: null, package: "", location: "", prices: [], currency: "", supplier: "Q", orderCode: "", notes: "", quantity: 0, reserved: 0 } as const;
     const csv = shoppingCsv({ shopping: [{ supplier: "Q", cost: [], items: [{ line, short: 3, buy: 3, unitCost: null, cost: null, insteadOf: null }] }] });
     expect(csv.split("\r\n")[1]).toBe(`Q,,"'=1+1""","100R a, b",3,3,,,`);
   });

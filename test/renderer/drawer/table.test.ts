@@ -7,7 +7,7 @@ import { ALL_CHOSEN, chosenCount, chosenIds, isChosen, NOTHING_CHOSEN, toggled, 
 import { LineWindows, WINDOW } from "../../../renderer/drawer/windows.ts";
 
 const LINE: DrawerLine = {
-  id: "C-100N", kind: "capacitor", value: 1e-7, type: null, tolerance: 0.05, rating: 63, technology: "film", temperatureCoefficient: 1e-4, package: "pitch 5 mm", location: "box 3",
+  id: "C-100N", kind: "capacitor", value: 1e-7, type: null, tolerance: 0.05, rating: 63, technology: "film", temperatureCoefficient: 1e-4, windingR: null, package: "pitch 5 mm", location: "box 3",
   prices: [{ from: 1, unitCost: 0.12 }, { from: 100, unitCost: 0.0905 }], currency: "EUR", supplier: "Quay", orderCode: "Q-1", notes: "", quantity: 20, reserved: 5, retired: false,
 };
 
