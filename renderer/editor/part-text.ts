@@ -2,8 +2,8 @@ import { BLOCKS } from "../../core/blocks/index.ts";
 import type { BlockKind } from "../../core/blocks/kinds.ts";
 import { nextPreferred, type ESeries } from "../../core/e-series.ts";
 import { blockName, setPartValue, TRACK } from "../../core/model/edit.ts";
-import type { Block } from "../../core/model/project.ts";
-import { parseValue, type Quantity } from "../../core/units.ts";
+import type { Block, Part } from "../../core/model/project.ts";
+import { editText, formatCode, formatValue, parseValue, type Quantity } from "../../core/units.ts";
 import type { Editor } from "./store.ts";
 
 /** A number that a field takes, or what is wrong with it. */
@@ -51,6 +51,32 @@ export function editPartText(editor: Editor, id: string, role: string, text: str
   if (!read.ok) return read.message;
   editor.apply(`set ${roleLabel(block.kind, role)} of “${blockName(block)}”`, setPartValue(project, id, role, read.value));
   return null;
+}
+
+/** Digits of a value at rest: more than parts are made to, few enough to be read whole. */
+const REST_DIGITS = 4;
+
+/** A part's value as it stands in a field that nobody edits: `4.7 kΩ`. */
+export function partText(value: number, quantity: Quantity): string {
+  return formatValue(value, quantity, { significant: REST_DIGITS });
+}
+
+/** What is edited: every digit, but for the value of two pieces, which nobody ever set. */
+export function partEditText(part: Part, quantity: Quantity): string {
+  return editText(part.second ? Number(part.value.toPrecision(REST_DIGITS)) : part.value, quantity);
+}
+
+/** Two pieces that make one value, as people write them: `4k7 + 220R in series`, `10n ∥ 2n2 in parallel`; null for one piece. */
+export function piecesText({ second }: Part, quantity: Quantity): string | null {
+  if (!second || (quantity !== "resistance" && quantity !== "capacitance" && quantity !== "inductance")) return null;
+  const [first, other] = [second.firstValue, second.value].map((value) => formatCode(value, quantity));
+  return `${first} ${second.joined === "series" ? "+" : "∥"} ${other} in ${second.joined}`;
+}
+
+/** What stands below the value of two pieces; null for one piece. */
+export function piecesNote(part: Part, quantity: Quantity): string | null {
+  const pieces = piecesText(part, quantity);
+  return pieces === null ? null : `${pieces} · typing replaces both`;
 }
 
 /** The series in which a value steps: what shops stock of each. */

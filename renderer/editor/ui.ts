@@ -45,7 +45,7 @@ export interface GhostSource {
   readonly change: (project: Project) => Project;
 }
 
-/** Work on the whole board that takes the panel's place until it is taken or given up. */
+/** Work on the whole board that takes the panel's place until it is taken or given up; it steps aside for a block that is selected meanwhile. */
 export type Task = "fill" | "match";
 
 /** The pages of the equations: the selected block, the divider of a single supply, or what belongs to the board as a whole. */
@@ -59,6 +59,8 @@ export interface UiState {
   readonly equationsAt: number | null;
   readonly ghost: GhostSource | null;
   readonly task: Task | null;
+  /** The selection beside which the task stays in the panel; another one brings its own panel up. */
+  readonly taskBeside: readonly string[] | null;
   readonly isPanelOpen: boolean;
   readonly isPhaseShown: boolean;
   /** Where on the response the pointer or the keyboard's cursor stands, Hz. */
@@ -80,7 +82,7 @@ export interface Ui {
   ask<D extends DialogName>(name: D, ask: Dialogs[D]["ask"]): Promise<Dialogs[D]["answer"]>;
   notify(text: string, isWarning?: boolean): void;
   setTheme(theme: Theme): void;
-  patch(change: Partial<Pick<UiState, "view" | "equationsPage" | "equationsAt" | "ghost" | "task" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
+  patch(change: Partial<Pick<UiState, "view" | "equationsPage" | "equationsAt" | "ghost" | "task" | "taskBeside" | "isPanelOpen" | "isPhaseShown" | "cursor" | "contextMenu" | "isBusy" | "isConnected">>): void;
 }
 
 /** A preference of this screen; nothing of the user's work is ever kept in the browser. */
@@ -97,6 +99,7 @@ export function createUi(): Ui {
     equationsAt: null,
     ghost: null,
     task: null,
+    taskBeside: null,
     isPanelOpen: window.innerWidth >= 900,
     isPhaseShown: false,
     cursor: null,

@@ -1,6 +1,6 @@
 import type { Part } from "../../core/model/project.ts";
 import { editText, formatValue, type Quantity } from "../../core/units.ts";
-import { readAtLeastZero, readPositive, readTolerance, stepPreferred } from "../editor/part-text.ts";
+import { partEditText, partText, piecesNote, readAtLeastZero, readPositive, readTolerance, stepPreferred } from "../editor/part-text.ts";
 import { ValueField } from "./ValueField.tsx";
 
 export type Datum = "tolerance" | "measured" | "windingR" | "selfC";
@@ -58,8 +58,11 @@ function AbsentRow({ role, edits }: { readonly role: PartRole; readonly edits: P
 }
 
 function PartRow({ role: { role, label, quantity, isOptional }, part, edits }: { readonly role: PartRole; readonly part: Part; readonly edits: PartEdits }) {
-  const show = (value: number): string => formatValue(value, quantity, { significant: "exact" });
-  const edit = (value: number): string => editText(value, quantity);
+  const show = (value: number): string => partText(value, quantity);
+  const exact = (value: number | undefined): { title?: string } => {
+    const full = value === undefined ? "" : formatValue(value, quantity, { significant: "exact" });
+    return value === undefined || full === show(value) ? {} : { title: full };
+  };
   return (
     <>
       <div className="part-row" data-role={role}>
@@ -71,7 +74,17 @@ function PartRow({ role: { role, label, quantity, isOptional }, part, edits }: {
             </button>
           )}
         </span>
-        <ValueField label={label} value={part.value} format={show} edit={edit} read={(text) => readPositive(text, quantity)} step={(value, direction) => stepPreferred(value, quantity, direction)} onTake={(value) => edits.onValue(role, value)} />
+        <ValueField
+          label={label}
+          value={part.value}
+          {...exact(part.value)}
+          note={piecesNote(part, quantity)}
+          format={show}
+          edit={() => partEditText(part, quantity)}
+          read={(text) => readPositive(text, quantity)}
+          step={(value, direction) => stepPreferred(value, quantity, direction)}
+          onTake={(value) => edits.onValue(role, value)}
+        />
         <ValueField
           label={`Tolerance of ${label}`}
           value={part.tolerance}
@@ -85,9 +98,10 @@ function PartRow({ role: { role, label, quantity, isOptional }, part, edits }: {
         <ValueField
           label={`Measured value of ${label}`}
           value={part.measured}
+          {...exact(part.measured)}
           placeholder="–"
           format={show}
-          edit={edit}
+          edit={(value) => editText(value, quantity)}
           read={(text) => readPositive(text, quantity)}
           onTake={(value) => edits.onDatum(role, "measured", value)}
           onClear={() => edits.onDatum(role, "measured", undefined)}

@@ -1,4 +1,4 @@
-import { setField, without } from "../../core/model/edit.ts";
+import { bareOf, setField, without } from "../../core/model/edit.ts";
 import { partsOf, type Part, type SingleSupply, type SplitSupply, type SupplyReference } from "../../core/model/project.ts";
 import { formatFigure, formatValue } from "../../core/units.ts";
 import { useEditorState, useShell } from "../editor/hooks.ts";
@@ -74,7 +74,7 @@ function SingleRows({ supply, set }: { readonly supply: SingleSupply; readonly s
       <PartRows
         roles={roles}
         edits={{
-          onValue: (role, value) => setPart(role, (part) => ({ ...without(part, "measured"), value })),
+          onValue: (role, value) => setPart(role, (part) => ({ ...bareOf(part), value })),
           onDatum: (role, key, value) => setPart(role, (part) => (value === undefined ? (without(part, key) as Part) : { ...part, [key]: value })),
         }}
       />

@@ -16,12 +16,16 @@ interface ValueFieldProps {
   /** An emptied field clears the value where this is given, else goes back to what it was. */
   readonly onClear?: () => void;
   readonly onTake: (value: number) => void;
+  /** Shown where the pointer rests: the value in full, where its text is rounded. */
+  readonly title?: string;
+  /** What is to be known about the value, below it. */
+  readonly note?: string | null;
   /** The next value up or down, for the arrow keys. */
   readonly step?: (value: number, direction: 1 | -1) => number;
 }
 
 /** A field for one value: trade notation and arithmetic in, an explanation under it where that is not understood. */
-export function ValueField({ label, value, placeholder = "", format, edit = format, read, onTake, onClear, step }: ValueFieldProps) {
+export function ValueField({ label, value, placeholder = "", format, edit = format, read, onTake, onClear, title, note = null, step }: ValueFieldProps) {
   const id = useId();
   const [draft, setDraft] = useState<string | null>(null);
   const [isFocused, setFocused] = useState(false);
@@ -29,6 +33,11 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
   const rest = value === undefined ? "" : isFocused ? edit(value) : format(value);
 
   function take(text: string): void {
+    // What stood there already is no change, however much of the value it rounds away.
+    if (text === rest) {
+      forget();
+      return;
+    }
     if (text.trim() === "") {
       onClear?.();
       forget();
@@ -54,7 +63,8 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
         className="value-input"
         aria-label={label}
         aria-invalid={error !== null}
-        aria-describedby={error === null ? undefined : id}
+        aria-describedby={error !== null ? id : note !== null ? `${id}-note` : undefined}
+        title={title}
         value={draft ?? rest}
         placeholder={placeholder}
         data-untouched={draft === null || draft === rest}
@@ -91,6 +101,11 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
           }
         }}
       />
+      {note !== null && (
+        <p className="field-note" id={`${id}-note`}>
+          {note}
+        </p>
+      )}
       {error !== null && (
         <p className="field-error" id={id} role="alert">
           {error}

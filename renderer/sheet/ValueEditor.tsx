@@ -1,8 +1,8 @@
 import { useEffect, useId, useRef, useState, type KeyboardEvent } from "react";
-import { BLOCKS } from "../../core/blocks/index.ts";
-import { nextPreferred } from "../../core/e-series.ts";
-import { partsOf, type Block } from "../../core/model/project.ts";
+import { blockName, partOf } from "../../core/model/edit.ts";
+import type { Block } from "../../core/model/project.ts";
 import { editText, parseValue } from "../../core/units.ts";
+import { partEditText, piecesNote, quantityOf, roleLabel, stepPreferred } from "../editor/part-text.ts";
 
 interface ValueEditorProps {
   readonly block: Block;
@@ -14,25 +14,16 @@ interface ValueEditorProps {
   readonly onLeave: () => void;
 }
 
-type PartQuantity = "resistance" | "capacitance" | "inductance";
-
-function quantityOf(block: Block, role: string): PartQuantity {
-  return BLOCKS[block.kind].roles.find((r) => r.role === role)?.quantity ?? "resistance";
-}
-
-function labelOf(block: Block, role: string): string {
-  return BLOCKS[block.kind].roles.find((r) => r.role === role)?.label ?? role;
-}
-
 /** A value taken for editing where it stands. Enter takes it, Esc leaves it, up and down step through preferred values. */
 export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEditorProps) {
-  const quantity = quantityOf(block, role);
-  const part = role === "track" ? block.slider?.track : partsOf(block)[role];
-  const first = part ? editText(part.value, quantity) : "";
+  const quantity = quantityOf(block, role) ?? "resistance";
+  const part = partOf(block, role);
+  const first = part ? partEditText(part, quantity) : "";
+  const note = part ? piecesNote(part, quantity) : null;
   const [text, setText] = useState(first);
   const [fault, setFault] = useState<string | null>(null);
   const input = useRef<HTMLInputElement>(null);
-  const faultId = useId();
+  const aboutId = useId();
   /** Leaving takes the focus away, and that must not take the value again. */
   const isLeft = useRef(false);
   const leave = (): void => {
@@ -55,7 +46,7 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
   const step = (direction: 1 | -1): void => {
     const read = parseValue(text, quantity);
     if (!read.ok || read.value <= 0) return;
-    setText(editText(nextPreferred(read.value, quantity === "resistance" ? 24 : 12, direction), quantity));
+    setText(editText(stepPreferred(read.value, quantity, direction), quantity));
     setFault(null);
   };
   const onKeyDown = (event: KeyboardEvent): void => {
@@ -74,9 +65,9 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
       <input
         ref={input}
         value={text}
-        aria-label={`${block.label ?? block.id}, ${labelOf(block, role)}`}
+        aria-label={`${blockName(block)}, ${roleLabel(block.kind, role)}`}
         aria-invalid={fault !== null}
-        aria-describedby={fault === null ? undefined : faultId}
+        aria-describedby={fault === null && note === null ? undefined : aboutId}
         spellCheck={false}
         autoComplete="off"
         onChange={(event) => {
@@ -89,7 +80,7 @@ export function ValueEditor({ block, role, left, top, onTake, onLeave }: ValueEd
           if (!isLeft.current && (fault !== null || !take())) leave();
         }}
       />
-      {fault !== null && <p id={faultId} role="alert">{fault}</p>}
+      {fault !== null ? <p id={aboutId} role="alert">{fault}</p> : note !== null && <p id={aboutId} className="is-note">{note}</p>}
     </div>
   );
 }

@@ -1,12 +1,14 @@
-import { readFile } from "node:fs/promises";
+import { readFile, writeFile } from "node:fs/promises";
 import type { Browser } from "playwright-core";
 import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test } from "vitest";
 import { bandFigures } from "../../core/analysis/bands.ts";
 import { respond } from "../../core/analysis/response.ts";
 import { setPosition } from "../../core/model/edit.ts";
+import { newProject } from "../../core/model/new-project.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import type { Project } from "../../core/model/project.ts";
 import { restoreProject } from "../../core/model/restore.ts";
+import { serializeProject } from "../../core/model/serialize.ts";
 import { resolveBoard } from "../../core/net/board.ts";
 import { compileBoard } from "../../core/net/star.ts";
 import { formatDb, formatFigure } from "../../core/units.ts";
@@ -178,6 +180,72 @@ describe("values", () => {
     expect(await session.panel.value("series C")).not.toBe("220 nF");
   });
 
+  test("two pieces stand as they are joined; looking changes nothing, typing replaces both, undo brings them back", async () => {
+    const withPairs: Project = {
+      ...demo, name: "Pairs",
+      blocks: demo.blocks.map((b) => (b.id !== "b1k" ? b : {
+        ...b,
+        parts: {
+          ...b.parts,
+          seriesR: { value: 1 / (1 / 4700 + 1 / 220), stock: "R-4K7", second: { value: 220, firstValue: 4700, joined: "parallel" } },
+          seriesC: { value: 182.2e-9, second: { value: 2.2e-9, firstValue: 180e-9, joined: "parallel" } },
+          gyratorR: { value: 91220, second: { value: 220, firstValue: 91e3, joined: "series" } },
+        },
+      })),
+    };
+    await writeFile(session.path("Pairs.bandwright"), serializeProject(withPairs));
+    await session.keyboard.press("Control+o");
+    await session.page.getByRole("option", { name: "Pairs" }).dblclick();
+    await expect.poll(() => session.page.title()).toContain("Pairs");
+    await session.sheet.pick("b1k");
+    const notes = session.page.locator(".part-grid .field-note");
+    expect(await notes.allInnerTexts()).toEqual([
+      "180n ∥ 2n2 in parallel · typing replaces both", "4k7 ∥ 220R in parallel · typing replaces both", "91k + 220R in series · typing replaces both",
+    ]);
+    const field = session.panel.field("series R");
+    expect(await field.inputValue()).toBe("210.2 Ω");
+    // Nothing of it is cut off, nor does it push the panel's columns out of sight.
+    expect(await field.evaluate((input) => input.scrollWidth - input.clientWidth)).toBeLessThanOrEqual(0);
+    expect(await session.page.locator(".panel").evaluate((panel) => panel.scrollWidth - panel.clientWidth)).toBe(0);
+    await field.focus();
+    expect(await field.inputValue()).toBe("210.2");
+    await session.keyboard.press("End", "0", "Backspace", "Enter", "Tab");
+    expect(await session.subtitle()).toContain("saved");
+    expect(await notes.count()).toBe(3);
+    await session.panel.set("series R", "470");
+    expect(await notes.count()).toBe(2);
+    await session.page.locator("[data-response]").focus();
+    expect(await field.inputValue()).toBe("470 Ω");
+    await session.keyboard.undo();
+    expect(await notes.count()).toBe(3);
+    // In place on the sheet likewise.
+    await session.keyboard.press("F2");
+    const place = session.page.getByLabel("1 kHz, series C");
+    expect(await place.inputValue()).toBe("182.2n");
+    expect(await session.page.locator(".sheet-value").innerText()).toBe("180n ∥ 2n2 in parallel · typing replaces both");
+    await place.fill("100n");
+    await session.keyboard.press("Enter");
+    await expect.poll(() => notes.count()).toBe(2);
+  });
+
+  test("two pieces in the supply's divider are replaced likewise, with what was known of them", async () => {
+    const single: Project = {
+      ...newProject(), name: "Divider",
+      supply: { kind: "single", voltage: 9, reference: { upperR: { value: 10220, stock: "R-10K", second: { value: 220, firstValue: 10e3, joined: "series" } }, lowerR: { value: 10e3 }, bypassC: { value: 47e-6 } } },
+    };
+    await writeFile(session.path("Divider.bandwright"), serializeProject(single));
+    await session.keyboard.press("Control+o");
+    await session.page.getByRole("option", { name: "Divider" }).dblclick();
+    const notes = session.page.locator(".part-grid .field-note");
+    await expect.poll(() => notes.allInnerTexts()).toEqual(["10k + 220R in series · typing replaces both"]);
+    await session.panel.set("upper R", "12k");
+    expect(await notes.count()).toBe(0);
+    await session.keyboard.press("Control+s");
+    await expect.poll(() => session.subtitle()).toContain("saved");
+    expect(restoreProject(await readFile(session.path("Divider.bandwright"), "utf8")).project.supply).toMatchObject({ reference: { upperR: { value: 12e3 } } });
+    expect(await readFile(session.path("Divider.bandwright"), "utf8")).not.toContain("R-10K");
+  });
+
   test("tolerance, measured value, op amp, label, supply", async () => {
     await session.sheet.pick("b4k");
     await session.panel.set("Tolerance of series C", "2.5");
@@ -203,6 +271,50 @@ describe("values", () => {
     expect(await session.panel.field("coupling C").count()).toBe(had ? 0 : 1);
     await session.panel.field(had ? add : remove).click();
     expect(await session.panel.field("coupling C").count()).toBe(had ? 1 : 0);
+  });
+});
+
+describe("work on the whole board", () => {
+  test("a band selected meanwhile has its own panel, and what was found and typed is there again afterwards", async () => {
+    const { page } = session;
+    const panel = page.getByRole("complementary", { name: "Panel" });
+    await session.keyboard.press("Alt+Shift+D");
+    await page.getByRole("button", { name: "Look around with the starter drawer" }).click();
+    await page.getByRole("grid", { name: "Lines of the drawer" }).waitFor();
+    await session.keyboard.command("fill the board");
+    const placed = page.getByTestId("fill-placed");
+    await placed.waitFor();
+    await panel.getByLabel("units").fill("3");
+    const take = panel.getByRole("button", { name: /^Take \d+ parts$/ });
+    await expect.poll(() => take.isEnabled()).toBe(true);
+    const found = [await placed.innerText(), await take.innerText()];
+    // With the pointer, by a band's figures.
+    const box = (await session.sheet.knob("b1k").boundingBox())!;
+    await page.mouse.click(box.x + box.width / 2, box.y + box.height / 2);
+    await session.panel.field("series C").waitFor();
+    expect(await placed.isVisible()).toBe(false);
+    expect(await panel.innerText()).toContain("Fill from the drawer waits; nothing is changed yet.");
+    await session.panel.set("series R", "560");
+    await panel.getByRole("button", { name: "Back to it" }).click();
+    await expect.poll(async () => [await placed.innerText(), await take.innerText()]).toEqual(found);
+    expect(await panel.getByLabel("units").inputValue()).toBe("3");
+    expect(await panel.innerText()).toContain("Selected: “1 kHz”");
+    await panel.getByRole("button", { name: "Show its values" }).click();
+    expect(await session.panel.value("series R")).toBe("560 Ω");
+    // Swapping a part of the band puts the work aside, too, and nothing selected is the board as a whole again.
+    await session.keyboard.command("swap a part");
+    await session.sheet.knob("b2k").focus();
+    await session.keyboard.press("Enter", "Escape");
+    await expect.poll(() => placed.isVisible()).toBe(true);
+    // Asked for again, the same work is still the same.
+    await session.sheet.pick("b2k");
+    await session.keyboard.command("fill the board");
+    await expect.poll(() => placed.isVisible()).toBe(true);
+    expect(await panel.getByLabel("units").inputValue()).toBe("3");
+    await take.click();
+    await expect.poll(() => page.getByRole("status").innerText()).toMatch(/^Filled \d+ parts/);
+    expect(await panel.innerText()).not.toContain("waits");
+    expect(await session.panel.field("series C").count()).toBe(1);
   });
 });
 

@@ -47,7 +47,7 @@ function showAndFocus(bringUp: () => void, find: () => HTMLElement | null | unde
 }
 
 function startTask(c: ActionContext, task: "fill" | "match"): void {
-  c.ui.patch({ view: "board", task, isPanelOpen: true, contextMenu: null });
+  c.ui.patch({ view: "board", task, taskBeside: c.editor.store.getState().selection, isPanelOpen: true, contextMenu: null });
 }
 
 function hasBoard(c: ActionContext): boolean {
@@ -60,7 +60,7 @@ export const DRAWER_ACTIONS: readonly Action[] = [
     when: (c) => hasBoard(c) && selectedBlocks(c).length === 1,
     perform: (c) => {
       showAndFocus(
-        () => c.ui.patch({ view: "board", task: null, isPanelOpen: true, contextMenu: null }),
+        () => c.ui.patch({ view: "board", taskBeside: null, isPanelOpen: true, contextMenu: null }),
         () => {
           const list = document.getElementById(SWAP_LIST);
           list?.scrollIntoView({ block: "nearest" });
