@@ -100,11 +100,13 @@ export function percentText(fraction: number | null, digits = 2): string {
 /** Writes what is to be said of lines in their places, `where` before each; what is said of several places alike is said once. */
 export function printProblems(found: readonly { readonly where: string; readonly line: string; readonly problem: Problem }[]): void {
   if (found.length === 0) return;
-  const places = new Map<string, string[]>();
+  const said = new Map<string, Map<string, string[]>>();
   for (const { where, line, problem } of found) {
-    const said = `${line}: ${problem.level === "fault" ? "does not do: " : ""}${problem.message}`;
-    places.set(said, [...(places.get(said) ?? []), where]);
+    const text = `${problem.level === "fault" ? "does not do: " : ""}${problem.message}`;
+    const places = said.get(text) ?? new Map<string, string[]>();
+    said.set(text, places.set(line, [...(places.get(line) ?? []), where]));
   }
-  process.stdout.write(`\n${[...places].map(([said, where]) => `${where.join(", ")}, ${said}`).join("\n")}\n`);
+  const placesText = (places: ReadonlyMap<string, string[]>): string => [...places].map(([line, where]) => `${where.join(", ")}, ${line}`).join("; ");
+  process.stdout.write(`\n${[...said].map(([text, places]) => `${placesText(places)}: ${text}`).join("\n")}\n`);
   if (needsRatingCaution(found.map((one) => one.problem))) process.stdout.write(`${RATING_CAUTION}\n`);
 }

@@ -2,7 +2,7 @@ import { existsSync } from "node:fs";
 import { resolve } from "node:path";
 import { Command } from "commander";
 import type { DrawerLine } from "../../core/contract/drawer-schemas.ts";
-import { HostFailure } from "../../core/contract/failures.ts";
+import { HostFailure, isHostFailure } from "../../core/contract/failures.ts";
 import type { Cell } from "../../core/drawer/cells.ts";
 import { QUANTITY_OF, RATING_UNIT } from "../../core/drawer/check-line.ts";
 import { unitCost } from "../../core/drawer/stock.ts";
@@ -50,7 +50,7 @@ export async function withDrawer<T>(opts: DrawerOption, use: DrawerUse, work: (s
 /** What the host would tell the screen, told on the command line; what the user cannot mend by other input exits with 1. */
 export function toCommandFailure(error: unknown): unknown {
   if (!(error instanceof HostFailure)) return error;
-  const isTheirs = error.code !== "drawer-unusable" && error.code !== "import-cancelled" && error.code !== "file-unwritable";
+  const isTheirs = isHostFailure(error, "drawer-unusable") ? error.data.reason === "not-a-drawer" : error.code !== "import-cancelled" && error.code !== "file-unwritable";
   return new CommandFailure(error.message, isTheirs ? EXIT.badInput : EXIT.failed);
 }
 

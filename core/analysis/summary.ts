@@ -45,17 +45,33 @@ export function boardSummary(board: Board, opts: ValueOpts = {}): string {
 /** Boards of more nodes than this are not looked at for stability: the work grows with the cube, and these would take minutes. */
 const MOST_NODES = 320;
 
+/** That a board oscillates, or why nobody can tell. */
+export type Trouble = { readonly is: "unstable" | "unknown"; readonly text: string };
+
+/** Whether a board oscillates; null where it is at peace. */
+export function instability(board: Board, opts: ValueOpts = {}): Trouble | null {
+  return judged(board, opts, (): Trouble | null => {
+    const unstable = unstablePoles(board, opts);
+    return unstable.length > 0 ? { is: "unstable", text: unstableText(unstable) } : null;
+  });
+}
+
 /** Says that a board oscillates, or that nobody can tell; null where it is at peace. */
 export function instabilityText(board: Board, opts: ValueOpts = {}): string | null {
-  return judged(board, opts, () => {
-    const unstable = unstablePoles(board, opts);
-    return unstable.length > 0 ? unstableText(unstable) : null;
-  });
+  const trouble = instability(board, opts);
+  return trouble?.is === "unknown" ? unknownText(trouble) : (trouble?.text ?? null);
+}
+
+function unknownText({ text }: Trouble): string {
+  return `whether the board oscillates is not known: ${text}`;
 }
 
 /** `smallest phase margin 57° (b6k3)`, or that the board is unstable. */
 export function stabilityText(board: Board, opts: ValueOpts = {}): string {
-  return instabilityText(board, opts) ?? judged(board, opts, () => marginText(loopMargins(board, opts)));
+  const trouble = instabilityText(board, opts);
+  if (trouble !== null) return trouble;
+  const margins = judged(board, opts, () => marginText(loopMargins(board, opts)));
+  return typeof margins === "string" ? margins : unknownText(margins);
 }
 
 function marginText(margins: readonly LoopMargin[]): string {
@@ -64,8 +80,8 @@ function marginText(margins: readonly LoopMargin[]): string {
   return least ? `smallest phase margin ${least.phaseMargin.toFixed(0)}° (${least.block})` : "no loop gain reaches 1";
 }
 
-function judged<T>(board: Board, opts: ValueOpts, judge: () => T): T | string {
-  const unknown = (why: string): string => `whether the board oscillates is not known: ${why}`;
+function judged<T>(board: Board, opts: ValueOpts, judge: () => T): T | Trouble {
+  const unknown = (text: string): Trouble => ({ is: "unknown", text });
   const nodes = expandBoard(board, opts).nodeCount;
   if (nodes > MOST_NODES) return unknown(`it has ${nodes} nodes, and more than ${MOST_NODES} would take too long`);
   try {

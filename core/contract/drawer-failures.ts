@@ -72,7 +72,7 @@ function unusableText(data: v.InferOutput<(typeof DRAWER_FAILURES)["drawer-unusa
     case "damaged":
       return `The drawer ${path} is damaged (${detail}).${kept}`;
     case "not-a-drawer":
-      return `${path} is not a drawer (${detail}).${kept}`;
+      return `${path} is not a drawer (${detail}). It was left as it is.`;
     case "newer":
       return `The drawer ${path} has version ${fileVersion}, this program knows versions up to ${programVersion}: a newer Bandwright has written it, and is needed to open it.`;
     case "busy":

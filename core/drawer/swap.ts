@@ -2,7 +2,7 @@ import { endFigure, type BandPeak } from "../analysis/bands.ts";
 import { lawResults } from "../analysis/laws.ts";
 import { angular, decibels, logFrequencies } from "../analysis/response.ts";
 import { Scan } from "../analysis/scan.ts";
-import { unstablePoles } from "../analysis/poles.ts";
+import { instability } from "../analysis/summary.ts";
 import type { Patch } from "../model/patch.ts";
 import type { Block } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
@@ -100,8 +100,10 @@ function byEffect(a: RankedCandidate, b: RankedCandidate): number {
 
 function loopProblems(board: Board, role: BoardRole, candidate: Candidate, values: ValueOpts): Problem[] {
   const other = filledProject(board.project, [{ role, filling: candidate.filling }]);
-  const unstable = unstablePoles(onProject(board, other), values);
-  return unstable.length === 0 ? [] : [{ level: "fault", about: "model", message: "the board oscillates with it" }];
+  const trouble = instability(onProject(board, other), values);
+  if (trouble === null) return [];
+  if (trouble.is === "unstable") return [{ level: "fault", about: "model", message: "the board oscillates with it" }];
+  return [{ level: "caution", about: "model", message: `whether the board oscillates with it is not known: ${trouble.text}` }];
 }
 
 /** Holds a board against versions of itself. */

@@ -54,6 +54,9 @@ test("a line is added in trade notation", async () => {
     step: 1,
     line: { id: "C-100N", kind: "capacitor", value: 1e-7, tolerance: 0.05, rating: 63, technology: "film", quantity: 40, prices: [{ from: 1, unitCost: 0.1 }, { from: 100, unitCost: 0.06 }], currency: "EUR" },
   });
+  expect(JSON.parse((await stock("add", "L-100M", "--kind", "inductor", "--value", "100m", "--winding", "38", "--json")).stdout)).toMatchObject({ line: { value: 0.1, windingR: 38 } });
+  expect(await stock("add", "C-1", "--kind", "capacitor", "--value", "1u", "--winding", "38")).toMatchObject({ code: 2, stderr: "C-1: only inductors have a winding resistance, a capacitor has none\n" });
+  expect(await stock("add", "L-2", "--kind", "inductor", "--value", "1", "--winding", "0")).toMatchObject({ code: 2, stderr: expect.stringContaining("--winding: winding resistance: the value must be above 0") });
   expect((await stock("add", "C-100N", "--kind", "capacitor", "--value", "100n")).stderr).toBe("C-100N: there is a line of that name already.\n");
   expect(await stock("add", "X", "--kind", "capacitor", "--value", "many")).toMatchObject({ code: 2, stderr: expect.stringContaining("--value: “many” is not understood") });
   expect(await stock("add", "U", "--kind", "op-amp", "--value", "4k7")).toMatchObject({ code: 2, stderr: "--value: an op amp has a --type, and no value\n" });
@@ -70,7 +73,7 @@ test("a table is taken in by its headers and by what one says of them, and given
   expect(taken).toEqual({ code: 0, stdout: "2 rows: 1 lines added, 0 updated, 0 unchanged, 1 counted, 1 refused\n", stderr: "row 3: “zwei” is no number of pieces\n" });
 
   const { stdout: text } = await stock("export");
-  expect(text.split("\n")[1]).toBe("C-1,capacitor,100n,,,,,,,A 3,12,1:0.14,,,,,");
+  expect(text.split("\n")[1]).toBe("C-1,capacitor,100n,,,,,,,,A 3,12,1:0.14,,,,,");
   const file = join(folder, "out.csv");
   expect(await stock("export", file)).toMatchObject({ code: 0, stdout: "" });
   expect(readFileSync(file, "utf8")).toBe(text);
@@ -98,12 +101,18 @@ describe("what cannot be done", () => {
     expect(ended.stdout).toBe("");
   });
 
-  test("with a file that is no drawer: exit 1, a sentence, and the file stays", async () => {
+  test("with a file that is no drawer: a sentence, and the file stays alone and as it was", async () => {
     drawer = write("letter.txt", "Dear all, ".repeat(50));
+    for (const command of ["list", "export"]) expect(await stock(command)).toEqual({ code: 2, stdout: "", stderr: `${drawer} is not a drawer (its first bytes are not those of a database). It was left as it is.\n` });
+    expect(readFileSync(drawer, "utf8")).toBe("Dear all, ".repeat(50));
+    expect(readdirSync(folder)).toEqual(["letter.txt"]);
+  });
+
+  test("with a damaged drawer: exit 1, and the copy is named", async () => {
+    drawer = write("drawer.sqlite", "SQLite format 3\0 cut short");
     const ended = await stock("list");
     expect(ended.code).toBe(1);
-    expect(ended.stderr).toMatch(/letter\.txt is not a drawer .*a copy was made at .*letter\.damaged-[0-9a-f]{8}\.txt/);
-    expect(readFileSync(drawer, "utf8")).toBe("Dear all, ".repeat(50));
+    expect(ended.stderr).toMatch(/drawer\.sqlite is damaged \(it is cut short\)\. It was left as it is, and a copy was made at .*drawer\.damaged-[0-9a-f]{8}\.sqlite\.\n$/);
   });
 });
 

@@ -65,6 +65,8 @@ describe("a guess", () => {
     expect(fields(["Type"], ["metal film"])).toEqual(["Type is technology"]);
     expect(fields(["Tolerance"], ["5"], ["1"])).toEqual(["Tolerance is tolerance in %"]);
     expect(fields(["Tolerance"], ["0.05"])).toEqual(["Tolerance is tolerance"]);
+    expect(fields(["Inductance (mH)", "DCR [mΩ]"], ["10", "1200"])[1]).toBe("DCR [mΩ] is windingR in mΩ");
+    expect(fields(["Track", "Taper"], ["10k", "linear"])).toEqual(["Taper is technology"]);
     expect(fields(["TCR"], ["50"])).toEqual(["TCR is temperatureCoefficient in ppm"]);
     expect(guessMapping(["Price (EUR)", "Capacitance (nF)"], []).defaults).toEqual({ kind: "capacitor", currency: "EUR" });
   });

@@ -54,6 +54,7 @@ describe("an import", () => {
     ["a temperature coefficient", "id,value,TCR (ppm/K)\nR-1,4k7,50\n", { temperatureCoefficient: 50e-6 }],
     ["letters beyond Latin", "id,value,location\nR-1,4k7,電阻 Ω 🎛\n", { location: "電阻 Ω 🎛" }],
     ["empty rows and rows of empty cells", "id,value\n\n,\nR-1,4k7\n,,\n", { id: "R-1", value: 4700 }],
+    ["winding resistance with a unit of its own", "id,inductance (mH),DCR (kΩ)\nL-1,470,0.12\n", { id: "L-1", kind: "inductor", value: 0.47, windingR: 120 }],
     ["a header of one's own case", "ID,VALUE,In Stock\nR-1,4k7,3\n", { id: "R-1", quantity: 3 }],
     ["sixteen bits a letter", "UTF16:id\tvalue\nR-Ω\t4k7\n", { id: "R-Ω" }],
   ])("takes %s", async (_what, text, expected) => {

@@ -1,11 +1,11 @@
-import { existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from "node:fs";
+import { copyFileSync, existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from "node:fs";
 import { dirname, join } from "node:path";
 import Database from "better-sqlite3";
 import { beforeEach, describe, expect, test, vi } from "vitest";
 import { isHostFailure } from "../../core/contract/failures.ts";
 import { openDrawer } from "../../app/store/drawer-store.ts";
 import { asOrdinaryUser } from "../helpers/ordinary-user.ts";
-import { importText, openScratch, scratchFolder } from "../helpers/drawer.ts";
+import { importText, openScratch, resistor, scratchFolder } from "../helpers/drawer.ts";
 
 // Real files, flushed: a busy disk takes its time.
 vi.setConfig({ testTimeout: 30_000 });
@@ -38,6 +38,10 @@ function withPage(bytes: Buffer, number: number): Buffer {
   return damaged;
 }
 
+function withBytes(bytes: Buffer, at: number, other: Buffer): Buffer {
+  return Buffer.concat([bytes.subarray(0, at), other, bytes.subarray(at + other.length)]);
+}
+
 const DAMAGE: Readonly<Record<string, { readonly reason: string; readonly bytes: (sound: Buffer) => Buffer }>> = {
   "cut short by half": { reason: "damaged", bytes: (sound) => sound.subarray(0, Math.floor(sound.length / 2 / PAGE) * PAGE) },
   "cut short in the middle of a page": { reason: "damaged", bytes: (sound) => sound.subarray(0, 3 * PAGE + 1000) },
@@ -45,11 +49,16 @@ const DAMAGE: Readonly<Record<string, { readonly reason: string; readonly bytes:
   "with its schema's page turned over": { reason: "damaged", bytes: (sound) => Buffer.concat([sound.subarray(0, 100), withPage(sound, 0).subarray(100)]) },
   "with a page in the middle turned over": { reason: "damaged", bytes: (sound) => withPage(sound, Math.floor(sound.length / PAGE / 2)) },
   "with a page of zeros": { reason: "damaged", bytes: (sound) => Buffer.concat([sound.subarray(0, 5 * PAGE), Buffer.alloc(PAGE), sound.subarray(6 * PAGE)]) },
-  "of other bytes": { reason: "not-a-drawer", bytes: (sound) => Buffer.from(sound.map((byte, index) => (byte * 31 + index * 17) & 0xff)) },
-  "that is a text": { reason: "not-a-drawer", bytes: () => Buffer.from("id,kind,value\nR-1,resistor,4k7\n".repeat(10)) },
+  // The header itself, in part and whole.
+  "with its first bytes lost": { reason: "damaged", bytes: (sound) => withBytes(sound, 0, Buffer.from("lost and gone forever")) },
+  "with its mark lost": { reason: "damaged", bytes: (sound) => withBytes(sound, 68, Buffer.alloc(4)) },
+  "with another mark than its own": { reason: "damaged", bytes: (sound) => withBytes(sound, 68, Buffer.from("Xxxx")) },
+  "with its whole header lost": { reason: "damaged", bytes: (sound) => withBytes(sound, 0, Buffer.alloc(100)) },
+  "with its whole first page lost": { reason: "damaged", bytes: (sound) => withBytes(sound, 0, Buffer.alloc(PAGE, "\n")) },
+  "with a page size that no database has": { reason: "damaged", bytes: (sound) => withBytes(sound, 16, Buffer.from([3, 3])) },
 };
 
-describe.each(Object.entries(DAMAGE))("a file %s", (_name, { reason, bytes }) => {
+describe.each(Object.entries(DAMAGE))("a drawer %s", (_name, { reason, bytes }) => {
   test("is told of, copied once, and left as it was", async () => {
     const damaged = bytes(await soundBytes());
     writeFileSync(path, damaged);
@@ -85,14 +94,61 @@ test("any page but the free ones, turned over, is noticed or harms nothing", asy
   expect(noticed).toBeGreaterThan(5);
 });
 
-test("another program's database is refused, and neither copied nor touched", async () => {
-  const db = new Database(path);
-  db.exec("CREATE TABLE recipes (name TEXT)");
-  db.close();
-  const before = readFileSync(path);
-  const { data } = await refusal();
-  expect(data).toMatchObject({ reason: "not-a-drawer", backup: null });
+/** A database of another program, with a table of its own. */
+function recipes(own: (db: Database.Database) => void): () => Buffer {
+  return () => {
+    const file = join(scratchFolder(), "recipes.db");
+    const db = new Database(file);
+    db.exec("CREATE TABLE recipes (name TEXT)");
+    own(db);
+    db.close();
+    return readFileSync(file);
+  };
+}
+
+const NEVER_A_DRAWER: Readonly<Record<string, () => Buffer>> = {
+  "a text": () => Buffer.from("id,kind,value\nR-1,resistor,4k7\n".repeat(10)),
+  "a short text": () => Buffer.from("hello"),
+  "a text about drawers": () => readFileSync(new URL("../../app/store/migrations/0001-lines-and-ledger.sql", import.meta.url)),
+  "a picture": () => Buffer.from([0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, ...Array.from({ length: 5000 }, (_, i) => (i * 7) & 0xff)]),
+  "zeros": () => Buffer.alloc(3 * PAGE),
+  "another program's database": recipes(() => undefined),
+  "another program's database with a log": recipes((db) => db.pragma("journal_mode = WAL")),
+  "another program's database with a mark of its own": recipes((db) => db.pragma("application_id = 77")),
+  "another program's database, damaged": () => withPage(recipes((db) => db.exec("INSERT INTO recipes SELECT hex(randomblob(500)) FROM (VALUES (1), (2), (3), (4), (5), (6), (7), (8), (9), (10), (11), (12))"))(), 1),
+};
+
+test.each(Object.entries(NEVER_A_DRAWER))("%s is refused, not touched, and nothing is put beside it", async (_name, bytes) => {
+  const before = bytes();
+  writeFileSync(path, before);
+  const error = await refusal();
+  expect(error.data).toMatchObject({ reason: "not-a-drawer", backup: null });
+  expect(error.message).toMatch(/is not a drawer \(.+\)\. It was left as it is\.$/);
   expect(readFileSync(path).equals(before)).toBe(true);
+  expect(readdirSync(dirname(path))).toEqual(["my drawer.sqlite"]);
+});
+
+test("a newer drawer is refused with nothing put beside it", async () => {
+  const bytes = await soundBytes();
+  bytes.writeUInt32BE(99, 60);
+  writeFileSync(path, bytes);
+  expect((await refusal()).data).toMatchObject({ reason: "newer", fileVersion: 99, backup: null });
+  expect(readdirSync(dirname(path))).toEqual(["my drawer.sqlite"]);
+});
+
+test("an empty database, and a drawer of which only the log has been written, are drawers", async () => {
+  const empty = new Database(path);
+  empty.exec("CREATE TABLE gone (x); DROP TABLE gone; VACUUM");
+  empty.close();
+  const first = await openScratch(path);
+  first.addLine(resistor("R-1"), 3);
+  // As a kill leaves them: the file as it was before, everything else in the log.
+  const killed = join(scratchFolder(), "killed.sqlite");
+  copyFileSync(path, killed);
+  copyFileSync(`${path}-wal`, `${killed}-wal`);
+  expect(readFileSync(killed).toString("latin1", 68, 72)).not.toBe("BwDr");
+  const again = await openScratch(killed);
+  expect(again.find("R-1")?.quantity).toBe(3);
 });
 
 test("a folder of that name is refused", async () => {

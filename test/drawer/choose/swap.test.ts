@@ -1,6 +1,7 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, it } from "vitest";
 import { bandFigures } from "../../../core/analysis/bands.ts";
+import { instabilityText } from "../../../core/analysis/summary.ts";
 import { logFrequencies, ResponseSweep } from "../../../core/analysis/response.ts";
 import { hasFault } from "../../../core/drawer/place-problems.ts";
 import { buildBill } from "../../../core/drawer/bill.ts";
@@ -14,6 +15,7 @@ import { restoreProject } from "../../../core/model/restore.ts";
 import { serializeProject } from "../../../core/model/serialize.ts";
 import { resolveBoard, type Board } from "../../../core/net/board.ts";
 import { compileBoard } from "../../../core/net/star.ts";
+import { bandOf, oneBus } from "../../helpers/boards.ts";
 import { fullDrawer, lineOf } from "../../helpers/drawer-lines.ts";
 
 const demo = (name: string): Board => resolveBoard(restoreProject(readFileSync(new URL(`../../../assets/demo/${name}.bandwright`, import.meta.url), "utf8")).project);
@@ -145,6 +147,15 @@ describe("parts for a role, ranked by what they do to the board", () => {
     expect(candidates.at(-1)!.problems[0]).toMatchObject({ level: "fault", about: "model" });
     const block = applyPatch(voice.project, candidates.find((c) => c.lines[0].id === "b")!.patch).blocks.find((b) => b.id === "b1k")!;
     expect(block).toMatchObject({ opAmp: "NE5532", opAmpStock: "b" });
+  });
+
+  it("says of a board too large to be looked at that nobody knows whether it oscillates with an op amp, as the check of the board does", () => {
+    const wide = (bands: number): Board => resolveBoard(oneBus(Array.from({ length: bands }, (_, i) => bandOf(`x${i}`, "gyrator-section", { seriesC: 1e-6 / (i + 1), seriesR: 470, gyratorC: 1e-8 / (i + 1), gyratorR: 68e3 }, { opAmp: "TL072" })), { opAmp: "NE5532" }));
+    const problems = (bands: number) => rank(wide(bands), "x3.opAmp", [lineOf("a", "op-amp", "TL062")]).candidates[0].problems;
+    expect(problems(4)).toEqual([]);
+    const [only] = problems(110);
+    expect(only).toMatchObject({ level: "caution", about: "model", message: expect.stringMatching(/^whether the board oscillates with it is not known: it has \d+ nodes, and more than 320 would take too long$/) });
+    expect(instabilityText(wide(110))).toBe(only.message.replace(" with it", ""));
   });
 
   it("holds polarised capacitors to the voltage that keeps them the right way round", () => {
