@@ -76,7 +76,9 @@ function useKeys(): void {
 /** Null where keys belong to an open menu or list. */
 function focusOf(target: EventTarget | null, view: ViewId): Focus | null {
   if (!(target instanceof Element)) return "elsewhere";
-  if (target.closest("[role=menu], [role=menubar], [role=listbox], [role=dialog]")) return target.closest("[role=menubar]") ? "elsewhere" : null;
+  const popup = target.closest("[role=menu], [role=menubar], [role=listbox], [role=dialog]");
+  // One that is closing gives the focus back a frame later: the next key is no longer its own.
+  if (popup) return popup.getAttribute("role") === "menubar" || popup.hasAttribute("data-closed") ? "elsewhere" : null;
   if (target instanceof HTMLTextAreaElement || (target instanceof HTMLInputElement && !["range", "radio", "checkbox"].includes(target.type))) {
     return target.dataset.untouched === "true" ? "untouched-field" : "field";
   }

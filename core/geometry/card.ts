@@ -34,7 +34,7 @@ const OTHER_RAIL_COST = 60;
  */
 export function placeCard(layout: SheetLayout, band: BandPlace, sizes: readonly CardSize[], written: readonly Box[] = []): CardPlace | null {
   const { ruling, board, width } = layout.frame;
-  const within: Box = { left: Math.ceil(ruling.left) + 2, right: Math.floor(width) - 9, top: Math.ceil(board.top) + 3, bottom: Math.floor(board.bottom) - 4 };
+  const within: Box = { left: Math.ceil(ruling.left) + 2, right: Math.floor(width) - 15, top: Math.ceil(board.top) + 3, bottom: Math.floor(board.bottom) - 4 };
   if (!overlaps(band.box, { ...within, right: ruling.right })) return null;
   const taken = [...takenBoxes(layout), ...written].map((box) => grown(box, GAP)).filter((box) => overlaps(box, within));
   const rail = layout.rails[band.rail];

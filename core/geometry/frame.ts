@@ -7,8 +7,8 @@ export const GRID = 4;
 /** Height of the frequency labels between response and board. */
 const AXIS = 24;
 const TOP = 14;
-/** Lowest response that still shows a shape. */
-const LEAST_RESPONSE = 60;
+/** Lowest response that still shows a shape; where there is none to show, as little as its axis takes. */
+const LEAST_RESPONSE = { shown: 60, none: 4 };
 /** Room that a band at an end of the range keeps to the margin. */
 const END_PAD = 30;
 /** Height of a line of figures, whatever the scale: text does not shrink. */
@@ -55,8 +55,10 @@ function sheetLimits(range: Span, width: number): Span {
 export interface FrameOpts {
   readonly width: number;
   readonly height: number;
-  /** Pixels at the top that something else lies over: the response gives them up, and the board stays where it is. */
+  /** Pixels at the top that something else lies over: the response gives them up, and the board stays where it is as long as there is enough of that. */
   readonly topInset?: number;
+  /** False where the board's wiring gives no response. */
+  readonly hasResponse?: boolean;
   readonly range: Span;
   /** What is on show; null for all. */
   readonly span: Span | null;
@@ -68,7 +70,7 @@ export interface FrameOpts {
  * Zoom works on the frequency axis and on the board together: the ruling widens, and the board grows with it as long as
  * its bands have the room. The response keeps its height and never scrolls; the board below it does.
  */
-export function frameOf({ width, height, topInset = 0, range, span, heightAt }: FrameOpts): Frame {
+export function frameOf({ width, height, topInset = 0, hasResponse = true, range, span, heightAt }: FrameOpts): Frame {
   const { left, right, scale: marginScale } = margins(width);
   const limits = sheetLimits(range, width);
   // A span kept from another range is brought inside this one.
@@ -80,7 +82,7 @@ export function frameOf({ width, height, topInset = 0, range, span, heightAt }: 
   while (fitting < 1.25 && heightAt(fitting + 0.02) <= boardHeight) fitting += 0.02;
   const zoom = zoomOf(limits, shown);
   const responseTop = TOP + topInset;
-  const responseBottom = Math.max(TOP + responseHeight, responseTop + LEAST_RESPONSE);
+  const responseBottom = Math.max(TOP + responseHeight, responseTop + (hasResponse ? LEAST_RESPONSE.shown : LEAST_RESPONSE.none));
   return {
     width, height, marginScale, limits, zoom,
     ruling: { left, right, from: shown.from, to: shown.to },

@@ -43,6 +43,8 @@ export interface LayoutOpts {
   readonly height: number;
   /** Pixels at the top that something else lies over. */
   readonly topInset?: number;
+  /** False where the board's wiring gives no response. */
+  readonly hasResponse?: boolean;
   readonly range: Span;
   /** Frequencies on show; null for all of them. */
   readonly span: Span | null;

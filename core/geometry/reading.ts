@@ -6,8 +6,8 @@ interface Columns {
   readonly phase: Float64Array;
 }
 
-/** Gain (dB) and phase (degrees) at a frequency, interpolated over log frequency; null outside the curve. */
-export function readCurve({ frequency, gain, phase }: Columns, at: number): { gain: number; phase: number } | null {
+/** A column's value at a frequency, interpolated over log frequency; null outside its points. */
+export function valueAt(frequency: Float64Array, column: Float64Array, at: number): number | null {
   const last = frequency.length - 1;
   if (last < 1 || !(at >= frequency[0] && at <= frequency[last])) return null;
   let low = 0;
@@ -18,8 +18,13 @@ export function readCurve({ frequency, gain, phase }: Columns, at: number): { ga
     else high = middle;
   }
   const share = Math.log(at / frequency[low]) / Math.log(frequency[high] / frequency[low]);
-  const between = (column: Float64Array): number => column[low] + (column[high] - column[low]) * share;
-  return { gain: between(gain), phase: between(phase) };
+  return column[low] + (column[high] - column[low]) * share;
+}
+
+/** Gain (dB) and phase (degrees) at a frequency; null outside the curve. */
+export function readCurve({ frequency, gain, phase }: Columns, at: number): { gain: number; phase: number } | null {
+  const [level, angle] = [valueAt(frequency, gain, at), valueAt(frequency, phase, at)];
+  return level === null || angle === null ? null : { gain: level, phase: angle };
 }
 
 /** Index of the entry that lies furthest from 0. */

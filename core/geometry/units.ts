@@ -43,15 +43,3 @@ export function overlaps(a: Box, b: Box): boolean {
 export function clamp(value: number, least: number, most: number): number {
   return Math.max(least, Math.min(most, value));
 }
-
-/** The left top of a tag of some size beside a point, kept inside a box: to the right and above where it fits. */
-export function tagPlace(at: { x: number; y: number }, size: { width: number; height: number }, within: Box, gap = 10): { x: number; y: number } {
-  const right = at.x + gap + size.width <= within.right;
-  const above = at.y - gap - size.height >= within.top;
-  const x = right ? at.x + gap : at.x - gap - size.width;
-  const y = above ? at.y - gap - size.height : at.y + gap;
-  return {
-    x: Math.max(within.left, Math.min(within.right - size.width, x)),
-    y: Math.max(within.top, Math.min(within.bottom - size.height, y)),
-  };
-}

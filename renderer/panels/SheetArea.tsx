@@ -66,8 +66,8 @@ export function SheetArea() {
       <Sheet ref={sheetRef} project={project} board={analysis.board} results={shown} selection={selection} theme={theme} range={range} isPhaseShown={isPhaseShown} isVoid={isVoid} unstableEnds={unstableEnds} topInset={topInset} {...handlers} />
       <div ref={notice} className="sheet-notice">
         <UnstableBanner />
+        {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       </div>
-      {analysis.faults.length > 0 && <WiringFaults faults={analysis.faults} />}
       {isEmpty && analysis.faults.length === 0 && <Invitation />}
       <ContextMenu />
     </main>

@@ -1,4 +1,4 @@
-import { useCallback, useImperativeHandle, useLayoutEffect, useMemo, useRef, useState, type KeyboardEvent, type Ref } from "react";
+import { useCallback, useId, useImperativeHandle, useLayoutEffect, useMemo, useRef, useState, type KeyboardEvent, type Ref } from "react";
 import { BLOCKS } from "../../core/blocks/index.ts";
 import { arrangedPlaces, layoutSheet, movedPlace } from "../../core/geometry/layout.ts";
 import { placeOf } from "../../core/geometry/hit.ts";
@@ -7,6 +7,7 @@ import { readCurve } from "../../core/geometry/reading.ts";
 import { bandValues, chainValues, type ValueTarget } from "../../core/geometry/values.ts";
 import { partsOf, type Project, type SheetPoint } from "../../core/model/project.ts";
 import { createOverlay } from "./overlay-store.ts";
+import { ScrollBar } from "./ScrollBar.tsx";
 import { SheetProxies } from "./SheetProxies.tsx";
 import type { SheetHandle, SheetProps } from "./sheet-props.ts";
 import { SheetStage } from "./SheetStage.tsx";
@@ -21,6 +22,7 @@ import { pannedView, revealingView, useView, zoomedView } from "./view.ts";
 export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<SheetHandle> }) {
   const { project, results, selection, theme, range, isVoid = false, unstableEnds = NO_ENDS, topInset = 0 } = props;
   const element = useRef<HTMLDivElement>(null);
+  const sheetId = useId();
   const size = useSize(element);
   const ratio = usePixelRatio();
   const areFontsReady = useFontsReady();
@@ -32,11 +34,12 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
 
   const drawn = useDrawnProject(project);
   const figures = results?.figures ?? null;
+  const hasResponse = results !== null;
   const blocks = useMemo(() => new Map(project.blocks.map((block) => [block.id, block])), [project]);
   const { from, to } = range;
   const whole = useMemo(
-    () => (size && size.width > 0 && size.height > 0 ? { project: drawn, figures, ...size, topInset, range: { from, to } } : null),
-    [drawn, figures, size, topInset, from, to],
+    () => (size && size.width > 0 && size.height > 0 ? { project: drawn, figures, ...size, topInset, hasResponse, range: { from, to } } : null),
+    [drawn, figures, size, topInset, hasResponse, from, to],
   );
   const layout = useMemo(() => (whole ? layoutSheet({ ...whole, ...view, ...(moving ? { moving } : {}) }) : null), [whole, view, moving]);
 
@@ -142,6 +145,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
   return (
     <div
       ref={element}
+      id={sheetId}
       className="sheet"
       role="group"
       aria-label={`Sheet of ${project.name}`}
@@ -163,6 +167,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
             layout={layout} blocks={blocks} results={results} selection={selection} isVoid={isVoid} unstableEnds={unstableEnds} actions={actions} overlay={overlay}
             onCursorAt={onCursorAt}
           />
+          <ScrollBar layout={layout} controls={sheetId} onScroll={(scroll) => setView({ ...view, scroll })} />
         </>
       )}
       {layout && editing && editedBlock && (

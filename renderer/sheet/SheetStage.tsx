@@ -1,24 +1,22 @@
 import { memo, useCallback, useMemo } from "react";
 import { Layer, Stage } from "react-konva";
 import { useStore } from "zustand";
-import { knobY } from "../../core/geometry/band-place.ts";
 import type { ChainPlace } from "../../core/geometry/chain.ts";
 import type { SheetLayout } from "../../core/geometry/layout.ts";
 import { levelSpan, phaseSpan, type LevelSpan } from "../../core/geometry/levels.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
 import { showsValues } from "../../core/geometry/values.ts";
 import type { Block, Project } from "../../core/model/project.ts";
-import { formatDb } from "../../core/units.ts";
 import { BandScene } from "./BandScene.tsx";
 import { drawBandGround } from "./draw/band.ts";
 import { drawChainBlock, drawRails, drawReference, drawWires } from "./draw/chain.ts";
 import { drawCard, settleCard, type Card } from "./draw/card.ts";
-import { drawCurves } from "./draw/curves.ts";
-import { drawChosenValues, drawKnob } from "./draw/live.ts";
-import { drawCursor, drawMarquee, drawTag } from "./draw/overlay.ts";
-import { drawPaper, drawScrollMark } from "./draw/paper.ts";
+import { drawCurves, type CurveScene } from "./draw/curves.ts";
+import { drawChosenValues, drawHeldTag, drawKnob } from "./draw/live.ts";
+import { drawCursor, drawMarquee } from "./draw/overlay.ts";
+import { drawPaper } from "./draw/paper.ts";
 import type { Pen } from "./draw/pen.ts";
-import { BOTH_ENDS_VOID, NO_END_VOID, travelText, voidEndsOf } from "./figure-texts.ts";
+import { BOTH_ENDS_VOID, NO_END_VOID, voidEndsOf } from "./figure-texts.ts";
 import type { OverlayStore } from "./overlay-store.ts";
 import { Scene } from "./Scene.tsx";
 import type { SheetProps, SheetResults } from "./sheet-props.ts";
@@ -51,11 +49,8 @@ export function SheetStage(props: SheetStageProps) {
   const { levels, phase } = useSpans(results, isPhaseShown);
 
   const paper = useCallback(
-    (pen: Pen) => {
-      drawPaper(pen, frame, levels, phase);
-      drawScrollMark(pen, layout);
-    },
-    [layout, frame, levels, phase],
+    (pen: Pen) => drawPaper(pen, frame, levels, phase),
+    [frame, levels, phase],
   );
   const hasFigures = figures !== undefined && figures.size > 0;
   const rails = useCallback(
@@ -93,35 +88,34 @@ export function SheetStage(props: SheetStageProps) {
     return { settled: null, settle: (pen) => settleCard(pen, layout, chosen, chosenDrawn, chosenFigures, chosenVoids) };
   }, [layout, chosen, chosenDrawn, chosenFigures, chosenVoids]);
 
+  const chosenBlock = chosen && blocks.get(chosen.id);
+  const scene = useMemo((): CurveScene => {
+    const aloneEnd = (chosenBlock?.slider?.position ?? 0.5) < 0.5 ? "cut" : "boost";
+    return {
+      response: frame.response, ruling: frame.ruling, levels, phase, total: results?.total ?? null, alone: results?.alone ?? null, aloneEnd,
+      aloneLabel: chosenBlock?.label ?? chosenBlock?.id ?? "", aloneFigures: chosenFigures ?? null, ghost: results?.ghost ?? null, isVoid, isAloneVoid: chosenVoids[aloneEnd],
+    };
+  }, [frame, levels, phase, results, chosenBlock, chosenFigures, chosenVoids, isVoid]);
+
   const live = useCallback(
     (pen: Pen) => {
-      const aloneEnd = ((chosen && blocks.get(chosen.id)?.slider?.position) ?? 0.5) < 0.5 ? "cut" : "boost";
-      drawCurves(pen, {
-        response: frame.response, ruling: frame.ruling, levels, phase,
-        total: results?.total ?? null, alone: results?.alone ?? null,
-        aloneLabel: chosen ? (blocks.get(chosen.id)?.label ?? chosen.id) : "",
-        aloneFigures: chosen ? (results?.figures.get(chosen.id) ?? null) : null, aloneEnd, ghost: results?.ghost ?? null, isVoid, isAloneVoid: chosenVoids[aloneEnd],
-      });
+      drawCurves(pen, scene);
       const { ruling, board } = frame;
       pen.clipped(ruling.left, board.top, ruling.right, board.bottom, () => {
         for (const place of layout.bands) {
           if (place.box.right < ruling.left || place.box.left > ruling.right) continue;
           drawKnob(pen, place, blocks.get(place.id)?.slider?.position ?? 0.5, results?.liveGain.get(place.id), { isHeld: place.id === held, isSelected: selected.has(place.id), isVoid });
         }
-        const itself = chosen && blocks.get(chosen.id);
-        if (chosen && itself && !chosen.hasValues && showsValues(chosen, true)) drawChosenValues(pen, chosen, itself);
+        if (chosen && chosenBlock && !chosen.hasValues && showsValues(chosen, true)) drawChosenValues(pen, chosen, chosenBlock);
       });
       pen.clipped(ruling.left, board.top, frame.width, board.bottom, () => {
         if (card && chosen) drawCard(pen, (card.settled ??= card.settle(pen)), results?.liveGain.get(chosen.id), isVoid);
         const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
-        if (grip) {
-          const position = blocks.get(grip.id)?.slider?.position ?? 0.5;
-          const now = results?.liveGain.get(grip.id);
-          drawTag(pen, [...(now === undefined ? [] : [formatDb(now)]), travelText(position)].join("   "), { x: grip.x + grip.knobHalf, y: knobY(grip, position) }, { ...board, left: ruling.left, right: ruling.right });
-        }
+        // The card tells the same, and stays where it is.
+        if (grip && !card?.settled?.place) drawHeldTag(pen, layout, grip, blocks.get(grip.id)?.slider?.position ?? 0.5, results?.liveGain.get(grip.id));
       });
     },
-    [layout, frame, levels, phase, results, blocks, selected, chosen, chosenVoids, card, held, isVoid],
+    [layout, frame, scene, results, blocks, selected, chosen, chosenBlock, card, held, isVoid],
   );
 
   return (
@@ -146,7 +140,7 @@ export function SheetStage(props: SheetStageProps) {
       <Layer listening={false}>
         <Scene inks={inks} ratio={ratio} draw={live} />
       </Layer>
-      <OverlayLayer layout={layout} levels={levels} results={results} inks={inks} ratio={ratio} overlay={overlay} />
+      <OverlayLayer layout={layout} scene={scene} inks={inks} ratio={ratio} overlay={overlay} />
     </Stage>
   );
 }
@@ -180,22 +174,21 @@ const ChainScene = memo(function ChainScene({ inks, ratio, layout, place, isSele
 
 interface OverlayLayerProps {
   readonly layout: SheetLayout;
-  readonly levels: LevelSpan;
-  readonly results: SheetResults | null;
+  readonly scene: CurveScene;
   readonly inks: Inks;
   readonly ratio: number;
   readonly overlay: OverlayStore;
 }
 
-function OverlayLayer({ layout, levels, results, inks, ratio, overlay }: OverlayLayerProps) {
+function OverlayLayer({ layout, scene, inks, ratio, overlay }: OverlayLayerProps) {
   const { cursor, marquee } = useStore(overlay);
   const draw = useCallback(
     (pen: Pen) => {
       if (marquee) drawMarquee(pen, marquee);
-      const reading = cursor !== null && results ? readCurve(results.total, cursor) : null;
-      if (cursor !== null && reading) drawCursor(pen, layout.frame, levels, { frequency: cursor, ...reading });
+      const reading = cursor !== null && scene.total ? readCurve(scene.total, cursor) : null;
+      if (cursor !== null && reading) drawCursor(pen, layout.frame, scene, { frequency: cursor, ...reading });
     },
-    [layout, levels, results, cursor, marquee],
+    [layout, scene, cursor, marquee],
   );
   return (
     <Layer listening={false}>

@@ -48,7 +48,7 @@ export interface SheetProps {
   readonly isVoid?: boolean;
   /** Slider ends at which the board would oscillate: the figures taken there are struck and their bands marked. */
   readonly unstableEnds?: readonly UnstableEnd[];
-  /** Pixels at the top that something else lies over: the response begins below it, and the board stays where it is. */
+  /** Pixels at the top that something else lies over: the response begins below it, and the board stays where it is if it can. */
   readonly topInset?: number;
   onSelect(ids: readonly string[], mode: "replace" | "toggle" | "add"): void;
   onKnobStart(id: string): void;

@@ -12,7 +12,7 @@ export interface View {
 
 const FITTED: View = { span: null, scroll: 0 };
 
-export type Whole = Pick<LayoutOpts, "project" | "figures" | "width" | "height" | "topInset" | "range">;
+export type Whole = Pick<LayoutOpts, "project" | "figures" | "width" | "height" | "topInset" | "hasResponse" | "range">;
 
 /** The view zoomed by a factor about a point of the sheet, which keeps its frequency and its place on the board. */
 export function zoomedView(whole: Whole, layout: SheetLayout, factor: number, at: { x: number; y: number }): View {

@@ -318,6 +318,38 @@ describe("work on the whole board", () => {
   });
 });
 
+describe("keys after a menu", () => {
+  test("the first key after Esc is not lost on the menu that closes", async () => {
+    const box = (await session.sheet.knob("b1k").boundingBox())!;
+    await session.page.mouse.click(box.x + box.width / 2, box.y + 80, { button: "right" });
+    await session.page.getByRole("menu").waitFor();
+    await session.keyboard.press("Escape", "Alt+Shift+E");
+    await session.page.getByRole("main", { name: "Equations" }).waitFor();
+  });
+});
+
+describe("a small window", () => {
+  test("nothing in the status line makes the screen wider than the window, nor cuts the board's state off", async () => {
+    const { page } = session;
+    await page.setViewportSize({ width: 1024, height: 700 });
+    await session.sheet.pick("b1k");
+    // Long words in the line: what was opened, what is being computed.
+    await session.keyboard.command("All sliders to full boost");
+    await page.getByTestId("stability").evaluate((element) => {
+      element.textContent = "smallest phase margin 123° (a band with quite a long name of its own) · computing…";
+    });
+    await page.getByRole("status").evaluate((element) => {
+      element.textContent = "Opened a-project-with-a-very-long-name-that-goes-on-and-on-and-on.bandwright.";
+    });
+    expect(await page.evaluate(() => document.documentElement.scrollWidth)).toBe(1024);
+    const panel = (await page.getByRole("complementary", { name: "Panel" }).boundingBox())!;
+    expect(panel.x + panel.width).toBeLessThanOrEqual(1024);
+    await session.keyboard.undo();
+    expect(await session.subtitle()).toContain("read-only demo");
+    expect(await page.getByTestId("subtitle").evaluate((element) => element.scrollWidth - element.clientWidth)).toBeLessThanOrEqual(0);
+  });
+});
+
 describe("bands", () => {
   test("one is added, made another kind, copied and deleted, and all of it undone", async () => {
     const first = await session.sheet.bands();

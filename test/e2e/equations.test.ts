@@ -140,6 +140,12 @@ describe("the equations of a block", () => {
       await expect.poll(() => session.page.title()).toContain(name);
       await session.keyboard.press("Alt+Shift+E");
       await expect.poll(async () => (await area().innerText()).toLowerCase()).toContain(words.toLowerCase());
+      if (name === "Unwired") {
+        // On the board the faults stand over nothing that is drawn.
+        await session.keyboard.press("Alt+Shift+B");
+        const card = (await session.page.getByRole("alert", { name: "Wiring faults" }).boundingBox())!;
+        for (const block of await session.page.locator("[data-block]").all()) expect((await block.boundingBox())!.y).toBeGreaterThan(card.y + card.height);
+      }
     }
     // Faulty wiring leaves no loop to judge: nothing stands there as if it were being computed.
     expect(await stability().count()).toBe(0);

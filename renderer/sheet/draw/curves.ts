@@ -1,11 +1,9 @@
 import type { BandFigures } from "../../../core/analysis/bands.ts";
-import { BLOCKS } from "../../../core/blocks/index.ts";
 import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
-import { extremeIndex } from "../../../core/geometry/reading.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
 import type { Box } from "../../../core/geometry/units.ts";
-import { formatDb, formatFigure } from "../../../core/units.ts";
 import type { Curve, Ghost } from "../sheet-props.ts";
+import { drawNames } from "./curve-names.ts";
 import { faint, type Pen } from "./pen.ts";
 
 export interface CurveScene {
@@ -47,15 +45,7 @@ export function drawCurves(pen: Pen, scene: CurveScene): void {
     // Dots over the lines, so that what stays the same shows as much as what moves.
     if (ghost) for (const curve of [ghost.total, ...(ghost.alone ? [ghost.alone] : [])]) stroke(pen, scene, curve.frequency, curve.gain, scene.levels, inks.accent, 2.4, [0.1, 5]);
   });
-  if (alone) nameAlone(pen, scene, alone);
-  if (ghost) nameGhost(pen, scene, ghost);
-}
-
-/** Index of the highest point at full boost, of the lowest at full cut. */
-function peakIndex({ gain }: Curve, isUp: boolean): number {
-  let best = 0;
-  for (let i = 1; i < gain.length; i++) if (isUp ? gain[i] > gain[best] : gain[i] < gain[best]) best = i;
-  return best;
+  drawNames(pen, scene);
 }
 
 /** Pixels from one point of a curve to the next: less cannot be seen and costs time. */
@@ -106,57 +96,4 @@ function fillBetween(pen: Pen, scene: CurveScene, curve: Curve): void {
       ctx.fill();
     });
   }
-}
-
-/** `: +11.0 dB, 2.03 kHz` of a peak, `: plateau +13.9 dB` of a shelf or level. */
-function aloneNumbers(figures: BandFigures | null, isUp: boolean): string {
-  if (!figures) return "";
-  const { peak, frequency } = isUp ? figures.boost : figures.cut;
-  if (BLOCKS[figures.kind].shape !== "resonance") return `: plateau ${formatDb(peak)}`;
-  return `: ${formatDb(peak)}${frequency === null ? "" : `, ${formatFigure(frequency, "frequency")}`}`;
-}
-
-/** What the dashed curve is, beside its peak. */
-function nameAlone(pen: Pen, scene: CurveScene, alone: Curve): void {
-  const { response, ruling, levels, total } = scene;
-  const isUp = scene.aloneEnd === "boost";
-  const peak = peakIndex(alone, isUp);
-  const at = { x: pixelOf(ruling, alone.frequency[peak]), y: levelY(levels, response.top, response.bottom - response.top, alone.gain[peak]) };
-  if (at.x < response.left || at.x > response.right) return;
-  const text = `${scene.aloneLabel} alone, full ${isUp ? "boost" : "cut"}${aloneNumbers(scene.aloneFigures, isUp)}`;
-  const width = pen.widthOf(text);
-  // Beside the peak, a little further out than the curve goes, on the side that has the room.
-  const isRight = at.x + 14 + width <= response.right - 4;
-  const x = Math.max(response.left + 4, isRight ? at.x + 14 : at.x - 14 - width);
-  const beside = Math.max(response.top + 9, Math.min(response.bottom - 9, isUp ? at.y - 7 : at.y + 9));
-  // Out of the way of the other curve where that runs through the same place.
-  const isCrossed = [x, x + width / 2, x + width].some((end) => {
-    const y = total && levelAt(total, scene, end);
-    return y !== null && Math.abs(y - beside) < 11;
-  });
-  const y = isCrossed ? (isUp ? response.top + 9 : response.bottom - 9) : beside;
-  const isStruck = scene.isVoid || scene.isAloneVoid;
-  pen.text(text, x, y, { color: isStruck ? pen.inks.inkSoft : isUp ? pen.inks.boostText : pen.inks.cutText, halo: pen.inks.paper, isStruck });
-}
-
-/** What the dotted curves are, where they depart most, on the side away from the line they depart from. */
-function nameGhost(pen: Pen, scene: CurveScene, ghost: Ghost): void {
-  const { response, ruling, levels } = scene;
-  const [now, then] = scene.alone && ghost.alone ? [scene.alone, ghost.alone] : [scene.total, ghost.total];
-  if (!now || now.gain.length !== then.gain.length) return;
-  let most = extremeIndex(then.gain);
-  for (let i = 0; i < then.gain.length; i++) if (Math.abs(then.gain[i] - now.gain[i]) > Math.abs(then.gain[most] - now.gain[most])) most = i;
-  const text = `with ${ghost.label}`;
-  const width = pen.widthOf(text, 11, true);
-  const x = Math.max(response.left + 6, Math.min(response.right - 6 - width, pixelOf(ruling, then.frequency[most]) - width / 2));
-  const y = levelY(levels, response.top, response.bottom - response.top, then.gain[most]) + (then.gain[most] >= now.gain[most] ? -13 : 13);
-  pen.text(text, x, Math.max(response.top + 9, Math.min(response.bottom - 9, y)), { color: pen.inks.accent, halo: pen.inks.paper, isBold: true });
-}
-
-function levelAt(curve: Curve, scene: CurveScene, x: number): number | null {
-  const { ruling, response, levels } = scene;
-  const log = Math.log(ruling.to / ruling.from) * ((x - ruling.left) / (ruling.right - ruling.left));
-  const frequency = ruling.from * Math.exp(log);
-  const index = curve.frequency.findIndex((f) => f >= frequency);
-  return index < 0 ? null : levelY(levels, response.top, response.bottom - response.top, curve.gain[index]);
 }

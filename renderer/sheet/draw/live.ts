@@ -1,9 +1,14 @@
 /** What moves while a slider is dragged. */
 import { knobY, type BandPlace } from "../../../core/geometry/band-place.ts";
+import { boxWithin } from "../../../core/geometry/clear-box.ts";
+import type { SheetLayout } from "../../../core/geometry/layout.ts";
+import type { Box } from "../../../core/geometry/units.ts";
 import { formatDb } from "../../../core/units.ts";
+import { travelText } from "../figure-texts.ts";
 import { bandValues } from "../../../core/geometry/values.ts";
 import type { Block } from "../../../core/model/project.ts";
 import { figureLine } from "./figure-line.ts";
+import { drawTag, TAG_HEIGHT, tagWidth } from "./overlay.ts";
 import { lineOf } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
 
@@ -67,6 +72,19 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
 function nowColor(pen: Pen, now: number): string {
   if (Math.abs(now) < 0.05) return pen.inks.inkSoft;
   return now > 0 ? pen.inks.boostText : pen.inks.cutText;
+}
+
+/** What the held slider does now, above its rails: beside the knob it would hide the neighbours'. */
+export function drawHeldTag(pen: Pen, layout: SheetLayout, place: BandPlace, position: number, now: number | undefined): void {
+  const { ruling, board } = layout.frame;
+  const text = [...(now === undefined ? [] : [formatDb(now)]), travelText(position)].join("   ");
+  const width = tagWidth(pen, text);
+  const within: Box = { left: ruling.left, right: ruling.right, top: board.top + 3, bottom: board.bottom };
+  const above = place.boostRailY - 7 - TAG_HEIGHT;
+  // With the rails scrolled out of sight it keeps beside the knob.
+  const box = above >= within.top ? boxWithin(place.x - width / 2, above, width, TAG_HEIGHT, within)
+    : boxWithin(place.x + place.knobHalf + 10, knobY(place, position) - 10 - TAG_HEIGHT, width, TAG_HEIGHT, within);
+  drawTag(pen, text, box);
 }
 
 /** The values of the selected band, over its neighbours, where its slot has no room for them. */

@@ -2,8 +2,10 @@
 import { frequencyLabels, frequencyRules, octaveMarks } from "../../../core/geometry/ruling.ts";
 import { levelTicks, levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
 import type { Frame } from "../../../core/geometry/frame.ts";
-import type { SheetLayout } from "../../../core/geometry/layout.ts";
 import type { Pen } from "./pen.ts";
+
+/** A response this low is none, px. */
+const NO_PLOT = 20;
 
 /** Vertical rules through response and board, the level rules of the response, and the labels of all axes. */
 export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: LevelSpan | null): void {
@@ -14,13 +16,15 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
     pen.line([rule.x, board.top, rule.x, frame.height], inks.rule, rule.weight === "decade" ? 1.6 : 1);
   }
   const height = response.bottom - response.top;
-  for (const level of levelTicks(levels, height, height < 200 ? 18 : 28)) {
+  // Where wiring faults have taken its place there is no level to read.
+  const isPlot = height > NO_PLOT;
+  for (const level of isPlot ? levelTicks(levels, height, height < 200 ? 18 : 28) : []) {
     const y = levelY(levels, response.top, height, level);
     const isZero = level === 0;
     pen.line([response.left, y, response.right, y], isZero ? inks.ruleStrong : inks.rule, isZero ? 1.4 : 1);
     pen.text(`${level > 0 ? "+" : level < 0 ? "−" : ""}${Math.abs(level)}`, response.left - 10, y, { align: "right", color: isZero ? inks.ink : inks.inkSoft });
   }
-  sideways(pen, "gain, dB", response.left - 44, (response.top + response.bottom) / 2, inks.inkSoft);
+  if (isPlot) sideways(pen, "gain, dB", response.left - 44, (response.top + response.bottom) / 2, inks.inkSoft);
   if (phase) {
     for (let angle = phase.bottom; angle <= phase.top; angle += phase.top > 180 ? 90 : 45) {
       const y = levelY(phase, response.top, height, angle);
@@ -36,19 +40,6 @@ export function drawPaper(pen: Pen, frame: Frame, levels: LevelSpan, phase: Leve
     pen.text(label.text, label.x, axisY + 2, { align: "center", color: inks.inkSoft });
   }
   pen.text("frequency, Hz", ruling.left - 10, axisY + 2, { align: "right", color: inks.inkSoft });
-}
-
-/** A board taller than its place by less than this has its margin out of sight, no more. */
-const LEAST_SCROLL = 12;
-
-/** At the right edge: which part of the board is on show, where it is taller than its place. */
-export function drawScrollMark(pen: Pen, layout: SheetLayout): void {
-  if (layout.mostScroll < LEAST_SCROLL) return;
-  const { board, width } = layout.frame;
-  const seen = board.bottom - board.top;
-  const length = (seen * seen) / (seen + layout.mostScroll);
-  const top = board.top + ((seen - length) * layout.scroll) / layout.mostScroll;
-  pen.box(width - 5, top + length / 2, 4, length - 6, { fill: pen.inks.ruleStrong, radius: 2 });
 }
 
 /** A word along an axis, read from the right. */

@@ -2,7 +2,7 @@ import { describe, expect, test } from "vitest";
 import { knobY, positionAt } from "../../../core/geometry/band-place.ts";
 import { blocksIn, hitTest, placeOf } from "../../../core/geometry/hit.ts";
 import { layoutSheet } from "../../../core/geometry/layout.ts";
-import { px, tagPlace } from "../../../core/geometry/units.ts";
+import { px } from "../../../core/geometry/units.ts";
 import { bandValues, chainValues } from "../../../core/geometry/values.ts";
 import { boardOf, gyratorAt, THIRD_OCTAVES } from "../../helpers/sheet-boards.ts";
 
@@ -70,19 +70,5 @@ describe("hit test", () => {
     for (const position of [0, 0.25, 0.5, 1]) expect(positionAt(band, knobY(band, position))).toBeCloseTo(position, 9);
     expect(knobY(band, 1)).toBeLessThan(knobY(band, 0));
     expect(positionAt(band, -1e4)).toBe(1);
-  });
-
-  test("a tag stays inside, beside its point", () => {
-    const within = { left: 0, right: 300, top: 0, bottom: 200 };
-    const size = { width: 80, height: 20 };
-    for (const x of [0, 150, 299]) {
-      for (const y of [0, 100, 199]) {
-        const place = tagPlace({ x, y }, size, within);
-        expect(place.x).toBeGreaterThanOrEqual(0);
-        expect(place.x + size.width).toBeLessThanOrEqual(300);
-        expect(place.y).toBeGreaterThanOrEqual(0);
-        expect(place.y + size.height).toBeLessThanOrEqual(200);
-      }
-    }
   });
 });

@@ -85,6 +85,21 @@ describe("layout", () => {
     expect(layout.bands.filter((band) => !band.hasValues)).toEqual([]);
   });
 
+  test("what lies over the top takes room from the response, and from the board only where that has not enough", () => {
+    const project = boardOf(OCTAVES.map((f) => gyratorAt(f)));
+    const plain = layOut(project);
+    const pixels = plain.frame.response.bottom - plain.frame.response.top;
+    const some = layOut(project, { topInset: 50 });
+    expect(some.frame.response).toEqual({ ...plain.frame.response, top: plain.frame.response.top + 50 });
+    expect(some.bands).toEqual(plain.bands);
+    const much = layOut(project, { topInset: pixels });
+    expect(much.frame.response.bottom - much.frame.response.top).toBe(60);
+    expect(much.frame.board.top).toBe(plain.frame.board.top + 60);
+    // Without a response to show there is none to keep.
+    const faulty = layOut(project, { topInset: pixels, hasResponse: false });
+    expect(faulty.frame.board.top).toBeLessThan(plain.frame.board.top + 10);
+  });
+
   test.each([[1440], [1090], [712]])("the chain stays inside the sheet, its values apart, at a width of %d", (width) => {
     const project = boardOf(OCTAVES.map((f) => gyratorAt(f)));
     const blocks = project.blocks.map((block) =>

@@ -1,7 +1,7 @@
 // @vitest-environment jsdom
 import { act } from "react";
 import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
-import { boardOf, gyratorAt, THIRD_OCTAVES } from "../../helpers/sheet-boards.ts";
+import { boardOf, gyratorAt, THIRD_OCTAVES, twoStages } from "../../helpers/sheet-boards.ts";
 import { Pen } from "../../../renderer/sheet/draw/pen.ts";
 import { INKS } from "../../../renderer/sheet/tokens.ts";
 import { mountSheet, stubSurroundings, type Mounted } from "./mount-sheet.tsx";
@@ -268,6 +268,42 @@ describe("the sheet", () => {
     expect(place(other.page, "[data-response]")).toEqual({ top: response.top + 46, bottom: response.bottom });
     expect(other.handle.screenPlaceOf("b1000", "knob")).toEqual(knobPlace);
     await other.unmount();
+  });
+
+  test("a board taller than its place has a bar that moves it, by pointer and by keys; one that fits has none", async () => {
+    expect(sheet.page.querySelector("[role=scrollbar]")).toBeNull();
+    await sheet.unmount();
+    vi.restoreAllMocks();
+    stubSurroundings(716, 606);
+    sheet = await mountSheet(twoStages(THIRD_OCTAVES.map((f) => gyratorAt(f, `b${f}`.replace(".", "_")))));
+    const bar = sheet.page.querySelector<HTMLElement>("[role=scrollbar]")!;
+    const place = (): number => sheet.handle.screenPlaceOf("b1000", "knob")!.y;
+    const most = Number(bar.getAttribute("aria-valuemax"));
+    expect(most).toBeGreaterThan(60);
+    const top = place();
+    await press(bar, "End");
+    expect(Math.abs(top - place() - most)).toBeLessThanOrEqual(1);
+    expect(bar.getAttribute("aria-valuenow")).toBe(String(most));
+    await press(bar, "ArrowUp");
+    expect(Math.abs(top - place() - (most - 40))).toBeLessThanOrEqual(1);
+    await press(bar, "Home");
+    expect(place()).toBe(top);
+    // The mark is dragged; the board goes further than the hand by how much more of it there is.
+    const onBar = async (type: string, y: number): Promise<void> => act(async () => {
+      bar.dispatchEvent(new MouseEvent(type, { bubbles: true, cancelable: true, button: 0, clientX: 710, clientY: y }));
+    });
+    await onBar("pointerdown", 30);
+    await onBar("pointermove", 40);
+    const moved = top - place();
+    expect(moved).toBeGreaterThan(10);
+    expect(moved).toBeLessThan(20);
+    await onBar("pointermove", 5000);
+    expect(Math.abs(top - place() - most)).toBeLessThanOrEqual(1);
+    await onBar("pointerup", 5000);
+    await onBar("pointermove", 30);
+    expect(Math.abs(top - place() - most)).toBeLessThanOrEqual(1);
+    // It is no gesture on the sheet.
+    expect(sheet.log.filter(([name]) => name !== "cursor")).toEqual([]);
   });
 
   test("wiring faults leave the blocks on the sheet", async () => {
