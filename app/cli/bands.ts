@@ -1,11 +1,11 @@
 import type { Command } from "commander";
 import { bandFigures, type BandPeak } from "../../core/analysis/bands.ts";
 import { formatFigure, type Quantity } from "../../core/units.ts";
-import { boardCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 
 /** `bands FILE`: band figures, one row a band. */
 export function bandsCommand(): Command {
-  return boardCommand("bands", "band figures, one row a band: each with its own slider at an end and all others at 0.5, whatever the positions of the file or of --set and --all", "bands channel.bandwright --json")
+  return analysisCommand("bands", "band figures, one row a band: each with its own slider at an end and all others at 0.5, whatever the positions of the file or of --set and --all", "bands channel.bandwright --json")
     .option("--json", "as JSON")
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
       const { board, run } = await loadBoard(file, opts);

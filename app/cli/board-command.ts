@@ -22,15 +22,19 @@ export interface LoadedBoard {
   readonly run: Required<Pick<ValueOpts, "positions" | "isMeasured">>;
 }
 
-/** A command on a project file, with the slider options that every analysis takes. */
+/** A command on a project file, with the slider options that everything takes that computes a response. */
 export function boardCommand(name: string, about: string, example: string): Command {
   return new Command(name)
     .description(about)
     .argument("<FILE>", "project file (.bandwright)")
     .option("--set <ID=POS...>", "slider positions for this run: 0 is full cut, 0.5 centre, 1 full boost (repeatable)")
     .option("--all <POS>", "the position of every other slider for this run")
-    .option("--measured", "take the measured value of a part where it has one")
     .addHelpText("after", `\nExample:\n  bandwright ${example}`);
+}
+
+/** The same, which may take the measured values of parts for its own. */
+export function analysisCommand(name: string, about: string, example: string): Command {
+  return boardCommand(name, about, example).option("--measured", "take the measured value of a part where it has one");
 }
 
 /**

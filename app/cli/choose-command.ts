@@ -71,12 +71,12 @@ export function readFraction(text: string, option: string): number {
 export function moneyText(money: Money | null): string {
   if (money === null) return "–";
   const cents = money.amount.toFixed(2);
-  return `${Math.abs(Number(cents) - money.amount) < 1e-9 ? cents : money.amount.toFixed(4)} ${money.currency}`;
+  return `${Math.abs(Number(cents) - money.amount) < 1e-9 ? cents : money.amount.toFixed(4)} ${money.currency}`.trim();
 }
 
 /** Sums in several currencies, side by side. */
 export function sumText(sums: readonly Money[]): string {
-  return sums.length === 0 ? "no prices known" : sums.map((m) => `${m.amount.toFixed(2)} ${m.currency}`).join(" and ");
+  return sums.length === 0 ? "no prices known" : sums.map((m) => `${m.amount.toFixed(2)} ${m.currency}`.trim()).join(" and ");
 }
 
 /** The lines of a candidate: `A + B` in series, `A ‖ B` in parallel. */

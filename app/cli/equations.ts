@@ -1,6 +1,6 @@
 import type { Command } from "commander";
 import { blockReportText, boardReport, blockIds } from "../../core/analysis/equation-report.ts";
-import { boardCommand, loadBoard, printJson, readFrequency, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, printJson, readFrequency, type SliderOpts } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
 
 interface EquationsOpts extends SliderOpts {
@@ -12,7 +12,7 @@ interface EquationsOpts extends SliderOpts {
 
 /** `equations FILE`: laws and node equations, with values put in. */
 export function equationsCommand(): Command {
-  return boardCommand("equations", "design laws and node equations of a board, with its values put in", "equations channel.bandwright --block b1k --at 1k")
+  return analysisCommand("equations", "design laws and node equations of a board, with its values put in", "equations channel.bandwright --block b1k --at 1k")
     .option("--block <ID>", "one block only")
     .option("--at <HZ>", "put the numbers of this frequency in")
     .option("--tex", "as LaTeX (needs amsmath)")

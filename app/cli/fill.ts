@@ -27,8 +27,7 @@ export function fillCommand(): Command {
   ).action(async (file: string, opts: FillCommandOpts) => {
     const units = readCount(opts.units, "--units");
     const window = readFraction(opts.window, "--window");
-    const { board, run: { positions, isMeasured } } = await loadBoard(file, opts);
-    if (isMeasured) throw new CommandFailure("--measured: filling aims at the board's design values, and puts other pieces in");
+    const { board, run: { positions } } = await loadBoard(file, opts);
     await requireOutput(opts.output);
     const lines = await withDrawer(opts, "has to be there", (store) => linesFor(store, board.project));
     const ceiling = opts.ceiling === undefined ? undefined : read("--ceiling", opts.ceiling, (text) => readCeiling(text, lines));

@@ -22,8 +22,7 @@ export function matchCommand(): Command {
   ).action(async (file: string, opts: MatchCommandOpts) => {
     const deals = readCount(opts.deals, "--deals", 10_000);
     const seed = readCount(opts.seed, "--seed", 2 ** 32 - 1);
-    const { board, run: { positions, isMeasured } } = await loadBoard(file, opts);
-    if (isMeasured) throw new CommandFailure("--measured: matching aims at the board's design values, and writes measured ones");
+    const { board, run: { positions } } = await loadBoard(file, opts);
     await requireOutput(opts.output);
     const pieces = await withDrawer(opts, "has to be there", (store) => store.allPieces());
     const result = matchPieces(board, pieces, { positions, deals, seed });

@@ -1,11 +1,11 @@
 import type { Command } from "commander";
 import { polesAndZeros, rootFigures, type Root } from "../../core/analysis/poles.ts";
 import { formatFigure } from "../../core/units.ts";
-import { boardCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 
 /** `poles FILE`: poles and zeros of the whole board. */
 export function polesCommand(): Command {
-  return boardCommand("poles", "poles and zeros of the whole board, inductors and op amps included", "poles channel.bandwright --set b1k=1 --json")
+  return analysisCommand("poles", "poles and zeros of the whole board, inductors and op amps included", "poles channel.bandwright --set b1k=1 --json")
     .option("--json", "as JSON: poles and zeros as { re, im } in rad/s")
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
       const { board, run } = await loadBoard(file, opts);

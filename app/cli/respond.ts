@@ -2,7 +2,7 @@ import type { Command } from "commander";
 import { Option } from "commander";
 import { stringify } from "csv-stringify/sync";
 import { logFrequencies, respond } from "../../core/analysis/response.ts";
-import { boardCommand, loadBoard, printJson, printTable, readFrequency, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, printJson, printTable, readFrequency, type SliderOpts } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
 
 interface RespondOpts extends SliderOpts {
@@ -17,7 +17,7 @@ const MOST_POINTS = 1_000_000;
 
 /** `respond FILE`: gain, phase and group delay at log-spaced frequencies. */
 export function respondCommand(): Command {
-  return boardCommand("respond", "response at log-spaced frequencies, both ends included", "respond channel.bandwright --all 0.5 --set b1k=1 --from 20 --to 20k --points 61 --csv")
+  return analysisCommand("respond", "response at log-spaced frequencies, both ends included", "respond channel.bandwright --all 0.5 --set b1k=1 --from 20 --to 20k --points 61 --csv")
     .option("--from <HZ>", "lowest frequency", "10")
     .option("--to <HZ>", "highest frequency", "40000")
     .option("--points <N>", "how many frequencies, 2 or more", "481")

@@ -68,7 +68,7 @@ export function printLines(lines: readonly DrawerLine[]): void {
     const unit = RATING_UNIT[line.kind];
     const cost = unitCost(line, 1);
     return [
-      line.id,
+      line.retired ? `${line.id} (retired)` : line.id,
       line.value === null || quantity === null ? (line.type ?? "") : formatValue(line.value, quantity, { significant: "exact" }),
       line.tolerance === null ? "" : formatValue(line.tolerance, "ratio"),
       line.rating === null ? "" : `${Number(line.rating.toPrecision(4))}${unit === null ? "" : ` ${unit}`}`,

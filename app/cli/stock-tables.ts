@@ -4,7 +4,7 @@ import { Option, type Command } from "commander";
 import type { ImportReport } from "../../core/contract/drawer-schemas.ts";
 import { IMPORT_FIELDS, type ColumnUse, type Delimiter, type Encoding, type ImportField, type ImportMapping } from "../../core/drawer/mapping.ts";
 import { STOCK_KINDS, type StockKind } from "../../core/drawer/stock.ts";
-import { decodeTable, openTable, readTableFile, type Table } from "../services/csv-table.ts";
+import { openTable, readTable, type Table } from "../services/csv-table.ts";
 import { exportTable, importTable, type ImportProgress } from "../services/drawer-tables.ts";
 import { writeTable } from "../services/drawer.ts";
 import { printJson } from "./board-command.ts";
@@ -39,7 +39,7 @@ export function stockImportCommand(): Command {
       if ((file === undefined) === (opts.starter === undefined)) throw new CommandFailure("give a FILE or --starter (--help says what is understood)");
       const path = file === undefined ? STARTER : resolve(file);
       const report = await withDrawer(opts, "made where there is none", async (store) => {
-        const { text, encoding } = decodeTable(await readTableFile(path), opts.encoding ?? null);
+        const { text, encoding } = await readTable(path, opts.encoding ?? null);
         const table = withOptions(await openTable(text, encoding, null, null), opts);
         const delimited = opts.delimiter === undefined ? table : withOptions(await openTable(text, encoding, { ...table.reading, delimiter: DELIMITERS[opts.delimiter] }, null), opts);
         const stop = new AbortController();
@@ -130,7 +130,7 @@ export function stockExportCommand(): Command {
         if (opts.json) {
           const lines = [...store.eachLine()];
           if (file === undefined) printJson({ lines });
-          else await writeTable(resolve(file), `${JSON.stringify({ lines }, null, 2)}\n`, opts.replace === true);
+          else await writeTable(store, resolve(file), `${JSON.stringify({ lines }, null, 2)}\n`, opts.replace === true);
           return;
         }
         const { text, lines } = exportTable(store);
@@ -138,7 +138,7 @@ export function stockExportCommand(): Command {
           process.stdout.write(text);
           return;
         }
-        await writeTable(resolve(file), text, opts.replace === true);
+        await writeTable(store, resolve(file), text, opts.replace === true);
         process.stderr.write(`${lines} lines written to ${file}\n`);
       });
     });

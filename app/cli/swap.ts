@@ -1,10 +1,11 @@
 import type { Command } from "commander";
-import { boardRoles, findRole, type BoardRole } from "../../core/drawer/roles.ts";
+import { boardRoles, findRole, partsElsewhere, type BoardRole } from "../../core/drawer/roles.ts";
 import { rankSwaps, type Swap } from "../../core/drawer/swap.ts";
 import { hasFault } from "../../core/drawer/place-problems.ts";
+import { whyNothing } from "../../core/drawer/why-nothing.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import { formatDb } from "../../core/units.ts";
-import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
 import { linesFor, linesText, moneyText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, writeProject } from "./choose-command.ts";
 import { CommandFailure } from "./failure.ts";
 import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
@@ -22,7 +23,7 @@ interface SwapCommandOpts extends SliderOpts, DrawerOption {
 /** `swap FILE --role ROLE`: parts of the drawer for one role, ranked by what they do to the board. */
 export function swapCommand(): Command {
   return withDrawerOptions(
-    boardCommand("swap", "parts of the drawer for one role, ranked by what they do to the whole board", "swap channel.bandwright --role b1k.seriesC --pairs --take 1 -o other.bandwright")
+    analysisCommand("swap", "parts of the drawer for one role, ranked by what they do to the whole board", "swap channel.bandwright --role b1k.seriesC --pairs --take 1 -o other.bandwright")
       .requiredOption("--role <ROLE>", "role as block.role, such as b1k.seriesC, b1k.slider, b1k.opAmp or reference.upperR")
       .option("--pairs", "two pieces in series or parallel too")
       .option("--units <N>", "units to build: pieces have to be there for each", "1")
@@ -49,6 +50,7 @@ export function swapCommand(): Command {
     if (taken && opts.output !== undefined) await writeProject(opts.output, applyPatch(board.project, taken.patch));
     if (opts.json) printJson({ ...swapJson(swap), taken: take ?? null });
     else printSwap(swap, role);
+    if (swap.candidates.length === 0) process.stderr.write(`nothing in the drawer fits: ${whyNothing(board.project, role, lines, { units, window, elsewhere: partsElsewhere(board, role) })}\n`);
     if (taken) process.stderr.write(`${opts.output}: ${role.name} is now ${taken.lines.map((l) => l.id).join(" and ")}\n`);
   });
 }
@@ -71,10 +73,7 @@ function printSwap({ candidates, stress }: Swap, role: BoardRole): void {
     const way = stress.positive === null ? "no steady voltage to keep a polarised one the right way round" : `+ to ${stress.positive}`;
     process.stdout.write(`bears ${Math.max(Math.abs(stress.low), Math.abs(stress.high)).toPrecision(3)} V steady and up to ${stress.peak.toPrecision(3)} V of signal; ${way}\n`);
   }
-  if (candidates.length === 0) {
-    process.stdout.write("\nnothing in the drawer fits\n");
-    return;
-  }
+  if (candidates.length === 0) return;
   process.stdout.write("\n");
   printTable(
     ["line", "no.", "value", "off", "tolerance", "peak", "centre", "Q", "as set", "full boost", "cost", "left"],

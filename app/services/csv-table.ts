@@ -1,7 +1,7 @@
 import { Readable } from "node:stream";
 import { CsvError, parse } from "csv-parse";
 import { HostFailure } from "../../core/contract/failures.ts";
-import { EXPORT_MAPPING, isExport } from "../../core/drawer/export-rows.ts";
+import { exportMapping } from "../../core/drawer/export-rows.ts";
 import { guessDelimiter, guessHeader, guessMapping } from "../../core/drawer/guess-mapping.ts";
 import type { Encoding, ImportMapping, TableReading } from "../../core/drawer/mapping.ts";
 import { readWhole } from "./read-whole.ts";
@@ -26,9 +26,9 @@ export interface Table {
   readonly sample: readonly TableRow[];
 }
 
-/** A file's bytes. @throws HostFailure */
-export function readTableFile(path: string): Promise<Buffer> {
-  return readWhole(path, MAX_TABLE_BYTES);
+/** A table's text from a file. @throws HostFailure */
+export async function readTable(path: string, encoding: Encoding | null): Promise<{ readonly text: string; readonly encoding: Encoding }> {
+  return decodeTable(await readWhole(path, MAX_TABLE_BYTES), encoding);
 }
 
 /** Decodes a table's bytes: as told, else by their mark, else UTF-8, else what spreadsheets wrote before it. */
@@ -42,8 +42,10 @@ export function decodeTable(bytes: Uint8Array, encoding: Encoding | null): { rea
   }
 }
 
-/** Works out how a text is to be read as a table, where the caller does not say. */
+/** Works out how a text is to be read as a table, where the caller does not say. @throws HostFailure import-refused where it is none */
 export async function openTable(text: string, encoding: Encoding, reading: TableReading | null, mapping: ImportMapping | null): Promise<Table> {
+  // No table has one; pictures, archives and databases do.
+  if (text.slice(0, CHUNK).includes("\0")) throw new HostFailure("import-refused", { rows: 1, refused: 1, faults: [{ row: 1, message: "this is no text, so it is no table" }] });
   const delimiter = reading?.delimiter ?? guessDelimiter(text);
   const first: TableRow[] = [];
   for await (const row of tableRows(text, delimiter)) {
@@ -54,7 +56,7 @@ export async function openTable(text: string, encoding: Encoding, reading: Table
   const width = first.reduce((most, row) => Math.max(most, row.cells.length), 0);
   const headers = Array.from({ length: width }, (_, column) => (hasHeader ? (first[0]?.cells[column] ?? "").trim() : "") || `Column ${column + 1}`);
   const sample = hasHeader ? first.slice(1) : first.slice(0, SAMPLE_ROWS);
-  const guessed = (): ImportMapping => (isExport(headers) ? EXPORT_MAPPING : guessMapping(headers, sample.map((row) => row.cells)));
+  const guessed = (): ImportMapping => exportMapping(headers) ?? guessMapping(headers, sample.map((row) => row.cells));
   return { text, reading: { delimiter, encoding, hasHeader }, mapping: mapping ?? guessed(), headers, sample };
 }
 

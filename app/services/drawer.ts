@@ -7,7 +7,7 @@ import type { ArgsOf, EventData, EventName, MethodName, ResultOf } from "../../c
 import { readRow } from "../../core/drawer/read-row.ts";
 import type { ImportMapping, TableReading } from "../../core/drawer/mapping.ts";
 import { openDrawer, type DrawerStore } from "../store/drawer-store.ts";
-import { decodeTable, openTable, readTableFile, type Table } from "./csv-table.ts";
+import { openTable, readTable, type Table } from "./csv-table.ts";
 import { exportTable, importTable } from "./drawer-tables.ts";
 import type { PathGuard } from "./path-guard.ts";
 import { writeFailure } from "./system-error.ts";
@@ -70,7 +70,7 @@ export function createDrawer({ guard, drawerPath, starterPath, now, emit }: Draw
   async function table(source: TableSource, reading: TableReading | null, mapping: ImportMapping | null): Promise<{ readonly table: Table; readonly name: string }> {
     if ("text" in source) return { table: await openTable(source.text, reading?.encoding ?? "utf-8", reading, mapping), name: "a table" };
     const file = await guard.resolve(source.path);
-    const { text, encoding } = decodeTable(await readTableFile(file), reading?.encoding ?? null);
+    const { text, encoding } = await readTable(file, reading?.encoding ?? null);
     return { table: await openTable(text, encoding, reading, mapping), name: basename(file) };
   }
 
@@ -135,14 +135,14 @@ export function createDrawer({ guard, drawerPath, starterPath, now, emit }: Draw
       return { cancelled: jobs.has(job) };
     },
     "drawer.starter": async ({ job }) => {
-      const { text, encoding } = decodeTable(await readTableFile(starterPath), null);
+      const { text, encoding } = await readTable(starterPath, null);
       return runImport(job, await openTable(text, encoding, null, null), "the starter drawer", { skipBadRows: false, dryRun: false });
     },
     "drawer.export": async ({ path: asked, replace }) => {
       const { text, lines } = exportTable(await store());
       if (asked === null) return { path: null, text, lines };
       const file = await guard.resolve(TABLE_EXTENSIONS.includes(extname(asked).toLowerCase()) ? asked : `${asked}.csv`);
-      await writeTable(file, text, replace);
+      await writeTable(await store(), file, text, replace);
       return { path: file, text: null, lines };
     },
     "drawer.reserve": async ({ reference, units, bill }) => told((await store()).reserve(reference, units, bill)),
@@ -156,9 +156,11 @@ export function createDrawer({ guard, drawerPath, starterPath, now, emit }: Draw
   return { handlers, close };
 }
 
-/** Writes a table whole. @throws HostFailure file-exists where a file is there and may not be replaced */
-export async function writeTable(path: string, text: string, replace: boolean): Promise<void> {
+/** Writes a table of the drawer whole. @throws HostFailure file-exists where a file is there and may not be replaced, as the drawer itself never may */
+export async function writeTable({ path: drawerFile }: Pick<DrawerStore, "path">, path: string, text: string, replace: boolean): Promise<void> {
   const old = await stat(path).catch(() => null);
+  const own = await stat(drawerFile).catch(() => null);
+  if (old !== null && old.dev === own?.dev && old.ino === own.ino) throw new HostFailure("drawer-refused", { problems: [`${path} is the drawer itself: give the table another name.`] });
   if (old?.isDirectory() === true) throw new HostFailure("file-unwritable", { path, reason: "folder", detail: "" });
   if (old !== null && !replace) throw new HostFailure("file-exists", { path });
   try {

@@ -1,7 +1,7 @@
 import { emptyLine, type StockLine } from "../../core/drawer/stock.ts";
 import type { Db } from "./db.ts";
 import { findLine, insertLine, requireSoundLine, updateLine, type LineEdit } from "./lines.ts";
-import { bookMove, requireCountable } from "./ledger.ts";
+import { bookMove, requireCountable, requireKeepable } from "./ledger.ts";
 import { beginStep } from "./steps.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
 
@@ -42,6 +42,7 @@ export function* importRows(db: Db, now: Date, label: string, reference: string,
     try {
       const old = findLine(db, id);
       // Before anything is written: a refused row leaves nothing behind.
+      if (quantity !== null) requireKeepable(id, quantity);
       if (old !== null && quantity !== null) requireCountable(db, old, quantity);
       const isUpdated = old !== null && updateLine(db, step, old, { retired: false, ...fields });
       const made = old === null ? addNew(id, fields) : null;

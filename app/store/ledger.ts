@@ -1,5 +1,6 @@
-import type { LedgerEntry, Move } from "../../core/contract/drawer-schemas.ts";
+import { MOST_MOVEMENT_NOTE, type LedgerEntry, type Move } from "../../core/contract/drawer-schemas.ts";
 import { HostFailure } from "../../core/contract/failures.ts";
+import { MOST_CHARACTERS } from "../../core/drawer/check-line.ts";
 import type { Db } from "./db.ts";
 import { holdersOf, requireLine, type KeyedLine } from "./lines.ts";
 import type { Step } from "./steps.ts";
@@ -21,11 +22,15 @@ export function bookMove(db: Db, step: Step, move: Move): void {
   const { key, line } = found;
   const { kind, count, reference, note } = move;
   if (count === 0 && kind !== "counted") refuse(`${line.id}: the number of pieces ${kind} must be above 0`);
+  if (reference.length > MOST_CHARACTERS) refuse(`${line.id}: the name of what the pieces are for has more than ${MOST_CHARACTERS} characters`);
+  if (note.length > MOST_MOVEMENT_NOTE) refuse(`${line.id}: the note has more than ${MOST_MOVEMENT_NOTE} characters`);
   switch (kind) {
     case "bought":
+      requireKeepable(line.id, line.quantity + count);
       step.book(key, kind, count, reference, note);
       break;
     case "counted":
+      requireKeepable(line.id, count);
       requireCountable(db, found, count);
       step.book(key, kind, count - line.quantity, reference, note);
       break;
@@ -61,6 +66,14 @@ export function requireFree(db: Db, { key, line }: KeyedLine, wanted: number, be
   if (wanted <= available) return;
   const holders = holdersOf(db, key).filter((holder) => holder.reference !== besides);
   throw new HostFailure("drawer-short", { line: line.id, wanted, quantity: line.quantity, available, holders });
+}
+
+/** Far more than anybody has, and far from where numbers lose their last digit. */
+const MOST_PIECES = 1_000_000_000;
+
+/** @throws HostFailure drawer-refused */
+export function requireKeepable(id: string, quantity: number): void {
+  if (quantity > MOST_PIECES) refuse(`${id}: ${quantity} pieces are more than a line can have (${MOST_PIECES})`);
 }
 
 /** A count may not take away what somebody holds. @throws HostFailure drawer-refused */

@@ -77,7 +77,7 @@ export function lineByKey(db: Db, key: number): DrawerLine {
 /** @throws HostFailure drawer-refused with everything that is wrong, each with the line's id */
 export function requireSoundLine(line: StockLine): void {
   const problems = lineProblems(line);
-  if (problems.length > 0) throw new HostFailure("drawer-refused", { problems: problems.map((problem) => `${line.id}: ${problem}`) });
+  if (problems.length > 0) throw new HostFailure("drawer-refused", { problems: problems.map((problem) => (line.id === "" ? problem : `${line.id}: ${problem}`)) });
 }
 
 /** Makes a line; it has no pieces yet. */

@@ -1,4 +1,5 @@
 import * as v from "valibot";
+import { MOST_CHARACTERS, MOST_NOTES, MOST_PRICES } from "../drawer/check-line.ts";
 import { DELIMITERS, ENCODINGS, IMPORT_FIELDS, type ImportMapping, type TableReading } from "../drawer/mapping.ts";
 import { MOVEMENT_KINDS, STOCK_KINDS, type PriceBreak, type StockLine, type StockMovement, type StockPiece, type StockedLine } from "../drawer/stock.ts";
 import { list } from "./method.ts";
@@ -6,15 +7,15 @@ import { list } from "./method.ts";
 const NUMBER = v.pipe(v.number(), v.finite());
 export const COUNT = v.pipe(v.number(), v.safeInteger(), v.minValue(0));
 export const COUNT_FROM_ONE = v.pipe(v.number(), v.safeInteger(), v.minValue(1));
-export const SHORT_TEXT = v.pipe(v.string(), v.maxLength(200));
-const LONG_TEXT = v.pipe(v.string(), v.maxLength(10_000));
+export const SHORT_TEXT = v.pipe(v.string(), v.maxLength(MOST_CHARACTERS));
+const LONG_TEXT = v.pipe(v.string(), v.maxLength(MOST_NOTES));
 /** Whatever a caller may name a line by; whether there is one is another matter. */
 export const LINE_ID = v.pipe(v.string(), v.minLength(1), v.maxLength(100));
 /** Project or build that pieces are held for. */
 export const REFERENCE = v.pipe(v.string(), v.minLength(1), v.maxLength(200));
 const KIND = v.picklist(STOCK_KINDS);
 
-const PRICES: v.GenericSchema<readonly PriceBreak[]> = v.pipe(v.array(v.strictObject({ from: COUNT_FROM_ONE, unitCost: NUMBER })), v.maxLength(50));
+const PRICES: v.GenericSchema<readonly PriceBreak[]> = v.pipe(v.array(v.strictObject({ from: COUNT_FROM_ONE, unitCost: NUMBER })), v.maxLength(MOST_PRICES));
 
 /** Fields of a line that can be edited: all but its id. What goes with what is checked by `lineProblems`. */
 const FIELDS = {
@@ -77,11 +78,14 @@ export const LEDGER_ENTRY_SCHEMA: v.GenericSchema<LedgerEntry> = v.object({
   reverses: v.nullable(COUNT),
 });
 
+/** Most characters of a movement's note. */
+export const MOST_MOVEMENT_NOTE = 1000;
+
 /**
  * A movement to book. `count` is the number of pieces bought, used, scrapped, reserved or released;
  * for `counted` it is the number found there.
  */
-export const MOVE_SCHEMA = v.strictObject({ line: LINE_ID, kind: v.picklist(MOVEMENT_KINDS), count: COUNT, reference: SHORT_TEXT, note: v.pipe(v.string(), v.maxLength(1000)) });
+export const MOVE_SCHEMA = v.strictObject({ line: LINE_ID, kind: v.picklist(MOVEMENT_KINDS), count: COUNT, reference: SHORT_TEXT, note: v.pipe(v.string(), v.maxLength(MOST_MOVEMENT_NOTE)) });
 export type Move = v.InferOutput<typeof MOVE_SCHEMA>;
 
 /** Who holds pieces of a line, and how many. */

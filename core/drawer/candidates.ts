@@ -2,7 +2,7 @@ import { findOpAmp } from "../model/op-amps.ts";
 import type { Project } from "../model/project.ts";
 import { bestPairs, isSum, lesserShare, pairTolerance, type Joined, type Pair, type PairItem } from "./pairs.ts";
 import { amplifiersIn, partFromStock, type BoardRole, type Filling } from "./roles.ts";
-import { placeProblems } from "./place-problems.ts";
+import { hasFault, placeProblems } from "./place-problems.ts";
 import type { BoardStress, Problem } from "./stress.ts";
 import { availableOf, leftAfter, unitCost, type Money, type StockedLine } from "./stock.ts";
 
@@ -48,12 +48,12 @@ const LEAST_SHARE = 0.01;
 /** Tolerates rounding of values such as 4.7e-9 read from text. */
 const SAME_VALUE = 1e-9;
 
-/** Parts of the drawer for a role: right kind, within the window, pieces there that nobody has spoken for; nearest first, then cheapest. */
+/** Parts of the drawer for a role: right kind, within the window, pieces there that nobody has spoken for; nearest first, then cheapest, and behind those what is barred. */
 export function candidatesFor(project: Project, role: BoardRole, lines: readonly StockedLine[], opts: CandidateOpts = {}): Candidate[] {
   const { most = 50, pairs = false } = opts;
   const found = role.kind === "op-amp" ? opAmpCandidates(project, lines, opts) : singleCandidates(role, lines, opts);
   if (pairs && (role.kind === "resistor" || role.kind === "capacitor")) found.push(...pairCandidates(role, role.kind, lines, most, opts));
-  return found.toSorted(byNearness).slice(0, most);
+  return found.toSorted((a, b) => Number(hasFault(a)) - Number(hasFault(b)) || byNearness(a, b)).slice(0, most);
 }
 
 function byNearness(a: Candidate, b: Candidate): number {

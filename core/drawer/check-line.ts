@@ -6,6 +6,13 @@ export const QUANTITY_OF = { resistor: "resistance", potentiometer: "resistance"
 /** What a kind's rating is in; null where it has none. */
 export const RATING_UNIT = { resistor: "W", potentiometer: "W", capacitor: "V", inductor: null, "op-amp": null } as const satisfies Record<StockKind, string | null>;
 
+const TEXTS = [["type", "type"], ["technology", "technology"], ["package", "package"], ["location", "location"], ["supplier", "supplier"], ["orderCode", "order code"], ["notes", "notes"]] as const;
+
+/** Most characters of a text, and of the notes; most price breaks. */
+export const MOST_CHARACTERS = 200;
+export const MOST_NOTES = 10_000;
+export const MOST_PRICES = 50;
+
 /** What is wrong with a line, in words; nothing where it can be kept. */
 export function lineProblems(line: StockLine): readonly string[] {
   const problems: string[] = [];
@@ -14,6 +21,12 @@ export function lineProblems(line: StockLine): readonly string[] {
   if (line.id.trim() === "") complain("it needs an id");
   else if (line.id !== line.id.trim() || /\p{Cc}/u.test(line.id)) complain("its id must not begin or end with a space, and be on one line");
   if (line.id.length > 100) complain("its id has more than 100 characters");
+
+  for (const [field, name] of TEXTS) {
+    const most = field === "notes" ? MOST_NOTES : MOST_CHARACTERS;
+    if ((line[field] ?? "").length > most) complain(`its ${name} ${field === "notes" ? "have" : "has"} more than ${most} characters`);
+  }
+  if (line.prices.length > MOST_PRICES) complain(`it has more than ${MOST_PRICES} prices`);
 
   if (line.kind === "op-amp") {
     if (line.value !== null) complain("an op amp has a type, and no value");

@@ -11,6 +11,7 @@ import { amplifiersIn, boardRoles, filledProject, fillingPatch, onProject, type 
 import { boardStress, type BoardStress, type Problem } from "./stress.ts";
 import { availableOf, leftAfter, unitCost, type Money, type StockedLine } from "./stock.ts";
 import { ResponseError, TrialBoard } from "./trial.ts";
+import { whyNothing } from "./why-nothing.ts";
 
 export interface FillOpts {
   /** Units to build; 1 by default. */
@@ -117,7 +118,7 @@ export function fillBoard(board: Board, lines: readonly StockedLine[], opts: Fil
   const found = search.run();
 
   const fillings: { role: BoardRole; filling: Filling }[] = placed.filter((p) => p.role.kind === "op-amp").map((p) => ({ role: p.role, filling: { opAmp: p.role.type!, stock: p.line.id } }));
-  for (const offer of offers) if (offer.candidates.length === 0) unplaced.push({ role: offer.role, reason: reasonFor(board, offer.role, lines, opts, stress) });
+  for (const offer of offers) if (offer.candidates.length === 0) unplaced.push({ role: offer.role, reason: whyNothing(board.project, offer.role, lines, { ...opts, stress }) });
   for (const [i, { role, candidates }] of searched.entries()) {
     const at = found.choice[i];
     if (at < 0) {
@@ -199,23 +200,6 @@ function placeOpAmps(
 /** Packages of a type that hold a number of amplifiers. */
 export function packagesFor(amplifiers: number, type: string): number {
   return Math.ceil(amplifiers / amplifiersIn(type));
-}
-
-/** Why nothing of the drawer goes into a role, from the nearest thing that there is. */
-function reasonFor(board: Board, role: BoardRole, lines: readonly StockedLine[], opts: FillOpts, stress: BoardStress): string {
-  const { window = 0.2, units = 1 } = opts;
-  const percent = `${Number((window * 100).toPrecision(3))} %`;
-  const ofKind = lines.filter((l) => l.kind === role.kind && l.value !== null);
-  if (ofKind.length === 0) return `the drawer has no ${role.kind === "potentiometer" ? "potentiometer or slider" : role.kind}`;
-  const within = candidatesFor(board.project, role, lines, { window, units, stress, withShort: true });
-  if (within.length === 0) {
-    const nearest = ofKind.toSorted((a, b) => Math.abs(Math.log(a.value! / role.value!)) - Math.abs(Math.log(b.value! / role.value!)))[0];
-    return `no value within ${percent} (the nearest is ${nearest.id}, ${Number(((nearest.value! / role.value! - 1) * 100).toPrecision(3))} % off)`;
-  }
-  const [first] = within;
-  const fault = first.problems.find((p) => p.level === "fault");
-  if (fault) return `${first.lines[0].id}: ${fault.message}`;
-  return opts.ceiling ? `no price in ${opts.ceiling.currency} for what fits` : `every piece of ${first.lines[0].id} is taken`;
 }
 
 function costOfUnit(board: Board, project: Project, placed: readonly Placing[], lines: readonly StockedLine[], units: number): Money[] {

@@ -1,5 +1,6 @@
 import { isBareNumber, kindOfValue, readCoefficient, readCurrency, readKind, readMoney, readPrices, readQuantity, readRating, readTick, readTolerance, readValue, readWinding, type Cell } from "./cells.ts";
 import { lineProblems, QUANTITY_OF } from "./check-line.ts";
+import { unguardFormula } from "./formula-guard.ts";
 import { makeId } from "./make-id.ts";
 import type { ColumnUse, ImportField, ImportMapping } from "./mapping.ts";
 import { emptyLine, type PriceBreak, type StockKind, type StockLine } from "./stock.ts";
@@ -22,8 +23,6 @@ export interface ReadRow {
 }
 
 const TEXTS = ["technology", "package", "location", "supplier", "orderCode", "notes"] as const;
-const MOST_CHARACTERS = 200;
-const MOST_NOTES = 10_000;
 
 /** Reads a row by a mapping. */
 export function readRow(cells: readonly string[], mapping: ImportMapping): ReadRow {
@@ -54,17 +53,12 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
   if (used.has("rating")) fields.rating = read(text("rating"), (cell) => readRating(cell, unit("rating")));
   if (used.has("temperatureCoefficient")) fields.temperatureCoefficient = read(text("temperatureCoefficient"), (cell) => readCoefficient(cell, unit("temperatureCoefficient")));
   if (used.has("windingR")) fields.windingR = read(text("windingR"), (cell) => readWinding(cell, unit("windingR")));
-  for (const field of TEXTS) {
-    if (!used.has(field)) continue;
-    fields[field] = text(field);
-    const most = field === "notes" ? MOST_NOTES : MOST_CHARACTERS;
-    if (fields[field].length > most) problems.push(`its ${field} has more than ${most} characters`);
-  }
+  for (const field of TEXTS) if (used.has(field)) fields[field] = unguardFormula(text(field));
   readPricesOf();
   if (used.has("retired")) fields.retired = read(text("retired"), readTick) ?? false;
   const quantity = used.has("quantity") ? read(text("quantity"), readQuantity) : null;
 
-  const id = text("id");
+  const id = unguardFormula(text("id"));
   const whole: StockLine = { ...emptyLine(id, kind ?? undefined), ...withoutMark(fields) };
   const madeId = id === "" && problems.length === 0 ? makeId(whole) : "";
   const line = { ...whole, id: id === "" ? madeId : id };
@@ -75,7 +69,7 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
     const said = read(text("kind"), readKind);
     if (said !== null || text("kind") !== "") return said;
     const guess = mapping.defaults.kind ?? (text("type") !== "" && text("value") === "" ? "op-amp" : kindOfValue(text("value"), unit("value")));
-    if (guess === null) problems.push("it is not said what kind of part it is");
+    if (guess === null) problems.push("it is not said what kind of part it is: a column of kinds, or values with their unit, would say it");
     return guess;
   }
 
@@ -85,7 +79,7 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
       fields.value = null;
       // Many a table has no column for it but the one for values.
       const type = text("type") || text("value");
-      fields.type = type === "" ? null : type;
+      fields.type = type === "" ? null : unguardFormula(type);
       return;
     }
     if (used.has("value")) fields.value = read(text("value"), (cell) => readValue(cell, unitFor(cell, wanted), quantityName));
@@ -108,7 +102,15 @@ export function readRow(cells: readonly string[], mapping: ImportMapping): ReadR
       currency = listed?.currency ?? "";
       const found: PriceBreak[] = [...(listed?.prices ?? [])];
       for (const use of breaks) {
-        const money = read((cells[use.column] ?? "").trim(), readMoney);
+        const cell = (cells[use.column] ?? "").trim();
+        // A column of prices may hold all breaks in one cell.
+        if (use.from === 1 && /[:;|]/.test(cell)) {
+          const all = read(cell, readPrices);
+          found.push(...(all?.prices ?? []));
+          if (all !== null && all.currency !== "") currency = all.currency;
+          continue;
+        }
+        const money = read(cell, readMoney);
         if (money === null) continue;
         found.push({ from: use.from, unitCost: money.amount });
         if (money.currency !== "") currency = money.currency;

@@ -64,10 +64,13 @@ function blockRoles(block: Block, band: string | null): BoardRole[] {
   return found;
 }
 
-/** Parts that roles take of each line, both pieces of a pair; of op amps, amplifiers. */
-export function partsByLine(roles: readonly BoardRole[]): ReadonlyMap<string, number> {
+/** Parts that a board's other roles take of each line, both pieces of a pair; of op amps, amplifiers. */
+export function partsElsewhere(board: Board, role: BoardRole): ReadonlyMap<string, number> {
   const counts = new Map<string, number>();
-  for (const { stock, part } of roles) for (const id of [stock, part?.second?.stock ?? null]) if (id !== null) counts.set(id, (counts.get(id) ?? 0) + 1);
+  for (const { name, stock, part } of boardRoles(board)) {
+    if (name === role.name) continue;
+    for (const id of [stock, part?.second?.stock ?? null]) if (id !== null) counts.set(id, (counts.get(id) ?? 0) + 1);
+  }
   return counts;
 }
 

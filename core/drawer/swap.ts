@@ -11,7 +11,7 @@ import { transferColumns } from "../net/transfer.ts";
 import type { ValueOpts } from "../net/values.ts";
 import { candidatesFor, compareText, type Candidate, type CandidateOpts } from "./candidates.ts";
 import { hasFault } from "./place-problems.ts";
-import { boardRoles, filledBlock, filledProject, fillingPatch, onProject, partsByLine, type BoardRole } from "./roles.ts";
+import { filledBlock, filledProject, fillingPatch, onProject, partsElsewhere, type BoardRole } from "./roles.ts";
 import { boardStress, type PartStress, type Problem } from "./stress.ts";
 import type { StockedLine } from "./stock.ts";
 import { TrialBoard } from "./trial.ts";
@@ -71,7 +71,7 @@ const POINTS = 121;
 export function rankSwaps(board: Board, role: BoardRole, lines: readonly StockedLine[], opts: SwapOpts = {}): Swap {
   const values: ValueOpts = { ...(opts.positions ? { positions: opts.positions } : {}), isMeasured: opts.isMeasured ?? false };
   const stress = opts.stress ?? (role.kind === "op-amp" || role.kind === "inductor" ? undefined : boardStress(board, values));
-  const elsewhere = partsByLine(boardRoles(board).filter((one) => one.name !== role.name));
+  const elsewhere = partsElsewhere(board, role);
   const trial = new TrialBoard(board, values);
   const compare = new Comparison(board, role, trial.compiled, values);
   const candidates = candidatesFor(board.project, role, lines, { elsewhere, ...opts, stress }).map((candidate): RankedCandidate => {

@@ -1,5 +1,6 @@
 import { useRef, useState, type FormEvent } from "react";
 import { QUANTITY_OF } from "../../core/drawer/check-line.ts";
+import { nextMark } from "../../core/drawer/piece-mark.ts";
 import type { StockLine, StockPiece } from "../../core/drawer/stock.ts";
 import { formatValue } from "../../core/units.ts";
 import { readPositive } from "../editor/part-text.ts";
@@ -7,12 +8,6 @@ import { reasonOf } from "./drawer-store.ts";
 import { useDrawer } from "./hooks.ts";
 import { percentText } from "./line-text.ts";
 import { TableHead } from "./TableHead.tsx";
-
-/** The mark for the next piece: the number after the largest that is in use. */
-function nextMark(pieces: readonly Pick<StockPiece, "mark">[]): string {
-  const most = Math.max(0, ...pieces.map((piece) => (/^\d+$/.test(piece.mark) ? Number(piece.mark) : 0)));
-  return String(most + 1);
-}
 
 /** The pieces of a line that the user's meter has seen; a value and Enter adds the next. */
 export function PieceList({ line, pieces }: { readonly line: StockLine; readonly pieces: readonly StockPiece[] }) {

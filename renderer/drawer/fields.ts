@@ -1,6 +1,6 @@
 import type { LineFields } from "../../core/contract/drawer-schemas.ts";
 import { emptyLine, type PriceBreak, type StockKind, type StockLine } from "../../core/drawer/stock.ts";
-import { RATING_UNIT } from "../../core/drawer/check-line.ts";
+import { MOST_CHARACTERS, MOST_NOTES, RATING_UNIT } from "../../core/drawer/check-line.ts";
 import { editText } from "../../core/units.ts";
 import { readPositive } from "../editor/part-text.ts";
 import { COLUMNS, readRating, readToleranceField, readValue } from "./columns.ts";
@@ -25,7 +25,7 @@ function only(edit: ReturnType<typeof readValue>): FieldEdit {
 }
 
 function textField(key: "technology" | "package" | "location" | "supplier" | "orderCode" | "notes", label: string, hint?: string): LineField {
-  const most = key === "notes" ? 10_000 : 200;
+  const most = key === "notes" ? MOST_NOTES : MOST_CHARACTERS;
   return {
     key, label: () => label, ...(hint === undefined ? {} : { hint }), appliesTo: () => true, text: (line) => line[key], ...(key === "notes" ? { isLong: true } : {}),
     read: (text) => (text.length > most ? { ok: false, message: `at most ${most} characters` } : { ok: true, fields: { [key]: text.trim() } }),

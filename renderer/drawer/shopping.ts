@@ -1,4 +1,5 @@
 import type { Bill } from "../../core/drawer/bill.ts";
+import { guardFormula } from "../../core/drawer/formula-guard.ts";
 import { moneysText, moneyText } from "./swap-text.ts";
 import { lineName } from "./line-text.ts";
 
@@ -22,6 +23,6 @@ export function shoppingCsv(bill: Pick<Bill, "shopping">): string {
 
 /** A cell as RFC 4180 has it; one that a spreadsheet would take for a formula is kept a text. */
 function cell(text: string): string {
-  const plain = /^[=+\-@\t\r]/.test(text) ? `'${text}` : text;
+  const plain = guardFormula(text);
   return /[",\r\n]/.test(plain) ? `"${plain.replaceAll('"', '""')}"` : plain;
 }

@@ -114,6 +114,12 @@ describe.concurrent("swap", () => {
     expect(existsSync(out)).toBe(false);
   });
 
+  test("says why nothing fits, where nothing does", async () => {
+    const why = async (...args: string[]) => (await bandwright("swap", ...args, "--drawer", drawer)).stderr;
+    expect(await why(VOICE, "--role", "b1k.seriesC", "--units", "5000")).toMatch(/^nothing in the drawer fits: \d+ too few of C-180N-PET: \d+ are free$/m);
+    expect(await why("assets/demo/curlew-pedal.bandwright", "--role", "b100.seriesC", "--window", "1%")).toMatch(/^nothing in the drawer fits: no value within 1 % \(the nearest is C-1U-\w+, 16\.7 % below\)$/m);
+  });
+
   test("refuses what makes no sense", async () => {
     const swap = (...args: string[]) => bandwright("swap", VOICE, "--drawer", drawer, ...args);
     refused(await swap("--role", "b1k.nothing"), 2, /has no part “b1k\.nothing”: it has .*b1k\.seriesC/);

@@ -1,5 +1,5 @@
 /** `stock …` as a program of its own, on drawers in real files. */
-import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { mkdtempSync, readdirSync, readFileSync, rmSync, symlinkSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
@@ -79,7 +79,30 @@ test("a table is taken in by its headers and by what one says of them, and given
   expect(readFileSync(file, "utf8")).toBe(text);
   expect(await stock("export", file)).toMatchObject({ code: 2, stderr: `There is already a file ${file}.\n` });
   expect((await stock("export", file, "--replace")).code).toBe(0);
+  // Never over the drawer itself, under whatever name.
+  symlinkSync(drawer, join(folder, "link.csv"));
+  for (const own of [drawer, join(folder, "link.csv")]) expect(await stock("export", own, "--replace")).toMatchObject({ code: 2, stderr: `${own} is the drawer itself: give the table another name.\n` });
+  expect((await stock("list", "C-1")).stdout).toContain("C-1");
   expect(JSON.parse((await stock("export", "--json")).stdout)).toMatchObject({ lines: [{ id: "C-1", value: 1e-7 }] });
+});
+
+test("single pieces are measured, shown, measured again and forgotten", async () => {
+  await stock("add", "C-1", "--kind", "capacitor", "--value", "100n", "--quantity", "4");
+  expect(await stock("measure", "C-1")).toMatchObject({ code: 0, stdout: "", stderr: "C-1: no piece has been measured\n" });
+  const { stdout } = await stock("measure", "C-1", "99.1n", "0,1017u", "--json");
+  expect(JSON.parse(stdout)).toMatchObject({ step: 2, pieces: [{ mark: "1", value: 9.91e-8, frequency: 1000 }, { mark: "2", value: 1.017e-7, frequency: 1000 }] });
+  expect((await stock("measure", "C-1", "98n", "--mark", "red", "--at", "10k")).stdout).toMatch(/^piece +measured +off +at\n1 +99\.1 nF +−0\.90 % +1 kHz\n2 +101\.7 nF +\+1\.70 % +1 kHz\nred +98 nF +−2\.00 % +10 kHz\n$/);
+  expect((await stock("measure", "C-1", "97n", "--mark", "2", "--at", "DC")).stdout).toMatch(/^2 +97 nF +−3\.00 % +dc$/m);
+  expect((await stock("measure", "C-1", "--remove", "1", "red", "--json")).stdout).toContain('"mark": "2"');
+  expect((await stock("undo")).stdout).toBe("Undo: Remove 2 measured pieces\n");
+  for (const [args, complaint] of [
+    [["C-9", "1n"], "There is no line “C-9”"],
+    [["C-1", "much"], "VALUES: “much” is not understood"],
+    [["C-1", "1n", "2n", "--mark", "x"], "--mark: goes with one value"],
+    [["C-1", "1n", "--at", "0"], "--at: must be a frequency above 0"],
+    [["C-1", "--remove", "7"], "--remove: C-1 has no piece marked 7: it has 1, 2, red"],
+    [["C-1", "1n", "--remove", "7"], "--remove: goes without values"],
+  ] as const) expect(await stock("measure", ...args)).toMatchObject({ code: 2, stdout: "", stderr: expect.stringContaining(complaint) });
 });
 
 describe("what cannot be done", () => {
@@ -91,6 +114,11 @@ describe("what cannot be done", () => {
     [["count", "R-1", "few"], 2, "COUNT: “few” is no number of pieces"],
     [["count", "R-1", "3"], 2, "There is no line “R-1” in the drawer."],
     [["undo"], 2, "there is nothing to undo"],
+    [["undo", "last"], 2, "STEP: “last” is no number of a step"],
+    [["add", "", "--kind", "resistor", "--value", "1k"], 2, "it needs an id"],
+    [["add", "R-1", "--kind", "resistor", "--value", "1k", "--location", "x".repeat(201)], 2, "R-1: its location has more than 200 characters"],
+    [["import", "assets/icons"], 2, "it is a folder"],
+    [["import", "assets/screenshots/board.png"], 2, "this is no text, so it is no table"],
     [["list", "--sort", "colour"], 2, "Allowed choices are"],
     [["list", "--limit", "0"], 2, "whole number above 0"],
     [["add", "R-1"], 2, "required option '--kind <KIND>'"],
@@ -116,7 +144,7 @@ describe("what cannot be done", () => {
   });
 });
 
-test.concurrent.each(["import", "export", "list", "add", "move", "count", "undo"])("%s --help shows an example", async (command) => {
+test.concurrent.each(["import", "export", "list", "add", "move", "count", "measure", "undo"])("%s --help shows an example", async (command) => {
   const { code, stdout } = await bandwright("stock", command, "--help");
   expect(code).toBe(0);
   expect(stdout).toContain(`Example:\n  bandwright stock ${command}`);

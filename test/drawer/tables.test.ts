@@ -48,6 +48,7 @@ describe("an import", () => {
     ["per cent without a sign", "id,value,tolerance\nR-1,4k7,1\nR-2,47R,5\n", { id: "R-1", tolerance: 0.01 }],
     ["quotes, with a comma and a line break in them", 'id,value,notes\n"R-1",4k7,"said ""fine"", then\nleft"\n', { id: "R-1", notes: 'said "fine", then\nleft' }],
     ["signs of currency and breaks in one cell", "id,value,prices\nR-1,4k7,1:$0.10;100:$0.06\n", { prices: [{ from: 1, unitCost: 0.1 }, { from: 100, unitCost: 0.06 }], currency: "USD" }],
+    ["breaks in the one column of prices", "id,value,Price\nR-1,4k7,1:0.10;100:€0.06\n", { prices: [{ from: 1, unitCost: 0.1 }, { from: 100, unitCost: 0.06 }], currency: "EUR" }],
     ["op amps in the column of values", "id,kind,value,package\nU-1,op amp,TL072,DIP-8\n", { id: "U-1", kind: "op-amp", type: "TL072", value: null, package: "DIP-8" }],
     ["letters for tolerances", "id,value,tol\nC-1,100n,K\n", { tolerance: 0.1 }],
     ["unlike tolerances", "id,value,tol\nC-1,100u,-20/+80%\n", { tolerance: 0.8 }],
@@ -115,7 +116,7 @@ describe("an import", () => {
   });
 
   test("takes no guess where a wrong one would go unnoticed: bare numbers may be ohms, picofarads or anything", async () => {
-    expect(await refusal("id,value\nX-1,100\n")).toEqual(["2: it is not said what kind of part it is"]);
+    expect(await refusal("id,value\nX-1,100\n")).toEqual(["2: it is not said what kind of part it is: a column of kinds, or values with their unit, would say it"]);
   });
 
   test("tries everything and keeps nothing in a dry run", async () => {
@@ -153,6 +154,27 @@ describe("an export", () => {
     await importText(drawer, STARTER);
     expect(drawer.info().lines).toBeGreaterThanOrEqual(400);
     expect(exportTable(drawer).text).toBe(STARTER);
+  });
+
+  test("of a version before windings were kept is read as one, op-amp types that are words and all", async () => {
+    const [headers, ...rows] = "id,kind,value,type,tolerance,rating,technology,temperature coefficient,package,location,quantity,prices,currency,supplier,order code,notes,retired\nU-1,op-amp,,Precision,,,,,DIP-8,,3,,,,,,\nL-1,inductor,100m,,10%,,ferrite core,,pot core,coils,2,1:2.4,EUR,,,,yes\n".split("\n");
+    expect(await importText(drawer, [headers, ...rows].join("\n"))).toMatchObject({ added: 2, refused: 0 });
+    expect(drawer.find("U-1")).toMatchObject({ type: "Precision", quantity: 3 });
+    expect(drawer.find("L-1")).toMatchObject({ value: 0.1, windingR: null, retired: true });
+    // What a line has got since stays, since the table says nothing about it.
+    drawer.editLines(["L-1"], { windingR: 38 });
+    await importText(drawer, [headers, ...rows].join("\n"));
+    expect(drawer.find("L-1")).toMatchObject({ windingR: 38 });
+  });
+
+  test("has no cell that a spreadsheet would take for a formula, and gives every text back as it was", async () => {
+    const texts = ["=1+1", "+12 V rail", "-x", "@home", "'=quoted", "''=twice", "'plain", "-", "a=b"];
+    for (const [n, text] of texts.entries()) drawer.addLine(resistor(`${text} ${n}`, { notes: text, location: text, supplier: text }), 1);
+    const { text } = exportTable(drawer);
+    for (const record of text.trim().split("\n").slice(1)) for (const cell of record.split(",")) expect(cell).not.toMatch(/^[=+\-@]./);
+    const other = await openScratch();
+    await importText(other, text);
+    expect(other.allLines()).toEqual(drawer.allLines());
   });
 
   test("taken into an empty drawer gives the same export and the same lines, whatever the lines are", async () => {

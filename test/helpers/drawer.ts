@@ -82,7 +82,7 @@ export function anyLine(): fc.Arbitrary<StockLine> {
       currency: fc.constantFrom("", "EUR", "USD"),
       supplier: TEXT,
       orderCode: TEXT,
-      notes: fc.oneof(TEXT, fc.constantFrom('a "quoted" word', "two\nlines", "semi;colon, comma\ttab", "=1+1")),
+      notes: fc.oneof(TEXT, fc.constantFrom('a "quoted" word', "two\nlines", "semi;colon, comma\ttab", "=1+1", "'=1+1")),
     })
     .map((line) => (line.kind === "inductor" ? line : { ...line, windingR: null }))
     .map((line) => (line.kind === "op-amp" ? { ...line, value: null, type: line.type.trim() || "X1" } : { ...line, type: null }));

@@ -64,6 +64,12 @@ describe("movements", () => {
     expect(() => move("released", 1, "Channel")).toThrow("R-4K7: Channel holds 0 pieces, so 1 cannot be released.");
     expect(() => move("reserved", 1)).toThrow("R-4K7: pieces are held for a project or a build: name it.");
     expect(() => move("used", 1, "", "R-9")).toThrow("There is no line “R-9” in the drawer.");
+    expect(() => move("bought", 1_000_000_000)).toThrow("R-4K7: 1000000010 pieces are more than a line can have (1000000000).");
+    expect(() => move("counted", 1_000_000_001)).toThrow("more than a line can have");
+    expect(() => drawer.addLine(resistor("R-9"), 2 ** 40)).toThrow("more than a line can have");
+    // The screens could not take them.
+    expect(() => move("reserved", 1, "x".repeat(201))).toThrow("R-4K7: the name of what the pieces are for has more than 200 characters.");
+    expect(() => drawer.move([{ line: "R-4K7", kind: "used", count: 1, reference: "", note: "x".repeat(1001) }])).toThrow("R-4K7: the note has more than 1000 characters.");
     expect(amounts()).toEqual([10, 0]);
   });
 

@@ -147,6 +147,12 @@ describe("pieces", () => {
   });
 });
 
+test("a text is no longer than the screens can take", () => {
+  for (const field of ["technology", "package", "location", "supplier", "orderCode"] as const) expect(() => drawer.addLine(resistor("R-1", { [field]: "x".repeat(201) }), 0)).toThrow(/^R-1: its (technology|package|location|supplier|order code) has more than 200 characters$/);
+  expect(() => drawer.addLine(resistor("R-1", { notes: "x".repeat(10_001) }), 0)).toThrow("R-1: its notes have more than 10000 characters");
+  expect(() => drawer.addLine(resistor("R-1", { prices: Array.from({ length: 51 }, (_, n) => ({ from: n + 1, unitCost: 1 })) }), 0)).toThrow("R-1: it has more than 50 prices");
+});
+
 describe("builds", () => {
   beforeEach(() => {
     drawer.addLine(resistor("R-1"), 20);

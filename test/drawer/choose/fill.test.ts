@@ -190,7 +190,7 @@ describe("a board filled from the drawer", () => {
     const board = demo("saltmarsh-voice-channel");
     const reason = (lines: readonly StockedLine[], opts: FillOpts = {}) => fillBoard(board, lines, { only: ["b1k.seriesC"], ...opts }).unplaced[0]?.reason;
     expect(reason([])).toBe("the drawer has no capacitor");
-    expect(reason([lineOf("C", "capacitor", 270e-9)])).toMatch(/no value within 20 %.*nearest is C, 50 % off/);
+    expect(reason([lineOf("C", "capacitor", 270e-9)])).toMatch(/no value within 20 %.*nearest is C, 50 % above\)/);
     expect(reason([lineOf("C", "capacitor", 180e-9, { rating: 10 })])).toMatch(/^C: rated 10 V, but/);
     expect(reason([lineOf("C", "capacitor", 180e-9, { quantity: 3 })], { units: 4 })).toMatch(/1 too few of C: 3 are free/);
     expect(reason([lineOf("C", "capacitor", 180e-9, { currency: "USD" })], { ceiling: { amount: 9, currency: "EUR" } })).toMatch(/no price in EUR/);

@@ -78,6 +78,11 @@ describe("parts for a role, ranked by what they do to the board", () => {
     expect(candidates[0].left).toBe(99);
   });
 
+  it("tries what is sound before what is barred, however near that is", () => {
+    const lines = [lineOf("near", "capacitor", 0.19e-6), ...[1, 2, 3].map((n) => lineOf(`weak${n}`, "capacitor", 0.18e-6, { rating: 10 }))];
+    expect(rank(voice, "b1k.seriesC", lines, { most: 2 }).candidates.map((c) => c.lines[0].id)).toEqual(["near", "weak1"]);
+  });
+
   it("counts stock for every unit, and prices at their quantity", () => {
     const lines = [lineOf("few", "capacitor", 0.18e-6, { quantity: 4 }), lineOf("many", "capacitor", 0.18e-6, { quantity: 30, reserved: 5, prices: [{ from: 1, unitCost: 0.2 }, { from: 10, unitCost: 0.15 }] })];
     const { candidates } = rank(voice, "b1k.seriesC", lines, { units: 10 });
