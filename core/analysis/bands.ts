@@ -31,7 +31,7 @@ export interface BandFigures {
 export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = {}): BandFigures[] {
   const bands = board.chain.flatMap((item) => item.bands.map((band) => ({ band, stage: item.block, laws: lawResults(band, item.block, opts) })));
   if (bands.length === 0) return [];
-  const scan = scanOf(board, bands.flatMap(({ laws }) => [laws.f0, laws.fc]), opts);
+  const scan = scanOf(board, bands.map(({ laws }) => laws), opts);
   return bands.map(({ band, laws }, index): BandFigures => {
     const isolatedBoost = 20 * Math.log10(laws.G);
     const figure = (position: 0 | 1): BandPeak => endFigure(scan, index, band, laws, position);
@@ -55,7 +55,7 @@ export function bandFigures(board: Board, opts: Pick<ValueOpts, "isMeasured"> = 
 export function endFigure(scan: Scan, index: number, band: Block, laws: Readonly<Record<string, number>>, position: 0 | 1): BandPeak {
   const { shape } = BLOCKS[band.kind];
   if (shape === "resonance") return scan.resonance(index, position, laws.f0);
-  const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, 20 * Math.log10(laws.G), laws.fc);
+  const { peak, frequency, q, lower, upper } = scan.shelf(index, position, shape === "low-shelf" ? 1 : -1, laws.fc);
   return { peak, frequency, q, lower, upper };
 }
 

@@ -59,7 +59,7 @@ export function lossAccount(board: Board, id: string, opts: Pick<ValueOpts, "isM
   if (index < 0) throw new RangeError(`there is no band “${id}” on a bus of this board`);
   const { band, laws } = bands[index];
   const { shape } = BLOCKS[band.kind];
-  const scan = scanOf(board, bands.flatMap(({ laws: l }) => [l.f0, l.fc]), opts);
+  const scan = scanOf(board, bands.map(({ laws: l }) => l), opts);
   const isolatedBoost = 20 * Math.log10(laws.G);
   const others = bands.map((_, i) => i).filter((i) => i !== index);
   const setOthers = (t: number): void => {
@@ -70,7 +70,7 @@ export function lossAccount(board: Board, id: string, opts: Pick<ValueOpts, "isM
     return { frequency: frequency ?? laws.f0, gain };
   };
   const plateau = (): Reading => {
-    const { plateau: frequency, peak: gain } = scan.shelf(index, 1, shape === "low-shelf" ? 1 : -1, isolatedBoost, laws.fc);
+    const { plateau: frequency, peak: gain } = scan.shelf(index, 1, shape === "low-shelf" ? 1 : -1, laws.fc);
     return { frequency, gain };
   };
   const finished = shape === "resonance" ? peak() : plateau();

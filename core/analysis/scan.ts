@@ -2,7 +2,7 @@ import type { Board } from "../net/board.ts";
 import { compileBoard, Sweep, type CompiledBoard } from "../net/star.ts";
 import { transferColumns, type TransferColumns } from "../net/transfer.ts";
 import type { ValueOpts } from "../net/values.ts";
-import { findRoot } from "../num/roots.ts";
+import { findLeast, findRoot } from "../num/roots.ts";
 import { angular, decibels, logFrequencies } from "./response.ts";
 
 /** What one end of a slider's travel does in circuit, the other sliders centred. */
@@ -20,13 +20,24 @@ export interface BandPeak {
 
 const HALF_POWER_DB = 10 * Math.log10(2);
 const PER_OCTAVE = 24;
+/** How far below its best a board's centred response may lie where a plateau is read, dB. */
+const PASSBAND_DB = 6;
+/** How much of its largest effect a slider must have on its plateau. */
+const SETTLED = 0.9;
 /** On ln f. */
 const TOLERANCE = 1e-12;
 
-/** A scan wide enough for a board's bands. @param characteristic frequencies of the legs, Hz; those that are not numbers are passed over */
-export function scanOf(board: Board, characteristic: readonly (number | undefined)[], opts: ValueOpts): Scan {
-  const known = characteristic.filter((f): f is number => f !== undefined && Number.isFinite(f) && f > 0);
-  return new Scan(compileBoard(board, opts), Math.min(1, ...known.map((f) => f / 32)), Math.max(1e6, ...known.map((f) => f * 32)));
+/** How far a scan reaches on either side of a resonance; of a shelf's corner, where what is left of the way to the plateau goes with the square of the distance. */
+const REACH = { resonance: 32, corner: 1024 };
+
+/** A scan wide enough for a board's bands. @param laws results of each band's laws */
+export function scanOf(board: Board, laws: readonly Readonly<Record<string, number>>[], opts: ValueOpts): Scan {
+  const spans = laws.flatMap(({ f0, fc }) => [
+    { at: f0, reach: REACH.resonance },
+    { at: fc, reach: REACH.corner },
+  ]);
+  const known = spans.filter(({ at }) => at !== undefined && Number.isFinite(at) && at > 0);
+  return new Scan(compileBoard(board, opts), Math.min(1, ...known.map(({ at, reach }) => at / reach)), Math.max(1e6, ...known.map(({ at, reach }) => at * reach)));
 }
 
 /** Looks for peaks, edges and corners of one board: a coarse scan for brackets, a retuned single point for the roots. */
@@ -122,28 +133,32 @@ export class Scan {
 
   /**
    * Shelves and levels. The effect of the slider is the response less the response with all sliders centred, which takes
-   * coupling capacitors and op amps out of the question where the band works. The plateau is where the response changes
-   * least over two octaves among the frequencies where the effect is strong; the corner is where the effect is half of
-   * that on the plateau, in dB.
+   * coupling capacitors and op amps out of the question where the band works. The plateau is where the response has a
+   * maximum or minimum, or failing that changes least, among the frequencies where the effect is at least nine tenths of
+   * its most and the centred board still lets the signal through (within 6 dB of its best); where there are several, the
+   * one with the flattest two octaves about it. The corner is where the effect is half of that on the plateau, in dB.
    * `plateau` is the frequency where the plateau was read, Hz.
    * @param corner of the leg alone, Hz; undefined for a level, which has none
    * @param side on which the corner lies: 1 above (low shelf), −1 below
    */
-  shelf(band: number, position: 0 | 1, side: 1 | -1, isolatedBoost: number, corner: number | undefined): BandPeak & { readonly plateau: number } {
+  shelf(band: number, position: 0 | 1, side: 1 | -1, corner: number | undefined): BandPeak & { readonly plateau: number } {
     if (!this.#isCentredFresh) this.#sweepGain(this.#centred);
     this.#isCentredFresh = true;
     return this.#with(band, position, () => {
       const sign = position === 1 ? 1 : -1;
-      const effect = this.#gain.map((gain, i) => gain - this.#centred[i]);
+      const effect = this.#gain.map((gain, i) => sign * (gain - this.#centred[i]));
       const f = this.#frequency;
+      const passes = Math.max(...this.#centred) - PASSBAND_DB;
       // Past the leg's own corner, where its capacitor or inductance no longer holds the leg back: a neighbour's skirts may be flatter still.
-      const isPast = (i: number): boolean => corner === undefined || (side === 1 ? f[i] < corner : f[i] > corner);
-      const settled = this.#flattest((i) => isPast(i) && sign * effect[i] > isolatedBoost / 4);
-      const at = settled < 0 ? argMax(effect, sign) : settled;
+      const isFit = (i: number): boolean => this.#centred[i] >= passes && (corner === undefined || (side === 1 ? f[i] < corner : f[i] > corner));
+      const most = effect.reduce((largest, e, i) => (isFit(i) ? Math.max(largest, e) : largest), 0);
+      const settled = most > 0 ? this.#flattest((i) => isFit(i) && effect[i] >= SETTLED * most) : -1;
+      const at = settled < 0 ? argMax(effect) : settled;
+      const lnPlateau = settled < 0 ? Math.log(f[at]) : this.#level(at);
       const centred = new Float64Array(this.#positions.length).fill(0.5);
-      const effectAt = (lnF: number): number => this.#gainAt(lnF) - this.#gainAt(lnF, centred);
-      const frequency = settled < 0 ? null : this.#crossing(effect, effect[at] / 2, sign, at, side, effectAt);
-      return { peak: this.#gain[at], frequency, q: null, lower: null, upper: null, plateau: this.#frequency[at] };
+      const effectAt = (lnF: number): number => sign * (this.#gainAt(lnF) - this.#gainAt(lnF, centred));
+      const frequency = settled < 0 ? null : this.#crossing(effect, effectAt(lnPlateau) / 2, 1, at, side, effectAt);
+      return { peak: this.#gainAt(lnPlateau), frequency, q: null, lower: null, upper: null, plateau: Math.exp(lnPlateau) };
     });
   }
 
@@ -160,6 +175,19 @@ export class Scan {
       if (variation < least) [best, least] = [i, variation];
     }
     return best;
+  }
+
+  /** Where the response is level within half an octave of a scan point, or failing that where it changes least, as ln f. */
+  #level(at: number): number {
+    const lnF = (index: number): number => Math.log(this.#frequency[index]);
+    const slope = (x: number): number => this.#slopeAt(x);
+    const half = Math.ceil(this.#perOctave / 2);
+    const g = this.#gain;
+    // The nearest scan point that stands above or below both its neighbours.
+    for (let away = 0; away <= half; away++) {
+      for (const i of [at - away, at + away]) if (i > 0 && i < g.length - 1 && (g[i] - g[i - 1]) * (g[i] - g[i + 1]) > 0) return this.#top(i);
+    }
+    return findLeast((x) => Math.abs(slope(x)), lnF(at - half), lnF(at + half), 1e-6);
   }
 
   /** Runs a search with one slider at an end, then centres it again. */
@@ -204,8 +232,8 @@ function bracketed(f: (lnF: number) => number, a: number, b: number, fa: number,
   return findRoot(f, a, b, TOLERANCE, fa, fb);
 }
 
-function argMax(column: Float64Array, sign: number): number {
+function argMax(column: Float64Array): number {
   let best = 0;
-  for (let i = 1; i < column.length; i++) if (sign * column[i] > sign * column[best]) best = i;
+  for (let i = 1; i < column.length; i++) if (column[i] > column[best]) best = i;
   return best;
 }

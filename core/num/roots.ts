@@ -54,3 +54,26 @@ export function findRoot(f: (x: number) => number, a: number, b: number, toleran
   }
   return b;
 }
+
+/**
+ * Where f is least between a and b, by golden section (J. Kiefer, "Sequential Minimax Search for a Maximum", Proc. Amer.
+ * Math. Soc. 4, 1953): the least of all where f has one valley there, else one of several.
+ * @param tolerance absolute, on the place
+ */
+export function findLeast(f: (x: number) => number, a: number, b: number, tolerance: number): number {
+  const golden = (Math.sqrt(5) - 1) / 2;
+  let [left, right] = [b - golden * (b - a), a + golden * (b - a)];
+  let [fLeft, fRight] = [f(left), f(right)];
+  while (b - a > tolerance) {
+    if (fLeft <= fRight) {
+      [b, right, fRight] = [right, left, fLeft];
+      left = b - golden * (b - a);
+      fLeft = f(left);
+    } else {
+      [a, left, fLeft] = [left, right, fRight];
+      right = a + golden * (b - a);
+      fRight = f(right);
+    }
+  }
+  return (a + b) / 2;
+}

@@ -1,6 +1,6 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { findRoot } from "../../core/num/roots.ts";
+import { findLeast, findRoot } from "../../core/num/roots.ts";
 import { runs } from "../fixtures/runs.ts";
 
 describe("the root of a function that changes sign", () => {
@@ -50,4 +50,10 @@ describe("the root of a function that changes sign", () => {
     expect(() => findRoot((x) => x * x + 1, -1, 1, 1e-9)).toThrow(RangeError);
     expect(() => findRoot((x) => -x * x - 1, -1, 1, 1e-9)).toThrow(/no sign change between -1 and 1/);
   });
+});
+
+test("findLeast finds the bottom of a valley, wherever it lies between the ends", () => {
+  for (const bottom of [-2, -1.99, -0.3, 0, 1.7, 3]) {
+    for (const valley of [(x: number) => (x - bottom) ** 2, (x: number) => Math.abs(x - bottom), (x: number) => Math.cosh(x - bottom)]) expect(findLeast(valley, -2, 3, 1e-7)).toBeCloseTo(bottom, 6);
+  }
 });
