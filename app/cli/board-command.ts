@@ -1,7 +1,7 @@
 import { readFile } from "node:fs/promises";
 import { Command } from "commander";
 import { FaultError, faultText } from "../../core/errors.ts";
-import { instabilityText } from "../../core/analysis/summary.ts";
+import { instability, troubleText } from "../../core/analysis/summary.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
@@ -20,6 +20,8 @@ export interface LoadedBoard {
   readonly compiled: CompiledBoard;
   /** Slider positions and kind of values of this run, as every analysis takes them. */
   readonly run: Required<Pick<ValueOpts, "positions" | "isMeasured">>;
+  /** In which loop the board oscillates in this run, so that no figure of it means anything; undefined where it is at peace or nobody can tell. */
+  readonly unstable: string | undefined;
 }
 
 /** A command on a project file, with the slider options that everything takes that computes a response. */
@@ -53,9 +55,9 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
     const board = resolveBoard(project);
     for (const warning of [...warnings, ...board.warnings]) process.stderr.write(`${file}: warning: ${faultText(warning)}\n`);
     const run = { positions: sliderPositions(board, opts), isMeasured: opts.measured === true };
-    const trouble = instabilityText(board, run);
-    if (trouble !== null) process.stderr.write(`${file}: ${trouble}\n`);
-    return { board, run, compiled: compileBoard(board, run) };
+    const trouble = instability(board, run);
+    if (trouble) process.stderr.write(`${file}: ${troubleText(trouble)}\n`);
+    return { board, run, compiled: compileBoard(board, run), unstable: trouble?.is === "unstable" ? trouble.text : undefined };
   } catch (error) {
     if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));
     throw error;
@@ -97,6 +99,14 @@ export function readFrequency(text: string, option: string): number {
   const parsed = parseValue(text, "frequency");
   if (!parsed.ok || parsed.value <= 0) throw new CommandFailure(`${option}: must be a frequency above 0 in Hz, such as 20 or 1k, got “${text}”`);
   return parsed.value;
+}
+
+/** Stands after a figure of a board that oscillates. */
+export const MEANINGLESS = "?";
+
+/** The key that marks a JSON result of a board that oscillates; none where it is at peace. */
+export function unstableKey(unstable: string | undefined): { readonly unstable?: string } {
+  return unstable === undefined ? {} : { unstable };
 }
 
 /** JSON for other programs: stable, indented, and without NaN or Infinity. @throws CommandFailure (exit 1) where a number is not finite */

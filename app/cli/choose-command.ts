@@ -53,6 +53,18 @@ export async function writeProject(path: string, project: Project): Promise<void
   }
 }
 
+/** Says on a terminal what is under way, for as long as it is. */
+export function underWay<T>(what: string, work: () => T): T {
+  if (!process.stderr.isTTY) return work();
+  const text = `${what} …`;
+  process.stderr.write(text);
+  try {
+    return work();
+  } finally {
+    process.stderr.write(`\r${" ".repeat(text.length)}\r`);
+  }
+}
+
 /** A whole number above 0. @throws CommandFailure */
 export function readCount(text: string, option: string, most = 100_000): number {
   const count = Number(text);

@@ -1,6 +1,6 @@
 import type { Command } from "commander";
 import { blockReportText, boardReport, blockIds } from "../../core/analysis/equation-report.ts";
-import { analysisCommand, loadBoard, printJson, readFrequency, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, printJson, readFrequency, unstableKey, type SliderOpts } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
 
 interface EquationsOpts extends SliderOpts {
@@ -19,11 +19,11 @@ export function equationsCommand(): Command {
     .option("--json", "as JSON")
     .action(async (file: string, opts: EquationsOpts) => {
       const at = opts.at === undefined ? undefined : readFrequency(opts.at, "--at");
-      const { board, run } = await loadBoard(file, opts);
+      const { board, run, unstable } = await loadBoard(file, opts);
       const ids = blockIds(board);
       if (opts.block !== undefined && !ids.includes(opts.block)) throw new CommandFailure(`--block: there is no block “${opts.block}” with a part in this board: it has ${ids.join(", ")}`);
       const report = boardReport(board, { ...run, style: opts.tex ? "tex" : "text", frequency: at, blocks: opts.block === undefined ? ids : [opts.block] });
-      if (opts.json) printJson(report);
-      else process.stdout.write(`${report.blocks.map((block) => blockReportText(block, opts.tex ? "tex" : "text")).join("\n\n")}\n`);
+      if (opts.json) printJson({ ...report, ...unstableKey(unstable) });
+      else process.stdout.write(`${report.blocks.map((block) => blockReportText(block, opts.tex ? "tex" : "text")).join("\n\n")}\n${unstable === undefined ? "" : `\n${opts.tex ? "% " : ""}What is worked out above means nothing: ${unstable}\n`}`);
     });
 }

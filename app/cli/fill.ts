@@ -2,7 +2,7 @@ import type { Command } from "commander";
 import { readCeiling } from "../../core/drawer/ceiling.ts";
 import { fillBoard, type FillResult } from "../../core/drawer/fill.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { linesFor, linesText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, sumText, writeProject } from "./choose-command.ts";
+import { linesFor, linesText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, sumText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 import { read, withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
 
@@ -31,7 +31,7 @@ export function fillCommand(): Command {
     await requireOutput(opts.output);
     const lines = await withDrawer(opts, "has to be there", (store) => linesFor(store, board.project));
     const ceiling = opts.ceiling === undefined ? undefined : read("--ceiling", opts.ceiling, (text) => readCeiling(text, lines));
-    const result = fillBoard(board, lines, { positions, units, window, keep: opts.keep === true, ...(ceiling === undefined ? {} : { ceiling }) });
+    const result = underWay(`filling the board from ${lines.length} lines`, () => fillBoard(board, lines, { positions, units, window, keep: opts.keep === true, ...(ceiling === undefined ? {} : { ceiling }) }));
     if (!result.isWithinCeiling) throw new CommandFailure(`the cheapest parts that fit come to ${sumText(result.cost)} a unit: more than the ceiling. Nothing was written`, EXIT.failed);
     if (result.placed.length === 0) throw new CommandFailure(`${unplacedText(result)}\nnothing of the drawer goes into this board. Nothing was written`, EXIT.failed);
     await writeProject(opts.output, result.project);

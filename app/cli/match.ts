@@ -1,7 +1,7 @@
 import type { Command } from "commander";
 import { matchPieces, type MatchResult } from "../../core/drawer/match.ts";
 import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { OUTPUT_HELP, percentText, readCount, requireOutput, stockText, writeProject } from "./choose-command.ts";
+import { OUTPUT_HELP, percentText, readCount, requireOutput, stockText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
 
@@ -25,7 +25,7 @@ export function matchCommand(): Command {
     const { board, run: { positions } } = await loadBoard(file, opts);
     await requireOutput(opts.output);
     const pieces = await withDrawer(opts, "has to be there", (store) => store.allPieces());
-    const result = matchPieces(board, pieces, { positions, deals, seed });
+    const result = underWay(`dealing ${pieces.length} pieces`, () => matchPieces(board, pieces, { positions, deals, seed }));
     if (result.matched.length === 0) throw new CommandFailure("no part of the board names a stock line of which pieces have been measured. Nothing was written", EXIT.failed);
     await writeProject(opts.output, result.project);
     if (opts.json) printJson(matchJson(result));

@@ -1,18 +1,18 @@
 import type { Command } from "commander";
 import { polesAndZeros, rootFigures, type Root } from "../../core/analysis/poles.ts";
 import { formatFigure } from "../../core/units.ts";
-import { analysisCommand, finiteJson, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, finiteJson, loadBoard, printJson, printTable, unstableKey, type SliderOpts } from "./board-command.ts";
 
 /** `poles FILE`: poles and zeros of the whole board. */
 export function polesCommand(): Command {
   return analysisCommand("poles", "poles and zeros of the whole board, inductors and op amps included", "poles channel.bandwright --set b1k=1 --json")
     .option("--json", "as JSON: poles and zeros as { re, im } in rad/s")
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
-      const { board, run } = await loadBoard(file, opts);
+      const { board, run, unstable } = await loadBoard(file, opts);
       const { poles, zeros, reproducedWithin } = polesAndZeros(board, run);
       if (opts.json) {
         const root = ({ re, im }: Root): Root => ({ re, im });
-        printJson({ poles: poles.map(root), zeros: zeros.map(root) });
+        printJson({ poles: poles.map(root), zeros: zeros.map(root), ...unstableKey(unstable) });
         return;
       }
       finiteJson({ poles, zeros, reproducedWithin });

@@ -2,7 +2,7 @@ import type { Command } from "commander";
 import { Option } from "commander";
 import { stringify } from "csv-stringify/sync";
 import { logFrequencies, respond } from "../../core/analysis/response.ts";
-import { analysisCommand, loadBoard, printJson, printTable, readFrequency, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, MEANINGLESS, printJson, printTable, readFrequency, unstableKey, type SliderOpts } from "./board-command.ts";
 import { CommandFailure } from "./failure.ts";
 
 interface RespondOpts extends SliderOpts {
@@ -27,23 +27,26 @@ export function respondCommand(): Command {
       const [from, to, points] = [readFrequency(opts.from, "--from"), readFrequency(opts.to, "--to"), Number(opts.points)];
       if (from >= to) throw new CommandFailure(`--from ${opts.from} must lie below --to ${opts.to}`);
       if (!Number.isInteger(points) || points < 2 || points > MOST_POINTS) throw new CommandFailure(`--points: must be a whole number from 2 to ${MOST_POINTS}, got “${opts.points}”`);
-      const { compiled } = await loadBoard(file, opts);
+      const { compiled, unstable } = await loadBoard(file, opts);
       const response = respond(compiled, logFrequencies(from, to, points));
       const { frequency, gain, phase, groupDelay } = response;
       const bad = gain.findIndex((g, i) => !Number.isFinite(g) || !Number.isFinite(phase[i]) || !Number.isFinite(groupDelay[i]));
       if (bad >= 0) throw new CommandFailure(`there is no finite response at ${frequency[bad].toPrecision(4)} Hz: some value of the board is out of any practical range`, 1);
       if (opts.json) {
-        printJson({ frequency: [...frequency], gain: [...gain], phase: [...phase], groupDelay: [...groupDelay] });
+        printJson({ frequency: [...frequency], gain: [...gain], phase: [...phase], groupDelay: [...groupDelay], ...unstableKey(unstable) });
         return;
       }
       if (opts.csv) {
-        const rows = Array.from(frequency, (f, i) => [f, gain[i], phase[i], groupDelay[i]]);
-        process.stdout.write(stringify(rows, { header: true, columns: ["frequency", "gain", "phase", "groupDelay"] }));
+        const mark = unstable === undefined ? [] : ["meaningless"];
+        const rows = Array.from(frequency, (f, i) => [f, gain[i], phase[i], groupDelay[i], ...mark]);
+        process.stdout.write(stringify(rows, { header: true, columns: ["frequency", "gain", "phase", "groupDelay", ...(unstable === undefined ? [] : ["unstable"])] }));
         return;
       }
+      const mark = unstable === undefined ? "" : MEANINGLESS;
       printTable(
         ["Hz", "dB", "degrees", "delay µs"],
-        Array.from(frequency, (f, i) => [f.toPrecision(5), gain[i].toFixed(3), phase[i].toFixed(2), (groupDelay[i] * 1e6).toFixed(2)]),
+        Array.from(frequency, (f, i) => [f.toPrecision(5), `${gain[i].toFixed(3)}${mark}`, `${phase[i].toFixed(2)}${mark}`, `${(groupDelay[i] * 1e6).toFixed(2)}${mark}`]),
       );
+      if (unstable !== undefined) process.stdout.write(`\n${MEANINGLESS} means nothing: ${unstable}\n`);
     });
 }

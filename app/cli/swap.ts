@@ -6,7 +6,7 @@ import { whyNothing } from "../../core/drawer/why-nothing.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import { formatDb } from "../../core/units.ts";
 import { analysisCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
-import { linesFor, linesText, moneyText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, writeProject } from "./choose-command.ts";
+import { linesFor, linesText, moneyText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure } from "./failure.ts";
 import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
 
@@ -43,7 +43,7 @@ export function swapCommand(): Command {
     if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
     if (opts.output !== undefined) await requireOutput(opts.output);
     const lines = await withDrawer(opts, "has to be there", (store) => linesFor(store, board.project));
-    const swap = rankSwaps(board, role, lines, { ...run, units, window, most, pairs: opts.pairs === true });
+    const swap = underWay(`trying parts of ${lines.length} lines`, () => rankSwaps(board, role, lines, { ...run, units, window, most, pairs: opts.pairs === true }));
     const taken = take === undefined ? undefined : swap.candidates[take - 1];
     if (take !== undefined && !taken) throw new CommandFailure(`--take: the list has ${swap.candidates.length} entries, so there is no number ${take}`);
     if (taken && hasFault(taken)) throw new CommandFailure(`--take: number ${take}, ${linesText(taken)}, does not do: ${taken.problems.filter((p) => p.level === "fault").map((p) => p.message).join("; ")}`);

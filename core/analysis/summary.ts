@@ -6,6 +6,7 @@ import { bandFigures } from "./bands.ts";
 import { unstablePoles, unstableText } from "./poles.ts";
 import { logFrequencies, ResponseSweep } from "./response.ts";
 import { loopMargins, smallestMargin, type LoopMargin } from "./stability.ts";
+import { unstableEnds, type UnstableEnd } from "./unstable-ends.ts";
 
 export interface Flatness {
   /** Largest departure from the gain at 1 kHz, dB, over the range. */
@@ -56,22 +57,29 @@ export function instability(board: Board, opts: ValueOpts = {}): Trouble | null 
   });
 }
 
-/** Says that a board oscillates, or that nobody can tell; null where it is at peace. */
-export function instabilityText(board: Board, opts: ValueOpts = {}): string | null {
-  const trouble = instability(board, opts);
-  return trouble?.is === "unknown" ? unknownText(trouble) : (trouble?.text ?? null);
+export function troubleText({ is, text }: Trouble): string {
+  return is === "unstable" ? text : `whether the board oscillates is not known: ${text}`;
 }
 
-function unknownText({ text }: Trouble): string {
-  return `whether the board oscillates is not known: ${text}`;
+/** The slider ends at which a board oscillates (see `unstableEnds`); none where that cannot be told. */
+export function judgedEnds(board: Board, opts: ValueOpts = {}): readonly UnstableEnd[] {
+  const ends = judged(board, opts, () => unstableEnds(board, opts));
+  return "is" in ends ? [] : ends;
 }
 
-/** `smallest phase margin 57° (b6k3)`, or that the board is unstable. */
+/** `smallest phase margin 57° (b6k3)`, with the slider ends at which it oscillates, or that it oscillates as it stands. */
 export function stabilityText(board: Board, opts: ValueOpts = {}): string {
-  const trouble = instabilityText(board, opts);
-  if (trouble !== null) return trouble;
+  const trouble = instability(board, opts);
+  if (trouble) return troubleText(trouble);
   const margins = judged(board, opts, () => marginText(loopMargins(board, opts)));
-  return typeof margins === "string" ? margins : unknownText(margins);
+  if (typeof margins !== "string") return troubleText(margins);
+  const ends = judgedEnds(board, opts);
+  return ends.length === 0 ? margins : `${margins}; ${endsText(ends)}`;
+}
+
+/** `unstable with b1 at full boost`. */
+export function endsText(ends: readonly UnstableEnd[]): string {
+  return `unstable with ${ends.map(({ id, end }) => `${id} at full ${end}`).join(", ")}`;
 }
 
 function marginText(margins: readonly LoopMargin[]): string {

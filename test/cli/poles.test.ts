@@ -104,12 +104,37 @@ describe.concurrent("stability", () => {
     expect(stdout.trimEnd().split("\n")).toHaveLength(1);
   });
 
-  test.each([["respond", "--json"], ["bands", "--json"], ["poles", "--json"], ["equations", "--json"]])("%s warns of it on stderr, keeps stdout clean and exits 0", async (...args) => {
+  test.each([["respond", "--json"], ["bands", "--json"], ["poles", "--json"], ["equations", "--json"]])("%s %s warns of it on stderr, marks the result and exits 0", async (...args) => {
     const { code, stdout, stderr } = await bandwright(args[0], oscillating, args[1]);
     expect(code).toBe(0);
     expect(stderr.trimEnd().split("\n")).toEqual([expect.stringMatching(/oscillating\.bandwright: unstable: .*“eq”/)]);
-    expect(() => void JSON.parse(stdout)).not.toThrow();
+    const result = JSON.parse(stdout) as { readonly unstable?: string; readonly bands?: readonly { readonly boost: object; readonly cut: object }[] };
+    expect(result.unstable).toMatch(/right half plane.*“eq”/);
+    for (const band of result.bands ?? []) expect(band).toMatchObject({ boost: { unstable: true }, cut: { unstable: true } });
     if (args[0] === "poles") expect((JSON.parse(stdout) as PolesJson).poles.filter((p) => p.re > 0)).toHaveLength(2);
+  });
+
+  test("every figure for people is marked, and so is every row of the CSV", async () => {
+    const respond = await bandwright("respond", oscillating, "--points", "3");
+    const rows = respond.stdout.split("\n");
+    for (const row of rows.slice(1, 4)) expect(row.trim()).toMatch(/^\S+( +\S+\?){3}$/);
+    expect(respond.stdout).toMatch(/\? means nothing: unstable: .*“eq”/);
+    const csv = await bandwright("respond", oscillating, "--points", "3", "--csv");
+    expect(csv.stdout.trimEnd().split("\n")).toEqual(["frequency,gain,phase,groupDelay,unstable", ...Array<unknown>(3).fill(expect.stringMatching(/,meaningless$/))]);
+    const bands = await bandwright("bands", oscillating);
+    expect(bands.stdout).toMatch(/^hi .*\d\?  .*\d\?$/m);
+    const equations = await bandwright("equations", oscillating, "--block", "hi");
+    expect(equations.stdout).toMatch(/means nothing: unstable: .*“eq”/);
+  });
+
+  test("a slider end that oscillates is told of, and only what is read there is marked", async () => {
+    const check = await bandwright("check", oscillating, "--all", "0.5");
+    expect(check.stdout).toMatch(/smallest phase margin \d+° \(eq\); unstable with hi at full boost\n$/);
+    const bands = await bandwright("bands", oscillating, "--all", "0.5", "--json");
+    expect(bands.stderr).toContain("unstable with hi at full boost");
+    const [hi] = (JSON.parse(bands.stdout) as { readonly bands: readonly Readonly<Record<"boost" | "cut", object>>[] }).bands;
+    expect(hi.boost).toHaveProperty("unstable", true);
+    expect(hi.cut).not.toHaveProperty("unstable");
   });
 
   test("with the slider where the board is at peace there is nothing to say", async () => {

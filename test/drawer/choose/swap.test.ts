@@ -1,7 +1,7 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, it } from "vitest";
 import { bandFigures } from "../../../core/analysis/bands.ts";
-import { instabilityText } from "../../../core/analysis/summary.ts";
+import { instability, troubleText } from "../../../core/analysis/summary.ts";
 import { logFrequencies, ResponseSweep } from "../../../core/analysis/response.ts";
 import { hasFault } from "../../../core/drawer/place-problems.ts";
 import { buildBill } from "../../../core/drawer/bill.ts";
@@ -160,7 +160,7 @@ describe("parts for a role, ranked by what they do to the board", () => {
     expect(problems(4)).toEqual([]);
     const [only] = problems(110);
     expect(only).toMatchObject({ level: "caution", about: "model", message: expect.stringMatching(/^whether the board oscillates with it is not known: it has \d+ nodes, and more than 320 would take too long$/) });
-    expect(instabilityText(wide(110))).toBe(only.message.replace(" with it", ""));
+    expect(troubleText(instability(wide(110))!)).toBe(only.message.replace(" with it", ""));
   });
 
   it("holds polarised capacitors to the voltage that keeps them the right way round", () => {
@@ -179,6 +179,11 @@ describe("parts for a role, ranked by what they do to the board", () => {
     expect(rank(voice, "b63.seriesC", [lineOf("np", "capacitor", 3.3e-6, { technology: "bipolar electrolytic", rating: 16 })]).candidates[0].problems).toEqual([]);
     // 4.5 V on a 4 V capacitor.
     expect(rank(pedal, "reference.bypassC", [lineOf("low", "capacitor", 47e-6, { technology: "electrolytic", rating: 4 })]).candidates[0].problems[0]).toMatchObject({ level: "fault", about: "rating" });
+  });
+
+  it("has nothing to compare with where the board has no finite response", () => {
+    const lost = resolveBoard(filledProject(voice.project, [{ role: findRole(voice, "b1k.seriesC")!, filling: { part: { value: 1e300 } } }]));
+    for (const work of [() => rank(lost, "b1k.seriesR", fullDrawer()), () => fillBoard(lost, fullDrawer())]) expect(work).toThrow("there is no finite response to compare with: some value of the board is out of any practical range");
   });
 
   it("bars a resistor that would burn", () => {
