@@ -36,17 +36,21 @@ async function start(editor: Editor, ui: Ui): Promise<Shell> {
   host.on("project.openRequested", ({ path }) => void files.openPath(path));
   const sheetRef: { current: SheetHandle | null } = { current: null };
   await files.launch();
+  const analyst = createAnalyst(editor, () => new Worker(new URL("./worker/worker.ts", import.meta.url), { type: "module" }));
   const context: ActionContext = {
     editor,
     ui,
     files,
     drawer: createDrawer(host, ui),
     sheet: () => sheetRef.current,
+    isVoid: (id, end) => {
+      const { stability, ends } = analyst.store.getState();
+      return (stability?.value.unstable.length ?? 0) > 0 || (ends?.value.some((unstable) => unstable.id === id && unstable.end === end) ?? false);
+    },
     clipboard: { bands: [] },
     isMac: capabilities.platform === "darwin",
     isDesktop: capabilities.fileDialogs === "native",
   };
-  const analyst = createAnalyst(editor, () => new Worker(new URL("./worker/worker.ts", import.meta.url), { type: "module" }));
   return { context, sheetRef, host, analyst, version: capabilities.version };
 }
 

@@ -148,9 +148,12 @@ function slotsOf(rails: Rails, wanted: (readonly (number | null)[])[], frame: Fr
   });
 }
 
+/** Pixels that slots keep to the ends of the ruling: names are wider than narrow slots, and values stand at their right. */
+const END_ROOM = 14;
+
 /** Where bands may stand: the whole range, also what is scrolled out of sight. */
 function extent(frame: Frame): { left: number; right: number } {
-  return { left: pixelOf(frame.ruling, frame.limits.from) + 4, right: pixelOf(frame.ruling, frame.limits.to) - 4 };
+  return { left: pixelOf(frame.ruling, frame.limits.from) + END_ROOM, right: pixelOf(frame.ruling, frame.limits.to) - END_ROOM };
 }
 
 interface RailOpts {

@@ -254,6 +254,9 @@ describe("an unstable board", () => {
     await settled();
     // The band itself carries the mark on the sheet.
     expect(await session.sheet.knob("hi").getAttribute("aria-label")).toBe("Treble, selected, unstable at full boost");
+    await session.keyboard.command("Copy band figures");
+    await expect.poll(() => session.page.getByRole("status").innerText()).toBe("Copied the figures of 1 band.");
+    expect((await clipboard()).split("\n")[1].split("\t").map((cell) => cell === "unstable")).toEqual([false, false, false, true, true, true, true, false, false, false]);
     expect(await struck(session.page.getByTestId("flatness"))).toBe("none");
     expect(await struck(session.page.locator("[data-figure=plateau] td").first())).toBe("line-through");
     expect(await struck(session.page.locator("[data-figure=plateau] td").last())).toBe("none");

@@ -16,6 +16,8 @@ export interface ActionContext {
   readonly drawer: Drawer;
   /** Null until the sheet is drawn. */
   readonly sheet: () => SheetHandle | null;
+  /** Whether a band's figures at an end of its slider mean nothing, as far as is known: the board oscillates there. */
+  readonly isVoid: (id: string, end: "boost" | "cut") => boolean;
   /** Bands that were copied or cut last. */
   readonly clipboard: { bands: readonly Block[] };
   readonly isMac: boolean;

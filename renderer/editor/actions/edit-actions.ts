@@ -122,7 +122,7 @@ export const EDIT_ACTIONS: readonly Action[] = [
     when: (c) => (c.editor.store.getState().analysis.results?.figures.size ?? 0) > 0,
     perform: async (c) => {
       const figures = [...c.editor.store.getState().analysis.results!.figures.values()];
-      await copyText(figuresText(figures));
+      await copyText(figuresText(figures, c.isVoid));
       c.ui.notify(`Copied the figures of ${figures.length} ${figures.length === 1 ? "band" : "bands"}.`);
     },
   },
@@ -141,12 +141,14 @@ function step(c: ActionContext, by: 1 | -1): void {
 const hertz = (f: number | null): string => (f === null ? "–" : formatFigure(f, "frequency"));
 const plain = (q: number | null): string => (q === null ? "–" : formatFigure(q, "plain"));
 
-/** The figures as tab-separated text, one row a band. */
-function figuresText(figures: readonly BandFigures[]): string {
-  const rows = figures.map((f) => [
-    f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q),
-    formatDb(f.cut.peak), hertz(f.cut.frequency), plain(f.cut.q),
-  ]);
+/** The figures as tab-separated text, one row a band; what means nothing is left out and named. */
+export function figuresText(figures: readonly BandFigures[], isVoid: ActionContext["isVoid"]): string {
+  const rows = figures.map((f) => {
+    const boost = [formatDb(f.boost.peak), formatDb(-f.interactionLoss), hertz(f.boost.frequency), plain(f.boost.q)];
+    const cut = [formatDb(f.cut.peak), hertz(f.cut.frequency), plain(f.cut.q)];
+    const held = (cells: readonly string[], end: "boost" | "cut"): readonly string[] => (isVoid(f.id, end) ? cells.map(() => "unstable") : cells);
+    return [f.label, BLOCKS[f.kind].label, formatDb(f.isolatedBoost), ...held(boost, "boost"), ...held(cut, "cut")];
+  });
   const head = ["band", "kind", "isolated boost", "boost in circuit", "lost in circuit", "boost centre", "boost Q", "cut in circuit", "cut centre", "cut Q"];
   return [head, ...rows].map((row) => row.join("\t")).join("\n");
 }

@@ -60,6 +60,17 @@ describe("the card of the selected band", () => {
     }
   });
 
+  test("stands close to its band: right below it where there is room, else right above its rails", () => {
+    const crowded = layOut(BOARDS[3][1], 1092, 806);
+    for (const band of crowded.bands) expect(placeCard(crowded, band, SIZES)!.box.top - band.box.bottom).toBeLessThan(8);
+    const low = layOut(BOARDS[0][1], 716, 606);
+    for (const band of low.bands.slice(0, 6)) {
+      const { box } = placeCard(low, band, SIZES)!;
+      expect(band.boostRailY - box.bottom, band.id).toBeGreaterThan(0);
+      expect(band.boostRailY - box.bottom, band.id).toBeLessThan(12);
+    }
+  });
+
   test("finds room wherever there is some", () => {
     const size = SIZES[0];
     fc.assert(

@@ -5,7 +5,7 @@ import { bandFrequency } from "../../../core/geometry/band-frequency.ts";
 import { arrangedPlaces, layoutSheet, movedPlace, type LayoutOpts, type SheetLayout } from "../../../core/geometry/layout.ts";
 import { pixelOf } from "../../../core/geometry/ruling.ts";
 import { overlaps } from "../../../core/geometry/units.ts";
-import { chainValues } from "../../../core/geometry/values.ts";
+import { bandValues, chainValues, showsValues } from "../../../core/geometry/values.ts";
 import type { Block, Project } from "../../../core/model/project.ts";
 import { boardOf, gyratorAt, THIRD_OCTAVES, twoStages } from "../../helpers/sheet-boards.ts";
 
@@ -51,6 +51,23 @@ describe("layout", () => {
     for (const width of [700, 1090, 1900]) {
       expectApart(layOut(project, { width }));
       expectApart(layOut(project, { width, span: { from: 300, to: 3000 } }));
+    }
+  });
+
+  test("names and values at the ends of the ruling stand inside it", () => {
+    for (const count of [31, 20, 12]) {
+      for (const width of [716, 1090]) {
+        const bands = THIRD_OCTAVES.slice(-count).map((f) => gyratorAt(f, `b${f}`.replace(".", "_")));
+        const layout = layOut(boardOf(bands), { width });
+        const { left, right } = layout.frame.ruling;
+        for (const [index, band] of layout.bands.entries()) {
+          // Slim names share two lines: each may be nearly two slots wide.
+          const half = band.detail === "slim" ? 0.9 * band.slot : band.slot / 2;
+          expect(band.x - half, band.id).toBeGreaterThanOrEqual(left);
+          expect(band.x + half, band.id).toBeLessThanOrEqual(right);
+          if (showsValues(band, true)) for (const value of bandValues(band, bands[index])) expect(value.box.right, `${band.id} ${value.role}`).toBeLessThanOrEqual(right + 4);
+        }
+      }
     }
   });
 

@@ -29,6 +29,7 @@ function context(isMac = false): ActionContext {
     drawer: unused as unknown as ActionContext["drawer"],
     files: { launch: unused, createNew: unused, open: unused, openPath: unused, save: unused, saveAs: unused },
     sheet: () => null,
+    isVoid: () => false,
     clipboard: { bands: [] },
     isMac,
     isDesktop: false,
