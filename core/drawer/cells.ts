@@ -50,9 +50,23 @@ export function kindOfValue(text: string, unit: string): StockKind | null {
   return null;
 }
 
+/** Ways of writing that old lists and printers of capitals have, and nobody would type. */
+const OLD_FORMS: Readonly<Record<"resistance" | "capacitance" | "inductance", readonly (readonly [RegExp, string])[]>> = {
+  resistance: [[/(?<=\d\s*)meg(?:ohms?|Ω)?$/i, "M"]],
+  capacitance: [
+    [/(?<=\d\s*)(?:mmfd?|pfd)$/i, "pF"],
+    [/(?<=\d\s*)[mµμu]fd$/i, "uF"],
+    [/(?<=\d\s*)PF?(?=\d*$)/, "p"],
+    [/(?<=\d\s*)NF?(?=\d*$)/, "n"],
+    [/(?<=\d\s*)UF?(?=\d*$)/, "u"],
+  ],
+  inductance: [],
+};
+
 /** A component value in SI units. */
 export function readValue(text: string, unit: string, quantity: "resistance" | "capacitance" | "inductance"): Cell<number> {
-  const parsed = parseValue(isBareNumber(text) ? text + unit : text, quantity);
+  const usual = OLD_FORMS[quantity].reduce((read, [form, instead]) => read.replace(form, instead), text);
+  const parsed = parseValue(isBareNumber(usual) ? usual + unit : usual, quantity);
   if (!parsed.ok) return refused(parsed.message);
   return parsed.value > 0 ? taken(parsed.value) : refused(`the value must be above 0, got “${text}”`);
 }

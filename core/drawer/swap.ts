@@ -14,7 +14,7 @@ import { hasFault } from "./place-problems.ts";
 import { filledBlock, filledProject, fillingPatch, onProject, partsElsewhere, type BoardRole } from "./roles.ts";
 import { boardStress, type PartStress, type Problem } from "./stress.ts";
 import type { StockedLine } from "./stock.ts";
-import { TrialBoard } from "./trial.ts";
+import { requireFinite, TrialBoard } from "./trial.ts";
 
 /** What a candidate does to one band at full boost, the others centred, against the part that is there. Null where the band has no such figure. */
 export interface BandChange {
@@ -67,6 +67,7 @@ const POINTS = 121;
 /**
  * Candidates for a role, ranked by what they do to the whole board, which is simulated with each. Ratings and polarity
  * are checked unless `stress` is given (which saves working it out again) or the role bears no voltage to speak of.
+ * @throws RangeError where the board has no finite response
  */
 export function rankSwaps(board: Board, role: BoardRole, lines: readonly StockedLine[], opts: SwapOpts = {}): Swap {
   const values: ValueOpts = { ...(opts.positions ? { positions: opts.positions } : {}), isMeasured: opts.isMeasured ?? false };
@@ -124,6 +125,7 @@ class Comparison {
     this.#sweep = new Sweep(compiled, angular(logFrequencies(20, 20_000, POINTS)));
     this.#settings = [compiled.positions, ...this.#bands.map(({ index }) => compiled.positions.with(index, 1))];
     this.#gains = this.#settings.map((positions) => this.#gain(positions));
+    for (const gains of this.#gains) requireFinite(gains);
     this.before = this.#bands.map(({ band, stage, index, scan }) => ({ band: band.id, boost: endFigure(scan, index, band, lawResults(band, stage, values), 1) }));
   }
 

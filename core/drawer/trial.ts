@@ -43,6 +43,11 @@ export class TrialBoard {
   }
 }
 
+/** @throws RangeError where a response is not finite: then nothing can be compared with it */
+export function requireFinite(gains: Float64Array): void {
+  if (!gains.every(Number.isFinite)) throw new RangeError("there is no finite response to compare with: some value of the board is out of any practical range");
+}
+
 /** 20 Hz to 20 kHz, six points an octave. */
 const POINTS = 61;
 
@@ -60,7 +65,7 @@ export class ResponseError {
   readonly target: Float64Array;
   readonly #gains: Float64Array;
 
-  /** @param target the board that is aimed at */
+  /** @param target the board that is aimed at @throws RangeError where it has no finite response */
   constructor(target: CompiledBoard) {
     this.#sweep = new Sweep(target, angular(logFrequencies(20, 20_000, POINTS)));
     this.#columns = transferColumns(POINTS, false);
@@ -70,6 +75,7 @@ export class ResponseError {
     this.weights = this.settings.map((_, i) => (i === 0 ? 1 : 1 / bands));
     this.#gains = new Float64Array(this.settings.length * POINTS);
     this.target = this.gains(target).slice();
+    requireFinite(this.target);
   }
 
   /** Gains at every setting, one after the other, dB; overwritten by the next call. */

@@ -1,6 +1,6 @@
 import { useCallback, useMemo, useState } from "react";
 import type { Build, DrawerLine } from "../../core/contract/drawer-schemas.ts";
-import { buildBill, buildReference, type Bill } from "../../core/drawer/bill.ts";
+import { buildBill, buildReference, unitsThere, type Bill } from "../../core/drawer/bill.ts";
 import { boardProblems, listedProblems } from "../../core/drawer/board-problems.ts";
 import type { Board } from "../../core/net/board.ts";
 import { copyText } from "../editor/copy-text.ts";
@@ -162,5 +162,6 @@ function stateText(build: Build | null): string {
 
 function readyText(bill: Bill): string {
   const short = bill.rows.filter((row) => row.short > 0).length;
-  return [short > 0 ? `${counted(short, "line")} too short` : "", bill.unassigned.length > 0 ? `${counted(bill.unassigned.reduce((sum, row) => sum + row.perUnit, 0), "part")} without a line` : ""].filter((part) => part !== "").join(", ");
+  const there = unitsThere(bill);
+  return [short > 0 ? `${counted(short, "line")} too short${there > 0 ? `, pieces for ${counted(there, "unit")}` : ""}` : "", bill.unassigned.length > 0 ? `${counted(bill.unassigned.reduce((sum, row) => sum + row.perUnit, 0), "part")} without a line` : ""].filter((part) => part !== "").join(", ");
 }

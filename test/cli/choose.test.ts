@@ -220,6 +220,14 @@ describe.concurrent("match", () => {
   });
 });
 
+test("a board without a finite response is filled with nothing, in words", async () => {
+  const [lost, out] = [join(folder, "lost.bandwright"), join(folder, "never.bandwright")];
+  writeFileSync(lost, readFileSync(VOICE, "utf8").replace('"value": 1.8e-7', '"value": 1.8e+300'));
+  expect(partAt(lost, "b1k", "seriesC").value).toBe(1.8e300);
+  for (const args of [["fill", lost, "-o", out], ["fill", lost, "-o", out, "--json"], ["swap", lost, "--role", "b1k.seriesR"]]) refused(await bandwright(...args, "--drawer", drawer), 1, /there is no finite response to compare with: some value of the board is out of any practical range/);
+  expect(existsSync(out)).toBe(false);
+});
+
 describe.concurrent.each(["fill", "match", "swap"])("-o of %s", (name) => {
   const args = name === "swap" ? ["--role", "b1k.gyratorR", "--take", "1"] : [];
   const write = async (out: string, own = drawer): Promise<Ended> => bandwright(name, filled, ...args, "-o", out, "--drawer", own);
@@ -253,9 +261,10 @@ describe.concurrent.each(["fill", "match", "swap"])("-o of %s", (name) => {
   });
 });
 
-test.each(["swap", "fill", "build"])("%s explains itself with an example that works", async (name) => {
+test.each(["swap", "fill", "match", "build"])("%s explains itself with an example that works", async (name) => {
   const own = join(folder, `${name}-example.sqlite`);
   copyFileSync(drawer, own);
+  if (name === "match") done(await bandwright("stock", "measure", partAt(filled, "b1k", "seriesR").stock!, "468", "473", "471", "469", "475", "470", "466", "--drawer", own));
   const help = done(await bandwright(name, "--help"));
   const example = /Example:\n {2}bandwright (.+)/.exec(help)![1];
   const args = example.replace("channel.bandwright", filled).replace(/-o (\S+)/, `-o ${join(folder, `${name}-example.bandwright`)}`).split(" ");

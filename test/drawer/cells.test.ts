@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { readCoefficient, readKind, readMoney, readPrices, readQuantity, readRating, readTick, readTolerance } from "../../core/drawer/cells.ts";
+import { readCoefficient, readKind, readMoney, readPrices, readQuantity, readRating, readTick, readTolerance, readValue } from "../../core/drawer/cells.ts";
 import { guessDelimiter, guessMapping } from "../../core/drawer/guess-mapping.ts";
 import { freeId, makeId } from "../../core/drawer/make-id.ts";
 import { capacitor, resistor } from "../helpers/drawer.ts";
@@ -19,6 +19,16 @@ describe("a cell", () => {
     ["0.25W", "", 0.25], ["1/4 W", "", 0.25], ["250mW", "", 0.25], ["0,6 W", "", 0.6], ["63 V", "", 63], ["63VDC", "", 63], ["1kV", "", 1000], ["63", "V", 63], ["250", "mW", 0.25], ["2W", "mW", 2], ["25", "", 25],
     ["0", "", null], ["lots", "", null], ["63 A", "", null],
   ])("rating “%s” in a column of “%s”", (text, unit, expected) => expect(value(readRating(text, unit))).toBe(expected));
+
+  test.each([
+    ["1Meg", "resistance", 1e6], ["2.2 MEGOHM", "resistance", 2.2e6], ["4K7", "resistance", 4700], ["100N", "capacitance", 1e-7], ["100NF", "capacitance", 1e-7], ["2N2", "capacitance", 2.2e-9], ["47PF", "capacitance", 47e-12], ["10UF", "capacitance", 1e-5],
+    ["22MFD", "capacitance", 22e-6], ["0.1 mfd", "capacitance", 1e-7], ["470 MMF", "capacitance", 470e-12], ["100mH", "inductance", 0.1], ["1M", "resistance", 1e6], ["1mF", "capacitance", 1e-3],
+    ["1N", "resistance", null], ["5U", "resistance", null], ["N", "capacitance", null], ["MFD", "capacitance", null],
+  ] as const)("value “%s” as a %s", (text, quantity, expected) => {
+    const read = value(readValue(text, "", quantity));
+    if (expected === null) expect(read).toBeNull();
+    else expect(read).toBeCloseTo(expected, 15);
+  });
 
   test.each<Row>([["50ppm", "", 50e-6], ["±100 ppm/K", "", 100e-6], ["-200ppm/°C", "", -200e-6], ["50", "ppm", 50e-6], ["0.00005", "", 0.00005], ["5e-05", "", 5e-5], ["1", "", null], ["low", "", null]])(
     "temperature coefficient “%s” in a column of “%s”",

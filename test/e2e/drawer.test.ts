@@ -1,4 +1,4 @@
-import { readFile, rm, writeFile } from "node:fs/promises";
+import { readdir, readFile, rm, writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import type { Browser, Locator } from "playwright-core";
 import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test } from "vitest";
@@ -136,6 +136,11 @@ describe("the drawer", () => {
     const card = list.getByRole("button", { name: /^150n/ }).first();
     await card.waitFor();
     expect(await card.innerText()).toMatch(/peak.[+−±][\d.]+.dB · centre.\+[\d.]+.% · Q.\+[\d.]+.%/);
+    // What is left is what the drawer has now, less the one.
+    const shelf = await openDrawer({ path: join(session.home, "drawer.sqlite"), now: () => new Date() });
+    const free = shelf.find(/C-150N-\w+/.exec(await card.innerText())![0])!.quantity;
+    shelf.close();
+    expect(await card.innerText()).toContain(`${free - 1} left`);
     const before = await session.sheet.response();
     await card.focus();
     // Dotted, until the focus goes somewhere else.
@@ -206,6 +211,19 @@ describe("the drawer", () => {
     await expect.poll(() => user.cell(names.at(-1)!, 8).innerText()).toMatch(/^\d+$/);
     expect(await user.panel()).toContain("Held by Saltmarsh voice channel");
 
+    // Units that nobody reserved are used as one step, which one undo takes back.
+    const free = await user.cell(names.at(-1)!, 9).innerText();
+    const there = await user.cell(names.at(-1)!, 7).innerText();
+    await session.menu("Drawer", "Build units…");
+    await units.fill("4");
+    await dialog.getByRole("button", { name: "Use 4 units" }).click();
+    await dialog.getByText("6 units built. Nothing is reserved for it now.").waitFor();
+    await session.keyboard.press("Escape");
+    await expect.poll(() => user.cell(names.at(-1)!, 8).innerText()).toBe("–");
+    await session.keyboard.undo();
+    await expect.poll(() => user.cell(names.at(-1)!, 7).innerText()).toBe(there);
+    await expect.poll(() => user.cell(names.at(-1)!, 9).innerText()).toBe(free);
+
     // Another project is told who holds the pieces.
     await session.keyboard.press("Alt+Shift+B");
     await session.page.getByLabel("Name of the board").fill("Second channel");
@@ -237,6 +255,17 @@ describe("a drawer that cannot be used", () => {
     await rm(file);
     await alert.getByRole("button", { name: "Try again" }).click();
     await session.page.getByRole("heading", { name: "Nothing in the drawer yet" }).waitFor();
+  });
+
+  test("a file that never was a drawer: it is told of, and nothing is put beside it", async () => {
+    const file = join(session.home, "drawer.sqlite");
+    await writeFile(file, "Dear all, this is a letter.");
+    await session.keyboard.press("Alt+Shift+D");
+    const alert = session.page.getByRole("alert", { name: "The drawer cannot be used" });
+    await alert.waitFor();
+    expect(await alert.innerText()).toContain("is not a drawer");
+    expect(await readFile(file, "utf8")).toBe("Dear all, this is a letter.");
+    expect((await readdir(session.home)).filter((name) => name.startsWith("drawer"))).toEqual(["drawer.sqlite"]);
   });
 
   test("newer than the program: both versions are named", async () => {
