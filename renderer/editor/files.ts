@@ -37,11 +37,17 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui, isNative: 
     }
   }
 
+  /** Brings another document up. Work on the board that was open is not what anybody asked for on this one. */
+  function show(...document: Parameters<Editor["load"]>): void {
+    ui.patch({ task: null, taskBeside: null });
+    editor.load(...document);
+  }
+
   async function read(path: string): Promise<void> {
     ui.patch({ isBusy: true });
     try {
       const opened = await host.call("project.open", { path });
-      editor.load(opened.project, { path: opened.path, isWritable: opened.writable, isDemo: !opened.writable && (await isDemo(opened.path)), fingerprint: opened.fingerprint }, opened.warnings);
+      show(opened.project, { path: opened.path, isWritable: opened.writable, isDemo: !opened.writable && (await isDemo(opened.path)), fingerprint: opened.fingerprint }, opened.warnings);
       ui.notify(`Opened ${fileName(opened.path)}.`);
     } catch (error) {
       if (isHostFailure(error, "project-faults")) {
@@ -95,7 +101,7 @@ export function createFiles(host: HostClient, editor: Editor, ui: Ui, isNative: 
     },
     async createNew() {
       if (!(await mayLeave())) return;
-      editor.load(newProject(), null, []);
+      show(newProject(), null, []);
       ui.notify("A new board.");
     },
     async open(start) {

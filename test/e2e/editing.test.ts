@@ -316,6 +316,13 @@ describe("work on the whole board", () => {
     await expect.poll(() => page.getByRole("status").innerText()).toMatch(/^Filled \d+ parts/);
     expect(await panel.innerText()).not.toContain("waits");
     expect(await session.panel.field("series C").count()).toBe(1);
+    // On another board nobody asked for it.
+    await session.keyboard.command("fill the board");
+    await expect.poll(() => placed.isVisible()).toBe(true);
+    await session.keyboard.command("new board");
+    await session.dialog(/first\?$/).getByRole("button", { name: "Discard changes" }).click();
+    await expect.poll(() => panel.innerText()).toContain("Select a block to see its values.");
+    expect(await placed.count()).toBe(0);
   });
 });
 
