@@ -1,6 +1,8 @@
 import { mkdtempSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
+import { createElement } from "react";
+import { renderToStaticMarkup } from "react-dom/server";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { createDrawer as createService } from "../../../app/services/drawer.ts";
 import { createPathGuard } from "../../../app/services/path-guard.ts";
@@ -12,6 +14,8 @@ import { boardProblems, listedProblems } from "../../../core/drawer/board-proble
 import { fillBoard } from "../../../core/drawer/fill.ts";
 import { matchPieces } from "../../../core/drawer/match.ts";
 import { boardRoles, filledProject } from "../../../core/drawer/roles.ts";
+import { emptyLine } from "../../../core/drawer/stock.ts";
+import { RATING_CAUTION } from "../../../core/drawer/stress.ts";
 import { rankSwaps } from "../../../core/drawer/swap.ts";
 import type { Project } from "../../../core/model/project.ts";
 import { restoreProject } from "../../../core/model/restore.ts";
@@ -20,6 +24,7 @@ import { compileBoard } from "../../../core/net/star.ts";
 import { fillingsOf } from "../../../renderer/drawer/FillPanel.tsx";
 import { ghostOf } from "../../../renderer/drawer/ghost.ts";
 import { measuredFillings } from "../../../renderer/drawer/MatchPanel.tsx";
+import { ProblemList } from "../../../renderer/drawer/ProblemList.tsx";
 import { shoppingCsv, shoppingText } from "../../../renderer/drawer/shopping.ts";
 import { linesForBoard, linesForRole, namedLines, piecesForBoard } from "../../../renderer/drawer/stock-query.ts";
 import { candidateName, effectText, leftText, worstText } from "../../../renderer/drawer/swap-text.ts";
@@ -143,6 +148,23 @@ describe("a board and the starter drawer", () => {
     const blocks = project.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, seriesC: { ...b.parts!.seriesC, stock: line.id } } } : b));
     const [first] = listedProblems(boardProblems(resolveBoard({ ...project, blocks }), [line])).filter(({ problem }) => problem.about !== "value");
     expect(first).toMatchObject({ problem: { level: "fault", about: "rating" }, role: { name: "b1k.seriesC" } });
+  });
+});
+
+describe("what is to be weighed", () => {
+  const shown = (about: "taper" | "rating", level: "note" | "fault"): string => {
+    const line = { ...emptyLine("P-1", "potentiometer"), value: 10e3, quantity: 9, reserved: 0 };
+    const roles = boardRoles(resolveBoard(project)).filter((role) => role.kind === "potentiometer").slice(0, 2);
+    return renderToStaticMarkup(createElement(ProblemList, { found: roles.map((role) => ({ role, line, problem: { level, about, message: "so it is" } })) }));
+  };
+
+  test("is said once of all places, and the caution about ratings stands beside ratings alone", () => {
+    const note = shown("taper", "note");
+    expect(note.match(/<li>/g)).toHaveLength(1);
+    expect(note).toContain("· <strong>63 Hz: track; 125 Hz: track</strong>, P-1: so it is");
+    expect(note).not.toContain(RATING_CAUTION.slice(0, 30));
+    expect(shown("rating", "fault")).toContain("✕ <strong>");
+    expect(shown("rating", "fault")).toContain(RATING_CAUTION.slice(0, 30));
   });
 });
 
