@@ -48,7 +48,7 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
   try {
     text = new TextDecoder("utf-8", { fatal: true, ignoreBOM: true }).decode(await readFile(file));
   } catch (error) {
-    throw new CommandFailure(`${file}: ${readProblem(error)}`);
+    throw new CommandFailure(`${file === "" ? "FILE “”" : file}: ${readProblem(error)}`);
   }
   try {
     const { project, warnings } = restoreProject(text);

@@ -1,6 +1,7 @@
 import { basename, join, resolve } from "node:path";
 import { fileURLToPath } from "node:url";
 import { Option, type Command } from "commander";
+import { isHostFailure } from "../../core/contract/failures.ts";
 import type { ImportReport } from "../../core/contract/drawer-schemas.ts";
 import { IMPORT_FIELDS, type ColumnUse, type Delimiter, type Encoding, type ImportField, type ImportMapping } from "../../core/drawer/mapping.ts";
 import { STOCK_KINDS, type StockKind } from "../../core/drawer/stock.ts";
@@ -56,6 +57,9 @@ export function stockImportCommand(): Command {
             onProgress: meter.show,
             isCancelled: () => stop.signal.aborted,
           });
+        } catch (error) {
+          if (opts.json && isHostFailure(error, "import-refused")) printJson(error.data);
+          throw error;
         } finally {
           meter.end();
           process.off("SIGINT", onInterrupt);

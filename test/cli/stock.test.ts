@@ -68,6 +68,9 @@ test("a table is taken in by its headers and by what one says of them, and given
   const refused = await stock("import", table, ...map);
   expect(refused).toMatchObject({ code: 2, stdout: "" });
   expect(refused.stderr).toContain("1 of 2 rows cannot be taken, so nothing was imported:\nrow 3: “zwei” is no number of pieces");
+  const told = await stock("import", table, "--json", ...map);
+  expect(told.code).toBe(2);
+  expect(JSON.parse(told.stdout)).toMatchObject({ rows: 2, refused: 1, faults: [{ row: 3 }] });
   expect(JSON.parse((await stock("import", table, "--dry-run", "--json", ...map)).stdout)).toMatchObject({ step: null, added: 1, refused: 1 });
   const taken = await stock("import", table, "--skip-bad-rows", ...map);
   expect(taken).toEqual({ code: 0, stdout: "2 rows: 1 lines added, 0 updated, 0 unchanged, 1 counted, 1 refused\n", stderr: "row 3: “zwei” is no number of pieces\n" });
