@@ -45,7 +45,7 @@ export function bookMove(db: Db, step: Step, move: Move): void {
       break;
     case "released": {
       const held = heldBy(db, reference, key);
-      if (count > held) refuse(`${line.id}: ${reference === "" ? "name who holds the pieces that are released" : `${reference} holds ${held === 0 ? "none" : `${held}`}, so ${count} cannot be released`}`);
+      if (count > held) refuse(`${line.id}: ${reference === "" ? "name who holds the pieces that are released" : `${reference} holds ${held} pieces, so ${count} cannot be released`}`);
       step.book(key, kind, -count, reference, note);
       break;
     }
