@@ -98,6 +98,23 @@ describe("the drawer", () => {
     await expect.poll(() => user.cell("R-SPARE", 10).innerText()).toBe("shelf 9");
   });
 
+  test("what a menu's entry brings up keeps the focus, by pointer and by keys", async () => {
+    await user.loadStarter();
+    const search = session.page.getByRole("searchbox", { name: "Find lines" });
+    const hasFocus = (): Promise<boolean> => search.evaluate((field) => field === document.activeElement);
+    await session.menu("Drawer", /^Find lines/);
+    // A while, so that the menu has closed and given back what it would.
+    await session.page.waitForTimeout(300);
+    expect(await hasFocus()).toBe(true);
+
+    await session.page.getByRole("menuitem", { name: "Drawer", exact: true }).focus();
+    await session.keyboard.press("Enter", "f", "i", "n", "d", "Enter");
+    await session.page.waitForTimeout(300);
+    expect(await hasFocus()).toBe(true);
+    await session.keyboard.type("100n");
+    await expect.poll(user.count).toMatch(/ lines of /);
+  });
+
   test("counting, the ledger, measured pieces and the value axis", async () => {
     await user.loadStarter();
     await user.find("C-180N-PET");
@@ -130,7 +147,6 @@ describe("the drawer", () => {
 
   test("a capacitor is swapped with the dotted response on the sheet, and taken as one step", async () => {
     await user.loadStarter();
-    await session.keyboard.press("Alt+Shift+B");
     await session.sheet.pick("b1k");
     const list = session.page.getByRole("region", { name: "In the drawer" });
     const card = list.getByRole("button", { name: /^150n/ }).first();
@@ -225,7 +241,6 @@ describe("the drawer", () => {
     await expect.poll(() => user.cell(names.at(-1)!, 9).innerText()).toBe(free);
 
     // Another project is told who holds the pieces.
-    await session.keyboard.press("Alt+Shift+B");
     await session.page.getByLabel("Name of the board").fill("Second channel");
     await session.keyboard.press("Enter");
     await session.menu("Drawer", "Build units…");
@@ -281,7 +296,6 @@ describe("a drawer that cannot be used", () => {
     expect(await alert.innerText()).toMatch(/version 99, this program knows versions up to \d/);
     expect((await readFile(file)).equals(bytes)).toBe(true);
     // The board does not mind.
-    await session.keyboard.press("Alt+Shift+B");
     await session.sheet.pick("b1k");
     expect(await session.panel.value("series C")).toBe("180 nF");
   });
