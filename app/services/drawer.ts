@@ -33,6 +33,8 @@ export interface Drawer {
   readonly close: () => Promise<void>;
 }
 
+/** How often the drawer is looked at for what other programs have written, ms. */
+const LOOK_EVERY = 1000;
 const PREVIEW_ROWS = 20;
 const TABLE_EXTENSIONS = [".csv", ".tsv", ".txt"];
 
@@ -40,6 +42,7 @@ const TABLE_EXTENSIONS = [".csv", ".tsv", ".txt"];
 export function createDrawer({ guard, drawerPath, starterPath, now, emit }: DrawerOpts): Drawer {
   let path = drawerPath;
   let opened: Promise<DrawerStore> | null = null;
+  let watch: NodeJS.Timeout | undefined;
   const jobs = new Set<string>();
   const cancelled = new Set<string>();
 
@@ -47,15 +50,39 @@ export function createDrawer({ guard, drawerPath, starterPath, now, emit }: Draw
     if (opened === null) {
       const opening = openDrawer({ path, now });
       opened = opening;
-      // What was wrong may be mended meanwhile: the next call tries again.
-      opening.catch(() => {
-        if (opened === opening) opened = null;
-      });
+      opening.then(
+        (ready) => opened === opening && watchOthers(ready),
+        // What was wrong may be mended meanwhile: the next call tries again.
+        () => {
+          if (opened === opening) opened = null;
+        },
+      );
     }
     return opened;
   }
 
+  /** Tells the screens, too, of what another program books. */
+  function watchOthers(ready: DrawerStore): void {
+    clearInterval(watch);
+    let seen = ready.foreignStamp();
+    const look = (): void => {
+      const stamp = ready.foreignStamp();
+      if (stamp === seen) return;
+      seen = stamp;
+      emit("drawer.changed", { step: null });
+    };
+    watch = setInterval(() => {
+      try {
+        look();
+      } catch {
+        // The file has gone bad: the next call says so, to somebody who asked.
+        clearInterval(watch);
+      }
+    }, LOOK_EVERY).unref();
+  }
+
   async function close(): Promise<void> {
+    clearInterval(watch);
     const closing = opened;
     opened = null;
     (await closing?.catch(() => null))?.close();
@@ -101,6 +128,7 @@ export function createDrawer({ guard, drawerPath, starterPath, now, emit }: Draw
       await close();
       path = wanted;
       opened = Promise.resolve(next);
+      watchOthers(next);
       emit("drawer.changed", { step: null });
       return next.info();
     },

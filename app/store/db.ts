@@ -91,7 +91,12 @@ export class Db {
 
   /** Changes whenever anybody has written. */
   stamp(): string {
-    return this.call(() => `${String(this.raw.pragma("data_version", { simple: true }))}/${this.ownWrites}`);
+    return `${this.foreignStamp()}/${this.ownWrites}`;
+  }
+
+  /** Changes whenever another connection has written, this one's own work apart. */
+  foreignStamp(): string {
+    return this.call(() => String(this.raw.pragma("data_version", { simple: true })));
   }
 
   /** Complaints of the database's own full check; none where all is well. */

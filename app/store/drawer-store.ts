@@ -73,6 +73,11 @@ export class DrawerStore {
     };
   }
 
+  /** Changes whenever another program has written to this drawer. */
+  foreignStamp(): string {
+    return this.db.foreignStamp();
+  }
+
   /** A window on the lines that fit, and how many there are. */
   lines(filter: LineFilter, sort: LineSort, offset: number, limit: number): { total: number; lines: DrawerLine[] } {
     return this.db.snapshot(() => ({ total: this.totalOf(filter), lines: windowOf(this.db, this.hits, filter, sort, offset, limit) }));

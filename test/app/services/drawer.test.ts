@@ -6,6 +6,7 @@ import { afterEach, beforeEach, describe, expect, test, vi } from "vitest";
 import { createHost, type Host } from "../../../app/host.ts";
 import { createDrawer, type Drawer } from "../../../app/services/drawer.ts";
 import { createPathGuard } from "../../../app/services/path-guard.ts";
+import { openDrawer } from "../../../app/store/drawer-store.ts";
 import { readMigrations } from "../../../app/store/migrate.ts";
 import { isHostFailure } from "../../../core/contract/failures.ts";
 import { EVERY_LINE } from "../../../core/contract/drawer-schemas.ts";
@@ -160,4 +161,21 @@ test("closing puts everything into the one file", async () => {
   await client.call("drawer.addLine", { line: resistor("R-1"), quantity: 1 });
   await drawer.close();
   await expect(stat(join(base, "data", "bandwright", "drawer.sqlite-wal"))).rejects.toMatchObject({ code: "ENOENT" });
+});
+
+test("what another program books is told of as well, once; one's own work is not told of twice", async () => {
+  const { path } = await client.call("drawer.info");
+  await client.call("drawer.addLine", { line: resistor("R-4K7"), quantity: 10 });
+  const own = events.length;
+  const other = await openDrawer({ path, now: () => new Date(Date.UTC(2030, 0, 2)) });
+  try {
+    other.move([{ line: "R-4K7", kind: "used", count: 3, reference: "", note: "" }]);
+    await vi.waitFor(() => expect(events.length).toBeGreaterThan(own), 10_000);
+    expect((await client.call("drawer.line", { id: "R-4K7" })).line.quantity).toBe(7);
+    // Two more looks find nothing new.
+    await new Promise((resolve) => setTimeout(resolve, 2500));
+    expect(events.slice(own)).toEqual([{ name: "drawer.changed", data: { step: null } }]);
+  } finally {
+    other.close();
+  }
 });
