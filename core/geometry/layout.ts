@@ -3,21 +3,24 @@ import type { BandFigures } from "../analysis/bands.ts";
 import { BLOCKS } from "../blocks/index.ts";
 import type { Block, Project, SheetPoint } from "../model/project.ts";
 import { bandFrequency } from "./band-frequency.ts";
-import { bandHeight, bandHeights, detailOf, placeBand, type BandPlace } from "./band-place.ts";
+import { bandHeight, bandHeights, CLOSE_SLOT, detailOf, figureStep, placeBand, type BandPlace } from "./band-place.ts";
 import { FEED_DROP, placeChain, type ChainPlace, type WirePath } from "./chain.ts";
 import { chainGridOf, frameOf, FULL_SLOT, type Frame } from "./frame.ts";
 import { slotWidth, spread } from "./placement.ts";
 import { lastRail, railsOf, type Rail, type RailPlace, type Rails } from "./rails.ts";
 import { frequencyAt, frequencyOfSheetX, pixelOf, sheetXOf, type Span } from "./ruling.ts";
 import { clamp, sheetUnits, type SheetPlace } from "./units.ts";
+import { closeLength } from "./values.ts";
 
 /** Sheet units from one rail to the next in files, whatever the screen makes of it. */
 const RAIL_UNITS = 480;
-/** Slot in which a band's values and figures can be read. */
+/** Slot in which a band's values and figures have all the room that they need. */
 const VALUE_SLOT = 69;
 /** Narrowest slot that still shows a slider. */
 const LEAST_SLOT = 28;
 const BETWEEN_RAILS = 8;
+/** A board that is higher than its place by less than this is as good as seen whole, px. */
+const SEEN_AT_ONCE = 20;
 /** Grid units above a rail (the stage's op amp) and below it (what feeds a stage, what ends the chain). */
 const ABOVE = 23.5;
 
@@ -82,12 +85,16 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
   const wantedFitted = wanted(fitted);
   // Slots are the same at every scale up to 1.
   const smallSlots = slotsOf(rails, wantedFitted, fitted, 1);
-  const heightAt = (scale: number): number => {
-    const margin = fitted.marginScale;
-    const slots = scale <= 1 ? smallSlots : slotsOf(rails, wantedFitted, fitted, scale);
-    return rails.rails.reduce((sum, rail, i) => sum + railHeight(rail, rails, i, { scale, slot: slots[i], legUnits: legUnits[i], margin, isSingle }), 0) + BETWEEN_RAILS;
-  };
-  const frame = frameOf({ ...opts, heightAt });
+  const lengths = rails.rails.map((rail) => Math.max(0, ...rail.bands.map(closeLength)));
+  const heightsAt = (scale: number, slots: readonly number[], isBrief: boolean): number[] =>
+    rails.rails.map((rail, i) => railHeight(rail, rails, i, { scale, slot: slots[i], legUnits: legUnits[i], closeLength: lengths[i], margin: fitted.marginScale, isSingle, isBrief }));
+  const contentOf = (heights: readonly number[]): number => heights.reduce((a, b) => a + b, 0) + BETWEEN_RAILS;
+  const heightAt = (isBrief: boolean) => (scale: number): number => contentOf(heightsAt(scale, scale <= 1 ? smallSlots : slotsOf(rails, wantedFitted, fitted, scale), isBrief));
+  const ample = frameOf({ ...opts, span: null, heightAt: heightAt(false) });
+  const overflow = (of: Frame, brief: boolean): number => heightAt(brief)(of.scale) - (of.board.bottom - of.board.top);
+  // Rails that can be seen at once without centre and Q, but not with them, leave these to the selected band's card.
+  const isBrief = rails.rails.length > 1 && overflow(ample, false) > 0 && overflow(frameOf({ ...opts, span: null, heightAt: heightAt(true) }), true) < SEEN_AT_ONCE;
+  const frame = frameOf({ ...opts, heightAt: heightAt(isBrief) });
   const xs = wanted(frame);
   let slots = slotsOf(rails, xs, frame, frame.scale);
   // Larger than life only where every bus has the room for it.
@@ -96,9 +103,8 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
   slots = slotsOf(rails, xs, frame, scale);
   const chainGrid = chainGridOf(frame.marginScale, scale);
 
-  const heights = rails.rails.map((rail, i) => railHeight(rail, rails, i, { scale, slot: slots[i], legUnits: legUnits[i], margin: frame.marginScale, isSingle }));
-  const content = heights.reduce((a, b) => a + b, 0) + BETWEEN_RAILS;
-  const mostScroll = Math.max(0, Math.ceil(content - (frame.board.bottom - frame.board.top)));
+  const heights = heightsAt(scale, slots, isBrief);
+  const mostScroll = Math.max(0, Math.ceil(contentOf(heights) - (frame.board.bottom - frame.board.top)));
   const scroll = clamp(opts.scroll, 0, mostScroll);
   let top = frame.board.top - scroll;
   const places: RailPlace[] = [];
@@ -108,8 +114,8 @@ export function layoutSheet(opts: LayoutOpts): SheetLayout {
     const hand = rail.stage && handPlace(rail.stage, moving);
     const shift = hand ? (hand.y - RAIL_UNITS * index) * scale : 0;
     const y = Math.round(top + above + shift);
-    const bandSizes = bandHeights(scale, slots[index], frame.marginScale);
-    const placed = placeRail(rail, index, { frame, scale, slot: slots[index], wanted: xs[index], heights: bandSizes, legUnits: legUnits[index], railY: y, leaderTop: y - above + 6, figures: opts.figures, ...(moving ? { moving } : {}) });
+    const bandSizes = bandHeights(scale, slots[index], frame.marginScale, lengths[index]);
+    const placed = placeRail(rail, index, { frame, scale, isBrief, slot: slots[index], wanted: xs[index], heights: bandSizes, legUnits: legUnits[index], railY: y, leaderTop: y - above + 6, figures: opts.figures, ...(moving ? { moving } : {}) });
     bands.push(...placed);
     places.push({ rail, index, top: top + shift, y, gap: bandSizes.rail, bottom: top + heights[index] + shift, slot: slots[index] });
     top += heights[index];
@@ -126,13 +132,15 @@ interface RailSize {
   readonly scale: number;
   readonly slot: number;
   readonly legUnits: number;
+  readonly closeLength: number;
   readonly margin: number;
   readonly isSingle: boolean;
+  readonly isBrief: boolean;
 }
 
 function railHeight(rail: Rail, rails: Rails, index: number, size: RailSize): number {
   const grid = chainGridOf(size.margin, size.scale);
-  const band = rail.bands.length === 0 ? 0 : bandHeight(bandHeights(size.scale, size.slot, size.margin), size.legUnits, detailOf(size.slot, size.scale));
+  const band = rail.bands.length === 0 ? 0 : bandHeight(bandHeights(size.scale, size.slot, size.margin, size.closeLength), size.legUnits, detailOf(size.slot, size.scale, size.isBrief));
   const hasInput = rail.feed.from !== null && rail.feed.from === rails.input?.id;
   const feed = rail.isLoose ? 0 : (4 + FEED_DROP + 14 * rail.feed.buffers.length + (hasInput || rail.stage === null ? 27 : 0)) * grid;
   const isLast = index === lastRail(rails);
@@ -144,7 +152,7 @@ function slotsOf(rails: Rails, wanted: (readonly (number | null)[])[], frame: Fr
   const ends = extent(frame);
   return rails.rails.map((rail, i) => {
     const xs = wanted[i].filter((_, n) => rail.bands[n].at?.byHand !== true).map((x) => x ?? ends.right);
-    return slotWidth(xs, { best: FULL_SLOT * Math.max(1, scale), enough: VALUE_SLOT, least: LEAST_SLOT }, ends.left, ends.right);
+    return slotWidth(xs, { best: FULL_SLOT * Math.max(1, scale), enough: VALUE_SLOT, close: CLOSE_SLOT, least: LEAST_SLOT }, ends.left, ends.right);
   });
 }
 
@@ -159,6 +167,7 @@ function extent(frame: Frame): { left: number; right: number } {
 interface RailOpts {
   readonly frame: Frame;
   readonly scale: number;
+  readonly isBrief: boolean;
   readonly slot: number;
   readonly wanted: readonly (number | null)[];
   readonly heights: ReturnType<typeof bandHeights>;
@@ -175,6 +184,7 @@ function placeRail(rail: Rail, index: number, opts: RailOpts): BandPlace[] {
   const hands = rail.bands.map((band) => handPlace(band, moving));
   const free = rail.bands.map((_, n) => n).filter((n) => hands[n] === null);
   const xs = spread(free.map((n) => wanted[n] ?? ends.right), slot, ends.left, ends.right);
+  const step = figureStep(slot);
   const order = [...free].sort((a, b) => xs[free.indexOf(a)] - xs[free.indexOf(b)]);
   return rail.bands.map((block, n): BandPlace => {
     const hand = hands[n];
@@ -183,7 +193,8 @@ function placeRail(rail: Rail, index: number, opts: RailOpts): BandPlace[] {
       block, rail: index, railY: opts.railY, legUnits: opts.legUnits, heights: opts.heights, x, trueX: wanted[n], hand,
       frequency: bandFrequency(block, opts.figures?.get(block.id)), isLoose: rail.isLoose,
       isStaggered: slot < 36 && order.indexOf(n) % 2 === 1,
-      lower: hand ? Math.max(0, hand.y - RAIL_UNITS * index) * scale : 0, slot, scale, leaderTop: opts.leaderTop,
+      figureRoom: hand ? slot : order.indexOf(n) % step === 0 ? slot * step : 0,
+      lower: hand ? Math.max(0, hand.y - RAIL_UNITS * index) * scale : 0, slot, scale, isBrief: opts.isBrief, leaderTop: opts.leaderTop,
     });
   });
 }

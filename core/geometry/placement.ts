@@ -39,15 +39,17 @@ export interface SlotSizes {
   readonly best: number;
   /** Enough for its values: wider than this it is not pushed aside. */
   readonly enough: number;
+  /** Enough for its values where they stand close. */
+  readonly close: number;
   /** Narrower, and the slider cannot be held. */
   readonly least: number;
 }
 
 /**
  * A width for bands that want to be at `wanted`: what most of the gaps between them give, up to `best`. Where that is
- * not enough for the values they fan out to it, if a short leader reaches that far. Between the ends all always fit.
+ * not enough for the values they fan out to it, or as near to it as short leaders reach. Between the ends all always fit.
  */
-export function slotWidth(wanted: readonly number[], { best, enough, least }: SlotSizes, left: number, right: number): number {
+export function slotWidth(wanted: readonly number[], { best, enough, close, least }: SlotSizes, left: number, right: number): number {
   const room = (right - left) / Math.max(1, wanted.length);
   if (wanted.length < 2) return Math.min(best, room);
   const sorted = [...wanted].sort((a, b) => a - b);
@@ -55,8 +57,10 @@ export function slotWidth(wanted: readonly number[], { best, enough, least }: Sl
   const usual = gaps[Math.floor(gaps.length / 2)];
   if (usual >= enough) return Math.min(best, usual, room);
   // Pushed aside only where that makes the values readable.
-  const fanned = Math.min(enough, room);
-  return fanned === enough && reachOf(wanted, fanned, left, right) <= REACH ? fanned : Math.min(Math.max(least, usual), room);
+  for (let fanned = Math.min(enough, room); fanned >= Math.max(close, usual); fanned--) {
+    if (reachOf(wanted, fanned, left, right) <= REACH) return fanned;
+  }
+  return Math.min(Math.max(least, usual), room);
 }
 
 /** The furthest push, px. */

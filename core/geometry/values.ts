@@ -56,9 +56,25 @@ export function showsValues(place: BandPlace, isChosen: boolean): boolean {
   return place.hasValues || (isChosen && place.detail !== "slim");
 }
 
-/** A band's values, its track's too. */
+/** Pixels that a value's box, which is a little wider than its letters, may reach past its band's slot. */
+const CLOSE_OVERHANG = 6;
+
+/** Whole ohms without their letter: `470` for `470R`, as it is written where letters are many. */
+function shortCode(code: string | null): string | null {
+  return code === null ? null : code.replace(/^(\d+)R$/, "$1");
+}
+
+/** Characters of the longest value that stands at the right of a band's leg, in its short form; 0 where there is none. */
+export function closeLength(block: Block): number {
+  const codes = BLOCKS[block.kind].drawing.symbols.map((symbol) => ("role" in symbol && symbol.value.x > 0 ? shortCode(partCode(block, symbol.role)) : null));
+  return Math.max(0, ...codes.map((code) => code?.length ?? 0));
+}
+
+/** A band's values, its track's too; those that stand close are left out where they would run into the next band. */
 export function bandValues(place: BandPlace, block: Block): ValueTarget[] {
-  const values = drawingValues(block.id, BLOCKS[block.kind].drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, (role) => partCode(block, role));
+  const codeOf = (role: string): string | null => (place.isClose ? shortCode(partCode(block, role)) : partCode(block, role));
+  const written = drawingValues(block.id, BLOCKS[block.kind].drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, codeOf);
+  const values = place.isClose ? written.filter(({ box }) => box.right <= place.box.right + CLOSE_OVERHANG) : written;
   const track = partCode(block, "track");
   const fontSize = valueFontSize(place.legGrid);
   return track === null ? values : [...values, target(block.id, "track", track, { x: place.leadX + 4, y: place.trackTop + fontSize * 0.4, align: "left" }, fontSize)];

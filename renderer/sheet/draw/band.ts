@@ -86,10 +86,15 @@ function drawFigures(pen: Pen, place: BandPlace, block: Block, figures: BandFigu
     write(texts.cut, "cut", 11.5, inks.cutText, voids.cut);
     write(texts.centre, "centre", 11, inks.inkSoft, voids.boost);
     write(texts.quality, "quality", 11, inks.inkSoft, voids.boost);
-  } else {
+  } else if (place.figureRoom > 0) {
     const small = isSlim ? 10 : 11;
     const forms = peakForms(texts, voids);
-    const runs = forms.find((form) => widthOfRuns(pen, form, small) <= place.slot - 2) ?? forms.at(-1)!;
+    const runs = forms.find((form) => widthOfRuns(pen, form, small) <= place.figureRoom - 2) ?? forms.at(-1)!;
     drawRuns(pen, runs, place.x, figureLine(place, "peak"), { size: small, ...over });
+    if (place.detail === "medium") {
+      const fitted = (text: string): number => [11, 10.5, 10].find((s) => pen.widthOf(text, s) <= place.slot - 2) ?? 10;
+      write(texts.centre, "centre", fitted(texts.centre), inks.inkSoft, voids.boost);
+      write(texts.quality, "quality", fitted(texts.quality), inks.inkSoft, voids.boost);
+    }
   }
 }

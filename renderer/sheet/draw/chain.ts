@@ -37,6 +37,10 @@ function drawCaptions(pen: Pen, layout: SheetLayout, rail: RailPlace, hasFigures
     write("as it stands", "now");
   } else {
     write("peak, dB", "peak");
+    if (first.detail === "medium") {
+      write("centre", "centre");
+      write("width", "quality");
+    }
     write("now, dB", "now");
   }
 }

@@ -50,14 +50,14 @@ export function drawKnob(pen: Pen, place: BandPlace, position: number, now: numb
     ctx.lineTo(x, y + up * (half + 3.5));
     ctx.fill();
   }
-  if (now === undefined) return;
+  if (now === undefined || place.figureRoom === 0) return;
   const text = formatDb(now);
-  const shown = { size: place.detail === "full" ? 11 : place.detail === "short" ? 11 : 10, align: "center", color: isVoid ? inks.inkSoft : nowColor(pen, now), isStruck: isVoid } as const;
+  const shown = { size: place.detail === "slim" ? 10 : 11, align: "center", color: isVoid ? inks.inkSoft : nowColor(pen, now), isStruck: isVoid } as const;
   const bare = text.replace(" dB", "");
   const isBold = place.detail === "full";
   // Measured once: letters are what costs most in a frame of many bands.
   const room = pen.widthOf(isBold ? text : bare, shown.size, isBold);
-  const fits = isBold || room <= slot - 2;
+  const fits = isBold || room <= place.figureRoom - 2;
   const written = isBold ? text : fits ? bare : formatDb(now, 0).replace(" dB", "");
   const lineY = figureLine(place, "now");
   if (!isSelected) {

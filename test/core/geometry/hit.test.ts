@@ -8,12 +8,12 @@ import { boardOf, gyratorAt, THIRD_OCTAVES } from "../../helpers/sheet-boards.ts
 
 const at = (x: number, y: number) => ({ x: px(x), y: px(y) });
 
-function laidOut(frequencies: readonly number[]) {
+function laidOut(frequencies: readonly number[], width = 1090) {
   const project = boardOf(frequencies.map((f, i) => {
     const band = gyratorAt(f, `b${i}`);
     return { ...band, slider: { ...band.slider!, position: (i % 11) / 10 } };
   }));
-  const layout = layoutSheet({ project, figures: null, width: 1090, height: 780, range: { from: 20, to: 20e3 }, span: null, scroll: 0 });
+  const layout = layoutSheet({ project, figures: null, width, height: 780, range: { from: 20, to: 20e3 }, span: null, scroll: 0 });
   return { layout, blocks: new Map(project.blocks.map((b) => [b.id, b])) };
 }
 
@@ -38,7 +38,7 @@ describe("hit test", () => {
   });
 
   test("on a crowded bus the only selected band shows its values, and they can be taken", () => {
-    const { layout, blocks } = laidOut([100, 160, 250, 400, 630, 1000, 1600, 2500, 4000, 6300, 10e3, 16e3, 20, 31, 50, 80]);
+    const { layout, blocks } = laidOut([100, 160, 250, 400, 630, 1000, 1600, 2500, 4000, 6300, 10e3, 16e3, 20, 31, 50, 80], 960);
     const band = layout.bands[3];
     expect([band.hasValues, band.detail]).toEqual([false, "short"]);
     const value = bandValues(band, blocks.get(band.id)!).find((v) => v.role === "seriesC")!;

@@ -4,7 +4,7 @@ import { runs } from "../../fixtures/runs.ts";
 import { bandFrequency } from "../../../core/geometry/band-frequency.ts";
 import { arrangedPlaces, layoutSheet, movedPlace, type LayoutOpts, type SheetLayout } from "../../../core/geometry/layout.ts";
 import { pixelOf } from "../../../core/geometry/ruling.ts";
-import { overlaps } from "../../../core/geometry/units.ts";
+import { overlaps, type Box } from "../../../core/geometry/units.ts";
 import { bandValues, chainValues, showsValues } from "../../../core/geometry/values.ts";
 import type { Block, Project } from "../../../core/model/project.ts";
 import { boardOf, gyratorAt, THIRD_OCTAVES, twoStages } from "../../helpers/sheet-boards.ts";
@@ -24,6 +24,11 @@ function expectApart(layout: SheetLayout): void {
       expect(overlaps({ ...a, left: a.left + 1, right: a.right - 1 }, b), `${bands[i].id} and ${bands[j].id}`).toBe(false);
     }
   }
+}
+
+/** Where the letters of a value are, within the box in which it can be taken. */
+function letters({ box, fontSize, y }: ReturnType<typeof bandValues>[number]): Box {
+  return { left: box.left + 3, right: box.right - 3, top: y - fontSize * 0.4, bottom: y + fontSize * 0.4 };
 }
 
 const OCTAVES = [63, 125, 250, 500, 1000, 2000, 4000, 8000];
@@ -68,6 +73,43 @@ describe("layout", () => {
           if (showsValues(band, true)) for (const value of bandValues(band, bands[index])) expect(value.box.right, `${band.id} ${value.role}`).toBeLessThanOrEqual(right + 4);
         }
       }
+    }
+  });
+
+  test.each([
+    ["octaves in a small window", OCTAVES, 716, 608],
+    ["ten octaves in a small window", [31.5, ...OCTAVES, 16000], 716, 608],
+    ["twelve bands on a usual screen", [31.5, 50, 80, 125, 200, 400, 800, 1600, 3150, 5000, 8000, 12500], 1112, 778],
+  ])("all values, peak, centre and Q are written: %s", (_, frequencies, width, height) => {
+    const two = (value: number): { value: number } => ({ value: Number(value.toPrecision(2)) });
+    const bands = frequencies.map((f) => ({ ...gyratorAt(f, `b${f}`.replace(".", "_")), parts: { seriesC: two(220e-6 / f), seriesR: { value: 470 }, gyratorC: two(3.9e-6 / f), gyratorR: { value: 62e3 } } }));
+    const layout = layoutSheet({ project: boardOf(bands), figures: null, width, height, range: RANGE, span: null, scroll: 0 });
+    const values = layout.bands.flatMap((place, n) => bandValues(place, bands[n]));
+    expect(layout.bands.filter((band) => !band.hasValues || !["full", "medium"].includes(band.detail) || band.figureRoom < 45)).toEqual([]);
+    expect(layout.mostScroll).toBe(0);
+    expect(values).toHaveLength(5 * bands.length);
+    expect(values.filter((value) => value.fontSize < 10)).toEqual([]);
+    for (const [i, a] of values.entries()) {
+      for (const b of values.slice(i + 1)) expect(overlaps(letters(a), letters(b)), `${a.id} ${a.text} and ${b.id} ${b.text}`).toBe(false);
+    }
+  });
+
+  test("whole ohms that stand close lose their letter, and a value that would run into the next band is left out", () => {
+    const wide = { ...gyratorAt(1000), parts: { seriesC: { value: 220e-9 }, seriesR: { value: 470 }, gyratorC: { value: 3.92e-9 }, gyratorR: { value: 62e3 } } };
+    const place = layOut(boardOf([31.5, ...OCTAVES, 16000].map((f) => (f === 1000 ? wide : gyratorAt(f, `b${f}`.replace(".", "_"))))), { width: 716, height: 608 }).bands.find((band) => band.id === wide.id)!;
+    const texts = (at: typeof place): string[] => bandValues(at, wide).map((value) => value.text);
+    expect(texts(place)).toEqual(["220n", "470", "3n92", "62k", "50k"]);
+    expect(texts({ ...place, box: { ...place.box, right: place.box.right - 12 } })).toEqual(["470", "50k"]);
+  });
+
+  test("figures of very close bands are thinned out until neighbours stand apart", () => {
+    const project = boardOf(THIRD_OCTAVES.map((f) => gyratorAt(f, `b${f}`.replace(".", "_"))));
+    for (const width of [716, 1090, 1900]) {
+      const written = layOut(project, { width }).bands.filter((band) => band.figureRoom > 0).toSorted((a, b) => a.x - b.x);
+      expect(written.length).toBeGreaterThan(10);
+      // As wide as `+11.1` at the smallest size.
+      for (const band of written) expect(band.figureRoom).toBeGreaterThanOrEqual(27);
+      for (const [n, band] of written.slice(1).entries()) expect(band.x - written[n].x).toBeGreaterThanOrEqual(band.figureRoom - 1);
     }
   });
 

@@ -48,7 +48,7 @@ describe("spread", () => {
 });
 
 describe("slot width", () => {
-  const SIZES = { best: 88, enough: 69, least: 28 };
+  const SIZES = { best: 88, enough: 69, close: 46, least: 28 };
   const reach = (wanted: readonly number[], width: number): number => Math.max(...spread(wanted, width, 0, 1000).map((x, i) => Math.abs(x - wanted[i])));
 
   test("as wide as is best where there is room", () => {
