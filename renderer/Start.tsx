@@ -4,6 +4,7 @@ import { createDrawer } from "./drawer/drawer-store.ts";
 import type { ActionContext } from "./editor/actions/action.ts";
 import { createFiles } from "./editor/files.ts";
 import type { Editor } from "./editor/store.ts";
+import { tellSteps } from "./editor/told.ts";
 import type { Ui } from "./editor/ui.ts";
 import type { Shell } from "./editor/hooks.ts";
 import type { HostClient } from "./host/client.ts";
@@ -36,6 +37,7 @@ async function start(editor: Editor, ui: Ui): Promise<Shell> {
   host.on("project.openRequested", ({ path }) => void files.openPath(path));
   const sheetRef: { current: SheetHandle | null } = { current: null };
   await files.launch();
+  tellSteps(editor, ui);
   const analyst = createAnalyst(editor, () => new Worker(new URL("./worker/worker.ts", import.meta.url), { type: "module" }));
   const context: ActionContext = {
     editor,

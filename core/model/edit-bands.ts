@@ -9,8 +9,8 @@ import { newBlock } from "./new-project.ts";
 import { patchBetween, type Patch } from "./patch.ts";
 import { partsOf, type Block, type Part, type Project, type SheetPoint, type Wire } from "./project.ts";
 
-/** An edit that brings blocks in, and their ids, to be selected. */
-export type Addition = { readonly ok: true; readonly patch: Patch; readonly ids: readonly string[] } | { readonly ok: false; readonly message: string };
+/** An edit that brings blocks in, with their ids, to be selected, and their names, to be told. */
+export type Addition = { readonly ok: true; readonly patch: Patch; readonly ids: readonly string[]; readonly names: readonly string[] } | { readonly ok: false; readonly message: string };
 
 /** Nominal octave-band centres, Hz (ISO 266:1997, preferred frequencies), over the whole of hearing. */
 export const OCTAVE_CENTRES = [16, 31.5, 63, 125, 250, 500, 1000, 2000, 4000, 8000, 16000] as const;
@@ -61,6 +61,14 @@ function freshId(project: Project, wish: string, taken: ReadonlySet<string> = ne
   for (let n = 2; ; n++) if (!used.has(`${wish}-${n}`)) return `${wish}-${n}`;
 }
 
+/** A name that no block has yet: `1 kHz`, then `1 kHz · 2`. */
+function freshLabel(project: Project, wish: string, taken: ReadonlySet<string> = new Set()): string {
+  const used = new Set([...project.blocks.map(blockName), ...taken]);
+  if (!used.has(wish)) return wish;
+  const stem = wish.replace(/ · \d+$/, "");
+  for (let n = 2; ; n++) if (!used.has(`${stem} · ${n}`)) return `${stem} · ${n}`;
+}
+
 /** `1 kHz` → `b1k`, `31.5 Hz` → `b31.5`: short enough to type on the command line. A dot would end the id in a wire. */
 function idForFrequency(frequency: number): string {
   return `b${formatValue(frequency, "frequency").replace(/\s|Hz/g, "").replace(".", "_")}`;
@@ -105,7 +113,7 @@ export function addBand(project: Project, stage: string, kind: BlockKind, freque
   const fresh = newBlock(kind, "");
   const isTuned = lawResonance(kind, partsOf(fresh)) !== undefined;
   const id = freshId(project, isTuned ? idForFrequency(frequency) : (KIND_ID[kind] ?? kind));
-  const label = isTuned ? formatValue(frequency, "frequency") : (KIND_LABEL[kind] ?? BLOCKS[kind].label);
+  const label = freshLabel(project, isTuned ? formatValue(frequency, "frequency") : (KIND_LABEL[kind] ?? BLOCKS[kind].label));
   const slider = neighbours.findLast((b) => b.slider)?.slider ?? fresh.slider;
   const opAmp = neighbours.findLast((b) => b.opAmp !== undefined && BLOCKS[b.kind].hasOpAmp)?.opAmp ?? fresh.opAmp;
   const band: Block = {
@@ -117,7 +125,7 @@ export function addBand(project: Project, stage: string, kind: BlockKind, freque
     parts: isTuned ? tuned(kind, partsOf(fresh), frequency) : partsOf(fresh),
   };
   const wire = { from: `${stage}.bus`, to: `${id}.bus` };
-  return { ok: true, ids: [id], patch: patchBetween(project, withBlocks(project, [band], [wire])) };
+  return { ok: true, ids: [id], names: [label], patch: patchBetween(project, withBlocks(project, [band], [wire])) };
 }
 
 /** Puts a buffer or a further stage into the chain, behind the given block (which must have an out). */
@@ -128,7 +136,7 @@ export function addToChain(project: Project, kind: BlockKind, after: string): Ad
   const wires = project.wires.map((w) => (w.from === `${after}.out` ? { ...w, from: `${id}.out` } : w));
   const at = project.blocks.indexOf(block) + 1;
   const blocks = [...project.blocks.slice(0, at), newBlock(kind, id), ...project.blocks.slice(at)];
-  return { ok: true, ids: [id], patch: patchBetween(project, { ...project, blocks, wires: [...wires, { from: `${after}.out`, to: `${id}.in` }] }) };
+  return { ok: true, ids: [id], names: [blockName(blocks[at])], patch: patchBetween(project, { ...project, blocks, wires: [...wires, { from: `${after}.out`, to: `${id}.in` }] }) };
 }
 
 /**
@@ -167,6 +175,7 @@ export function copyBands(project: Project, bands: readonly Block[], stage: stri
   const able = bands.filter((b) => BAND_KINDS.includes(b.kind));
   if (able.length === 0) return { ok: false, message: "Only bands can be copied: the other blocks each have their one place in the chain." };
   const taken = new Set<string>();
+  const labels = new Set<string>();
   const blocks: Block[] = [];
   const wires: Wire[] = [];
   for (const band of able) {
@@ -174,13 +183,15 @@ export function copyBands(project: Project, bands: readonly Block[], stage: stri
     if (bus === undefined) return { ok: false, message: "There is no stage to hang the copy on." };
     const id = freshId(project, band.id.replace(/-\d+$/, ""), taken);
     taken.add(id);
+    const label = freshLabel(project, blockName(band), labels);
+    labels.add(label);
     // Without a place of its own the copy goes under its frequency, beside the original.
     const { at: _at, ...rest } = band;
     const at = places?.get(band.id);
-    blocks.push({ ...rest, id, label: blockName(band), ...(at ? { at } : {}) });
+    blocks.push({ ...rest, id, label, ...(at ? { at } : {}) });
     wires.push({ from: `${bus}.bus`, to: `${id}.bus` });
   }
-  return { ok: true, ids: blocks.map((b) => b.id), patch: patchBetween(project, withBlocks(project, blocks, wires)) };
+  return { ok: true, ids: blocks.map((b) => b.id), names: blocks.map(blockName), patch: patchBetween(project, withBlocks(project, blocks, wires)) };
 }
 
 /** Copies of bands within their project; `places`, by the original's id, for copies that a hand put somewhere. */

@@ -18,6 +18,9 @@ export interface RestoredProject {
   readonly warnings: readonly Fault[];
 }
 
+/** What a file of a later version asks for: there is nothing in it to be mended. */
+export const NEEDS_NEWER = "open it with a newer one";
+
 /**
  * A project from the text of its file. Everything is checked before anything is used; unknown keys are kept.
  * @throws FaultError with every fault, each with its JSON path and what was expected
@@ -35,7 +38,7 @@ export function restoreProject(text: string): RestoredProject {
   const { format, version } = record;
   if (format !== PROJECT_FORMAT) return fail([{ path: "format", message: `must be "${PROJECT_FORMAT}", got ${showValue(format)}: this is not a project file` }]);
   if (typeof version === "number" && version > PROJECT_VERSION) {
-    return fail([{ path: "version", message: `this file is of version ${version}, and this Bandwright reads version ${PROJECT_VERSION}: open it with a newer one` }]);
+    return fail([{ path: "version", message: `this file is of version ${version}, and this Bandwright reads version ${PROJECT_VERSION}: ${NEEDS_NEWER}` }]);
   }
   if (version !== PROJECT_VERSION) return fail([{ path: "version", message: `must be ${PROJECT_VERSION}, got ${showValue(version)}` }]);
 

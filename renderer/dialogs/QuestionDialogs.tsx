@@ -1,4 +1,5 @@
 import { useRef } from "react";
+import { NEEDS_NEWER } from "../../core/model/restore.ts";
 import type { Dialogs, DialogName } from "../editor/ui.ts";
 import { fileName } from "../editor/files.ts";
 import { DialogFrame } from "./DialogFrame.tsx";
@@ -129,7 +130,7 @@ export function FaultsDialog({ ask, close }: DialogProps<"faults">) {
           </li>
         ))}
       </ul>
-      <p className="hint">Mend these places in a text editor and open it again, or open an earlier copy.</p>
+      <p className="hint">{faults.some((fault) => fault.message.endsWith(NEEDS_NEWER)) ? "Nothing in it has to be mended." : "Mend these places in a text editor and open it again, or open an earlier copy."}</p>
     </DialogFrame>
   );
 }

@@ -17,8 +17,9 @@ export function StatusLine() {
   return (
     <footer className="status-line">
       {view === "drawer" ? <DrawerReading /> : view === "board" ? <CursorReading /> : <span className="status-reading" />}
-      <p key={notice?.key} className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
-        {notice?.text}
+      {/* The paragraph stays, for screen readers tell what changes in one, not that one came; what it says is new each time, the same words too. */}
+      <p className={notice?.isWarning ? "status-notice is-warning" : "status-notice"} role="status">
+        <span key={notice?.key}>{notice?.text}</span>
       </p>
       {isSingle && <span className="status-caution">single supply: mind the polarity of coupling capacitors</span>}
       {flatness !== null && (

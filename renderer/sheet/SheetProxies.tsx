@@ -125,7 +125,7 @@ function ResponseProxy({ layout, results, isVoid, overlay, onCursorAt }: Respons
       aria-valuemin={Math.round(first)}
       aria-valuemax={Math.round(last)}
       aria-valuenow={Math.round(at)}
-      aria-valuetext={[formatFigure(at, "frequency"), ...(isVoid ? ["unstable"] : reading ? [`${formatDb(reading.gain, 2)}, ${degreesText(reading.phase, 0)}`] : [])].join(": ")}
+      aria-valuetext={[formatFigure(at, "frequency"), ...(isVoid ? ["unstable"] : reading ? [`${formatDb(reading.gain, 2)}, ${degreesText(reading.phase)}`] : [])].join(": ")}
       style={{ left: response.left, top: response.top, width: response.right - response.left, height: response.bottom - response.top }}
       onKeyDown={onKeyDown}
       onFocus={(event) => {

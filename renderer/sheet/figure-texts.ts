@@ -73,10 +73,11 @@ export function voidEndsText({ boost, cut }: VoidEnds): string {
   return ends.length === 0 ? "" : `unstable at ${ends.join(" and ")}`;
 }
 
-/** A label as it fits: whole, without its unit's letters, as a code, cut short. */
+/** A label as it fits: whole, without its unit's letters, as a code, cut short; a number that tells two of a name apart stays. */
 export function fittedLabel(label: string, fits: (text: string) => boolean): string {
-  const frequency = /^([\d.,]+)\s*(k?)Hz$/i.exec(label.trim());
-  const forms = frequency ? [label, `${frequency[1]} ${frequency[2]}`.trim(), `${frequency[1]}${frequency[2]}`] : [label];
+  const frequency = /^([\d.,]+)\s*(k?)Hz(?: · (\d+))?$/i.exec(label.trim());
+  const number = frequency?.[3] === undefined ? "" : `·${frequency[3]}`;
+  const forms = frequency ? [label, `${`${frequency[1]} ${frequency[2]}`.trim()}${number}`, `${frequency[1]}${frequency[2]}${number}`] : [label];
   const form = forms.find(fits);
   if (form !== undefined) return form;
   const last = forms.at(-1)!;

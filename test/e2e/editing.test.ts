@@ -346,7 +346,7 @@ describe("a small window", () => {
     await page.getByTestId("stability").evaluate((element) => {
       element.textContent = "smallest phase margin 123° (a band with quite a long name of its own) · computing…";
     });
-    await page.getByRole("status").evaluate((element) => {
+    await page.getByRole("status").locator("span").evaluate((element) => {
       element.textContent = "Opened a-project-with-a-very-long-name-that-goes-on-and-on-and-on.bandwright.";
     });
     expect(await page.evaluate(() => document.documentElement.scrollWidth)).toBe(1024);
@@ -376,6 +376,27 @@ describe("bands", () => {
     expect((await session.sheet.bands()).toSorted()).toEqual(first.toSorted());
     for (let n = 0; n < 5; n++) await session.keyboard.undo();
     expect((await session.sheet.bands()).toSorted()).toEqual(first.toSorted());
+    expect(await session.subtitle()).toContain("read-only demo");
+  });
+
+  test("what was done is told in a status that stays, and a band added by key has the focus", async () => {
+    const { page, keyboard } = session;
+    const status = page.getByRole("status");
+    const element = await status.elementHandle();
+    await session.sheet.knob("b1k").focus();
+    await keyboard.press("h");
+    expect(await status.innerText()).toBe("Added high shelf section “High”.");
+    const focused = (): Promise<string | null> => page.evaluate(() => document.activeElement!.getAttribute("aria-label"));
+    expect(await focused()).toContain("High");
+    await keyboard.command("Add inductor section");
+    await expect.poll(() => status.innerText()).toMatch(/^Added inductor section “/);
+    expect(await focused()).toContain((await status.innerText()).split(/[“”]/)[1]);
+    await keyboard.press("Delete");
+    expect(await status.innerText()).toMatch(/^Deleted “/);
+    await keyboard.undo();
+    expect(await status.innerText()).toMatch(/^Undone: delete “/);
+    expect(await status.evaluate((now, then) => now === then, element)).toBe(true);
+    for (let n = 0; n < 2; n++) await keyboard.undo();
     expect(await session.subtitle()).toContain("read-only demo");
   });
 

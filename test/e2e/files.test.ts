@@ -84,9 +84,19 @@ describe("files", () => {
     expect(faults).toContain("supply.positive");
     expect(faults).toContain("must be a number above 0, got -3");
     expect(faults).toContain("wires[0].to");
+    expect(await dialog.innerText()).toContain("Mend these places in a text editor");
     await session.keyboard.press("Escape");
     expect(await session.page.title()).toContain("Saltmarsh");
     expect(await readFile(session.path("broken.bandwright"), "utf8")).toBe(BROKEN);
+  });
+
+  test("a file of a later version asks for a later program, and for no mending", async () => {
+    session = await Session.start(browser, { file: DEMO, projects: { "later.bandwright": JSON.stringify({ format: "bandwright-project", version: 99 }) } });
+    await session.keyboard.press("Control+o");
+    await session.page.getByRole("option", { name: "later" }).dblclick();
+    const words = await session.dialog("later.bandwright was not opened").innerText();
+    expect(words).toContain("open it with a newer one");
+    expect(words).not.toContain("Mend these places");
   });
 
   test("wiring faults open the board, and lead to the blocks", async () => {

@@ -23,6 +23,11 @@ function centres(c: ActionContext): number[] {
     .filter((frequency) => frequency !== null);
 }
 
+/** `a shelf section`, `an inductor section`. */
+function withArticle(noun: string): string {
+  return `${/^[aeiou]/.test(noun) ? "an" : "a"} ${noun}`;
+}
+
 const lower = (kind: BlockKind): string => BLOCKS[kind].label.toLowerCase();
 
 function sliders(c: ActionContext): Block[] {
@@ -49,7 +54,10 @@ const addActions = BAND_KINDS.map((kind): Action => {
     id: `add-${kind}`, label: `Add ${lower(kind)}`, keywords: "new band insert create filter", menu: "Bands", group: 1,
     ...(chord === undefined ? {} : { chords: [chord] }),
     when: (c) => chosenStage(c) !== undefined,
-    perform: (c) => add(c, `add ${lower(kind)}`, addBand(c.editor.store.getState().project, chosenStage(c)!, kind, nextCentre(centres(c)))),
+    perform: (c) => {
+      const addition = addBand(c.editor.store.getState().project, chosenStage(c)!, kind, nextCentre(centres(c)));
+      add(c, addition.ok ? `add ${lower(kind)} “${addition.names[0]}”` : "", addition);
+    },
   };
 });
 
@@ -59,7 +67,7 @@ const changeActions = BAND_KINDS.map(
     when: (c) => selectedBlocks(c).some((b) => BAND_KINDS.includes(b.kind) && b.kind !== kind),
     perform: (c) => {
       const blocks = selectedBlocks(c);
-      for (const block of blocks) c.editor.apply(`make ${namesOf([block])} a ${lower(kind)}`, changeKind(c.editor.store.getState().project, block.id, kind));
+      for (const block of blocks) c.editor.apply(`make ${namesOf([block])} ${withArticle(lower(kind))}`, changeKind(c.editor.store.getState().project, block.id, kind));
     },
   }),
 );

@@ -1,3 +1,4 @@
+import { flushSync } from "react-dom";
 import { BAND_KINDS, BLOCKS } from "../../../core/blocks/index.ts";
 import { blockName, removeBlocks } from "../../../core/model/edit.ts";
 import { copyBands, duplicateBands, stageOf, type Addition } from "../../../core/model/edit-bands.ts";
@@ -12,14 +13,18 @@ export function namesOf(blocks: readonly Block[]): string {
   return blocks.length === 1 ? `“${blockName(blocks[0])}”` : `${blocks.length} blocks`;
 }
 
-/** Applies an addition as one step and selects what came. */
+/** Applies an addition as one step, selects what came and gives it the focus. */
 export function add(c: ActionContext, label: string, addition: Addition): void {
   if (!addition.ok) {
     c.ui.notify(addition.message, true);
     return;
   }
-  c.editor.apply(label, addition.patch);
-  c.editor.select(addition.ids);
+  // On the screen at once, so that it can take the focus before the next key.
+  flushSync(() => {
+    c.editor.apply(label, addition.patch);
+    c.editor.select(addition.ids);
+  });
+  c.sheet()?.focusBlock(addition.ids[0]);
 }
 
 /** In the drawer Undo is the drawer's, and says so; commands about blocks wait for the board. */

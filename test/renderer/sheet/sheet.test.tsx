@@ -178,7 +178,7 @@ describe("the sheet", () => {
   test("the response has a cursor for keys and for the pointer", async () => {
     const response = sheet.page.querySelector<HTMLElement>("[data-response]")!;
     await press(response, "ArrowRight");
-    expect(response.getAttribute("aria-valuetext")).toMatch(/^1\.03 kHz: [+−]?\d+\.\d\d dB, −?\d+°$/);
+    expect(response.getAttribute("aria-valuetext")).toMatch(/^1\.03 kHz: [+−]?\d+\.\d\d dB, −?\d+\.\d°$/);
     const at = sheet.handle.screenPlaceOf("b250", "knob")!;
     await point("pointermove", { x: at.x, y: 100 });
     const [, frequency] = sheet.log.findLast(([name]) => name === "cursor")! as [string, number];
