@@ -22,9 +22,10 @@ function knobBox(place: BandPlace, position: number): Box {
 
 /**
  * The topmost thing at a point: knobs before values before blocks. Of knobs that share the point, the nearest one.
- * Nothing on the board can be hit through the response above it. `chosen`: the only band selected.
+ * Nothing on the board can be hit through the response above it. `chosen`: the only band selected;
+ * `card`: where the card with its figures lies, which is a part of it.
  */
-export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>, at: ScreenPoint, chosen: string | null = null): Hit | null {
+export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>, at: ScreenPoint, chosen: string | null = null, card: Box | null = null): Hit | null {
   const { x, y } = at;
   if (y < layout.frame.board.top || y > layout.frame.board.bottom) return null;
   const { left, right } = layout.frame.ruling;
@@ -43,6 +44,7 @@ export function hitTest(layout: SheetLayout, blocks: ReadonlyMap<string, Block>,
   ];
   const value = values.find((v) => isInside(v.box, x, y));
   if (value) return { part: "value", id: value.id, value };
+  if (chosen !== null && card !== null && isInside(card, x, y)) return { part: "block", id: chosen };
   const box = (isOnRuling ? layout.bands.findLast((b) => isInside(b.box, x, y)) : undefined) ?? layout.chain.findLast((c) => isInside(c.box, x, y));
   return box ? { part: "block", id: box.id } : null;
 }

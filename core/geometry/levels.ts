@@ -6,7 +6,7 @@ export interface LevelSpan {
 }
 
 const LEAST = 12;
-const MOST_BELOW = 40;
+const MOST_BELOW = 60;
 
 /**
  * A span that holds what the sliders can do and what they do now. It moves in steps of 3 dB, so that the axis stands
@@ -37,6 +37,27 @@ export function levelTicks(span: LevelSpan, height: number, leastGap = 24): numb
   const out: number[] = [];
   for (let n = Math.ceil(span.bottom / step); n * step <= span.top; n++) out.push(n * step);
   return out;
+}
+
+/** A place where a curve goes on below the axis, and how far, dB. */
+export interface Low {
+  readonly frequency: number;
+  readonly gain: number;
+}
+
+/** The lowest point of every stretch of a curve, between two frequencies, that lies below the axis. */
+export function lowsBelow(span: LevelSpan, { frequency, gain }: { readonly frequency: Float64Array; readonly gain: Float64Array }, { from, to }: { readonly from: number; readonly to: number }): Low[] {
+  const lows: Low[] = [];
+  let low: Low | null = null;
+  for (let i = 0; i < frequency.length; i++) {
+    const isBelow = gain[i] < span.bottom && frequency[i] >= from && frequency[i] <= to;
+    if (isBelow && (low === null || gain[i] < low.gain)) low = { frequency: frequency[i], gain: gain[i] };
+    if (low !== null && (!isBelow || i === frequency.length - 1)) {
+      lows.push(low);
+      low = null;
+    }
+  }
+  return lows;
 }
 
 /** Up to the next 3 dB, a little room included. */

@@ -4,6 +4,7 @@ import { arrangedPlaces, layoutSheet, movedPlace } from "../../core/geometry/lay
 import { placeOf } from "../../core/geometry/hit.ts";
 import { isSameSheet } from "../../core/geometry/rails.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
+import type { Box } from "../../core/geometry/units.ts";
 import { bandValues, chainValues, type ValueTarget } from "../../core/geometry/values.ts";
 import { partsOf, type Project, type SheetPoint } from "../../core/model/project.ts";
 import { createOverlay } from "./overlay-store.ts";
@@ -28,6 +29,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
   const areFontsReady = useFontsReady();
   const { view, setView, fit } = useView();
   const [overlay] = useState(createOverlay);
+  const card = useRef<Box | null>(null);
   const [held, setHeld] = useState<string | null>(null);
   const [moving, setMoving] = useState<ReadonlyMap<string, SheetPoint> | null>(null);
   const [editing, setEditing] = useState<{ id: string; role: string } | null>(null);
@@ -65,7 +67,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
   };
   const edit = (id: string, role: string): void => setEditing({ id, role });
   const gestures = useGestures({
-    element, layout, blocks, props, overlay, moving, setMoving, setHeld, onPan: pan, onZoom: zoom,
+    element, layout, blocks, props, overlay, card, moving, setMoving, setHeld, onPan: pan, onZoom: zoom,
     onEdit: (value) => edit(value.id, value.role), onCursorAt,
   });
 
@@ -157,7 +159,7 @@ export function Sheet({ ref, ...props }: SheetProps & { readonly ref?: Ref<Sheet
       {layout && areFontsReady && (
         <SheetStage
           layout={layout} drawn={drawn} blocks={blocks} results={results} selection={selection} held={held} inks={INKS[theme]} ratio={ratio}
-          isPhaseShown={props.isPhaseShown ?? false} isVoid={isVoid} unstableEnds={unstableEnds} overlay={overlay}
+          isPhaseShown={props.isPhaseShown ?? false} isVoid={isVoid} unstableEnds={unstableEnds} overlay={overlay} cardPlace={card}
         />
       )}
       {layout && (

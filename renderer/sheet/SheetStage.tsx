@@ -1,10 +1,11 @@
-import { memo, useCallback, useMemo } from "react";
+import { memo, useCallback, useMemo, type RefObject } from "react";
 import { Layer, Stage } from "react-konva";
 import { useStore } from "zustand";
 import type { ChainPlace } from "../../core/geometry/chain.ts";
 import type { SheetLayout } from "../../core/geometry/layout.ts";
 import { levelSpan, phaseSpan, type LevelSpan } from "../../core/geometry/levels.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
+import type { Box } from "../../core/geometry/units.ts";
 import { showsValues } from "../../core/geometry/values.ts";
 import type { Block, Project } from "../../core/model/project.ts";
 import { BandScene } from "./BandScene.tsx";
@@ -36,6 +37,8 @@ interface SheetStageProps {
   readonly isVoid: boolean;
   readonly unstableEnds: NonNullable<SheetProps["unstableEnds"]>;
   readonly overlay: OverlayStore;
+  /** Takes where the selected band's card lies, for hands that point at it. */
+  readonly cardPlace: RefObject<Box | null>;
 }
 
 /**
@@ -43,7 +46,7 @@ interface SheetStageProps {
  * A knob that moves redraws the third alone.
  */
 export function SheetStage(props: SheetStageProps) {
-  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, isVoid, unstableEnds, overlay } = props;
+  const { layout, drawn, blocks, results, selection, held, inks, ratio, isPhaseShown, isVoid, unstableEnds, overlay, cardPlace } = props;
   const { frame } = layout;
   const figures = results?.figures;
   const { levels, phase } = useSpans(results, isPhaseShown);
@@ -110,12 +113,13 @@ export function SheetStage(props: SheetStageProps) {
       });
       pen.clipped(ruling.left, board.top, frame.width, board.bottom, () => {
         if (card && chosen) drawCard(pen, (card.settled ??= card.settle(pen)), results?.liveGain.get(chosen.id), isVoid);
+        cardPlace.current = card?.settled?.place?.box ?? null;
         const grip = held === null ? undefined : layout.bands.find((b) => b.id === held);
         // The card tells the same, and stays where it is.
         if (grip && !card?.settled?.place) drawHeldTag(pen, layout, grip, blocks.get(grip.id)?.slider?.position ?? 0.5, results?.liveGain.get(grip.id));
       });
     },
-    [layout, frame, scene, results, blocks, selected, chosen, chosenBlock, card, held, isVoid],
+    [layout, frame, scene, results, blocks, selected, chosen, chosenBlock, card, cardPlace, held, isVoid],
   );
 
   return (

@@ -2,7 +2,7 @@ import { useEffect, useRef, useState, type MouseEvent, type PointerEvent, type R
 import { blocksIn, hitTest, type Hit } from "../../core/geometry/hit.ts";
 import { movedPlace, type SheetLayout } from "../../core/geometry/layout.ts";
 import { frequencyAt } from "../../core/geometry/ruling.ts";
-import { px } from "../../core/geometry/units.ts";
+import { px, type Box } from "../../core/geometry/units.ts";
 import type { ValueTarget } from "../../core/geometry/values.ts";
 import type { Block, SheetPoint } from "../../core/model/project.ts";
 import type { OverlayStore } from "./overlay-store.ts";
@@ -21,6 +21,8 @@ export interface GestureOpts {
   readonly blocks: ReadonlyMap<string, Block>;
   readonly props: SheetProps;
   readonly overlay: OverlayStore;
+  /** Where the selected band's card was drawn. */
+  readonly card: RefObject<Box | null>;
   readonly moving: ReadonlyMap<string, SheetPoint> | null;
   readonly setMoving: (moving: ReadonlyMap<string, SheetPoint> | null) => void;
   readonly setHeld: (id: string | null) => void;
@@ -48,7 +50,7 @@ export function useGestures(opts: GestureOpts) {
     const box = element.current?.getBoundingClientRect();
     return { x: event.clientX - (box?.left ?? 0), y: event.clientY - (box?.top ?? 0) };
   };
-  const hitAt = ({ x, y }: { x: number; y: number }): Hit | null => (layout ? hitTest(layout, blocks, { x: px(x), y: px(y) }, onlyOf(props.selection)) : null);
+  const hitAt = ({ x, y }: { x: number; y: number }): Hit | null => (layout ? hitTest(layout, blocks, { x: px(x), y: px(y) }, onlyOf(props.selection), opts.card.current) : null);
   const finish = (): void => {
     gesture.current = null;
     overlay.setState({ marquee: null });

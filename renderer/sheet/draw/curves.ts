@@ -1,9 +1,10 @@
 import type { BandFigures } from "../../../core/analysis/bands.ts";
-import { levelY, type LevelSpan } from "../../../core/geometry/levels.ts";
+import { levelY, lowsBelow, type LevelSpan } from "../../../core/geometry/levels.ts";
 import { pixelOf, type Ruling } from "../../../core/geometry/ruling.ts";
 import type { Box } from "../../../core/geometry/units.ts";
 import type { Curve, Ghost } from "../sheet-props.ts";
 import { drawNames } from "./curve-names.ts";
+import { formatDb } from "../../../core/units.ts";
 import { faint, type Pen } from "./pen.ts";
 
 export interface CurveScene {
@@ -45,7 +46,24 @@ export function drawCurves(pen: Pen, scene: CurveScene): void {
     // Dots over the lines, so that what stays the same shows as much as what moves.
     if (ghost) for (const curve of [ghost.total, ...(ghost.alone ? [ghost.alone] : [])]) stroke(pen, scene, curve.frequency, curve.gain, scene.levels, inks.accent, 2.4, [0.1, 5]);
   });
+  if (total) drawLows(pen, scene, total);
   drawNames(pen, scene);
+}
+
+/** Where the curve leaves the plot below: an arrow, and how far down it goes. */
+function drawLows(pen: Pen, { response, ruling, levels, isVoid }: CurveScene, total: Curve): void {
+  const color = isVoid ? pen.inks.inkSoft : pen.inks.ink;
+  const size = 10;
+  const y = response.bottom - 9;
+  let free = response.left;
+  for (const { frequency, gain } of lowsBelow(levels, total, ruling)) {
+    const text = `▼ ${formatDb(gain, 0)}`;
+    const width = pen.widthOf(text, size, true);
+    const left = Math.max(free, Math.min(response.right - width - 4, pixelOf(ruling, frequency) + 4));
+    if (left + width > response.right) return;
+    pen.text(text, left, y, { size, isBold: true, color, isStruck: isVoid, halo: pen.inks.paper });
+    free = left + width + 8;
+  }
 }
 
 /** Pixels from one point of a curve to the next: less cannot be seen and costs time. */

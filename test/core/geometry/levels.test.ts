@@ -1,7 +1,7 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { runs } from "../../fixtures/runs.ts";
-import { levelSpan, levelTicks, levelY } from "../../../core/geometry/levels.ts";
+import { levelSpan, levelTicks, levelY, lowsBelow } from "../../../core/geometry/levels.ts";
 import { readCurve } from "../../../core/geometry/reading.ts";
 
 describe("level axis", () => {
@@ -13,7 +13,18 @@ describe("level axis", () => {
   });
 
   test("a roll-off far below does not flatten the rest", () => {
-    expect(levelSpan([], [Float64Array.of(-120, 0)]).bottom).toBeGreaterThan(-45);
+    const span = levelSpan([], [Float64Array.of(-120, 0)]);
+    expect(span.bottom).toBeGreaterThan(-65);
+    // What the axis does not hold is told where it leaves.
+    const curve = { frequency: Float64Array.of(10, 20, 30, 40, 50, 60, 70), gain: Float64Array.of(-200, -120, -130, 0, 3, -70, -64) };
+    expect(lowsBelow(span, curve, { from: 15, to: 70 })).toEqual([{ frequency: 30, gain: -130 }, { frequency: 60, gain: -70 }]);
+  });
+
+  test("holds the whole curve of three stages at full cut", () => {
+    const curve = { frequency: Float64Array.of(20, 25, 31.5), gain: Float64Array.of(-43.2, -42.9, -40.1) };
+    const span = levelSpan([-15, 15], [curve.gain]);
+    expect(span.bottom).toBeLessThan(-43.2);
+    expect(lowsBelow(span, curve, { from: 20, to: 20e3 })).toEqual([]);
   });
 
   test("ticks are multiples of a 1-2-5 step, ascending, apart, with 0 among them", () => {

@@ -255,6 +255,16 @@ describe("the sheet", () => {
     expect(inside.join(" ")).toMatch(/1 kHz.*▲.*▼.*Q /);
     // Nothing but its own lines: every other band's label and figures stay in sight.
     expect(inside.filter((text) => /^\d/.test(text) && text !== "1 kHz")).toEqual([]);
+    // A click on the card is one on its band, not on bare paper.
+    const click = async (at: { x: number; y: number }): Promise<void> => {
+      for (const type of ["pointerdown", "pointerup"]) {
+        await act(async () => void other.sheet.dispatchEvent(new MouseEvent(type, { bubbles: true, cancelable: true, button: 0, clientX: at.x, clientY: at.y })));
+      }
+    };
+    await click({ x, y });
+    expect(other.selection()).toEqual(["b1000"]);
+    await click({ x: x - width / 2 - 3, y: y + height / 2 + 3 });
+    expect(other.selection()).not.toEqual(["b1000"]);
     await other.unmount();
   });
 
