@@ -1,6 +1,7 @@
 /** The part values written on the sheet: what they say and where they stand. */
 import type { Align, Drawing } from "../blocks/drawing.ts";
 import { BLOCKS } from "../blocks/index.ts";
+import { impracticalText, isImpractical } from "../blocks/practical.ts";
 import { partsOf, type Block, type Part } from "../model/project.ts";
 import { formatCode } from "../units.ts";
 import type { BandPlace } from "./band-place.ts";
@@ -16,8 +17,13 @@ export interface ValueTarget {
   readonly y: number;
   readonly align: Align;
   readonly fontSize: number;
+  /** No part has such a value. */
+  readonly isOdd: boolean;
   readonly box: Box;
 }
+
+/** Stands behind a value that no part has. */
+const ODD = " !";
 
 /** Where a drawing stands and how large it is. */
 export interface DrawingPlace {
@@ -37,7 +43,7 @@ function partCode(block: Block, role: string): string | null {
 function target(id: string, role: string, text: string, at: { x: number; y: number; align: Align }, fontSize: number): ValueTarget {
   const width = Math.max(14, text.length * fontSize * 0.6);
   const left = at.align === "left" ? at.x : at.align === "right" ? at.x - width : at.x - width / 2;
-  return { id, role, text, ...at, fontSize, box: { left: left - 2, right: left + width + 2, top: at.y - fontSize * 0.7, bottom: at.y + fontSize * 0.7 } };
+  return { id, role, text, ...at, fontSize, isOdd: text.endsWith(ODD), box: { left: left - 2, right: left + width + 2, top: at.y - fontSize * 0.7, bottom: at.y + fontSize * 0.7 } };
 }
 
 /** Values of a drawing's parts that are present. `codeOf` gives the text of a role, null where the part is absent. */
@@ -56,8 +62,14 @@ export function showsValues(place: BandPlace, isChosen: boolean): boolean {
   return place.hasValues || (isChosen && place.detail !== "slim");
 }
 
+/** Characters of the longest code of three digits. */
+const CLOSE_MOST = 4;
 /** Pixels that a value's box, which is a little wider than its letters, may reach past its band's slot. */
 const CLOSE_OVERHANG = 6;
+
+function marked(code: string | null, isOdd: boolean): string | null {
+  return code !== null && isOdd ? `${code}${ODD}` : code;
+}
 
 /** Whole ohms without their letter: `470` for `470R`, as it is written where letters are many. */
 function shortCode(code: string | null): string | null {
@@ -67,25 +79,27 @@ function shortCode(code: string | null): string | null {
 /** Characters of the longest value that stands at the right of a band's leg, in its short form; 0 where there is none. */
 export function closeLength(block: Block): number {
   const codes = BLOCKS[block.kind].drawing.symbols.map((symbol) => ("role" in symbol && symbol.value.x > 0 ? shortCode(partCode(block, symbol.role)) : null));
-  return Math.max(0, ...codes.map((code) => code?.length ?? 0));
+  return Math.min(CLOSE_MOST, Math.max(0, ...codes.map((code) => code?.length ?? 0)));
 }
 
 /** A band's values, its track's too; those that stand close are left out where they would run into the next band. */
 export function bandValues(place: BandPlace, block: Block): ValueTarget[] {
-  const codeOf = (role: string): string | null => (place.isClose ? shortCode(partCode(block, role)) : partCode(block, role));
+  const codeOf = (role: string): string | null => marked(place.isClose ? shortCode(partCode(block, role)) : partCode(block, role), isImpractical(block, role));
   const written = drawingValues(block.id, BLOCKS[block.kind].drawing, { x: place.legX, y: place.legY, grid: place.legGrid }, codeOf);
-  const values = place.isClose ? written.filter(({ box }) => box.right <= place.box.right + CLOSE_OVERHANG) : written;
-  const track = partCode(block, "track");
+  const values = place.isClose ? written.filter(({ box, isOdd }) => isOdd || box.right <= place.box.right + CLOSE_OVERHANG) : written;
+  const track = marked(partCode(block, "track"), isImpractical(block, "track"));
   const fontSize = valueFontSize(place.legGrid);
   return track === null ? values : [...values, target(block.id, "track", track, { x: place.leadX + 4, y: place.trackTop + fontSize * 0.4, align: "left" }, fontSize)];
 }
 
 export function chainValues(place: ChainPlace): ValueTarget[] {
-  return drawingValues(place.id, place.drawing, place, (role) => partCode(place.block, role));
+  return drawingValues(place.id, place.drawing, place, (role) => marked(partCode(place.block, role), isImpractical(place.block, role)));
 }
 
 /** Codes of the divider of a single supply, by role. */
 export function referenceCode(reference: { readonly upperR: Part; readonly lowerR: Part; readonly bypassC: Part }, role: string): string | null {
-  if (role === "upperR" || role === "lowerR") return formatCode(reference[role].value, "resistance", 3);
-  return role === "bypassC" ? formatCode(reference.bypassC.value, "capacitance", 3) : null;
+  if (role !== "upperR" && role !== "lowerR" && role !== "bypassC") return null;
+  const quantity = role === "bypassC" ? "capacitance" : "resistance";
+  const { value } = reference[role];
+  return marked(formatCode(value, quantity, 3), impracticalText(value, role, quantity) !== null);
 }

@@ -1,4 +1,5 @@
 import { BLOCKS } from "../../core/blocks/index.ts";
+import { impracticalText } from "../../core/blocks/practical.ts";
 import type { BlockKind } from "../../core/blocks/kinds.ts";
 import { nextPreferred, type ESeries } from "../../core/e-series.ts";
 import { blockName, setPartValue, TRACK } from "../../core/model/edit.ts";
@@ -71,6 +72,12 @@ export function piecesText({ second }: Part, quantity: Quantity): string | null 
   if (!second || (quantity !== "resistance" && quantity !== "capacitance" && quantity !== "inductance")) return null;
   const [first, other] = [second.firstValue, second.value].map((value) => formatCode(value, quantity));
   return `${first} ${second.joined === "series" ? "+" : "∥"} ${other} in ${second.joined}`;
+}
+
+/** What is to be weighed about a part's value, for below its field; null where there is nothing. */
+export function valueCaution(value: number, role: string, quantity: Quantity): string | null {
+  const text = impracticalText(value, role, quantity);
+  return text === null ? null : `${partText(value, quantity)} is ${text}. Is it meant?`;
 }
 
 /** What stands below the value of two pieces; null for one piece. */

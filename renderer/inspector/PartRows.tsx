@@ -1,6 +1,6 @@
 import type { Part } from "../../core/model/project.ts";
 import { editText, formatValue, type Quantity } from "../../core/units.ts";
-import { partEditText, partText, piecesNote, readAtLeastZero, readPositive, readTolerance, stepPreferred } from "../editor/part-text.ts";
+import { partEditText, partText, piecesNote, readAtLeastZero, readPositive, readTolerance, stepPreferred, valueCaution } from "../editor/part-text.ts";
 import { ValueField } from "./ValueField.tsx";
 
 export type Datum = "tolerance" | "measured" | "windingR" | "selfC";
@@ -79,6 +79,7 @@ function PartRow({ role: { role, label, quantity, isOptional }, part, edits }: {
           value={part.value}
           {...exact(part.value)}
           note={piecesNote(part, quantity)}
+          caution={valueCaution(part.value, role, quantity)}
           format={show}
           edit={() => partEditText(part, quantity)}
           read={(text) => readPositive(text, quantity)}

@@ -20,12 +20,14 @@ interface ValueFieldProps {
   readonly title?: string;
   /** What is to be known about the value, below it. */
   readonly note?: string | null;
+  /** What is to be weighed about it, below that. */
+  readonly caution?: string | null;
   /** The next value up or down, for the arrow keys. */
   readonly step?: (value: number, direction: 1 | -1) => number;
 }
 
 /** A field for one value: trade notation and arithmetic in, an explanation under it where that is not understood. */
-export function ValueField({ label, value, placeholder = "", format, edit = format, read, onTake, onClear, title, note = null, step }: ValueFieldProps) {
+export function ValueField({ label, value, placeholder = "", format, edit = format, read, onTake, onClear, title, note = null, caution = null, step }: ValueFieldProps) {
   const id = useId();
   const [draft, setDraft] = useState<string | null>(null);
   const [isFocused, setFocused] = useState(false);
@@ -57,13 +59,14 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
     setError(null);
   }
 
+  const below = [...(note === null ? [] : [`${id}-note`]), ...(caution === null ? [] : [`${id}-caution`])];
   return (
     <div className="value-field">
       <input
         className="value-input"
         aria-label={label}
         aria-invalid={error !== null}
-        aria-describedby={error !== null ? id : note !== null ? `${id}-note` : undefined}
+        aria-describedby={error !== null ? id : below.length > 0 ? below.join(" ") : undefined}
         title={title}
         value={draft ?? rest}
         placeholder={placeholder}
@@ -104,6 +107,11 @@ export function ValueField({ label, value, placeholder = "", format, edit = form
       {note !== null && (
         <p className="field-note" id={`${id}-note`}>
           {note}
+        </p>
+      )}
+      {caution !== null && error === null && (
+        <p className="field-note is-caution" id={`${id}-caution`} aria-live="polite">
+          ⚠ {caution}
         </p>
       )}
       {error !== null && (

@@ -1,9 +1,15 @@
 import { Popover } from "@base-ui/react/popover";
+import { useMemo } from "react";
+import { impracticalParts } from "../../core/blocks/practical.ts";
+import type { Fault } from "../../core/errors.ts";
 import { readCurve } from "../../core/geometry/reading.ts";
+import { blockName, partOf } from "../../core/model/edit.ts";
+import type { Project } from "../../core/model/project.ts";
 import { formatDb, formatFigure } from "../../core/units.ts";
 import { chordText } from "../editor/actions/chords.ts";
 import { useDrawer, useDrawerState } from "../drawer/hooks.ts";
 import { useEditorState, useShell, useUiState } from "../editor/hooks.ts";
+import { quantityOf, roleLabel, valueCaution } from "../editor/part-text.ts";
 import { degreesText } from "../sheet/figure-texts.ts";
 import { StabilityStatus } from "./Stability.tsx";
 import { FaultList } from "./WiringFaults.tsx";
@@ -58,10 +64,20 @@ function DrawerReading() {
   return <span className="status-reading quiet">{label === null ? "Nothing to undo in the drawer" : `${chordText("Mod+Z", context.isMac)} in the drawer takes back: ${label}`}</span>;
 }
 
+/** Parts whose values no part has, as warnings that lead to them. */
+function valueFaults(project: Project): Fault[] {
+  return impracticalParts(project).map(({ id, role }) => {
+    const block = project.blocks.find((b) => b.id === id)!;
+    return { path: "", message: `${roleLabel(block.kind, role)} of “${blockName(block)}”: ${valueCaution(partOf(block, role)!.value, role, quantityOf(block, role)!)}`, blocks: [id] };
+  });
+}
+
 function Warnings() {
   const wiring = useEditorState((s) => s.analysis.warnings);
   const file = useEditorState((s) => s.fileWarnings);
-  const warnings = [...wiring, ...file];
+  const project = useEditorState((s) => s.project);
+  const values = useMemo(() => valueFaults(project), [project]);
+  const warnings = [...wiring, ...file, ...values];
   if (warnings.length === 0) return null;
   return (
     <Popover.Root>

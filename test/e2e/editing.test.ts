@@ -170,6 +170,24 @@ describe("values", () => {
     expect(await session.panel.figure("peak")).toEqual(peak);
   });
 
+  test("a value that no part has is taken, with a caution under the field and among the warnings", async () => {
+    await session.sheet.pick("b1k");
+    const field = session.panel.field("series C");
+    const described = (): Promise<string | null> => field.evaluate((input) => {
+      const id = input.getAttribute("aria-describedby");
+      return id === null ? null : document.getElementById(id)!.innerText;
+    });
+    expect(await described()).toBeNull();
+    await session.panel.set("series C", "2*4k7");
+    expect(await described()).toContain("outside what capacitors are made in: 0.5 pF to 100000 µF");
+    expect(await session.page.getByRole("alert").count()).toBe(0);
+    await session.page.getByRole("button", { name: "1 warning" }).click();
+    expect(await session.page.getByRole("dialog", { name: "Warnings" }).innerText()).toContain("series C of “1 kHz”");
+    await session.keyboard.press("Escape");
+    await session.panel.set("series C", "180n");
+    expect(await described()).toBeNull();
+  });
+
   test("edited in place on the sheet", async () => {
     await session.sheet.pick("b2k");
     await session.keyboard.press("F2");

@@ -9,7 +9,7 @@ import { bandValues } from "../../../core/geometry/values.ts";
 import type { Block } from "../../../core/model/project.ts";
 import { figureLine } from "./figure-line.ts";
 import { drawTag, TAG_HEIGHT, tagWidth } from "./overlay.ts";
-import { lineOf } from "./symbols.ts";
+import { lineOf, valueColor } from "./symbols.ts";
 import type { Pen } from "./pen.ts";
 
 /** Nearer to the centre than this counts as centred: less than a twentieth of a millimetre of travel. */
@@ -89,11 +89,12 @@ export function drawHeldTag(pen: Pen, layout: SheetLayout, place: BandPlace, pos
 
 /** The values of the selected band, over its neighbours, where its slot has no room for them. */
 export function drawChosenValues(pen: Pen, place: BandPlace, block: Block): void {
-  for (const { text, x, y, align, fontSize, role } of bandValues(place, block)) {
-    const width = pen.widthOf(text, fontSize);
+  for (const value of bandValues(place, block)) {
+    const { text, x, y, align, fontSize, isOdd } = value;
+    const width = pen.widthOf(text, fontSize, isOdd);
     const left = align === "left" ? x : align === "right" ? x - width : x - width / 2;
     pen.ctx.fillStyle = pen.inks.accentWash;
     pen.ctx.fillRect(left - 1, y - fontSize * 0.55, width + 2, fontSize * 1.1);
-    pen.text(text, x, y, { size: fontSize, align, color: role === "track" ? pen.inks.inkSoft : pen.inks.ink });
+    pen.text(text, x, y, { size: fontSize, align, isBold: isOdd, color: valueColor(pen, value) });
   }
 }

@@ -27,7 +27,12 @@ export function drawDrawing(pen: Pen, drawing: Drawing, place: DrawingPlace, has
 
 /** Writes part values beside their symbols. */
 export function drawValues(pen: Pen, values: readonly ValueTarget[], color = pen.inks.ink): void {
-  for (const value of values) pen.text(value.text, value.x, value.y, { size: value.fontSize, align: value.align, color: value.role === "track" ? pen.inks.inkSoft : color });
+  for (const value of values) pen.text(value.text, value.x, value.y, { size: value.fontSize, align: value.align, isBold: value.isOdd, color: valueColor(pen, value, color) });
+}
+
+/** The ink of a value: softer for a track, a warning where no part has it. */
+export function valueColor(pen: Pen, { role, isOdd }: ValueTarget, color = pen.inks.ink): string {
+  return isOdd ? pen.inks.warning : role === "track" ? pen.inks.inkSoft : color;
 }
 
 function drawPart(pen: Pen, part: PartSymbol, at: { x: number; y: number }, grid: number, isPresent: boolean, color: string): void {
