@@ -37,6 +37,9 @@ export interface Projects {
 
 /** Builds the project service. */
 export function createProjects(opts: ProjectsOpts): Projects {
+  /** What was opened or saved last: a page that is loaded anew goes on with it. */
+  let last: string | null = null;
+
   async function demos(): Promise<ResultOf<"project.demos">> {
     const found: { path: string; name: string; about: string }[] = [];
     for (const listed of await demoPaths(opts.demoFolder)) {
@@ -56,6 +59,7 @@ export function createProjects(opts: ProjectsOpts): Projects {
     demos,
 
     async launch() {
+      if (last !== null && (await isThere(last))) return { path: last };
       if (opts.launchPath !== null) {
         // The user named this file: it is let in even where it is a link to another folder.
         await opts.guard.grant(opts.launchPath);
@@ -70,6 +74,7 @@ export function createProjects(opts: ProjectsOpts): Projects {
       const { text, fingerprint } = await readProjectFile(path);
       const { project, warnings } = restore(path, text);
       const writable = !(await isDemo(path)) && (await isWritable(path));
+      last = path;
       return { path, writable, fingerprint, project, warnings };
     },
 
@@ -84,6 +89,7 @@ export function createProjects(opts: ProjectsOpts): Projects {
       } catch (error) {
         throw writeFailure(path, error);
       }
+      last = path;
       return { path, fingerprint: fingerprintOf(Buffer.from(text, "utf8")) };
     },
   };
@@ -109,6 +115,15 @@ async function demoPaths(folder: string): Promise<readonly string[]> {
   } catch (error) {
     if (systemCode(error) === "ENOENT") return [];
     throw readFailure(folder, error);
+  }
+}
+
+async function isThere(path: string): Promise<boolean> {
+  try {
+    await access(path);
+    return true;
+  } catch {
+    return false;
   }
 }
 

@@ -37,7 +37,7 @@ export const METHODS = {
     }),
     mutates: false,
   }),
-  /** The file to show at start: the one the user named, else a demo. */
+  /** The file to show when a page comes up: the one that was opened or saved last in this run, else the one the user named, else a demo. */
   "project.launch": method({
     args: NOTHING,
     result: v.object({ path: v.nullable(v.string()) }),

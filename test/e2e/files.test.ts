@@ -1,4 +1,4 @@
-import { readFile, writeFile } from "node:fs/promises";
+import { readFile, rm, writeFile } from "node:fs/promises";
 import type { Browser } from "playwright-core";
 import { afterAll, afterEach, beforeAll, describe, expect, test } from "vitest";
 import { newProject } from "../../core/model/new-project.ts";
@@ -17,6 +17,7 @@ afterAll(() => browser.close());
 afterEach(() => session.end());
 
 const EMPTY = serializeProject({ ...newProject(), name: "Plain" });
+const MINE = serializeProject({ ...newProject(), name: "Mine" });
 const BROKEN = JSON.stringify({ ...newProject(), supply: { kind: "split", positive: -3, negative: 15 }, wires: [{ from: "in.out" }] });
 const LOOP = serializeProject({ ...newProject(), name: "Loop", wires: [{ from: "in.out", to: "out.in" }, { from: "eq.out", to: "eq.in" }] });
 
@@ -135,6 +136,22 @@ describe("files", () => {
     await left;
     await session.page.locator(".app").waitFor();
     expect(await session.sheet.position("b1k")).toBeLessThan(100);
+  });
+
+  test("a reload goes on with the file that was open last, and keeps nothing of it in the browser", async () => {
+    session = await Session.start(browser, { file: DEMO, projects: { "mine.bandwright": MINE } });
+    await session.keyboard.press("Control+o");
+    await session.page.getByRole("option", { name: "mine" }).dblclick();
+    await expect.poll(() => session.page.title()).toContain("Mine");
+    await session.page.reload();
+    await session.page.locator(".app").waitFor();
+    expect(await session.page.title()).toContain("Mine");
+    expect(await session.page.evaluate(() => [Object.keys(localStorage), Object.keys(sessionStorage)])).toEqual([[], ["bandwright-token"]]);
+    // Where it is gone meanwhile, the page comes up with what the session began with.
+    await rm(session.path("mine.bandwright"));
+    await session.page.reload();
+    await session.page.locator(".app").waitFor();
+    expect(await session.page.title()).toContain("Saltmarsh");
   });
 
   test("an address used a second time says so", async () => {

@@ -305,6 +305,18 @@ describe("the demos", () => {
     expect(await projects.launch()).toEqual({ path: join(demo, "another.bandwright") });
   });
 
+  test("what was opened or saved last comes before them, as long as it is there", async () => {
+    const path = await writeProject(join(mine, "mine.bandwright"));
+    await projects.open({ path });
+    expect(await projects.launch()).toEqual({ path });
+    const saved = await projects.save(saveArgs(join(mine, "other.bandwright")));
+    expect(await projects.launch()).toEqual({ path: saved.path });
+    await expect(projects.open({ path: join(mine, "none.bandwright") })).rejects.toThrow();
+    expect(await projects.launch()).toEqual({ path: saved.path });
+    await rm(saved.path);
+    expect(await projects.launch()).toEqual({ path: join(demo, "voice.bandwright") });
+  });
+
   test("without any, the start is empty", async () => {
     await rm(demo, { recursive: true });
     expect(await projects.launch()).toEqual({ path: null });
