@@ -73,11 +73,18 @@ export function voidEndsText({ boost, cut }: VoidEnds): string {
   return ends.length === 0 ? "" : `unstable at ${ends.join(" and ")}`;
 }
 
+/** `3.15 k`, `3.15k`, `3k15` of `3.15 kHz`; none of a label that is no frequency. */
+function shorterForms(label: string): readonly string[] {
+  const match = /^([\d.,]+)\s*(k?)Hz(?: · (\d+))?$/i.exec(label.trim());
+  if (!match) return [];
+  const [, figure, prefix, count] = match;
+  const forms = [`${figure} ${prefix}`.trim(), `${figure}${prefix}`, ...(prefix !== "" && /[.,]/.test(figure) ? [figure.replace(/[.,]/, "k")] : [])];
+  return count === undefined ? forms : forms.map((form) => `${form}·${count}`);
+}
+
 /** A label as it fits: whole, without its unit's letters, as a code, cut short; a number that tells two of a name apart stays. */
 export function fittedLabel(label: string, fits: (text: string) => boolean): string {
-  const frequency = /^([\d.,]+)\s*(k?)Hz(?: · (\d+))?$/i.exec(label.trim());
-  const number = frequency?.[3] === undefined ? "" : `·${frequency[3]}`;
-  const forms = frequency ? [label, `${`${frequency[1]} ${frequency[2]}`.trim()}${number}`, `${frequency[1]}${frequency[2]}${number}`] : [label];
+  const forms = [label, ...shorterForms(label)];
   const form = forms.find(fits);
   if (form !== undefined) return form;
   const last = forms.at(-1)!;

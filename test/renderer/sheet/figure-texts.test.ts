@@ -44,6 +44,7 @@ describe("figures under a band", () => {
     expect(fittedLabel("3.15 kHz", within(8))).toBe("3.15 kHz");
     expect(fittedLabel("3.15 kHz", within(6))).toBe("3.15 k");
     expect(fittedLabel("3.15 kHz", within(5))).toBe("3.15k");
+    expect(fittedLabel("3.15 kHz", (text) => text.length <= 4 && !text.includes("."))).toBe("3k15");
     expect(fittedLabel("Presence", within(5))).toBe("Pres…");
     expect(fittedLabel("63 Hz", within(2))).toBe("63");
     expect(fittedLabel("1 kHz · 2", within(9))).toBe("1 kHz · 2");
