@@ -147,6 +147,7 @@ describe("the drawer", () => {
 
   test("a capacitor is swapped with the dotted response on the sheet, and taken as one step", async () => {
     await user.loadStarter();
+    await session.keyboard.press("Alt+Shift+B");
     await session.sheet.pick("b1k");
     const list = session.page.getByRole("region", { name: "In the drawer" });
     const card = list.getByRole("button", { name: /^150n/ }).first();
@@ -241,6 +242,7 @@ describe("the drawer", () => {
     await expect.poll(() => user.cell(names.at(-1)!, 9).innerText()).toBe(free);
 
     // Another project is told who holds the pieces.
+    await session.keyboard.press("Alt+Shift+B");
     await session.page.getByLabel("Name of the board").fill("Second channel");
     await session.keyboard.press("Enter");
     await session.menu("Drawer", "Build units…");
@@ -296,6 +298,7 @@ describe("a drawer that cannot be used", () => {
     expect(await alert.innerText()).toMatch(/version 99, this program knows versions up to \d/);
     expect((await readFile(file)).equals(bytes)).toBe(true);
     // The board does not mind.
+    await session.keyboard.press("Alt+Shift+B");
     await session.sheet.pick("b1k");
     expect(await session.panel.value("series C")).toBe("180 nF");
   });
