@@ -21,9 +21,12 @@ export interface BandPeak {
 const HALF_POWER_DB = 10 * Math.log10(2);
 const PER_OCTAVE = 24;
 /** How far below its best a board's centred response may lie where a plateau is read, dB. */
-const PASSBAND_DB = 6;
-/** How much of its largest effect a slider must have on its plateau. */
+const PASSBAND_DB = 3;
+/** How much of its largest effect a slider must have on its plateau, and on a hump that stands in for one. */
 const SETTLED = 0.9;
+const HUMP = 0.5;
+/** How far from the corner such a hump may be. */
+const HUMP_OCTAVES = 4;
 /** On ln f. */
 const TOLERANCE = 1e-12;
 
@@ -113,13 +116,7 @@ export class Scan {
     return this.#with(band, position, () => {
       const f = this.#frequency;
       const sign = position === 1 ? 1 : -1;
-      const g = this.#gain;
-      // The highest local peak within two octaves of the leg's resonance.
-      let best = -1;
-      for (let i = 1; i < f.length - 1; i++) {
-        if (f[i] < resonance / 4 || f[i] > resonance * 4) continue;
-        if (sign * (g[i] - g[i - 1]) >= 0 && sign * (g[i] - g[i + 1]) > 0 && (best < 0 || sign * (g[i] - g[best]) > 0)) best = i;
-      }
+      const best = this.#summit((i) => f[i] >= resonance / 4 && f[i] <= resonance * 4, sign);
       if (best < 0) return { peak: this.#gainAt(Math.log(resonance)), frequency: null, q: null, lower: null, upper: null };
       const lnPeak = this.#top(best);
       const peak = this.#gainAt(lnPeak);
@@ -135,8 +132,9 @@ export class Scan {
    * Shelves and levels. The effect of the slider is the response less the response with all sliders centred, which takes
    * coupling capacitors and op amps out of the question where the band works. The plateau is where the response has a
    * maximum or minimum, or failing that changes least, among the frequencies where the effect is at least nine tenths of
-   * its most and the centred board still lets the signal through (within 6 dB of its best); where there are several, the
-   * one with the flattest two octaves about it. The corner is where the effect is half of that on the plateau, in dB.
+   * its most and the centred board still lets the signal through (within 3 dB of its best); where there are several, the
+   * one with the flattest two octaves about it. A shelf that is cut off before its corner is read on the hump that is left
+   * of it, or where the board begins to pass. The corner is where the effect is half of that on the plateau, in dB.
    * `plateau` is the frequency where the plateau was read, Hz.
    * @param corner of the leg alone, Hz; undefined for a level, which has none
    * @param side on which the corner lies: 1 above (low shelf), −1 below
@@ -150,16 +148,40 @@ export class Scan {
       const f = this.#frequency;
       const passes = Math.max(...this.#centred) - PASSBAND_DB;
       // Past the leg's own corner, where its capacitor or inductance no longer holds the leg back: a neighbour's skirts may be flatter still.
-      const isFit = (i: number): boolean => this.#centred[i] >= passes && (corner === undefined || (side === 1 ? f[i] < corner : f[i] > corner));
-      const most = effect.reduce((largest, e, i) => (isFit(i) ? Math.max(largest, e) : largest), 0);
-      const settled = most > 0 ? this.#flattest((i) => isFit(i) && effect[i] >= SETTLED * most) : -1;
-      const at = settled < 0 ? argMax(effect) : settled;
-      const lnPlateau = settled < 0 ? Math.log(f[at]) : this.#level(at);
+      const isPast = (i: number): boolean => corner === undefined || (side === 1 ? f[i] < corner : f[i] > corner);
+      const settledAt = (isFit: (i: number) => boolean, share: number): number => {
+        const most = effect.reduce((largest, e, i) => (isFit(i) ? Math.max(largest, e) : largest), -Infinity);
+        return this.#flattest((i) => isFit(i) && effect[i] >= Math.min(most, share * most));
+      };
+      const lets = (i: number): boolean => this.#centred[i] >= passes;
+      const isNear = (i: number): boolean => corner === undefined || Math.abs(Math.log2(f[i] / corner)) <= HUMP_OCTAVES;
+      const past = settledAt((i) => lets(i) && isPast(i), SETTLED);
+      // A shelf cut off by a coupling capacitor or a slow op amp before its corner has no plateau, only a hump about it.
+      const hump = past >= 0 ? -1 : this.#summit((i) => isNear(i) && effect[i] > 0, sign);
+      const at = [past, hump, settledAt((i) => lets(i) && isNear(i), HUMP)].find((i) => i >= 0) ?? this.#nearest(lets, corner);
+      const lnPlateau = at === hump ? this.#top(at) : this.#level(at);
       const centred = new Float64Array(this.#positions.length).fill(0.5);
       const effectAt = (lnF: number): number => sign * (this.#gainAt(lnF) - this.#gainAt(lnF, centred));
-      const frequency = settled < 0 ? null : this.#crossing(effect, effectAt(lnPlateau) / 2, 1, at, side, effectAt);
+      const half = effectAt(lnPlateau) / 2;
+      const frequency = half > 0 ? this.#crossing(effect, half, 1, at, side, effectAt) : null;
       return { peak: this.#gainAt(lnPlateau), frequency, q: null, lower: null, upper: null, plateau: Math.exp(lnPlateau) };
     });
+  }
+
+  /** The highest (lowest) scan point, among those that qualify, that stands above (below) both its neighbours; −1 where none does. */
+  #summit(isFit: (index: number) => boolean, sign: 1 | -1): number {
+    const g = this.#gain;
+    let best = -1;
+    for (let i = 1; i < g.length - 1; i++) {
+      if (isFit(i) && sign * (g[i] - g[i - 1]) >= 0 && sign * (g[i] - g[i + 1]) > 0 && (best < 0 || sign * (g[i] - g[best]) > 0)) best = i;
+    }
+    return best;
+  }
+
+  /** The scan point, among those that qualify, nearest to a frequency. */
+  #nearest(isFit: (index: number) => boolean, frequency = 1000): number {
+    const distance = this.#frequency.map((f, i) => (isFit(i) ? Math.abs(Math.log(f / frequency)) : Infinity));
+    return distance.indexOf(Math.min(...distance));
   }
 
   /** The scan point, among those that qualify, about which the gain varies least within an octave either way; −1 where none qualifies. */
@@ -168,9 +190,9 @@ export class Scan {
     let best = -1;
     let least = Infinity;
     const octave = this.#perOctave;
-    for (let i = octave; i < g.length - octave; i++) {
+    for (let i = 0; i < g.length; i++) {
       if (!isFit(i)) continue;
-      const around = g.subarray(i - octave, i + octave + 1);
+      const around = g.subarray(Math.max(0, i - octave), i + octave + 1);
       const variation = Math.max(...around) - Math.min(...around);
       if (variation < least) [best, least] = [i, variation];
     }
@@ -179,15 +201,9 @@ export class Scan {
 
   /** Where the response is level within half an octave of a scan point, or failing that where it changes least, as ln f. */
   #level(at: number): number {
-    const lnF = (index: number): number => Math.log(this.#frequency[index]);
-    const slope = (x: number): number => this.#slopeAt(x);
     const half = Math.ceil(this.#perOctave / 2);
-    const g = this.#gain;
-    // The nearest scan point that stands above or below both its neighbours.
-    for (let away = 0; away <= half; away++) {
-      for (const i of [at - away, at + away]) if (i > 0 && i < g.length - 1 && (g[i] - g[i - 1]) * (g[i] - g[i + 1]) > 0) return this.#top(i);
-    }
-    return findLeast((x) => Math.abs(slope(x)), lnF(at - half), lnF(at + half), 1e-6);
+    const lnF = (index: number): number => Math.log(this.#frequency[Math.max(0, Math.min(this.#frequency.length - 1, index))]);
+    return findLeast((x) => Math.abs(this.#slopeAt(x)), lnF(at - half), lnF(at + half), 1e-7);
   }
 
   /** Runs a search with one slider at an end, then centres it again. */
@@ -230,10 +246,4 @@ function bracketed(f: (lnF: number) => number, a: number, b: number, fa: number,
   // A curve flat to rounding has no sign change to show: its ends are as good as each other.
   if (fa > 0 === fb > 0) return Math.abs(fa) < Math.abs(fb) ? a : b;
   return findRoot(f, a, b, TOLERANCE, fa, fb);
-}
-
-function argMax(column: Float64Array): number {
-  let best = 0;
-  for (let i = 1; i < column.length; i++) if (column[i] > column[best]) best = i;
-  return best;
 }

@@ -110,6 +110,32 @@ test("a shelf whose plateau lies where the op amps begin to tire is read at its 
   expect(Math.abs(boost.peak + cut.peak)).toBeLessThan(0.5);
 });
 
+describe("a low shelf that the input's coupling capacitor cuts off", () => {
+  const coupled = (couplingC: number, gyratorC: number): Project => {
+    const plain = oneBus([bandOf("low", "low-shelf-section", { seriesR: 390, gyratorC, gyratorR: 100e3 }, { opAmp: "TL072" })], { opAmp: "NE5532", inputR: 3000, feedbackR: 3000, loadR: 10e3 });
+    return { ...plain, blocks: plain.blocks.map((b) => (b.id === "in" ? { ...b, parts: { ...b.parts, couplingC: { value: couplingC }, loadR: { value: 10e3 } } } : b)) };
+  };
+
+  test.each([
+    [10e-6, 47e-9],
+    [2.2e-6, 220e-9],
+    [1e-6, 47e-9],
+    [0.47e-6, 100e-9],
+    [0.22e-6, 100e-9],
+  ])("of %d F, with %d F in its gyrator: its boost is read where the response is highest", (couplingC, gyratorC) => {
+    const project = coupled(couplingC, gyratorC);
+    const [figure] = bandFigures(resolveBoard(project));
+    const gain = nodalGain(netlistOf(project, { low: 1 }), [...logFrequencies(1, 1000, 3001)]);
+    expect(figure.boost.peak).toBeCloseTo(Math.max(...gain), 4);
+    expect(figure.boost.frequency).toBeGreaterThan(5);
+  });
+
+  test("before anything is left of it has no boost to speak of, and none is made up elsewhere", () => {
+    const [{ boost, cut }] = bandFigures(resolveBoard(coupled(0.22e-6, 470e-9)));
+    for (const { peak } of [boost, cut]) expect(Math.abs(peak)).toBeLessThan(4);
+  });
+});
+
 test("a board without bands has no figures", () => expect(bandFigures(resolveBoard(oneBus([])))).toEqual([]));
 
 test("measured values count where they are asked for", () => {
