@@ -20,22 +20,27 @@ export interface RoleProblems {
 export function boardProblems(board: Board, lines: readonly StockedLine[], stress: BoardStress = boardStress(board)): RoleProblems[] {
   const byId = new Map(lines.map((l) => [l.id, l]));
   return boardRoles(board).flatMap((role): RoleProblems[] => {
-    const { second } = role.part ?? {};
-    const named = [[role.stock, second ? second.firstValue : role.value], ...(second ? [[second.stock ?? null, second.value] as const] : [])] as const;
-    return named.flatMap(([id, wanted]): RoleProblems[] => {
+    return namedLines(role).flatMap(([id, wanted]): RoleProblems[] => {
       const line = id === null ? undefined : byId.get(id);
       if (!line) return [];
-      // Of the wrong kind, its ratings say nothing here.
-      const bears = line.kind === role.kind ? placeProblems(role, line, stress).filter(isOfTheBoard) : [];
-      const problems = [...sortProblems(role, line, wanted), ...bears];
+      // What is not known of a line matters when it is chosen; the board has its figures by now.
+      const problems = namedProblems(role, line, wanted, stress).filter((p) => p.level !== "note");
       return problems.length > 0 ? [{ role, line, problems }] : [];
     });
   });
 }
 
-/** What is not known of a line matters when it is chosen; the board has its figures by now. */
-function isOfTheBoard({ level, about }: Problem): boolean {
-  return level !== "note" && about !== "winding";
+/** The lines that a role names, two for a pair, each with the value that the board says it has; null where it names none. */
+export function namedLines(role: BoardRole): readonly (readonly [id: string | null, wanted: number | null])[] {
+  const { second } = role.part ?? {};
+  return second ? [[role.stock, second.firstValue], [second.stock ?? null, second.value]] : [[role.stock, role.value]];
+}
+
+/** What speaks against a line that a role names: kind, value and type, and what the part has to bear. */
+export function namedProblems(role: BoardRole, line: StockedLine, wanted: number | null, stress: BoardStress): Problem[] {
+  // Of the wrong kind, its ratings say nothing here. The board has a winding already.
+  const bears = line.kind === role.kind ? placeProblems(role, line, stress).filter((p) => p.about !== "winding") : [];
+  return [...sortProblems(role, line, wanted), ...bears];
 }
 
 /** In one list, faults first. */

@@ -4,9 +4,10 @@ import type { Project } from "../model/project.ts";
 import type { Board } from "../net/board.ts";
 import { compileBoard } from "../net/star.ts";
 import { countLines, sumMoney } from "./bill.ts";
+import { namedLines, namedProblems } from "./board-problems.ts";
 import { candidatesFor, compareText, type Candidate } from "./candidates.ts";
 import { FillSearch, NEARNESS, type OpenRole } from "./fill-search.ts";
-import { hasFault, isSound, placeProblems } from "./place-problems.ts";
+import { hasFault, isSound } from "./place-problems.ts";
 import { amplifiersIn, boardRoles, filledProject, fillingPatch, onProject, type BoardRole, type Filling } from "./roles.ts";
 import { boardStress, type BoardStress, type Problem } from "./stress.ts";
 import { availableOf, leftAfter, unitCost, type Money, type StockedLine } from "./stock.ts";
@@ -20,7 +21,7 @@ export interface FillOpts {
   readonly window?: number;
   /** Most that the parts of a unit may cost. Parts without a price in this currency are then left out. */
   readonly ceiling?: Money;
-  /** Roles that name a line of the drawer with enough pieces keep it, unless something bars it there. */
+  /** Roles that name a line of the drawer with enough pieces keep it, unless it is of another kind or value, or something bars it there. */
   readonly keep?: boolean;
   /** False: never two pieces for one value. By default, where no single piece does. */
   readonly pairs?: boolean;
@@ -155,16 +156,16 @@ const SINGLE_ENOUGH = 0.05;
 
 /** The lines that a role names, two for a pair; null where the drawer does not have all of them. */
 function ownLines(role: BoardRole, byId: ReadonlyMap<string, StockedLine>): readonly StockedLine[] | null {
-  const ids = role.part?.second === undefined ? [role.stock] : [role.stock, role.part.second.stock ?? null];
-  const lines = ids.flatMap((id) => (id === null ? [] : (byId.get(id) ?? [])));
-  return lines.length === ids.length ? lines : null;
+  const named = namedLines(role);
+  const lines = named.flatMap(([id]) => (id === null ? [] : (byId.get(id) ?? [])));
+  return lines.length === named.length ? lines : null;
 }
 
-/** Keeps a role's own lines where they have pieces left and nothing bars them, and takes those pieces out of what is free. */
+/** Keeps a role's own lines where they are what the board says, have pieces left and nothing bars them, and takes those pieces out of what is free. */
 function isKept(role: BoardRole, byId: ReadonlyMap<string, StockedLine>, free: Map<string, number>, placed: Placing[], stress: BoardStress): boolean {
   const own = ownLines(role, byId);
   if (own === null) return false;
-  const problems = own.flatMap((line) => placeProblems(role, line, stress)).filter((p) => p.about !== "winding");
+  const problems = namedLines(role).flatMap(([, wanted], i) => namedProblems(role, own[i], wanted, stress));
   if (hasFault({ problems }) || own.some((line) => free.get(line.id)! < own.filter((other) => other === line).length)) return false;
   for (const line of own) free.set(line.id, free.get(line.id)! - 1);
   placed.push({ role, candidate: null, line: own[0], problems });

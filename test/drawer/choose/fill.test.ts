@@ -3,6 +3,7 @@ import * as fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import { logFrequencies, ResponseSweep } from "../../../core/analysis/response.ts";
 import { buildBill } from "../../../core/drawer/bill.ts";
+import { boardProblems } from "../../../core/drawer/board-problems.ts";
 import { fillBoard, type FillOpts, type FillResult } from "../../../core/drawer/fill.ts";
 import { boardRoles, filledProject, findRole, partFromStock } from "../../../core/drawer/roles.ts";
 import { availableOf, type StockedLine } from "../../../core/drawer/stock.ts";
@@ -230,6 +231,20 @@ describe("a board filled from the drawer", () => {
     const kept = fillBoard(resolveBoard(project), lines, { keep: true });
     expect(kept.project.blocks.find((b) => b.id === "b1k")!.parts!.seriesC).toEqual({ value: 150e-9, stock: "mine" });
     expect(kept.placed.filter((p) => p.line.id === "mine")).toHaveLength(1);
+  });
+
+  it("does not keep a line of another kind or value than the board says, nor half of a pair of one", () => {
+    const board = demo("saltmarsh-voice-channel");
+    const pair = { value: 182e-9, stock: "mine", second: { stock: "other", value: 82e-9, joined: "parallel" as const, firstValue: 100e-9 } };
+    const own = { seriesR: { value: 470, stock: "megohm" }, gyratorR: { value: 91e3, stock: "film" }, seriesC: pair };
+    const project: Project = { ...board.project, blocks: board.project.blocks.map((b) => (b.id === "b1k" ? { ...b, parts: { ...b.parts, ...own } } : b)) };
+    const lines = [...fullDrawer(), lineOf("megohm", "resistor", 1e6), lineOf("film", "capacitor", 100e-9), lineOf("mine", "capacitor", 100e-9), lineOf("other", "capacitor", 91e-9)];
+    const named = resolveBoard(project);
+    expect(boardProblems(named, lines).map((p) => p.role.name)).toEqual(expect.arrayContaining(["b1k.seriesR", "b1k.gyratorR", "b1k.seriesC"]));
+    const only = ["b1k.seriesR", "b1k.gyratorR", "b1k.seriesC"];
+    const { project: after, placed } = fillBoard(named, lines, { keep: true, only });
+    expect(placed.map((p) => [p.role.name, p.candidate === null])).toEqual(expect.arrayContaining(only.map((name) => [name, false])));
+    expect(boardProblems(resolveBoard(after), lines).filter((p) => only.includes(p.role.name))).toEqual([]);
   });
 });
 

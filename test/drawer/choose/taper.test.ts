@@ -82,8 +82,9 @@ describe("a slider's track", () => {
 
   it("is not kept where its taper contradicts the law, and kept where it does not say", () => {
     const named = (stock: string): Board => {
+      const { value } = LINES.find((l) => l.id === stock)!;
       const { project } = board("linear");
-      return resolveBoard({ ...project, blocks: project.blocks.map((b) => (b.slider ? { ...b, slider: { ...b.slider, track: { value: 10e3, stock } } } : b)) });
+      return resolveBoard({ ...project, blocks: project.blocks.map((b) => (b.slider ? { ...b, slider: { ...b.slider, track: { value: value!, stock } } } : b)) });
     };
     const kept = (stock: string) => fillBoard(named(stock), LINES, { only: ["b.slider"], keep: true }).placed[0];
     expect(kept("LOG").line.id).toBe("LIN");
