@@ -37,9 +37,9 @@ export function drawCursor(pen: Pen, frame: Frame, scene: CurveScene, reading: C
   const within = { ...response, left: response.left + 2, right: response.right - 2 };
   // Along the edges, so that it does not jump about with the curve.
   const boxes = [response.top + 2, response.bottom - TAG_HEIGHT - 2].flatMap((top) => [x + 10, x - 10 - width].map((left) => boxWithin(left, top, width, TAG_HEIGHT, within)));
-  // The side that the pointer would have to cross is none.
+  // The side that the pointer would have to cross is none; on a narrow sheet there may be no other.
   const beside = boxes.filter((box) => box.left > x || box.right < x);
-  drawTag(pen, text, clearestBox(ruling, response, linesOf(scene), namesOf(pen, scene).map((name) => name.box), beside));
+  drawTag(pen, text, clearestBox(ruling, response, linesOf(scene), namesOf(pen, scene).map((name) => name.box), beside.length > 0 ? beside : boxes));
 }
 
 export const TAG_HEIGHT = 22;

@@ -316,6 +316,17 @@ describe("the sheet", () => {
     expect(sheet.log.filter(([name]) => name !== "cursor")).toEqual([]);
   });
 
+  test.each([260, 340, 420, 500, 580, 700])("reads under the cursor on a sheet %i pixels wide", async (width) => {
+    await sheet.unmount();
+    vi.restoreAllMocks();
+    stubSurroundings(width, 606);
+    sheet = await mountSheet(boardOf(FREQUENCIES.map((f) => gyratorAt(f))));
+    const write = vi.spyOn(Pen.prototype, "text");
+    await press(sheet.page.querySelector<HTMLElement>("[data-response]")!, "ArrowRight");
+    await act(async () => new Promise((resolve) => { setTimeout(resolve, 50); }));
+    expect(write.mock.calls.filter(([text]) => /Hz   .* dB   .*°$/.test(text)).length).toBeGreaterThan(0);
+  });
+
   test("wiring faults leave the blocks on the sheet", async () => {
     await sheet.unmount();
     const project = boardOf([gyratorAt(1000)]);
