@@ -6,20 +6,26 @@ import type { Problem } from "./stress.ts";
 type Taper = { readonly name: "linear" | "logarithmic" | "reverse logarithmic" } | { readonly name: "power law"; readonly power: number | null };
 
 /** Words only: the letters that makers use for tapers mean one thing here and another there. */
-const REVERSE = /\b(?:reverse|inverse|anti|rev\.?|inv\.?|negative)[-\s]?(?:log(?:arithmi\w*)?|audio)\b/g;
-const LOGARITHMIC = /\blog(?:arithmi\w*)?\b|\baudio\b(?=\s+(?:taper|law)|\s*(?:[,;)]|$))/;
-const LINEAR = /(?<!\bnon[-\s]?)\blin(?:ear)?\b/;
-const POWER = /\bpower[-\s]law(?:\s+(\d+(?:[.,]\d+)?))?/;
+const REVERSE = /\b(?:reversed?|inversed?|inverted|anti|rev\.?|inv\.?|negative)[-\s]?(?:log(?:arithmi\w*)?|audio)\b/g;
+/** What the word itself does not settle, such as `semi-log` or `log catalog`, is no taper. */
+const LOGARITHMIC = /(?<!\b(?:semi|quasi|non|no|not)[-\s]?)\b(?:logarithmi\w*|log(?=\s*(?:$|[.,;()]|\d|(?:taper|law|curve|track|carbon|cermet|conductive|plastic)\b|(?:pot|potentiometer|slider|fader)s?\s*(?:$|[,;()]))))/;
+const ANY_LOG = /\blog(?:arithmi\w*)?\b/;
+/** The word alone may be what the track is for. */
+const AUDIO = /\baudio\s+(?:taper|law)\b|(?:^|[,;])\s*audio\s*(?:$|[,;])/;
+const LINEAR = /(?<!\b(?:semi|quasi|non|no|not)[-\s]?)\blin(?:ear)?\b/;
+const POWER = /\bpower[-\s]law(?:\s+(?:of\s+)?(\d+(?:[.,]\d+)?))?/;
 const SYMMETRICAL = /\b[sw][-\s](?:taper|law|curve)\b/;
 
-/** What a line's technology says of its taper, such as `carbon, linear` or `cermet, power law 0.5`; null where it says nothing, or two things. */
+/** What a line's technology says of its taper, such as `carbon, linear` or `cermet, power law 0.5`; null where it says nothing for certain, or two things. */
 export function taperOf(line: Pick<StockLine, "technology">): Taper | null {
   const text = line.technology.toLowerCase();
   const rest = text.replaceAll(REVERSE, "");
   const [, power] = POWER.exec(text) ?? [];
   const found: Taper[] = [];
   if (rest !== text) found.push({ name: "reverse logarithmic" });
-  if (LOGARITHMIC.test(rest)) found.push({ name: "logarithmic" });
+  const isLogarithmic = LOGARITHMIC.test(rest);
+  if (!isLogarithmic && ANY_LOG.test(rest)) return null;
+  if (isLogarithmic || AUDIO.test(rest)) found.push({ name: "logarithmic" });
   if (LINEAR.test(text)) found.push({ name: "linear" });
   if (POWER.test(text) || SYMMETRICAL.test(text)) found.push({ name: "power law", power: power === undefined ? null : Number(power.replace(",", ".")) });
   return found.length === 1 ? found[0] : null;
