@@ -1,6 +1,6 @@
-/** Texts that a spreadsheet would take for a formula, guarded ones too. */
-const FORMULA = /^'*[=+\-@]./s;
-const GUARDED = /^'+[=+\-@]./s;
+/** Texts that a spreadsheet would take for a formula, guarded ones too: some drop white space before it. */
+const FORMULA = /^'*(?:[\t\r]|\s*[=+\-@])./s;
+const GUARDED = /^'+(?:[\t\r]|\s*[=+\-@])./s;
 
 /** A text as a table holds it: one that a spreadsheet would take for a formula gets an apostrophe before it, which keeps it a text. */
 export function guardFormula(text: string): string {

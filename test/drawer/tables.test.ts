@@ -5,6 +5,7 @@ import { exportTable } from "../../app/services/drawer-tables.ts";
 import { decodeTable, openTable } from "../../app/services/csv-table.ts";
 import type { DrawerStore } from "../../app/store/drawer-store.ts";
 import { isHostFailure } from "../../core/contract/failures.ts";
+import { guardFormula, unguardFormula } from "../../core/drawer/formula-guard.ts";
 import { anyLine, capacitor, importText, openScratch, resistor, withScratch } from "../helpers/drawer.ts";
 
 // Real files, flushed: a busy disk takes its time.
@@ -168,13 +169,27 @@ describe("an export", () => {
   });
 
   test("has no cell that a spreadsheet would take for a formula, and gives every text back as it was", async () => {
-    const texts = ["=1+1", "+12 V rail", "-x", "@home", "'=quoted", "''=twice", "'plain", "-", "a=b"];
+    const texts = ["=1+1", "+12 V rail", "-x", "@home", "'=quoted", "''=twice", "' =spaced", "'plain", "-", "a=b"];
     for (const [n, text] of texts.entries()) drawer.addLine(resistor(`${text} ${n}`, { notes: text, location: text, supplier: text }), 1);
     const { text } = exportTable(drawer);
     for (const record of text.trim().split("\n").slice(1)) for (const cell of record.split(",")) expect(cell).not.toMatch(/^[=+\-@]./);
     const other = await openScratch();
     await importText(other, text);
     expect(other.allLines()).toEqual(drawer.allLines());
+  });
+
+  test("guards a formula behind white space too, and a tab or a carriage return before anything", () => {
+    const formulas = ["=1", "+1", "-1", "@a"].flatMap((text) => [text, ` ${text}`, `\u00a0${text}`, `\n ${text}`, `\t${text}`, `\r${text}`]);
+    for (const text of [...formulas, "\tplain", "\rplain", "' =1", "'\tplain", "'' =1"]) {
+      expect(guardFormula(text)).toBe(`'${text}`);
+      expect(unguardFormula(guardFormula(text))).toBe(text);
+    }
+    for (const text of ["plain", " plain", "'plain", "' plain", "a\t=1", "-", " -", ""]) expect([guardFormula(text), unguardFormula(text)]).toEqual([text, text]);
+    const piece = fc.constantFrom("'", " ", "\t", "\r", "\n", "\u00a0", "=", "+", "-", "@", "a");
+    fc.assert(fc.property(fc.array(piece, { maxLength: 6 }).map((parts) => parts.join("")), (text) => {
+      expect(guardFormula(text)).not.toMatch(/^(?:[\t\r]|\s*[=+\-@])./s);
+      expect(unguardFormula(guardFormula(text))).toBe(text);
+    }));
   });
 
   test("taken into an empty drawer gives the same export and the same lines, whatever the lines are", async () => {
