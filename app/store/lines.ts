@@ -74,9 +74,9 @@ export function lineByKey(db: Db, key: number): DrawerLine {
   return lineOfRow(row).line;
 }
 
-/** @throws HostFailure drawer-refused with everything that is wrong, each with the line's id */
-export function requireSoundLine(line: StockLine): void {
-  const problems = lineProblems(line);
+/** `before`: the line before an edit. @throws HostFailure drawer-refused with everything that is wrong, each with the line's id */
+export function requireSoundLine(line: StockLine, before?: StockLine): void {
+  const problems = lineProblems(line, before);
   if (problems.length > 0) throw new HostFailure("drawer-refused", { problems: problems.map((problem) => (line.id === "" ? problem : `${line.id}: ${problem}`)) });
 }
 
@@ -102,14 +102,14 @@ export function holdersOf(db: Db, key: number): Holder[] {
 export function updateLine(db: Db, step: Step, { key, line }: KeyedLine, edit: LineEdit): boolean {
   const changed = FIELDS.filter((field) => edit[field] !== undefined && !isSame(edit[field], line[field]));
   if (changed.length === 0) return false;
-  requireSoundLine(withEdit(line, edit));
+  const after: LineEdit = Object.fromEntries(changed.map((field) => [field, edit[field]]));
+  requireSoundLine(withEdit(line, after), line);
   if (edit.retired === true && line.reserved > 0) {
     const holders = holdersOf(db, key).map((holder) => `${holder.reference} (${holder.count})`).join(", ");
     throw new HostFailure("drawer-refused", { problems: [`${line.id}: ${line.reserved} pieces are spoken for, by ${holders}. Release them before retiring it.`] });
   }
   const before = Object.fromEntries(changed.map((field) => [field, line[field]]));
-  const after = Object.fromEntries(changed.map((field) => [field, edit[field]]));
-  writeFields(db, step, { key, line }, after);
+  writeFields(db, step, { key, line }, { ...after });
   step.change("line", key, before, after);
   return true;
 }

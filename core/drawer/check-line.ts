@@ -13,20 +13,23 @@ export const MOST_CHARACTERS = 200;
 export const MOST_NOTES = 10_000;
 export const MOST_PRICES = 50;
 
-/** What is wrong with a line, in words; nothing where it can be kept. */
-export function lineProblems(line: StockLine): readonly string[] {
+/**
+ * What is wrong with a line, in words; nothing where it can be kept. What is as it was `before` an edit may be of any
+ * length: a line of an older drawer, which had no limits, can still be worked on.
+ */
+export function lineProblems(line: StockLine, before?: StockLine): readonly string[] {
   const problems: string[] = [];
   const complain = (message: string): void => void problems.push(message);
 
   if (line.id.trim() === "") complain("it needs an id");
   else if (line.id !== line.id.trim() || /\p{Cc}/u.test(line.id)) complain("its id must not begin or end with a space, and be on one line");
-  if (line.id.length > 100) complain("its id has more than 100 characters");
+  if (line.id.length > 100 && line.id !== before?.id) complain("its id has more than 100 characters");
 
   for (const [field, name] of TEXTS) {
     const most = field === "notes" ? MOST_NOTES : MOST_CHARACTERS;
-    if ((line[field] ?? "").length > most) complain(`its ${name} ${field === "notes" ? "have" : "has"} more than ${most} characters`);
+    if ((line[field] ?? "").length > most && line[field] !== before?.[field]) complain(`its ${name} ${field === "notes" ? "have" : "has"} more than ${most} characters`);
   }
-  if (line.prices.length > MOST_PRICES) complain(`it has more than ${MOST_PRICES} prices`);
+  if (line.prices.length > MOST_PRICES && line.prices !== before?.prices) complain(`it has more than ${MOST_PRICES} prices`);
 
   if (line.kind === "op-amp") {
     if (line.value !== null) complain("an op amp has a type, and no value");
@@ -47,8 +50,8 @@ export function lineProblems(line: StockLine): readonly string[] {
   line.prices.forEach(({ from, unitCost }, index) => {
     if (!(unitCost >= 0 && Number.isFinite(unitCost))) complain(`its price from ${from} must be 0 or more, got ${unitCost}`);
     if (!Number.isSafeInteger(from) || from < 1) complain(`a price must hold from a whole number of pieces, got ${from}`);
-    const before = line.prices[index - 1];
-    if (before === undefined ? from !== 1 : from <= before.from) complain(before === undefined ? "its first price must hold from 1 piece" : "its prices must go up in number of pieces");
+    const last = line.prices[index - 1];
+    if (last === undefined ? from !== 1 : from <= last.from) complain(last === undefined ? "its first price must hold from 1 piece" : "its prices must go up in number of pieces");
   });
   return problems;
 }

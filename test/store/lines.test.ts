@@ -1,3 +1,4 @@
+import Database from "better-sqlite3";
 import { beforeEach, describe, expect, test, vi } from "vitest";
 import type { DrawerStore } from "../../app/store/drawer-store.ts";
 import { EVERY_LINE } from "../../core/contract/drawer-schemas.ts";
@@ -41,6 +42,27 @@ describe("lines", () => {
     expect(() => drawer.addLine(resistor("R-1", own), 0)).toThrow(complaint);
     expect(drawer.info().lines).toBe(0);
     expect(drawer.steps(5)).toEqual([]);
+  });
+
+  test("a line of an older drawer, with texts beyond the limits of now, can be worked on, and only what changes is held to them", async () => {
+    const { path } = drawer;
+    // More than 100 in UTF-16, fewer to the file.
+    const id = "🎛".repeat(60);
+    const [location, notes] = ["shelf ".repeat(50).trim(), "n".repeat(10_001)];
+    const prices = Array.from({ length: 51 }, (_, i) => ({ from: i + 1, unitCost: 0.1 }));
+    drawer.close();
+    const db = new Database(path);
+    db.prepare("INSERT INTO lines (id, kind, value, technology, package, location, supplier, order_code, currency, prices, notes) VALUES (?, 'resistor', 4700, '', '', ?, '', '', '', ?, ?)").run(id, location, JSON.stringify(prices), notes);
+    db.exec("INSERT INTO line_words (rowid, id, kind, type, technology, package, location, supplier, order_code, notes) SELECT key, id, kind, type, technology, package, location, supplier, order_code, notes FROM lines");
+    db.close();
+    const older = await openScratch(path);
+    expect(older.editLines([id], { tolerance: 0.05, location, prices })).toMatchObject({ changed: 1 });
+    expect(older.find(id)).toMatchObject({ tolerance: 0.05, location, notes, prices });
+    expect(() => older.editLines([id], { location: `${location}!` })).toThrow("its location has more than 200 characters");
+    expect(() => older.editLines([id], { notes: `${notes}n` })).toThrow("its notes have more than 10000 characters");
+    expect(() => older.editLines([id], { value: null })).toThrow("a resistor needs a value");
+    expect(older.retireLines([id], true)).toMatchObject({ changed: 1 });
+    expect(older.editLines([id], { location: "box 4" })).toMatchObject({ changed: 1 });
   });
 
   test("a second line of the same name is refused", () => {
