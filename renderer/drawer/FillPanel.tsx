@@ -12,7 +12,7 @@ import { useDrawerState } from "./hooks.ts";
 import { counted, lineName, percentText } from "./line-text.ts";
 import { linesForBoard } from "./stock-query.ts";
 import { candidateName, moneysText } from "./swap-text.ts";
-import { useBoardStock } from "./use-board-stock.ts";
+import { useBoardAge, useBoardStock } from "./use-board-stock.ts";
 import { ProblemList } from "./ProblemList.tsx";
 import { TableHead } from "./TableHead.tsx";
 
@@ -44,11 +44,12 @@ export function FillPanel() {
   const outcome = useFill(found, wish);
   const result = outcome !== null && "result" in outcome ? outcome.result : null;
   const fillings = useMemo(() => (result ? fillingsOf(result) : []), [result]);
+  const { isStale, isOtherModel } = useBoardAge(outcome !== null && "board" in outcome ? outcome.board : null);
 
   useEffect(() => {
-    ui.patch({ ghost: fillings.length === 0 ? null : { label: "the drawer's parts", change: (project) => filledProject(project, fillings) } });
+    ui.patch({ ghost: fillings.length === 0 || isOtherModel ? null : { label: "the drawer's parts", change: (project) => filledProject(project, fillings) } });
     return () => ui.patch({ ghost: null });
-  }, [ui, fillings]);
+  }, [ui, fillings, isOtherModel]);
 
   const close = (): void => ui.patch({ task: null, ghost: null });
   const take = (): void => {
@@ -70,7 +71,7 @@ export function FillPanel() {
       {problem === null && outcome === null && <p className="quiet" role="status">Trying parts…</p>}
       {result && <FillReport result={result} hasCeiling={wish.ceiling !== null} />}
       <div className="button-row panel-foot">
-        <button type="button" className="button is-primary" disabled={fillings.length === 0} onClick={take}>
+        <button type="button" className="button is-primary" disabled={fillings.length === 0 || isStale} onClick={take}>
           Take {counted(fillings.length, "part")}
         </button>
         <button type="button" className="button" onClick={close}>

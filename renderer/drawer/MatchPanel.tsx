@@ -8,7 +8,7 @@ import { useShell } from "../editor/hooks.ts";
 import { reasonOf } from "./drawer-store.ts";
 import { counted, percentText } from "./line-text.ts";
 import { piecesForBoard } from "./stock-query.ts";
-import { useBoardStock } from "./use-board-stock.ts";
+import { useBoardAge, useBoardStock } from "./use-board-stock.ts";
 import { TableHead } from "./TableHead.tsx";
 
 type Fillings = Parameters<typeof filledProject>[1];
@@ -37,12 +37,13 @@ export function MatchPanel() {
     }
   }, [found]);
   const result = outcome !== null && "result" in outcome ? outcome.result : null;
+  const { isStale, isOtherModel } = useBoardAge(found?.board ?? null);
   const trouble = problem ?? (outcome !== null && "problem" in outcome ? outcome.problem : null);
 
   useEffect(() => {
-    ui.patch({ ghost: result === null || result.matched.length === 0 ? null : { label: "the measured pieces", change: (project) => filledProject(project, valuedFillings(result)) } });
+    ui.patch({ ghost: result === null || result.matched.length === 0 || isOtherModel ? null : { label: "the measured pieces", change: (project) => filledProject(project, valuedFillings(result)) } });
     return () => ui.patch({ ghost: null });
-  }, [ui, result]);
+  }, [ui, result, isOtherModel]);
 
   const close = (): void => ui.patch({ task: null, ghost: null });
   const take = (): void => {
@@ -75,7 +76,7 @@ export function MatchPanel() {
       )}
       {result && <MatchReport result={result} />}
       <div className="button-row panel-foot">
-        <button type="button" className="button is-primary" disabled={!result || result.matched.length === 0} onClick={take}>
+        <button type="button" className="button is-primary" disabled={!result || result.matched.length === 0 || isStale} onClick={take}>
           Take {counted(result?.matched.length ?? 0, "piece")}
         </button>
         <button type="button" className="button" onClick={close}>

@@ -1,6 +1,7 @@
 import { useEffect, useState } from "react";
 import type { Board } from "../../core/net/board.ts";
 import { useEditorState } from "../editor/hooks.ts";
+import { isSameModel } from "../editor/results.ts";
 import type { HostClient } from "../host/client.ts";
 import { reasonOf } from "./drawer-store.ts";
 import { useDrawer } from "./hooks.ts";
@@ -35,4 +36,10 @@ export function useBoardStock<T>(ask: (host: HostClient, board: Board) => Promis
     };
   }, [drawer, board, isMoving, ask]);
   return board ? state : { found: null, problem: "The board has wiring faults: mend them first." };
+}
+
+/** How far what was worked out for a board still holds for the open one: work that stood aside comes back with what it had. */
+export function useBoardAge(board: Board | null): { readonly isStale: boolean; readonly isOtherModel: boolean } {
+  const project = useEditorState((s) => s.project);
+  return { isStale: board?.project !== project, isOtherModel: board === null || !isSameModel(board.project, project) };
 }

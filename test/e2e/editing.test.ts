@@ -314,7 +314,15 @@ describe("work on the whole board", () => {
     expect(await placed.isVisible()).toBe(false);
     expect(await panel.innerText()).toContain("Fill from the drawer waits; nothing is changed yet.");
     await session.panel.set("series R", "560");
-    await panel.getByRole("button", { name: "Back to it" }).click();
+    // What was found for the board before the edit is not for taking.
+    const isTakenAtOnce = await panel.getByRole("button", { name: "Back to it" }).evaluate(async (back: HTMLElement) => {
+      const button = document.querySelector<HTMLButtonElement>(".panel-foot .button.is-primary")!;
+      back.click();
+      while (button.offsetParent === null) await Promise.resolve();
+      return !button.disabled;
+    });
+    expect(isTakenAtOnce).toBe(false);
+    await expect.poll(() => take.isEnabled()).toBe(true);
     await expect.poll(async () => [await placed.innerText(), await take.innerText()]).toEqual(found);
     expect(await panel.getByLabel("units").inputValue()).toBe("3");
     expect(await panel.innerText()).toContain("Selected: “1 kHz”");
