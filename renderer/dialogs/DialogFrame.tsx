@@ -13,14 +13,20 @@ interface DialogFrameProps {
   readonly isTitleHidden?: boolean;
 }
 
+const CONTROLS = ["button:enabled", "input:enabled", "select:enabled", "textarea:enabled", "a[href]", "[tabindex]"].map((one) => `${one}:not([tabindex="-1"])`).join();
+
+/** The first control that Tab would come to. */
+function firstControl(popup: HTMLElement | null): HTMLElement | undefined {
+  return [...(popup?.querySelectorAll<HTMLElement>(CONTROLS) ?? [])].find((control) => control.checkVisibility({ visibilityProperty: true }));
+}
+
 /** The frame of every dialog: title, body that scrolls, answers below. */
 export function DialogFrame({ title, children, foot, onDismiss, size, focusRef, isTitleHidden }: DialogFrameProps) {
   const popup = useRef<HTMLDivElement>(null);
-  /** At once, not with the next frame as the library has it: quick hands type on. True leaves the first control to the library. */
-  const takeFocus = (): boolean => {
-    const first = focusRef?.current;
-    (first ?? popup.current)?.focus();
-    return !first;
+  /** At once, not with the next frame as the library has it: quick hands type on, and tab on. The library moves nothing. */
+  const takeFocus = (): false => {
+    (focusRef?.current ?? firstControl(popup.current) ?? popup.current)?.focus();
+    return false;
   };
 
   return (

@@ -214,4 +214,17 @@ describe("without a pointer", () => {
     await keyboard.command("night");
     expect(await page.locator("html").getAttribute("data-theme")).toBe("night");
   });
+
+  test("a dialog lets the hands tab on from its first control, however late its frames are", async () => {
+    session = await Session.start(browser, { file: DEMO, lateFrames: true });
+    const { keyboard, page } = session;
+    await keyboard.command("build units");
+    await session.dialog("Build units").waitFor();
+    await keyboard.press("Tab");
+    const focused = (): Promise<string> => page.evaluate(() => document.activeElement?.outerHTML ?? "");
+    const there = await focused();
+    expect(there).toContain("button");
+    await page.waitForTimeout(300);
+    expect(await focused()).toBe(there);
+  });
 });
