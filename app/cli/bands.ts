@@ -11,9 +11,11 @@ export function bandsCommand(): Command {
     .action(async (file: string, opts: SliderOpts & { readonly json?: true }) => {
       const { board, run, unstable } = await loadBoard(file, opts);
       const bands = bandFigures(board, run);
-      const ends = judgedEnds(board, run);
+      const judgement = judgedEnds(board, run);
+      const { ends } = judgement;
+      const endTrouble = unstable === undefined ? endsText(judgement) : undefined;
       const isVoid = (id: string, end: "boost" | "cut"): boolean => unstable !== undefined || ends.some((e) => e.id === id && e.end === end);
-      if (ends.length > 0 && unstable === undefined) process.stderr.write(`${file}: ${endsText(ends)}\n`);
+      if (endTrouble !== undefined) process.stderr.write(`${file}: ${endTrouble}\n`);
       if (opts.json) {
         const marked = (id: string, end: "boost" | "cut", figures: BandPeak) => (isVoid(id, end) ? { ...figures, unstable: true } : figures);
         printJson({ bands: bands.map((b) => ({ ...b, boost: marked(b.id, "boost", b.boost), cut: marked(b.id, "cut", b.cut) })), ...unstableKey(unstable) });
@@ -30,7 +32,7 @@ export function bandsCommand(): Command {
           return [b.label, value(b.inductance, "inductance"), value(b.resonance, "frequency"), value(b.legQ, "plain"), b.isolatedBoost.toFixed(2), ...peak(b.boost, boost), ...peak(b.cut, cut), b.interactionLoss.toFixed(2) + boost];
         }),
       );
-      const trouble = unstable ?? (ends.length > 0 ? endsText(ends) : undefined);
+      const trouble = unstable ?? (ends.length > 0 ? endTrouble : undefined);
       if (trouble !== undefined) process.stdout.write(`\n${MEANINGLESS} means nothing: ${trouble}\n`);
     });
 }

@@ -1,7 +1,7 @@
 import { readFile } from "node:fs/promises";
 import { Command } from "commander";
 import { FaultError, faultText } from "../../core/errors.ts";
-import { instability, troubleText } from "../../core/analysis/summary.ts";
+import { instability, troubleText, type Trouble } from "../../core/analysis/summary.ts";
 import { restoreProject } from "../../core/model/restore.ts";
 import { resolveBoard, type Board } from "../../core/net/board.ts";
 import { compileBoard, type CompiledBoard } from "../../core/net/star.ts";
@@ -22,6 +22,8 @@ export interface LoadedBoard {
   readonly run: Required<Pick<ValueOpts, "positions" | "isMeasured">>;
   /** In which loop the board oscillates in this run, so that no figure of it means anything; undefined where it is at peace or nobody can tell. */
   readonly unstable: string | undefined;
+  /** The same, or that nobody can tell; null where it is at peace. */
+  readonly trouble: Trouble | null;
 }
 
 /** A command on a project file, with the slider options that everything takes that computes a response. */
@@ -57,7 +59,7 @@ export async function loadBoard(file: string, opts: SliderOpts): Promise<LoadedB
     const run = { positions: sliderPositions(board, opts), isMeasured: opts.measured === true };
     const trouble = instability(board, run);
     if (trouble) process.stderr.write(`${file}: ${troubleText(trouble)}\n`);
-    return { board, run, compiled: compileBoard(board, run), unstable: trouble?.is === "unstable" ? trouble.text : undefined };
+    return { board, run, compiled: compileBoard(board, run), unstable: trouble?.is === "unstable" ? trouble.text : undefined, trouble };
   } catch (error) {
     if (error instanceof FaultError) throw new CommandFailure(error.faults.map((fault) => `${file}: ${faultText(fault)}`).join("\n"));
     throw error;
@@ -107,6 +109,11 @@ export const MEANINGLESS = "?";
 /** The key that marks a JSON result of a board that oscillates; none where it is at peace. */
 export function unstableKey(unstable: string | undefined): { readonly unstable?: string } {
   return unstable === undefined ? {} : { unstable };
+}
+
+/** Ends what was printed for people of a board that oscillates; says nothing where it is at peace. */
+export function printMeaningless(unstable: string | undefined, prefix = ""): void {
+  if (unstable !== undefined) process.stdout.write(`\n${prefix}What is worked out above means nothing: ${unstable}\n`);
 }
 
 /** JSON for other programs: stable, indented, and without NaN or Infinity. @throws CommandFailure (exit 1) where a number is not finite */

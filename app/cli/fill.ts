@@ -1,7 +1,7 @@
 import type { Command } from "commander";
 import { readCeiling } from "../../core/drawer/ceiling.ts";
 import { fillBoard, type FillResult } from "../../core/drawer/fill.ts";
-import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { boardCommand, loadBoard, printJson, printMeaningless, printTable, unstableKey, type SliderOpts } from "./board-command.ts";
 import { linesFor, linesText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, sumText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 import { read, withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
@@ -27,7 +27,7 @@ export function fillCommand(): Command {
   ).action(async (file: string, opts: FillCommandOpts) => {
     const units = readCount(opts.units, "--units");
     const window = readFraction(opts.window, "--window");
-    const { board, run: { positions } } = await loadBoard(file, opts);
+    const { board, run: { positions }, unstable } = await loadBoard(file, opts);
     await requireOutput(opts.output);
     const lines = await withDrawer(opts, "has to be there", (store) => linesFor(store, board.project));
     const ceiling = opts.ceiling === undefined ? undefined : read("--ceiling", opts.ceiling, (text) => readCeiling(text, lines));
@@ -35,8 +35,11 @@ export function fillCommand(): Command {
     if (!result.isWithinCeiling) throw new CommandFailure(`the cheapest parts that fit come to ${sumText(result.cost)} a unit: more than the ceiling. Nothing was written`, EXIT.failed);
     if (result.placed.length === 0) throw new CommandFailure(`${unplacedText(result)}\nnothing of the drawer goes into this board. Nothing was written`, EXIT.failed);
     await writeProject(opts.output, result.project);
-    if (opts.json) printJson(fillJson(result));
-    else printFill(result);
+    if (opts.json) printJson({ ...fillJson(result), ...unstableKey(unstable) });
+    else {
+      printFill(result);
+      printMeaningless(unstable);
+    }
     if (result.unplaced.length > 0) process.stderr.write(`${unplacedText(result)}\n`);
   });
 }
@@ -48,7 +51,7 @@ function unplacedText({ unplaced }: FillResult): string {
   return [...roles].map(([reason, names]) => `${names.join(", ")} ${names.length === 1 ? "keeps its value" : "keep their values"} without a line: ${reason}`).join("\n");
 }
 
-function fillJson(r: FillResult): unknown {
+function fillJson(r: FillResult): object {
   return {
     error: r.error, worst: r.worst, isExhaustive: r.isExhaustive, cost: r.cost,
     placed: r.placed.map((p) => ({ role: p.role.name, lines: p.candidate?.lines.map((l) => l.id) ?? [p.line.id], joined: p.candidate?.joined ?? null, wanted: p.role.value, value: p.candidate?.value ?? p.role.value, type: p.line.type, deviation: p.candidate?.deviation ?? 0, left: p.left, problems: p.problems })),

@@ -1,6 +1,6 @@
 import type { Command } from "commander";
 import { matchPieces, type MatchResult } from "../../core/drawer/match.ts";
-import { boardCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { boardCommand, loadBoard, printJson, printMeaningless, printTable, unstableKey, type SliderOpts } from "./board-command.ts";
 import { OUTPUT_HELP, percentText, readCount, requireOutput, stockText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure, EXIT } from "./failure.ts";
 import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
@@ -22,18 +22,21 @@ export function matchCommand(): Command {
   ).action(async (file: string, opts: MatchCommandOpts) => {
     const deals = readCount(opts.deals, "--deals", 10_000);
     const seed = readCount(opts.seed, "--seed", 2 ** 32 - 1);
-    const { board, run: { positions } } = await loadBoard(file, opts);
+    const { board, run: { positions }, unstable } = await loadBoard(file, opts);
     await requireOutput(opts.output);
     const pieces = await withDrawer(opts, "has to be there", (store) => store.allPieces());
     const result = underWay(`dealing ${pieces.length} pieces`, () => matchPieces(board, pieces, { positions, deals, seed }));
     if (result.matched.length === 0) throw new CommandFailure("no part of the board names a stock line of which pieces have been measured. Nothing was written", EXIT.failed);
     await writeProject(opts.output, result.project);
-    if (opts.json) printJson(matchJson(result));
-    else printMatch(result);
+    if (opts.json) printJson({ ...matchJson(result), ...unstableKey(unstable) });
+    else {
+      printMatch(result);
+      printMeaningless(unstable);
+    }
   });
 }
 
-function matchJson(r: MatchResult): unknown {
+function matchJson(r: MatchResult): object {
   return {
     error: r.error, random: r.random,
     matched: r.matched.map((m) => ({ role: m.role.name, line: m.piece.line, piece: m.piece.id, mark: m.piece.mark, nominal: m.role.value, measured: m.piece.value, deviation: m.deviation })),

@@ -23,5 +23,6 @@ export function polesCommand(): Command {
       };
       printTable(["", "re rad/s", "im rad/s", "frequency", "Q", "block"], [...poles.map((p) => row("pole", p, p.block)), ...zeros.map((z) => row("zero", z, ""))]);
       process.stdout.write(`\n${poles.length} poles, ${zeros.length} zeros; together they give the response back within ${reproducedWithin.toExponential(0)} dB from 10 Hz to 100 kHz\n`);
+      if (unstable !== undefined) process.stdout.write(`${unstable}\n`);
     });
 }

@@ -5,7 +5,7 @@ import { hasFault } from "../../core/drawer/place-problems.ts";
 import { whyNothing } from "../../core/drawer/why-nothing.ts";
 import { applyPatch } from "../../core/model/patch.ts";
 import { formatDb } from "../../core/units.ts";
-import { analysisCommand, loadBoard, printJson, printTable, type SliderOpts } from "./board-command.ts";
+import { analysisCommand, loadBoard, printJson, printMeaningless, printTable, unstableKey, type SliderOpts } from "./board-command.ts";
 import { linesFor, linesText, moneyText, OUTPUT_HELP, percentText, printProblems, readCount, readFraction, requireOutput, stockText, underWay, writeProject } from "./choose-command.ts";
 import { CommandFailure } from "./failure.ts";
 import { withDrawer, withDrawerOptions, type DrawerOption } from "./stock-drawer.ts";
@@ -38,7 +38,7 @@ export function swapCommand(): Command {
     const most = readCount(opts.most, "--most", 10_000);
     const take = opts.take === undefined ? undefined : readCount(opts.take, "--take");
     if ((take === undefined) !== (opts.output === undefined)) throw new CommandFailure("--take and -o go together: which number of the list, and where to write the board");
-    const { board, run } = await loadBoard(file, opts);
+    const { board, run, unstable } = await loadBoard(file, opts);
     const role = findRole(board, opts.role);
     if (!role) throw new CommandFailure(`--role: the board has no part “${opts.role}”: it has ${boardRoles(board).map((r) => r.name).join(", ")}`);
     if (opts.output !== undefined) await requireOutput(opts.output);
@@ -48,8 +48,11 @@ export function swapCommand(): Command {
     if (take !== undefined && !taken) throw new CommandFailure(`--take: the list has ${swap.candidates.length} entries, so there is no number ${take}`);
     if (taken && hasFault(taken)) throw new CommandFailure(`--take: number ${take}, ${linesText(taken)}, does not do: ${taken.problems.filter((p) => p.level === "fault").map((p) => p.message).join("; ")}`);
     if (taken && opts.output !== undefined) await writeProject(opts.output, applyPatch(board.project, taken.patch));
-    if (opts.json) printJson({ ...swapJson(swap), taken: take ?? null });
-    else printSwap(swap, role);
+    if (opts.json) printJson({ ...swapJson(swap), taken: take ?? null, ...unstableKey(unstable) });
+    else {
+      printSwap(swap, role);
+      printMeaningless(unstable);
+    }
     if (swap.candidates.length === 0) process.stderr.write(`nothing in the drawer fits: ${whyNothing(board.project, role, lines, { units, window, elsewhere: partsElsewhere(board, role) })}\n`);
     if (taken) process.stderr.write(`${opts.output}: ${role.name} is now ${taken.lines.map((l) => l.id).join(" and ")}\n`);
   });

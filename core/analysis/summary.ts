@@ -34,13 +34,20 @@ export function boardSize(board: Board): string {
   return `${count(bands, "band", "bands")} on ${count(buses, "bus", "buses")}, ${volts}`;
 }
 
-/** One line that says what a board does: size, boost in circuit, flatness, and whether its loops are at peace. @throws RangeError where it has no finite response */
-export function boardSummary(board: Board, opts: ValueOpts = {}): string {
-  const peaks = bandFigures(board, opts).map((f) => f.boost.peak);
+/**
+ * One line that says what a board does: size, boost in circuit (where it does not oscillate), flatness, and whether its
+ * loops are at peace.
+ * @param trouble as worked out already
+ * @throws RangeError where it has no finite response
+ */
+export function boardSummary(board: Board, opts: ValueOpts = {}, trouble = instability(board, opts)): string {
+  const judgement = judgedEnds(board, opts);
+  const isVoid = (id: string): boolean => judgement.ends.some((e) => e.id === id && e.end === "boost");
+  const peaks = bandFigures(board, opts).filter((f) => !isVoid(f.id)).map((f) => f.boost.peak);
   const boosts = peaks.length === 0 ? "" : `; boost in circuit ${Math.min(...peaks).toFixed(1)} to ${Math.max(...peaks).toFixed(1)} dB`;
   const flat = flatness(board, opts);
   if (![...peaks, flat.within].every(Number.isFinite)) throw new RangeError("there is no finite response: some value of the board is out of any practical range");
-  return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred; ${stabilityText(board, opts)}`;
+  return `${board.project.name}: ${boardSize(board)}${boosts}; flat within ${Number(flat.within.toPrecision(2))} dB from 20 Hz to 20 kHz with sliders centred; ${stabilityText(board, opts, trouble, judgement)}`;
 }
 
 /** Boards of more nodes than this are not looked at for stability: the work grows with the cube, and these would take minutes. */
@@ -61,25 +68,37 @@ export function troubleText({ is, text }: Trouble): string {
   return is === "unstable" ? text : `whether the board oscillates is not known: ${text}`;
 }
 
-/** The slider ends at which a board oscillates (see `unstableEnds`); none where that cannot be told. */
-export function judgedEnds(board: Board, opts: ValueOpts = {}): readonly UnstableEnd[] {
-  const ends = judged(board, opts, () => unstableEnds(board, opts));
-  return "is" in ends ? [] : ends;
+/** Slider ends of more bands than this are not looked at: each costs a solve of the whole board. */
+const MOST_END_BANDS = 40;
+
+/** The slider ends at which a board oscillates (see `unstableEnds`), as far as somebody has looked. */
+export interface JudgedEnds {
+  readonly ends: readonly UnstableEnd[];
+  /** Why nobody has; undefined where somebody has. */
+  readonly unknown?: string;
 }
 
-/** `smallest phase margin 57° (b6k3)`, with the slider ends at which it oscillates, or that it oscillates as it stands. */
-export function stabilityText(board: Board, opts: ValueOpts = {}): string {
-  const trouble = instability(board, opts);
+/** Looks at the slider ends of a board. @param only bands to look at; all where left off */
+export function judgedEnds(board: Board, opts: ValueOpts = {}, only?: readonly string[]): JudgedEnds {
+  const bands = only?.length ?? board.chain.reduce((sum, item) => sum + item.bands.length, 0);
+  const unlooked = (why: string): JudgedEnds => ({ ends: [], unknown: `whether the board oscillates at an end of a slider is not known: ${why}` });
+  if (bands > MOST_END_BANDS) return unlooked(`it has ${bands} bands, and more than ${MOST_END_BANDS} would take too long`);
+  const judgement = judged(board, opts, (): JudgedEnds => ({ ends: unstableEnds(board, opts, only) }));
+  return "ends" in judgement ? judgement : unlooked(judgement.text);
+}
+
+/** What there is to say of the slider ends; undefined where all is well. */
+export function endsText({ ends, unknown }: JudgedEnds): string | undefined {
+  return ends.length === 0 ? unknown : `unstable with ${ends.map(({ id, end }) => `${id} at full ${end}`).join(", ")}`;
+}
+
+/** `smallest phase margin 57° (b6k3)`, with the slider ends at which it oscillates, or that it oscillates as it stands. @param trouble as worked out already */
+export function stabilityText(board: Board, opts: ValueOpts = {}, trouble = instability(board, opts), judgement?: JudgedEnds): string {
   if (trouble) return troubleText(trouble);
   const margins = judged(board, opts, () => marginText(loopMargins(board, opts)));
   if (typeof margins !== "string") return troubleText(margins);
-  const ends = judgedEnds(board, opts);
-  return ends.length === 0 ? margins : `${margins}; ${endsText(ends)}`;
-}
-
-/** `unstable with b1 at full boost`. */
-export function endsText(ends: readonly UnstableEnd[]): string {
-  return `unstable with ${ends.map(({ id, end }) => `${id} at full ${end}`).join(", ")}`;
+  const ends = endsText(judgement ?? judgedEnds(board, opts));
+  return ends === undefined ? margins : `${margins}; ${ends}`;
 }
 
 function marginText(margins: readonly LoopMargin[]): string {

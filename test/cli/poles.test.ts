@@ -125,11 +125,27 @@ describe.concurrent("stability", () => {
     expect(bands.stdout).toMatch(/^hi .*\d\?  .*\d\?$/m);
     const equations = await bandwright("equations", oscillating, "--block", "hi");
     expect(equations.stdout).toMatch(/means nothing: unstable: .*“eq”/);
+    const poles = await bandwright("poles", oscillating);
+    expect(poles.stdout).toMatch(/\nunstable: .*“eq”.*\n$/);
+    const drawer = join(folder, "marks.sqlite");
+    await bandwright("stock", "import", "--starter", "--drawer", drawer);
+    const swap = await bandwright("swap", oscillating, "--role", "hi.seriesR", "--drawer", drawer);
+    expect(swap.stdout).toMatch(/means nothing: unstable: .*“eq”/);
+    const fill = await bandwright("fill", oscillating, "-o", join(folder, "filled.bandwright"), "--drawer", drawer, "--json");
+    expect(JSON.parse(fill.stdout)).toHaveProperty("unstable", expect.stringContaining("“eq”"));
   });
 
   test("a slider end that oscillates is told of, and only what is read there is marked", async () => {
     const check = await bandwright("check", oscillating, "--all", "0.5");
     expect(check.stdout).toMatch(/smallest phase margin \d+° \(eq\); unstable with hi at full boost\n$/);
+    // Its boost is no figure to sum up.
+    expect(check.stdout).not.toContain("boost in circuit");
+    const equations = await bandwright("equations", oscillating, "--all", "0.5", "--block", "hi");
+    expect(equations.stderr).toContain("unstable with hi at full boost");
+    expect(equations.stdout).toMatch(/means nothing: unstable with hi at full boost, where figures are read\n$/);
+    const asJson = await bandwright("equations", oscillating, "--all", "0.5", "--block", "hi", "--json");
+    expect(JSON.parse(asJson.stdout)).toMatchObject({ unstableEnds: [{ id: "hi", end: "boost" }] });
+    expect(JSON.parse((await bandwright("equations", oscillating, "--all", "0.5", "--block", "eq", "--json")).stdout)).not.toHaveProperty("unstableEnds");
     const bands = await bandwright("bands", oscillating, "--all", "0.5", "--json");
     expect(bands.stderr).toContain("unstable with hi at full boost");
     const [hi] = (JSON.parse(bands.stdout) as { readonly bands: readonly Readonly<Record<"boost" | "cut", object>>[] }).bands;

@@ -2,7 +2,7 @@ import * as fc from "fast-check";
 import { describe, expect, test, vi } from "vitest";
 import { unstablePoles } from "../../../core/analysis/poles.ts";
 import { loopMargins, smallestMargin } from "../../../core/analysis/stability.ts";
-import { boardSummary, stabilityText } from "../../../core/analysis/summary.ts";
+import { boardSummary, endsText, judgedEnds, stabilityText } from "../../../core/analysis/summary.ts";
 import type { Block, Project } from "../../../core/model/project.ts";
 import { resolveBoard, type Board } from "../../../core/net/board.ts";
 import { expandBoard } from "../../../core/net/expand.ts";
@@ -190,4 +190,11 @@ describe("loop margins", () => {
     expect(stabilityText(board, { positions: { hi: 0.5 } })).toMatch(/^smallest phase margin \d+° \(eq\); unstable with hi at full boost$/);
     expect(stabilityText(resolveBoard(tenBandBoard("ideal")))).toMatch(/ideal op amps/);
   });
+});
+
+test("the slider ends of a very wide board are not looked at, and that is said", () => {
+  const wide = (bands: number): Board => resolveBoard(oneBus(Array.from({ length: bands }, (_, n) => bandOf(`b${n}`, "level-section", { seriesR: 10_000 })), { opAmp: "ideal" }));
+  expect(endsText(judgedEnds(wide(40)))).toBeUndefined();
+  expect(endsText(judgedEnds(wide(41)))).toMatch(/^whether the board oscillates at an end of a slider is not known: it has 41 bands/);
+  expect(endsText(judgedEnds(wide(41), {}, ["b3"]))).toBeUndefined();
 });
