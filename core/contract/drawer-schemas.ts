@@ -51,7 +51,21 @@ export interface DrawerLine extends StockedLine {
   readonly retired: boolean;
 }
 
-export const DRAWER_LINE_SCHEMA: v.GenericSchema<DrawerLine> = v.object({ id: v.string(), ...FIELDS, quantity: COUNT, reserved: COUNT, retired: v.boolean() });
+/** Fields as they stand: a drawer may hold what an older version let in. */
+const KEPT_FIELDS = {
+  ...FIELDS,
+  type: v.nullable(v.string()),
+  technology: v.string(),
+  package: v.string(),
+  location: v.string(),
+  prices: v.array(v.object({ from: COUNT_FROM_ONE, unitCost: NUMBER })),
+  currency: v.string(),
+  supplier: v.string(),
+  orderCode: v.string(),
+  notes: v.string(),
+};
+
+export const DRAWER_LINE_SCHEMA: v.GenericSchema<DrawerLine> = v.object({ id: v.string(), ...KEPT_FIELDS, quantity: COUNT, reserved: COUNT, retired: v.boolean() });
 
 export const PIECE_SCHEMA: v.GenericSchema<StockPiece> = v.object({ id: COUNT, line: v.string(), mark: v.string(), value: NUMBER, frequency: v.nullable(NUMBER) });
 

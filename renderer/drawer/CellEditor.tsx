@@ -27,7 +27,7 @@ export function CellEditor({ line, column, onLeave }: CellEditorProps) {
     if (isDone.current) return;
     const edit = column.edit!.read(text, line);
     const isChanged = text.trim() !== before.trim();
-    const problem = !isChanged ? undefined : !edit.ok ? edit.message : "fields" in edit ? lineProblems({ ...line, ...edit.fields })[0] : undefined;
+    const problem = !isChanged ? undefined : !edit.ok ? edit.message : "fields" in edit ? lineProblems({ ...line, ...edit.fields }, line)[0] : undefined;
     if (problem !== undefined) {
       setError(problem);
       return;

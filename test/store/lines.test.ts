@@ -1,7 +1,8 @@
 import Database from "better-sqlite3";
+import * as v from "valibot";
 import { beforeEach, describe, expect, test, vi } from "vitest";
 import type { DrawerStore } from "../../app/store/drawer-store.ts";
-import { EVERY_LINE } from "../../core/contract/drawer-schemas.ts";
+import { DRAWER_LINE_SCHEMA, EVERY_LINE } from "../../core/contract/drawer-schemas.ts";
 import { capacitor, openScratch, resistor } from "../helpers/drawer.ts";
 
 // Real files, flushed: a busy disk takes its time.
@@ -58,6 +59,9 @@ describe("lines", () => {
     const older = await openScratch(path);
     expect(older.editLines([id], { tolerance: 0.05, location, prices })).toMatchObject({ changed: 1 });
     expect(older.find(id)).toMatchObject({ tolerance: 0.05, location, notes, prices });
+    // It passes to the screens, too.
+    const [shown] = older.lines(EVERY_LINE, { by: "id", descending: false }, 0, 10).lines;
+    expect(v.safeParse(DRAWER_LINE_SCHEMA, shown)).toMatchObject({ success: true });
     expect(() => older.editLines([id], { location: `${location}!` })).toThrow("its location has more than 200 characters");
     expect(() => older.editLines([id], { notes: `${notes}n` })).toThrow("its notes have more than 10000 characters");
     expect(() => older.editLines([id], { value: null })).toThrow("a resistor needs a value");
