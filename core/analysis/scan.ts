@@ -158,7 +158,8 @@ export class Scan {
       const past = settledAt((i) => lets(i) && isPast(i), SETTLED);
       // A shelf cut off by a coupling capacitor or a slow op amp before its corner has no plateau, only a hump about it.
       const hump = past >= 0 ? -1 : this.#summit((i) => isNear(i) && effect[i] > 0, sign);
-      const at = [past, hump, settledAt((i) => lets(i) && isNear(i), HUMP)].find((i) => i >= 0) ?? this.#nearest(lets, corner);
+      const found = past >= 0 ? past : hump >= 0 ? hump : settledAt((i) => lets(i) && isNear(i), HUMP);
+      const at = found >= 0 ? found : this.#nearest(lets, corner);
       const lnPlateau = at === hump ? this.#top(at) : this.#level(at);
       const centred = new Float64Array(this.#positions.length).fill(0.5);
       const effectAt = (lnF: number): number => sign * (this.#gainAt(lnF) - this.#gainAt(lnF, centred));

@@ -20,10 +20,13 @@ function changed(block: Block, factor: number): Block {
   };
 }
 
+/** What a sweep gives without slopes and with them: each has its own way of working. */
 function columnsOf(sweep: Sweep, positions: Float64Array) {
-  const out = transferColumns(omega.length, true);
-  sweep.run(positions, out);
-  return out;
+  return [false, true].map((withSlope) => {
+    const out = transferColumns(omega.length, withSlope);
+    sweep.run(positions, out);
+    return out;
+  });
 }
 
 describe("a compiled board with one block changed", () => {
